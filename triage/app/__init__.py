@@ -1,0 +1,1 @@
+"""The screens: they show and ask, and compute nothing."""

@@ -1,0 +1,1 @@
+"""What an adapter is: parts, nodes, faults, readings, and the profile file."""

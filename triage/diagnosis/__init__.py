@@ -1,0 +1,1 @@
+"""Which part failed: hypotheses, priors, expected readings, belief, next reading, verdict."""

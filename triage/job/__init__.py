@@ -1,0 +1,1 @@
+"""What is written down: entries, the job file, the report."""

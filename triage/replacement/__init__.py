@@ -1,0 +1,1 @@
+"""What a position demands, and which parts of the catalog meet it."""

@@ -1,0 +1,1 @@
+"""Cautions, gates, limits of standards, retest."""
