@@ -1,0 +1,234 @@
+"""What a screen or the command line is shown of a job: plain records, ready to be written as text or JSON.
+
+The facade ``triage.job.bench.Bench`` answers with these and with nothing else, so that neither the app nor the command
+line needs to know how an answer was found. Numbers are SI (temperature degC, life h); every text that came from a file or
+from a person has already gone through ``triage.job.display.plain``. The JSON of the command line is
+``dataclasses.asdict`` of these records.
+"""
+
+from dataclasses import dataclass
+
+STAGES = ("cautions", "inspection", "cold", "live", "repair", "retest", "closed")
+"""The way of a job from the mat to the file, in order."""
+
+NO_PART_FAULT = "no part fault"
+"""Mode of the suspect that no part of the board is at fault (cable, joint, connector), whose ref is empty."""
+
+STATUSES = ("open", "found", "does not fit", "no part fault")
+"""What a verdict can say."""
+
+
+@dataclass(frozen=True, slots=True)
+class SuspectView:
+    """One thing that may be wrong, with how likely it is now."""
+
+    ref: str
+    """Reference designator of the root part; empty for no part fault, ``R1+C2`` for two independent faults."""
+    mode: str
+    """Fault mode of the root; ``no part fault`` when ref is empty."""
+    probability: float
+    """[-], 0 to 1"""
+    collateral: tuple[str, ...] = ()
+    """Faults it took with it, in order of destruction: ``D1.short``."""
+    role: str = ""
+    """What the part does on this board."""
+    stress: str = ""
+    """The worst stress of the part in words, empty where every stress is in limits."""
+
+
+@dataclass(frozen=True, slots=True)
+class OutcomeView:
+    """One possible outcome of a suggested reading."""
+
+    text: str
+    """The band as a person reads a meter: ``below 10 ohm``, ``OL``."""
+    low: float
+    """Lower end [SI]"""
+    high: float
+    """Upper end [SI]; ``inf`` reaches up to OL."""
+    probability: float
+    """[-]"""
+    says: str
+    """What this outcome would mean."""
+
+
+@dataclass(frozen=True, slots=True)
+class SuggestionView:
+    """The next reading to take."""
+
+    function: str
+    plus: str
+    """Node of the red lead."""
+    minus: str
+    """Node of the black lead."""
+    condition: str
+    unit: str
+    """SI unit of the reading."""
+    minutes: float
+    """Work to take it [min]."""
+    reason: str
+    """One sentence: why this one."""
+    outcomes: tuple[OutcomeView, ...] = ()
+    hazard: str = ""
+    """What to mind while taking it; empty for a discharged board."""
+
+
+@dataclass(frozen=True, slots=True)
+class VerdictView:
+    """What the job has come to so far."""
+
+    status: str
+    """One of STATUSES."""
+    ref: str = ""
+    mode: str = ""
+    collateral: tuple[str, ...] = ()
+    repair: tuple[str, ...] = ()
+    """Refs of the parts to replace."""
+    probability: float = 0.0
+    """Probability of this repair [-]."""
+    why: str = ""
+    """The stress that explains the failure."""
+    evidence: tuple[str, ...] = ()
+    """The entries that decided it, strongest first."""
+
+
+@dataclass(frozen=True, slots=True)
+class EntryView:
+    """One line of the job's log."""
+
+    number: int
+    """Place in the log, from 1."""
+    time: str
+    """UTC, ISO 8601."""
+    text: str
+    undone: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class StressView:
+    """How hard one part is driven at its worst condition."""
+
+    ref: str
+    role: str
+    quantity: str
+    value: float
+    unit: str
+    rating: float | None = None
+    limit: float | None = None
+    """Derated limit, same unit."""
+    ratio: float | None = None
+    """Value over rating [-]."""
+    verdict: str = ""
+    """``over rating``, ``over derated limit``, ``ok`` or ``rating unknown``."""
+    source: str = ""
+    """Source of the derating factor."""
+    condition: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class RequirementView:
+    """One thing a replacement must offer in a position."""
+
+    key: str
+    text: str
+    minimum: float | None = None
+    maximum: float | None = None
+    unit: str = ""
+    reason: str = ""
+    source: str = ""
+    offered: float | None = None
+    """What the original part offers, where known."""
+
+
+@dataclass(frozen=True, slots=True)
+class DemandView:
+    """What the position of one part demands of a replacement."""
+
+    ref: str
+    role: str
+    requirements: tuple[RequirementView, ...] = ()
+    safety_part: bool = False
+    """True for a part that is replaced like for like only."""
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class CandidateView:
+    """One catalog part held against a demand."""
+
+    type: str
+    part_class: str
+    score: float
+    margins: tuple[str, ...] = ()
+    notes: tuple[str, ...] = ()
+    source: str = ""
+    confidence: str = ""
+    accepted: bool = True
+    refusals: tuple[str, ...] = ()
+    """Hard rules it fails, each with its figures; empty when accepted."""
+
+
+@dataclass(frozen=True, slots=True)
+class MatchView:
+    """One catalog part that a half-read marking may mean."""
+
+    type: str
+    part_class: str
+    score: float
+    """0 to 100"""
+    band: str
+    """How sure the match is, in a word."""
+    text: str
+    """Its main ratings in a line."""
+
+
+@dataclass(frozen=True, slots=True)
+class CautionView:
+    """One caution to be acknowledged before the work goes on."""
+
+    key: str
+    text: str
+    acknowledged: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class JobView:
+    """All a screen shows of an open job at one moment."""
+
+    id: str
+    title: str
+    stage: str
+    """One of STAGES."""
+    safe_to_touch: str
+    """Stored energy of the bulk capacitor and how long it takes to bleed, in a sentence."""
+    suspects: tuple[SuspectView, ...] = ()
+    suggestion: SuggestionView | None = None
+    verdict: VerdictView = VerdictView("open")
+    entries: tuple[EntryView, ...] = ()
+    message: str = ""
+    """What the last entry did, or what keeps the job from going on."""
+    computing: bool = False
+    """True while the expected readings are not computed yet; suspects and suggestion are then empty."""
+    cautions: tuple[CautionView, ...] = ()
+    drawing: str = ""
+    """The board drawn as text."""
+    read_only: str = ""
+    """Empty, or who has the job open and since when."""
+
+
+@dataclass(frozen=True, slots=True)
+class ReadingExpected:
+    """What one reading should show on the healthy board or under a named fault."""
+
+    function: str
+    plus: str
+    minus: str
+    condition: str
+    unit: str
+    low: float
+    """5th percentile over the tolerances [SI]"""
+    median: float
+    high: float
+    """95th percentile [SI]"""
+    text: str
+    """The median in engineering form."""
