@@ -1,1 +1,1 @@
-"""Cautions, gates, limits of standards, retest."""
+"""Safe to open, worth repairing, proved afterwards: cautions, gates, limits, retest, decision."""

@@ -1,0 +1,251 @@
+"""What the capacitors of the mains side still hold after unplugging, for how long, and what bleeds it.
+
+Worst case throughout: charged to the crest of the highest mains, emptied only through what is on the board.
+A bleed path on the board is never to be trusted, since its resistor may be the part that failed: the time is
+also given with the one part open whose loss hurts most. The proposal takes the highest resistance that is
+still quick enough, because that asks least of the resistor.
+"""
+
+import math
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from triage.board.part import Board, Part
+from triage.safety.leak_path import discharge_resistance
+from triage.safety.limits import Source, source_of, table
+
+_CAPACITORS = ("capacitor", "electrolytic")
+_BULK_ROLES = ("bulk capacitor", "boost capacitor")
+_ACROSS_LINE_ROLES = ("X capacitor",)
+BOOST_VOLTAGE = 400.0
+"""Usual output of a power-factor stage [V]; common practice, no source."""
+
+
+def stored_energy(capacitance: float, voltage: float) -> float:
+    """Energy of a charged capacitor [J]: C·V²/2, for capacitance [F] and voltage [V].
+
+    >>> round(stored_energy(10e-6, 325.0), 4)
+    0.5281
+    """
+    return 0.5 * capacitance * voltage**2
+
+
+def discharge_time(resistance: float, capacitance: float, start: float, end: float) -> float:
+    """Time [s] in which a capacitor [F] falls from ``start`` to ``end`` [V] through a resistance [ohm]:
+    R·C·ln(V0/V).
+
+    0 when it starts below ``end``; ``inf`` when nothing discharges it. Source: S. J. Oxley, TT electronics,
+    Design Tool 4.
+
+    >>> round(discharge_time(2200.0, 10e-6, 325.0, 60.0), 5)
+    0.03717
+    """
+    return resistance * capacitance * math.log(start / end) if start > end else 0.0
+
+
+def discharge_resistance_max(capacitance: float, start: float, end: float, seconds: float) -> float:
+    """Highest resistance [ohm] that takes a capacitor [F] from ``start`` to ``end`` [V] in the time [s].
+
+    Source: exponential discharge; the 2 s to 60 V of a mains plug are IEC 62368-1, 5.5.2.2.
+
+    >>> round(discharge_resistance_max(0.33e-6, 373.0, 60.0, 2.0) / 1e6, 3)
+    3.317
+    """
+    return seconds / (capacitance * math.log(start / end))
+
+
+def touch_safe_voltage(capacitance: float) -> float:
+    """Voltage [V] below which a charged capacitor [F] counts as ES1. Source: IEC 62368-1:2018, table 7."""
+    record = table("discharge")["charge_limit"]
+    size, limit = record["capacitance_nF"], record["voltage_V"]
+    nano = capacitance * 1e9
+    if nano >= size[0]:
+        return float(limit[0])
+    if nano <= size[-1]:
+        return float(limit[-1])
+    i = next(i for i in range(1, len(size)) if size[i] <= nano)
+    share = (size[i - 1] - nano) / (size[i - 1] - size[i])
+    return float(limit[i - 1] + share * (limit[i] - limit[i - 1]))
+
+
+@dataclass(frozen=True, slots=True)
+class Store:
+    """One capacitor that may still hold a dangerous voltage after unplugging."""
+
+    ref: str
+    role: str
+    plus: str
+    """Node of its positive end."""
+    minus: str
+    """Node of its negative end."""
+    capacitance: float
+    """[F], upper end of its tolerance."""
+    voltage: float
+    """Highest voltage it can be left with [V]."""
+    energy: float
+    """[J]"""
+    safe_voltage: float
+    """Voltage to be below before touching [V]."""
+    board_time: float
+    """Time to the safe voltage through the sound board [s]; ``inf`` when nothing discharges it."""
+    worst_time: float
+    """The same with the one part open whose loss hurts most [s]."""
+    worst_ref: str
+    """That part; empty where no part matters."""
+
+    @property
+    def grade(self) -> str:
+        """``small``, ``painful`` or ``dangerous`` by the stored energy."""
+        record = table("discharge")["energy"]
+        if self.energy >= record["dangerous_J"]:
+            return "dangerous"
+        return "painful" if self.energy >= record["careful_J"] else "small"
+
+
+def stores(board: Board) -> tuple[Store, ...]:
+    """Every capacitor of the mains side that holds more than its touch-safe voltage, largest energy first."""
+    found = [_store(board, part) for part in board.parts if part.kind in _CAPACITORS and _on_mains(part)]
+    return tuple(sorted((s for s in found if s.voltage > s.safe_voltage), key=lambda s: -s.energy))
+
+
+def bulk_store(board: Board) -> Store | None:
+    """The bulk capacitor that holds most, or None on a board without one (an iron transformer comes
+    first)."""
+    return next((store for store in stores(board) if any(r in store.role for r in _BULK_ROLES)), None)
+
+
+def _on_mains(part: Part) -> bool:
+    return (
+        any(role in part.role for role in (*_BULK_ROLES, *_ACROSS_LINE_ROLES)) and "capacitance" in part.value
+    )
+
+
+def _store(board: Board, part: Part) -> Store:
+    plus, minus = tuple(part.pins.values())[:2]
+    capacitance = part.value["capacitance"] * (1.0 + part.tolerance.get("capacitance", 0.2))
+    crest = math.sqrt(2.0) * board.mains.high
+    voltage = max(crest, BOOST_VOLTAGE) if "boost" in part.role else crest
+    safe = touch_safe_voltage(capacitance)
+    # While the bulk capacitor is charged too, no junction helps an X capacitor to empty.
+    through_junctions = not any(role in part.role for role in _ACROSS_LINE_ROLES)
+
+    def time_without(ref: str) -> float:
+        resistance = discharge_resistance(board, plus, minus, ref, through_junctions)
+        return discharge_time(resistance, capacitance, voltage, safe)
+
+    sound = time_without("")
+    others = [(time_without(other.ref), other.ref) for other in board.parts if other.ref != part.ref]
+    worst, worst_ref = max(others, default=(sound, ""))
+    if worst <= sound * 1.01:
+        worst, worst_ref = sound, ""
+    return Store(
+        part.ref,
+        part.role,
+        plus,
+        minus,
+        capacitance,
+        voltage,
+        stored_energy(capacitance, voltage),
+        safe,
+        sound,
+        worst,
+        worst_ref,
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class ResistorKind:
+    """One kind of resistor the technician has, whatever its ohms."""
+
+    kind: str
+    power: float
+    """Rated power [W]."""
+    voltage: float
+    """Limiting element voltage [V]."""
+    overload: float
+    """First power of a pulse of up to 5 s over the rated power [-]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Bleeder:
+    """A resistor, or several in series, that empties a capacitor."""
+
+    resistor: ResistorKind
+    count: int
+    """Resistors in series."""
+    resistance_each: float
+    """[ohm]"""
+    voltage: float
+    """Voltage over the chain at first [V]."""
+    capacitance: float
+    """[F]"""
+    source: Source
+
+    @property
+    def resistance(self) -> float:
+        """Resistance of the chain [ohm]."""
+        return self.resistance_each * self.count
+
+    @property
+    def peak_current(self) -> float:
+        """First current [A]."""
+        return self.voltage / self.resistance
+
+    @property
+    def peak_power(self) -> float:
+        """First power of the chain [W]."""
+        return self.voltage**2 / self.resistance
+
+    @property
+    def time_constant(self) -> float:
+        """[s]"""
+        return self.resistance * self.capacitance
+
+    def time_to(self, voltage: float) -> float:
+        """Time to fall to a voltage [V] -> [s]."""
+        return discharge_time(self.resistance, self.capacitance, self.voltage, voltage)
+
+
+def shop_resistors() -> tuple[ResistorKind, ...]:
+    """The resistor kinds of an ordinary bench, from the shipped table."""
+    return tuple(
+        ResistorKind(r["kind"], r["power_W"], r["voltage_V"], r["overload"])
+        for r in table("discharge")["resistor"]
+    )
+
+
+def propose_bleeder(store: Store, kinds: Iterable[ResistorKind] | None = None) -> Bleeder | None:
+    """The fewest and least loaded resistors of the technician's kinds that empty a capacitor in time, or
+    None.
+
+    Fewest in series first, then the kind with the smallest rated power that will do. Rules: first current at
+    most 0.2 A, below the touch-safe voltage within 2 s, voltage and first power inside the kind's limits.
+    """
+    found = [
+        b
+        for kind in (shop_resistors() if kinds is None else kinds)
+        if (b := _bleeder(store, kind)) is not None
+    ]
+    return min(found, key=lambda b: (b.count, b.resistor.power, b.peak_power), default=None)
+
+
+def _bleeder(store: Store, kind: ResistorKind) -> Bleeder | None:
+    rule = table("discharge")["bleed"]
+    most = discharge_resistance_max(store.capacitance, store.voltage, store.safe_voltage, rule["seconds"])
+    for count in range(1, rule["count_max"] + 1):
+        each = _step_below(most / count, rule["resistance_E12"])
+        bleeder = Bleeder(kind, count, each, store.voltage, store.capacitance, source_of(rule))
+        if (
+            bleeder.peak_current <= rule["current_max_A"]
+            and store.voltage / count <= kind.voltage
+            and bleeder.peak_power / count <= kind.power * kind.overload
+        ):
+            return bleeder
+    return None
+
+
+def _step_below(resistance: float, series: list[float]) -> float:
+    """Largest value of an E-series decade at or below a resistance, never above 1 Mohm (common stock)."""
+    resistance = min(resistance, 1e6)
+    decade = 10.0 ** math.floor(math.log10(resistance) + 1e-9)
+    return decade * max(step for step in series if step * decade <= resistance * (1 + 1e-9))
