@@ -1,9 +1,9 @@
 """What a screen or the command line is shown of a job: plain records, ready to be written as text or JSON.
 
-The facade ``triage.job.bench.Bench`` answers with these and with nothing else, so that neither the app nor the command
-line needs to know how an answer was found. Numbers are SI (temperature degC, life h); every text that came from a file or
-from a person has already gone through ``triage.job.display.plain``. The JSON of the command line is
-``dataclasses.asdict`` of these records.
+The facade ``triage.job.bench.Bench`` answers with these and with nothing else, so that neither the app nor
+the command line needs to know how an answer was found. Numbers are SI (temperature degC, life h); every text
+that came from a file or from a person has already gone through ``triage.job.display.plain``. The JSON of the
+command line is ``dataclasses.asdict`` of these records.
 """
 
 from dataclasses import dataclass
@@ -23,7 +23,7 @@ class SuspectView:
     """One thing that may be wrong, with how likely it is now."""
 
     ref: str
-    """Reference designator of the root part; empty for no part fault, ``R1+C2`` for two independent faults."""
+    """Reference designator of the root part; empty for no part fault, ``R1+C2`` for two faults at once."""
     mode: str
     """Fault mode of the root; ``no part fault`` when ref is empty."""
     probability: float
