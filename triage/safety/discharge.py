@@ -14,7 +14,7 @@ from triage.board.part import Board, Part
 from triage.safety.leak_path import discharge_resistance
 from triage.safety.limits import Source, source_of, table
 
-_CAPACITORS = ("capacitor", "electrolytic")
+_CAPACITORS = ("capacitor", "electrolytic", "x_capacitor")
 _BULK_ROLES = ("bulk capacitor", "boost capacitor")
 _ACROSS_LINE_ROLES = ("X capacitor",)
 BOOST_VOLTAGE = 400.0

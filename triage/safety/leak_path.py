@@ -31,9 +31,10 @@ _JUNCTIONS = {
 }
 """Part kind -> its junctions as (anode pin, cathode pin); npn and n-channel, the rule in adapters."""
 
-_CONDUCTORS = ("fuse", "thermal_fuse", "inductor", "transformer")
+JOINING_KINDS = ("fuse", "thermal_fuse", "inductor", "transformer")
+"""Part kinds that a direct current passes almost freely."""
 _RESISTIVE = ("resistor", "fusible_resistor", "ntc")
-_CAPACITIVE = ("capacitor", "electrolytic")
+_CAPACITIVE = ("capacitor", "electrolytic", "x_capacitor", "y_capacitor")
 
 Branch = tuple[str, str, float]
 """Node, node, conductance [S]."""
@@ -56,7 +57,7 @@ def conductances(parts: Iterable[Part]) -> tuple[Branch, ...]:
         nodes = tuple(part.pins.values())
         if part.kind in _RESISTIVE and part.value.get("resistance"):
             branches.append((nodes[0], nodes[1], 1.0 / part.value["resistance"]))
-        elif part.kind in _CONDUCTORS:
+        elif part.kind in JOINING_KINDS:
             branches += [(a, b, 1.0 / _SHORT) for a, b in windings(part)]
         elif part.kind in _CAPACITIVE and part.value.get("leakage_resistance"):
             branches.append((nodes[0], nodes[1], 1.0 / part.value["leakage_resistance"]))
