@@ -17,6 +17,12 @@ from triage.errors import EntryError, JobError
 RESULTS = ("works", "still faulty", "given up")
 """What a repair led to."""
 
+LOOKS = ("sound", "doubtful", "restorable", "veto", "skipped")
+"""What a look at one item of the inspection can say; the gates of ``triage.safety`` know the same words."""
+
+RETEST_RESULTS = ("pass", "fail", "too close to call")
+"""What a line of the retest can come to."""
+
 FUNCTIONS = COLD_FUNCTIONS + LIVE_FUNCTIONS
 
 LONGEST_TEXT = 2000
@@ -29,14 +35,16 @@ _PROBE: dict[str, Any] = {"function": FUNCTIONS, "plus": _TEXT, "minus": _TEXT, 
 KINDS: dict[str, dict[str, Any]] = {
     "complaint": {"state": STATES, "condition": CONDITIONS[1:]},
     "sign": {"sign": SIGNS, "ref": _TEXT},
+    "look": {"item": _TEXT, "look": LOOKS},
     "reading": {**_PROBE, "value": _NUMBER},
     "skip": {**_PROBE, "reason": _TEXT},
     "undo": {"entry": int},
     "hunch": {"ref": _TEXT},
     "acknowledge": {"caution": _TEXT},
     "fitted": {"ref": _TEXT, "type": _TEXT},
+    "power": {"on": bool},
     "repaired": {"result": RESULTS},
-    "retest": {"check": _TEXT, "passed": bool},
+    "retest": {"check": _TEXT, "result": RETEST_RESULTS},
     "closed": {"verdict": _TEXT},
     "returned": {"reason": _TEXT},
     "note": {"note": _TEXT},
@@ -74,7 +82,8 @@ class Replay:
     """Refs fitted at each time the adapter was found still faulty."""
     repaired: str = ""
     """Last result, one of RESULTS."""
-    retests: tuple[tuple[str, bool], ...] = ()
+    retests: tuple[tuple[str, str], ...] = ()
+    """(line, one of RETEST_RESULTS) since the last part was fitted."""
     closed: str = ""
     """The verdict the job was closed with."""
     returned: bool = False
@@ -142,6 +151,7 @@ def replay(entries: tuple[Entry, ...]) -> Replay:
     evidence: list[tuple[int, Evidence]] = []
     fitted: list[tuple[str, str]] = []
     failed: list[frozenset[str]] = []
+    retests: list[Mapping[str, Any]] = []
     for number, entry in standing:
         said = entry.said
         by_kind[entry.kind].append(said)
@@ -150,6 +160,9 @@ def replay(entries: tuple[Entry, ...]) -> Replay:
             evidence.append((number, found))
         if entry.kind == "fitted":
             fitted.append((said["ref"], said["type"]))
+            retests.clear()
+        if entry.kind == "retest":
+            retests.append(said)
         if entry.kind == "repaired" and said["result"] == "still faulty":
             failed.append(frozenset(ref for ref, _ in fitted))
     return Replay(
@@ -161,7 +174,7 @@ def replay(entries: tuple[Entry, ...]) -> Replay:
         fitted=tuple(fitted),
         failed_repairs=tuple(failed),
         repaired=by_kind["repaired"][-1]["result"] if by_kind["repaired"] else "",
-        retests=tuple((said["check"], said["passed"]) for said in by_kind["retest"]),
+        retests=tuple((said["check"], said["result"]) for said in retests),
         closed=by_kind["closed"][-1]["verdict"] if by_kind["closed"] else "",
         returned=bool(by_kind["returned"]),
         undone=undone,

@@ -85,6 +85,8 @@ def parse_toml(content: bytes, where: str) -> dict[str, Any]:
 def _check_shape(text: str, where: str) -> None:
     """Count brackets and dots outside strings and comments, before the parser works on them."""
     bare = _QUOTED.sub("q", text)
+    if sum(map(bare.count, "[{=,")) > MOST_ITEMS:
+        raise JobError(where, "more keys and values than a job can have", f"at most {MOST_ITEMS:,}")
     depth = 0
     dots = 0
     for character in bare:
