@@ -118,7 +118,7 @@ def clamp_cycle(leakage: Values, peak: Values, frequency: Values, reflected: Val
 
     >>> cycle = clamp_cycle(30e-6, 0.6, 65e3, 80.0, 100e3, 1e-9)
     >>> round(float(cycle.peak), 1), round(float(cycle.power), 3)
-    (249.4, 0.536)
+    (249.5, 0.536)
     """
     leakage, capacitance = np.asarray(leakage, float), np.asarray(capacitance, float)
     impedance, speed = np.sqrt(leakage / capacitance), 1.0 / np.sqrt(leakage * capacitance)
