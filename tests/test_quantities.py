@@ -194,7 +194,7 @@ def test_an_unknown_unit_key_is_the_programmers_mistake(function) -> None:
 
 WRITTEN = [
     (4700.0, "ohm", "4.7 kohm"), (10e3, "ohm", "10 kohm"), (999.96, "ohm", "1 kohm"),
-    (123456.0, "ohm", "123 kohm"), (0.035, "ohm", "35 mohm"),
+    (123456.0, "ohm", "123 kohm"), (0.035, "ohm", "0.035 ohm"), (0.47, "ohm", "0.47 ohm"),
     (4.7e-6, "F", "4.7 uF"), (2.2e-7, "F", "220 nF"), (1e-7, "F", "100 nF"), (1.5, "F", "1.5 F"),
     (-12.34, "V", "-12.3 V"), (325.27, "V", "325 V"),
     (0.584, "V", "584 mV"), (65123.0, "Hz", "65.1 kHz"), (105.0, "degC", "105 degC"), (0.5, "h", "0.5 h"),

@@ -107,7 +107,10 @@ def engineering(value: float, unit: str, digits: int = 3) -> str:
     suffix = "" if unit == "1" else f" {unit}"
     if not rounded:
         return f"0{suffix}"
-    exponents = {0: "", **{PREFIXES[prefix]: prefix for prefix in wanted.prefixes}}
+    exponents = {
+        0: "",
+        **{PREFIXES[prefix]: prefix for prefix in wanted.prefixes if prefix not in wanted.unwritten},
+    }
     step = 3 * (rounded.adjusted() // 3)
     step = min(max(step, min(exponents)), max(exponents))
     step = step if step in exponents else 0
@@ -189,7 +192,7 @@ def _number_and_unit(text: str, unit: Unit) -> tuple[Decimal, str]:
     if factor is not None:
         return number * factor, ""
     head, letter = suffix[:-1].strip(), suffix[-1:]
-    if letter in unit.tolerance_letters and head[-1:] in {*unit.point_letters, *_point_prefixes(unit)}:
+    if letter in unit.tolerance_letters and head.endswith((*unit.point_letters, *_point_prefixes(unit))):
         factor = _scale(head, unit)
         if factor is not None:
             return number * factor, letter

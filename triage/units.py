@@ -46,7 +46,7 @@ class Unit:
     names: Mapping[str, float]
     """Spelling (small letters) -> factor to this unit; prefixes are put before the spellings of factor 1."""
     prefixes: str = ""
-    """Prefixes in use, ascending; the engineering form keeps to these."""
+    """Prefixes in use, ascending."""
     point_letters: Mapping[str, float] = field(default_factory=dict)
     """Letter that stands at the decimal point (``4k7``, ``5V1``) -> factor. Letters of PREFIXES in use are
     added by the reader.
@@ -59,6 +59,8 @@ class Unit:
     """False where a negative value makes no sense."""
     definition: str = ""
     """The unit in the words of the unit library, where ``key`` is not one."""
+    unwritten: str = ""
+    """Those of ``prefixes`` that are read but not written: on the bench it is 0.47 ohm, not 470 mohm."""
 
 
 def _names(*spellings: str, **factors: float) -> dict[str, float]:
@@ -74,9 +76,10 @@ UNITS: Mapping[str, Unit] = {
             "4k7",
             _names("ohm", "ohms", "r", meg=1e6, megohm=1e6, megohms=1e6),
             "umkMGT",
-            {"R": 1.0, "r": 1.0, "L": 1e-3, "ohm": 1.0},
-            "kMGT",
-            "BCDFGJKM",
+            unwritten="um",
+            point_letters={"R": 1.0, "r": 1.0, "L": 1e-3, "ohm": 1.0},
+            point_prefixes="kMGT",
+            tolerance_letters="BCDFGJKM",
             signed=False,
         ),
         Unit(
@@ -85,9 +88,9 @@ UNITS: Mapping[str, Unit] = {
             "4u7",
             _names("f", "farad", "farads", mfd=1e-6),
             "pnum",
-            {"F": 1.0},
-            "pnum",
-            "BCDGJKM",
+            point_letters={"F": 1.0},
+            point_prefixes="pnum",
+            tolerance_letters="BCDGJKM",
             signed=False,
         ),
         Unit(
