@@ -1,0 +1,96 @@
+"""From prior and evidence to the chance of each hypothesis: exact Bayes over one array.
+
+Evidence is taken in a fixed order of its own, so that a job gives the same belief to the last bit in whatever
+order its entries were made. Readings of one probe are taken together (the part does not change between them).
+"""
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from triage.board.evidence import Evidence, Reading, Sign, Symptom
+from triage.board.fault import Hypothesis
+from triage.board.probe import Probe
+from triage.diagnosis.expectations import Expectations
+from triage.diagnosis.likelihood import ReadingModel
+from triage.diagnosis.settings import Settings
+from triage.diagnosis.signs import complaint_likelihood, sign_likelihood
+from triage.errors import EntryError
+
+_SMALLEST = 1e-300
+
+
+@dataclass(frozen=True, slots=True)
+class Likelihoods:
+    """All that is needed to weigh evidence on one board."""
+
+    expectations: Expectations
+    readings: ReadingModel
+    kinds: Mapping[str, str]
+    """ref -> part kind, for signs at a part."""
+    settings: Settings
+
+    def log(self, evidence: Iterable[Evidence]) -> NDArray[np.float64]:
+        """log p(evidence | hypothesis), shape (H,), independent of the order of the evidence.
+
+        A reading that the board has no expectation for says nothing. Raises EntryError for a sign or
+        complaint it does not know.
+        """
+        total = np.zeros(len(self.expectations.hypotheses))
+        for term in self.terms(evidence).values():
+            total += term
+        return total
+
+    def terms(self, evidence: Iterable[Evidence]) -> dict[Symptom | Sign | Probe, NDArray[np.float64]]:
+        """The independent parts of ``log``, by complaint, sign and probe, in their fixed order."""
+        seen: set[Symptom | Sign] = set()
+        taken: dict[Probe, list[float]] = {}
+        for entry in evidence:
+            if isinstance(entry, Reading):
+                if np.isnan(entry.value):
+                    raise EntryError(f"reading {entry.probe}", "no number", "a value or OL")
+                taken.setdefault(entry.probe, []).append(entry.value)
+            else:
+                seen.add(entry)
+        found: dict[Symptom | Sign | Probe, NDArray[np.float64]] = {}
+        for entry in sorted(seen, key=repr):
+            chance = (
+                complaint_likelihood(entry, self.expectations, self.settings)
+                if isinstance(entry, Symptom)
+                else sign_likelihood(entry, self.expectations, self.kinds)
+            )
+            found[entry] = np.log(np.maximum(chance, _SMALLEST))
+        for probe in sorted(taken):
+            column = self.expectations.column(probe)
+            if column is not None and self.readings.known(column):
+                chance = self.readings.likelihood(column, taken[probe])
+                found[probe] = np.log(np.maximum(chance, _SMALLEST))
+        return found
+
+
+def posterior(prior: NDArray[np.float64], log_likelihood: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Chance of each hypothesis, proportional to prior x likelihood, shape (H,), adds up to 1 [-]."""
+    with np.errstate(divide="ignore"):
+        log_weight = np.log(prior) + log_likelihood
+    weight = np.exp(log_weight - log_weight.max())
+    return weight / weight.sum()
+
+
+def with_hunches(
+    prior: NDArray[np.float64], hypotheses: Sequence[Hypothesis], refs: Iterable[str], factor: float
+) -> NDArray[np.float64]:
+    """The prior with the odds of every hypothesis that has a suspected part at fault multiplied by
+    ``factor``.
+
+    A part named twice counts once: a hunch is an opinion and does not grow by being repeated.
+    """
+    suspected = set(refs)
+    if not suspected:
+        return prior
+    raised = np.array(
+        [factor if any(f.ref in suspected for f in hypothesis.faults) else 1.0 for hypothesis in hypotheses]
+    )
+    weight = prior * raised
+    return weight / weight.sum()

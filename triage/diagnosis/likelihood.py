@@ -1,0 +1,197 @@
+"""How probable each reading is under each hypothesis.
+
+p(reading | h) = (1 - eps) mean over draws of the smeared expected reading + eps g: the tolerance draws carry
+the spread of the parts, the smear carries meter and model, and the last term is the floor for grossly wrong
+readings (contaminated normal; Box, Tiao, A Bayesian approach to some outlier problems, Biometrika 55 (1968)
+119-129). A reading above the range counts as the event "above the range" (censored likelihood; Tobin,
+Econometrica 26 (1958) 24-36).
+"""
+
+from collections.abc import Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from triage.diagnosis.axis import Axis, draw_width, to_axis
+from triage.diagnosis.expectations import Expectations
+from triage.diagnosis.settings import Settings, instruments
+
+BINS = 16
+"""Outcomes a probe is scored with, besides OL; 12 to 24 cost and gain the same on the prototype."""
+
+
+class ReadingModel:
+    """Expected readings as cells: the likelihood of what was read, and the bins that untaken readings are
+    scored with.
+
+    Built once for a board; all methods are pure.
+    """
+
+    def __init__(self, expectations: Expectations, settings: Settings) -> None:
+        self.expectations = expectations
+        self._settings = settings
+        self.axes: list[Axis] = []
+        """One axis for each probe."""
+        self._cells: list[NDArray[np.int32]] = []
+        self._widths: list[NDArray[np.uint8]] = []
+        for column, probe in enumerate(expectations.probes):
+            instrument = instruments()[probe.function]
+            samples = expectations.samples[:, column, :]
+            axis = Axis.spanning(samples, instrument)
+            self.axes.append(axis)
+            self._cells.append(axis.index(samples))
+            self._widths.append(draw_width(to_axis(samples, instrument)))
+        self._build_bins()
+
+    @property
+    def gross(self) -> float:
+        """Share of readings that are grossly wrong [-]."""
+        return self._settings.gross_error
+
+    def known(self, column: int) -> bool:
+        """True when the probe can be taken under at least one hypothesis."""
+        return bool((self._cells[column] >= 0).any())
+
+    def fit(self, column: int, first: int, last: int) -> NDArray[np.float64]:
+        """Chance of a sound reading in cells ``first`` to ``last`` - 1, for each draw; shape (H, D), nan
+        where unknown.
+
+        ``last`` = cells + 1 takes OL in.
+        """
+        axis, cell = self.axes[column], self._cells[column]
+        width = self._widths[column][:, None]
+        open_line = last > axis.cells
+        top = np.ones(cell.shape) if open_line else axis.below(last, cell, width)
+        bottom = np.zeros(cell.shape) if first <= 0 else axis.below(min(first, axis.cells), cell, width)
+        mass = np.where(cell == axis.cells, float(open_line), top - bottom)
+        return np.where(cell < 0, np.nan, mass)
+
+    def slip(self, column: int, first: int, last: int) -> float:
+        """Chance of a grossly wrong reading in cells ``first`` to ``last`` - 1 [-]."""
+        axis = self.axes[column]
+        limited = np.isfinite(axis.instrument.over)
+        open_share = self._settings.gross_open_line if limited else 0.01
+        zero = int(axis.index(0.0))
+        near = max(0, zero - 6), min(axis.cells, zero + 7)
+        has_zero = axis.start <= 0.0
+        zero_share = self._settings.gross_zero if has_zero else 0.0
+        upper = min(last, axis.cells)
+        chance = (1 - open_share - zero_share) * max(0, upper - first) / axis.cells
+        if has_zero:
+            chance += zero_share * max(0, min(upper, near[1]) - max(first, near[0])) / (near[1] - near[0])
+        return chance + (open_share if last > axis.cells >= first else 0.0)
+
+    def likelihood(self, column: int, values: Sequence[float]) -> NDArray[np.float64]:
+        """p(all readings taken with this probe | hypothesis), shape (H,) [-].
+
+        Several readings of one probe share the draw: the part does not change between them, only the slips
+            do.
+        """
+        eps, joint = self.gross, np.ones(self._cells[column].shape)
+        unknown = 1.0
+        for value in sorted(values):
+            cell = int(self.axes[column].index(value))
+            slip = self.slip(column, cell, cell + 1)
+            joint *= (1 - eps) * self.fit(column, cell, cell + 1) + eps * slip
+            unknown *= slip
+        return _mean_known(joint, unknown)
+
+    def sound(self, column: int, value: float) -> NDArray[np.float64]:
+        """The part of p(reading | hypothesis) that is no gross error, shape (H,) [-]."""
+        cell = int(self.axes[column].index(value))
+        slip = self.slip(column, cell, cell + 1)
+        return (1 - self.gross) * _mean_known(self.fit(column, cell, cell + 1), slip)
+
+    def sound_table(self, column: int, keep: NDArray[np.integer]) -> NDArray[np.float64]:
+        """p(cell | hypothesis) of readings without gross errors for the hypotheses ``keep``, shape
+        (len(keep), cells + 1).
+        """
+        axis = self.axes[column]
+        edges = np.arange(axis.cells + 1)[:, None]
+        rows = []
+        for h in keep:
+            cell = self._cells[column][h]
+            known = cell[cell >= 0]
+            if not known.size:
+                rows.append(np.full(axis.cells + 1, 1.0 / (axis.cells + 1)))
+                continue
+            values, counts = np.unique(known[known < axis.cells], return_counts=True)
+            below = axis.below(edges, values[None, :], int(self._widths[column][h])) @ (counts / known.size)
+            rows.append(np.append(np.diff(below), 1.0 - below[-1]))
+        return np.stack(rows)
+
+    def cell_table(self, column: int) -> NDArray[np.float64]:
+        """p(cell | hypothesis) for every cell and OL, gross errors included; shape (H, cells + 1), rows sum
+        to 1.
+        """
+        cells = self.axes[column].cells + 1
+        return np.stack([self._mixed(column, cell, cell + 1) for cell in range(cells)], axis=1)
+
+    def _mixed(self, column: int, first: int, last: int) -> NDArray[np.float64]:
+        slip = self.slip(column, first, last)
+        return (1 - self.gross) * _mean_known(self.fit(column, first, last), slip) + self.gross * slip
+
+    def _build_bins(self) -> None:
+        edges, rows, owner = [], [], []
+        for column, axis in enumerate(self.axes):
+            cuts = _bin_edges(self._cells[column], axis.cells)
+            edges.append(cuts)
+            owner += [column] * (len(cuts) - 1)
+            rows += self._bin_rows(column, cuts)
+        self.edges = edges
+        """For each probe the cells at which its bins begin, and the end; the last bin is OL."""
+        self.bins = (
+            np.stack(rows).astype(np.float32)
+            if rows
+            else np.zeros((0, len(self.expectations.hypotheses)), np.float32)
+        )
+        """p(bin | hypothesis), gross errors included, shape (all bins of all probes, H)."""
+        self.owner = np.asarray(owner, dtype=np.int64)
+        """Probe of each row of ``bins``."""
+
+    def _bin_rows(self, column: int, cuts: list[int]) -> list[NDArray[np.float64]]:
+        axis, cell = self.axes[column], self._cells[column]
+        width = self._widths[column][:, None]
+        open_line = cell == axis.cells
+        below = []
+        for cut in cuts[:-1]:
+            chance = np.where(open_line, 0.0, axis.below(cut, cell, width))
+            below.append(_mean_known(np.where(cell < 0, np.nan, chance), self.slip(column, 0, cut)))
+        below.append(np.ones(len(cell)))
+        return [
+            (1 - self.gross) * (below[i + 1] - below[i])
+            + self.gross * self.slip(column, cuts[i], cuts[i + 1])
+            for i in range(len(cuts) - 1)
+        ]
+
+
+def _mean_known(values: NDArray[np.float64], otherwise: float) -> NDArray[np.float64]:
+    """Mean over the draws that are known, shape (H, D) -> (H,); ``otherwise`` where none is."""
+    known = ~np.isnan(values)
+    count = known.sum(axis=1)
+    total = np.where(known, values, 0.0).sum(axis=1)
+    return np.where(count > 0, total / np.maximum(count, 1), otherwise)
+
+
+def _bin_edges(cells: NDArray[np.int32], count: int) -> list[int]:
+    """Cells at which the bins of a probe begin, ending with ``count`` (OL) and ``count`` + 1.
+
+    Quantiles of the largest density that any hypothesis has in a cell, so that every group of hypotheses that
+    reads apart gets its own bin however few they are; each edge then moves to the emptiest cell nearby.
+    """
+    draws = cells.shape[1]
+    envelope = np.zeros(count)
+    for row in cells[:4000]:
+        finite = row[(row >= 0) & (row < count)]
+        if finite.size:
+            np.maximum(envelope, np.bincount(finite, minlength=count) / draws, out=envelope)
+    taps = np.exp(-0.5 * (np.arange(-6, 7) / 2.0) ** 2)
+    smooth = np.convolve(envelope, taps / taps.sum(), mode="same") if count > taps.size else envelope + 1e-9
+    share = np.cumsum(smooth) / max(smooth.sum(), 1e-300)
+    raw = np.searchsorted(share, np.arange(1, BINS) / BINS)
+    cuts = sorted({int(cut) for cut in raw if 0 < cut < count})
+    moved = set()
+    for left, cut, right in zip([0, *cuts], cuts, [*cuts[1:], count], strict=False):
+        low, high = (left + cut + 1) // 2, (cut + right) // 2 + 1
+        moved.add(low + int(np.argmin(smooth[low:high])) if high > low else cut)
+    return [0, *sorted(cut for cut in moved if 0 < cut < count), count, count + 1]

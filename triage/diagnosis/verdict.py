@@ -1,0 +1,130 @@
+"""When it is enough, and what it has come to.
+
+Stop when the best repair cures with the chance the setting asks for, or when no reading that may still be
+taken is worth its minutes. A sound board is declared only when nothing cheap could still find a rare fault.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from triage.board.fault import Fault, Hypothesis
+from triage.diagnosis.actions import Actions
+from triage.diagnosis.misfit import Fit
+from triage.diagnosis.settings import Settings
+
+NO_PART_FAULT = "no part fault"
+"""Mode of the suspect that no part of the board is at fault; its ref is empty."""
+
+
+@dataclass(frozen=True, slots=True)
+class Suspect:
+    """All hypotheses with the same root, taken together."""
+
+    root: tuple[Fault, ...]
+    probability: float
+    """[-]"""
+    collateral: tuple[Fault, ...]
+    """Of its likeliest form, in order of destruction."""
+    index: int
+    """Its likeliest hypothesis."""
+
+    @property
+    def ref(self) -> str:
+        """Ref of the root, ``R1+C2`` for two, empty for no part fault."""
+        return "+".join(fault.ref for fault in self.root)
+
+    @property
+    def mode(self) -> str:
+        """Fault mode of the root, ``open+leaky`` for two."""
+        return "+".join(fault.mode for fault in self.root) or NO_PART_FAULT
+
+
+@dataclass(frozen=True, slots=True)
+class Verdict:
+    """What the diagnosis has come to."""
+
+    status: str
+    """``open``, ``found``, ``does not fit`` or ``no part fault``."""
+    suspect: Suspect | None
+    """The leading suspect of the best repair."""
+    repair: tuple[str, ...]
+    """Refs to replace; empty for work on cord, plug and joints."""
+    probability: float
+    """Chance that this repair cures [-]."""
+    exhausted: bool
+    """True when no reading that may still be taken is worth its minutes."""
+    again: tuple[str, ...] = ()
+    """Readings that do not fit this repair, as texts of their probes, worst first."""
+
+
+def suspects(belief: NDArray[np.float64], hypotheses: Sequence[Hypothesis]) -> tuple[Suspect, ...]:
+    """Suspects by root, the likeliest first; equal ones in the order of the list."""
+    groups: dict[tuple[Fault, ...], list[int]] = {}
+    for i, hypothesis in enumerate(hypotheses):
+        groups.setdefault(tuple(sorted(hypothesis.root)), []).append(i)
+    found = []
+    for members in groups.values():
+        lead = max(members, key=lambda i: (belief[i], -i))
+        found.append(
+            Suspect(hypotheses[lead].root, float(belief[members].sum()), hypotheses[lead].collateral, lead)
+        )
+    return tuple(sorted(found, key=lambda s: (-s.probability, s.index)))
+
+
+def best_repair(belief: NDArray[np.float64], actions: Actions) -> tuple[int, float]:
+    """The likeliest exact repair and the chance that it cures [-]."""
+    action = int(np.argmax(actions.chances(belief)))
+    return action, actions.cure_chance(belief, action)
+
+
+def settled(
+    belief: NDArray[np.float64], actions: Actions, settings: Settings, careful: bool, best_worth: float
+) -> tuple[bool, bool]:
+    """(it is enough, nothing is worth reading any more).
+
+    Parameters
+    ----------
+    careful: take the careful stop, for repairs that destroy parts when they are wrong.
+    best_worth: gain per minute of the best reading that may still be taken; 0 when there is none [1/min].
+    """
+    action, cure = best_repair(belief, actions)
+    if not actions.repairs[action]:
+        target = max(settings.sound_target, settings.careful_target if careful else 0.0)
+        exhausted = best_worth < settings.least_worth_when_sound_per_minute
+        return cure >= target and exhausted, exhausted
+    exhausted = best_worth < settings.least_worth_per_minute
+    return cure >= (settings.careful_target if careful else settings.stop_target) or exhausted, exhausted
+
+
+def conclude(
+    belief: NDArray[np.float64],
+    hypotheses: Sequence[Hypothesis],
+    actions: Actions,
+    settings: Settings,
+    careful: bool,
+    best_worth: float,
+    fit: Fit | None,
+    waits: bool = False,
+) -> Verdict:
+    """The verdict on a belief.
+
+    Parameters
+    ----------
+    fit: how the readings fit the leading repair; None when none was taken.
+    waits: a doubtful reading is still to be measured again.
+    Other parameters as in ``settled``.
+    """
+    action, cure = best_repair(belief, actions)
+    lead = next(s for s in suspects(belief, hypotheses) if actions.of[s.index] == action)
+    enough, exhausted = settled(belief, actions, settings, careful, best_worth)
+    again = tuple(map(str, fit.doubtful(settings.misfit_tail))) if fit else ()
+    if not enough or waits:
+        status = "open"
+    elif fit is not None and fit.overall < settings.misfit_tail:
+        status = "does not fit"
+    else:
+        status = "found" if lead.root else NO_PART_FAULT
+    return Verdict(status, lead, tuple(sorted(actions.repairs[action])), cure, exhausted, again)
