@@ -1,0 +1,188 @@
+"""The app: wires keys, screens, the open job and signals together, and does nothing else."""
+
+import asyncio
+import os
+import signal
+import sys
+from importlib import import_module
+from pathlib import Path
+from typing import Any
+
+from textual.app import App
+from textual.binding import Binding
+from textual.screen import Screen
+
+from triage.app import terminal, theme
+from triage.app.desk import Desk
+from triage.app.keys import COMMANDS
+from triage.app.shelf import Shelf
+
+_SAVE_SECONDS = 3.0
+"""Longest wait for entries on their way to the file when the terminal goes away [s]."""
+
+
+class TriageApp(App[int]):
+    """The bench companion on a terminal.
+
+    Parameters
+    ----------
+    shelf : where jobs and profiles come from
+    job : job file to open at once, or None
+    profile : profile to begin a job on at once, or None
+    look : how to draw in this terminal
+    """
+
+    TITLE = "triage"
+    CSS_PATH = "app.tcss"
+    ENABLE_COMMAND_PALETTE = False
+    BINDINGS = [  # noqa: RUF012 (Textual's own way)
+        *(Binding(one.key, one.action, one.label, priority=True) for one in COMMANDS if one.key),
+        Binding("question_mark", "help", "help"),
+    ]
+
+    def __init__(
+        self,
+        shelf: Shelf,
+        look: terminal.Terminal,
+        job: Path | None = None,
+        profile: str | None = None,
+    ) -> None:
+        super().__init__(ansi_color=True if look.own_colours else None)
+        self.animation_level = "none"
+        self.glyphs = look.glyphs
+        self.shelf = shelf
+        self.desk = Desk(self.call_later, self._changed, self._fault)
+        self.faults: list[Exception] = []
+        self._first = (job, profile)
+        for each in (theme.DARK, theme.LIGHT, theme.OWN):
+            self.register_theme(each)
+        self.theme = (theme.OWN if look.own_colours else theme.DARK).name
+
+    def get_theme_variable_defaults(self) -> dict[str, str]:
+        """Our colour names, known before our themes are registered (called by Textual)."""
+        return dict(theme.DARK.variables)
+
+    def on_mount(self) -> None:
+        """Show the start page, or the job asked for; take care of a terminal that goes away."""
+        loop = asyncio.get_running_loop()
+        for number in (signal.SIGHUP, signal.SIGTERM):
+            try:
+                loop.add_signal_handler(number, self._leave_on, number)
+            except (NotImplementedError, RuntimeError, ValueError):
+                continue
+        self.push_screen(self._screen("start"))
+        job, profile = self._first
+        if job is not None:
+            self.desk.open(self.shelf.opener(job), self._opened)
+        elif profile is not None:
+            self.desk.open(self.shelf.beginner(profile), self._opened)
+
+    def _leave_on(self, number: int) -> None:
+        self.desk.finish(_SAVE_SECONDS)
+        self.exit(128 + number, return_code=128 + number)
+
+    @staticmethod
+    def _screen(place: str, *arguments: Any) -> Screen[Any]:
+        """The screen of a place, from the module of that name, imported when first wanted."""
+        module = import_module(f"triage.app.screens.{place}")
+        screen = getattr(module, f"{place.title()}Screen")(*arguments)
+        assert isinstance(screen, Screen)
+        return screen
+
+    def _opened(self) -> None:
+        """Go to the first thing this job needs."""
+        view = self.desk.view
+        if view is None:
+            return
+        place = "bench"
+        if not view.entries:
+            place = "intake"
+        elif view.stage == "cautions":
+            place = "cautions"
+        self.action_go(place)
+
+    def begin(self, profile: str) -> None:
+        """Begin a job on a profile."""
+        self.desk.open(self.shelf.beginner(profile), self._opened)
+
+    def resume(self, path: Path) -> None:
+        """Open a job file."""
+        self.desk.open(self.shelf.opener(path), self._opened)
+
+    def _changed(self) -> None:
+        """Tell the screen on top that there is something new to show."""
+        refresh_view = getattr(self.screen, "refresh_view", None)
+        if refresh_view is not None:
+            refresh_view()
+
+    def _fault(self, error: Exception) -> None:
+        self.faults.append(error)
+
+    def action_go(self, place: str) -> None:
+        """Go to a place of the open job; forms and help pages in front of it are put away."""
+        if self.desk.view is None:
+            self._changed()
+            return
+        while len(self.screen_stack) > 3:
+            self.pop_screen()
+        if getattr(self.screen, "PLACE", "") == place:
+            return
+        screen = self._screen(place)
+        if len(self.screen_stack) > 2:
+            self.switch_screen(screen)
+        else:
+            self.push_screen(screen)
+
+    def action_form(self, name: str) -> None:
+        """Open a form for an entry in front of the screen."""
+        if self.desk.view is not None and getattr(self.screen, "PLACE", "") != name:
+            self.push_screen(self._screen(name))
+
+    def action_help(self) -> None:
+        """Open the page on the screen in front, or close it."""
+        place = getattr(self.screen, "PLACE", "start")
+        if place == "help":
+            self.pop_screen()
+        else:
+            self.push_screen(self._screen("help", place))
+
+    def action_menu(self) -> None:
+        """Open the list of all commands."""
+        if getattr(self.screen, "PLACE", "") != "menu":
+            self.push_screen(self._screen("menu"))
+
+    def action_undo(self) -> None:
+        """Take the last entry back."""
+        self.desk.enter(lambda bench: bench.undo())
+
+    def action_start(self) -> None:
+        """Put the job away and go back to the start page."""
+        while len(self.screen_stack) > 2:
+            self.pop_screen()
+        self.desk.put_away()
+        self._changed()
+
+    def action_other_theme(self) -> None:
+        """Dark or light; a terminal that brings its own colours keeps them."""
+        if self.theme != theme.OWN.name:
+            self.theme = (theme.LIGHT if self.theme == theme.DARK.name else theme.DARK).name
+
+    def action_redraw(self) -> None:
+        """Draw everything again, after line noise or another program's output."""
+        self.refresh(layout=True)
+        self.screen.refresh(layout=True)
+
+
+def run(job: Path | None, profile: str | None, jobs_folder: Path | None) -> int:
+    """Open the app on a job, a new job on a profile, or the start page; return the exit status of the
+    process."""
+    refused = terminal.refusal(os.environ, sys.stdin, sys.stderr)
+    if refused is not None:
+        print(f"triage: {refused}", file=sys.stderr)
+        return 2
+    terminal.harden_stream(sys.__stderr__)
+    app = TriageApp(Shelf(jobs_folder), terminal.look(os.environ), job, profile)
+    app.run()
+    for fault in app.faults:
+        print(f"triage: fault in the program: {type(fault).__name__}: {fault}", file=sys.stderr)
+    return app.return_code or 0

@@ -1,0 +1,77 @@
+"""What the app asks of an open job: the part of ``triage.job.bench.Bench`` that it uses, written down as a
+protocol.
+
+The tests' stand-in keeps to the same protocol, so that the screens are tested without computing anything.
+"""
+
+from pathlib import Path
+from typing import Protocol
+
+from triage.board.part import Board
+from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+
+
+class OpenJob(Protocol):
+    """One open job. Methods that accept something save it and return what there is to show."""
+
+    @property
+    def board(self) -> Board:
+        """The board of the job."""
+
+    @property
+    def path(self) -> Path:
+        """The job file."""
+
+    def view(self) -> JobView:
+        """What there is to show now."""
+
+    def prepare(self) -> object:
+        """Compute what readings to expect; takes seconds."""
+
+    def acknowledge(self, key: str) -> JobView:
+        """A caution was read."""
+
+    def complain(self, text: str, state: str, condition: str) -> JobView:
+        """What is wrong with the adapter and under which load it was seen."""
+
+    def see(self, sign: str, ref: str) -> JobView:
+        """Something seen, heard, smelt or felt."""
+
+    def read(self, function: str, plus: str, minus: str, condition: str, text: str) -> JobView:
+        """A reading as typed."""
+
+    def skip(self, function: str, plus: str, minus: str, condition: str, reason: str) -> JobView:
+        """A reading that cannot be taken."""
+
+    def undo(self) -> JobView:
+        """Take the last entry back."""
+
+    def suspect(self, ref: str) -> JobView:
+        """The technician's own hunch."""
+
+    def stresses(self) -> tuple[StressView, ...]:
+        """The stresses of every part at their worst conditions."""
+
+    def demand(self, ref: str) -> DemandView:
+        """What the position of a part demands."""
+
+    def candidates(self, ref: str) -> tuple[CandidateView, ...]:
+        """Catalog parts for a position, best first."""
+
+    def ask(self, ref: str, type: str) -> CandidateView:
+        """One catalog part held against a position, with what it fails."""
+
+    def matches(self, marking: str) -> tuple[MatchView, ...]:
+        """Catalog parts that a half-read marking may mean."""
+
+    def fit(self, ref: str, type: str) -> JobView:
+        """A part was fitted."""
+
+    def repaired(self, result: str) -> JobView:
+        """What the repair led to."""
+
+    def close(self, verdict: str) -> JobView:
+        """Close the job."""
+
+    def report(self, format: str) -> str:
+        """The report as ``text`` or ``markdown``."""

@@ -1,0 +1,181 @@
+"""The open job as the screens see it: the newest view, and the one way to ask the bench something.
+
+Entries go through ``enter`` one after the other; what only looks goes through ``look``. The slow first
+calculation runs in a thread of its own, so that cautions and signs can be entered meanwhile.
+"""
+
+from collections.abc import Callable, Mapping
+from typing import TypeVar
+
+from triage.app.back_room import Answer, BackRoom
+from triage.app.contract import OpenJob
+from triage.errors import TriageError
+from triage.job.views import JobView, SuspectView
+
+T = TypeVar("T")
+Deliver = Callable[[Callable[[], None]], object]
+
+
+class Desk:
+    """Holds the open job and its newest view.
+
+    Parameters
+    ----------
+    deliver : has a callable called on the screen's side; safe to call from a thread
+    changed : called on the screen's side when there is a new view or a new message
+    fault : called with an exception that no person at the bench can mend
+    """
+
+    def __init__(
+        self, deliver: Deliver, changed: Callable[[], None], fault: Callable[[Exception], None]
+    ) -> None:
+        self._deliver = deliver
+        self._changed = changed
+        self._fault = fault
+        self._quick = BackRoom()
+        self._slow = BackRoom()
+        self.bench: OpenJob | None = None
+        self.view: JobView | None = None
+        self.message = ""
+        """What the last question came to, for the message line."""
+        self.refused = False
+        """True when the message says that something was not accepted."""
+        self.pending = False
+        """True while an entry is being worked on."""
+        self.track: list[tuple[str, tuple[SuspectView, ...]]] = []
+        """What each entry since the job was opened led to: its words and the suspects after it."""
+
+    @property
+    def busy(self) -> bool:
+        """True while something is being computed."""
+        return self._quick.busy or self._slow.busy
+
+    @property
+    def pins(self) -> Mapping[str, tuple[str, ...]]:
+        """Node -> the part pins that meet there, ``D1 cathode``."""
+        found: dict[str, tuple[str, ...]] = {}
+        for part in self.bench.board.parts if self.bench else ():
+            for pin, node in part.pins.items():
+                found[node] = (*found.get(node, ()), f"{part.ref} {pin}")
+        return found
+
+    def open(self, begin: Callable[[], OpenJob], then: Callable[[], None]) -> None:
+        """Open or begin a job; ``then`` is called when its first view is there."""
+        self.put_away()
+        self.pending = True
+
+        def work() -> tuple[OpenJob, JobView]:
+            bench = begin()
+            return bench, bench.view()
+
+        def opened(answer: Answer[tuple[OpenJob, JobView]]) -> None:
+            self.pending = False
+            if answer.value is None:
+                self._report(answer.error)
+                return
+            self.bench, view = answer.value
+            self._take(view)
+            self.message = view.message
+            self.refused = False
+            then()
+            self._prepare(self.bench)
+
+        self._quick.ask("open", work, opened, self._deliver)
+
+    def _prepare(self, bench: OpenJob) -> None:
+        def ready(answer: Answer[object]) -> None:
+            if bench is not self.bench:
+                return
+            if answer.error is not None:
+                self._report(answer.error)
+            elif self.pending:
+                self._changed()
+            else:
+                self._quick.ask("entry", bench.view, self._accepted_quietly, self._deliver)
+
+        self._slow.ask("prepare", bench.prepare, ready, self._deliver)
+
+    def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None) -> bool:
+        """Give the bench an entry; False when there is no job, or the entry before is still being worked on.
+
+        ``accepted`` is called before the screens are told, when the bench has taken the entry.
+        """
+        bench = self.bench
+        if bench is None or self.pending:
+            self._say("still working on the entry before" if bench else "no job is open", refused=True)
+            return False
+        self.pending = True
+
+        def done(answer: Answer[JobView]) -> None:
+            self.pending = False
+            if answer.value is None:
+                self._report(answer.error)
+                return
+            self._take(answer.value)
+            if accepted is not None:
+                accepted()
+            self._say(answer.value.message)
+
+        self._quick.ask("entry", lambda: call(bench), done, self._deliver, must_run=True)
+        self._changed()
+        return True
+
+    def look(
+        self,
+        lane: str,
+        call: Callable[[OpenJob], T],
+        then: Callable[[T], None],
+        failed: Callable[[str], None] | None = None,
+    ) -> None:
+        """Ask the bench something that changes nothing; only the newest question of a lane is answered."""
+        bench = self.bench
+        if bench is None:
+            return
+
+        def done(answer: Answer[T]) -> None:
+            if answer.error is not None:
+                self._report(answer.error, failed)
+            else:
+                then(answer.value)  # type: ignore[arg-type]
+
+        self._quick.ask(lane, lambda: call(bench), done, self._deliver)
+
+    def put_away(self) -> None:
+        """Let go of the job; answers still to come for it are dropped."""
+        self._quick.forget()
+        self._slow.forget()
+        self.bench, self.view, self.message, self.refused, self.pending = None, None, "", False, False
+        self.track = []
+
+    def finish(self, seconds: float) -> bool:
+        """Wait until every entry is with the bench, which writes each at once; False when that takes
+        longer."""
+        return self._quick.wait(seconds)
+
+    def _accepted_quietly(self, answer: Answer[JobView]) -> None:
+        if answer.value is None:
+            self._report(answer.error)
+            return
+        self._take(answer.value)
+        self._changed()
+
+    def _take(self, view: JobView) -> None:
+        self.view = view
+        if view.suspects and (not self.track or self.track[-1][1] != view.suspects):
+            self.track.append((view.entries[-1].text if view.entries else "at the start", view.suspects))
+
+    def _say(self, text: str, refused: bool = False) -> None:
+        self.message, self.refused = text, refused
+        self._changed()
+
+    def _report(self, error: Exception | None, failed: Callable[[str], None] | None = None) -> None:
+        if isinstance(error, TriageError):
+            text = str(error)
+        else:
+            text = f"fault in the program ({type(error).__name__}: {error}); the entries before are saved"
+            if error is not None:
+                self._fault(error)
+        if failed is not None:
+            failed(text)
+        else:
+            self._say(text, refused=True)

@@ -1,0 +1,77 @@
+"""Cautions: each is read and acknowledged by itself before the readings begin."""
+
+from typing import ClassVar
+
+from textual.app import ComposeResult
+
+from triage.app.frame import Frame
+from triage.app.lines import Span, line, wrapped
+from triage.app.widgets.panel import ListPanel, Panel
+from triage.job.views import CautionView, JobView
+
+
+class CautionsScreen(Frame):
+    """The list above, the one under the cursor in full below."""
+
+    PLACE: ClassVar[str] = "cautions"
+    NAME: ClassVar[str] = "cautions"
+    CSS_PATH = "cautions.tcss"
+
+    def body(self) -> ComposeResult:
+        """List and full text."""
+        yield ListPanel(id="list")
+        yield Panel(id="full")
+
+    def _cautions(self) -> tuple[CautionView, ...]:
+        return self.desk.view.cautions if self.desk.view else ()
+
+    def refresh_body(self, view: JobView | None) -> None:
+        """Acknowledged ones carry ``ok``, the others ``!``."""
+        cautions = self._cautions()
+        open_ones = sum(not caution.acknowledged for caution in cautions)
+        text = (
+            f"cautions: {open_ones} to acknowledge, Enter on each"
+            if open_ones
+            else "cautions: all acknowledged, F2 goes on"
+        )
+        rows = [
+            (
+                one.key,
+                line(
+                    Span("ok " if one.acknowledged else "!  ", "good" if one.acknowledged else "bad"),
+                    Span(one.text, "quiet" if one.acknowledged else ""),
+                ),
+            )
+            for one in cautions
+        ]
+        self.query_one("#list", ListPanel).fill(rows, line(Span(text.ljust(self.wide), "head")))
+        self._show_full()
+
+    def _show_full(self) -> None:
+        key = self.query_one("#list", ListPanel).key
+        text = next((one.text for one in self._cautions() if one.key == key), "")
+        self.panel("full").show(wrapped(text, self.wide - 4, "strong", first="  ", rest="  "))
+
+    def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
+        """Show the caution under the cursor in full."""
+        self._show_full()
+
+    def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
+        """Acknowledge; when none is left, go on to the bench."""
+        if all(one.acknowledged for one in self._cautions()):
+            self.triage.action_go("bench")
+        elif not next(one.acknowledged for one in self._cautions() if one.key == event.key):
+            self.desk.enter(lambda bench: bench.acknowledge(event.key), self._accepted)
+        else:
+            self._to_next()
+
+    def _accepted(self) -> None:
+        if any(not one.acknowledged for one in self._cautions()):
+            self._to_next()
+        else:
+            self.triage.action_go("bench")
+
+    def _to_next(self) -> None:
+        left = [one.key for one in self._cautions() if not one.acknowledged]
+        if left:
+            self.query_one("#list", ListPanel).go_to(left[0])

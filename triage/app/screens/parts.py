@@ -1,0 +1,162 @@
+"""Replacement: what the position demands, which parts meet it, a search by half-read marking, and the fit."""
+
+from typing import ClassVar
+
+from textual.app import ComposeResult
+from textual.containers import Horizontal
+from textual.widgets import Input
+
+from triage.app.frame import Frame
+from triage.app.lines import Span, line
+from triage.app.text.parts import candidate_detail, candidate_line, demand_lines, match_line
+from triage.app.text.stress import before_after
+from triage.app.widgets.field import ChoiceField, Field
+from triage.app.widgets.panel import ListPanel, Panel
+from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+
+
+class PartsScreen(Frame):
+    """Position and marking above, the list in the middle, the part under the cursor below."""
+
+    PLACE: ClassVar[str] = "parts"
+    NAME: ClassVar[str] = "parts"
+    CSS_PATH = "parts.tcss"
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._ref = ""
+        self._candidates: dict[str, CandidateView] = {}
+        self._matches: tuple[MatchView, ...] = ()
+        self._before: tuple[StressView, ...] = ()
+
+    def body(self) -> ComposeResult:
+        """Fields, demand, list, detail."""
+        bench, view = self.desk.bench, self.desk.view
+        refs = [part.ref for part in bench.board.parts] if bench else []
+        wanted = (
+            (view.verdict.repair or tuple(one.ref for one in view.suspects if one.ref in refs))
+            if view
+            else ()
+        )
+        with Horizontal(classes="row"):
+            yield Panel(id="ref-label")
+            yield ChoiceField(
+                [*wanted, *(ref for ref in refs if ref not in wanted)], wanted[0] if wanted else "", id="ref"
+            )
+            yield Panel(id="marking-label")
+            yield Field(id="marking")
+            yield Panel(id="hint")
+        yield Panel(id="demand")
+        yield ListPanel(id="list")
+        yield Panel(id="detail")
+
+    def on_mount(self) -> None:
+        """Ask for the position that the verdict names."""
+        super().on_mount()
+        self.panel("ref-label").show((line(Span("position ", "strong")),))
+        self.panel("marking-label").show((line(Span("  marking ", "strong")),))
+        self.panel("hint").show((line(Span("  Enter on a line of the list fits it", "quiet")),))
+        self._ask()
+
+    def refresh_body(self, view: JobView | None) -> None:
+        """Lines for this width."""
+        self._fill()
+
+    def _ask(self) -> None:
+        ref = self.query_one("#ref", ChoiceField).settle()
+        if not ref:
+            self.panel("demand").show((line("which position? type a ref such as C1, Enter"),))
+            return
+        if ref == self._ref:
+            return
+        self._ref, self._candidates = ref, {}
+        self.panel("demand").show((line(Span(f"computing what {ref} must withstand...", "near")),))
+        self.desk.look(
+            "demand",
+            lambda bench: (bench.demand(ref), bench.candidates(ref), bench.stresses()),
+            self._demand,
+            self._failed,
+        )
+
+    def _failed(self, text: str) -> None:
+        self.panel("demand").show((line(Span(text, "bad")),))
+
+    def _demand(self, found: tuple[DemandView, tuple[CandidateView, ...], tuple[StressView, ...]]) -> None:
+        demand, candidates, self._before = found
+        self.panel("demand").show(demand_lines(demand, self.wide, 6))
+        self._candidates = {one.type: one for one in candidates}
+        self._fill()
+
+    def _fill(self) -> None:
+        """The matches while a marking is typed, else the candidates."""
+        marking = self.query_one("#marking", Field).value.strip()
+        if marking:
+            rows = [(one.type, match_line(one, self.wide)) for one in self._matches]
+            head = f"catalog parts that {marking!r} may mean, asked for {self._ref or 'no position yet'}"
+        else:
+            rows = [
+                (one.type, candidate_line(one, self.wide))
+                for one in self._candidates.values()
+                if one.accepted
+            ]
+            head = f"rated for {self._ref}, best first" if rows else f"no candidate for {self._ref} yet"
+        self.query_one("#list", ListPanel).fill(rows, line(Span(head.ljust(self.wide), "head")))
+        self._show_detail()
+
+    def _show_detail(self) -> None:
+        key = self.query_one("#list", ListPanel).key
+        known = self._candidates.get(key)
+        if known is not None:
+            self.panel("detail").show(candidate_detail(known, self.wide))
+            return
+        self.panel("detail").show(())
+        if key and self._ref:
+            ref = self._ref
+            self.desk.look("ask", lambda bench: bench.ask(ref, key), self._asked, self._ask_failed)
+
+    def _asked(self, found: CandidateView) -> None:
+        self._candidates[found.type] = found
+        if self.query_one("#list", ListPanel).key == found.type:
+            self.panel("detail").show(candidate_detail(found, self.wide))
+
+    def _ask_failed(self, text: str) -> None:
+        self.panel("detail").show((line(Span(text, "bad")),))
+
+    def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
+        """Show the part under the cursor."""
+        self._show_detail()
+
+    def on_input_changed(self, event: Input.Changed) -> None:
+        """Search as one types; only the newest answer is shown."""
+        if event.input.id != "marking":
+            return
+        text = event.value.strip()
+        if not text:
+            self._matches = ()
+            self._fill()
+            return
+        self.desk.look("marking", lambda bench: bench.matches(text), self._matched, self._ask_failed)
+
+    def _matched(self, found: tuple[MatchView, ...]) -> None:
+        self._matches = found
+        self._fill()
+
+    def on_input_submitted(self, event: Input.Submitted) -> None:
+        """A position: ask for it. A marking: on to the list."""
+        if event.input.id == "ref":
+            self._ask()
+        self.query_one("#list").focus()
+
+    def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
+        """Fit the part under the cursor."""
+        ref, wanted = self._ref, event.key
+        self.desk.enter(lambda bench: bench.fit(ref, wanted), self._fitted)
+
+    def _fitted(self) -> None:
+        before, ref = self._before, self._ref
+
+        def show(after: tuple[StressView, ...]) -> None:
+            self._before = after
+            self.panel("demand").show(before_after(before, after, ref, self.wide))
+
+        self.desk.look("stress", lambda bench: bench.stresses(), show, self._failed)

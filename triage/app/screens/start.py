@@ -1,0 +1,100 @@
+"""Start page: open a job, begin one on a profile, and what to do first."""
+
+from pathlib import Path
+from typing import ClassVar
+
+from textual import work
+from textual.app import ComposeResult
+
+from triage.app.frame import Frame
+from triage.app.lines import Line, Span, columns, line
+from triage.app.shelf import Item
+from triage.app.widgets.panel import ListPanel, Panel
+from triage.job.views import JobView
+
+_FIRST = (
+    line(
+        Span("First: ", "strong"),
+        "pull the plug, and treat the big capacitor as charged until it has been read.",
+    ),
+    line("Choose a job to go on with, or a profile to begin a new one; Enter takes the line."),
+    line("Then say what is wrong, read the cautions, and take the readings as they are suggested."),
+    line(Span("Work on mains parts only if your local code and your training allow it.", "quiet")),
+)
+
+
+class StartScreen(Frame):
+    """The list of jobs and profiles."""
+
+    PLACE: ClassVar[str] = "start"
+    NAME: ClassVar[str] = "triage"
+    CSS_PATH = "start.tcss"
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._items: tuple[Item, ...] = ()
+
+    def body(self) -> ComposeResult:
+        """What to do first, and the list."""
+        yield Panel(id="first")
+        yield ListPanel(id="items")
+
+    def on_mount(self) -> None:
+        """Look for jobs and profiles."""
+        super().on_mount()
+        self.look_again()
+
+    def on_screen_resume(self) -> None:
+        """Look again: a job may have been added."""
+        super().on_screen_resume()
+        self.look_again()
+
+    @work(thread=True, exclusive=True)
+    def look_again(self) -> None:
+        """List the folder off the event loop."""
+        found = self.triage.shelf.items()
+        self.app.call_from_thread(self._list, found)
+
+    def _list(self, found: tuple[Item, ...]) -> None:
+        self._items = found
+        rows: list[tuple[str, Line]] = []
+        for number, item in enumerate(found):
+            word = "go on " if item.kind == "job" else "begin "
+            rows.append(
+                (
+                    str(number),
+                    columns(
+                        [
+                            (Span(word, "key"), 6),
+                            (item.title, max(self.wide - 32, 20)),
+                            (Span(item.path.stem, "quiet"), 22),
+                        ]
+                    ),
+                )
+            )
+        head = line(Span("jobs and profiles".ljust(self.wide), "head"))
+        if not rows:
+            self.show_message(
+                "no jobs and no profiles found: install triage again, or name a profile when starting"
+            )
+        self.query_one("#items", ListPanel).fill(rows, head)
+
+    def refresh_body(self, view: JobView | None) -> None:
+        """The first words."""
+        self.panel("first").show(_FIRST)
+        if self._items:
+            self._list(self._items)
+
+    def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
+        """Open the job, or begin one on the profile."""
+        if self.desk.pending:
+            return
+        item = self._items[int(event.key)]
+        self.show_message("opening...")
+        if item.kind == "job":
+            self.triage.resume(Path(item.path))
+        else:
+            self.triage.begin(str(item.path))
+
+    def action_back(self) -> None:
+        """Nothing lies behind the start page."""

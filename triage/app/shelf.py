@@ -1,0 +1,85 @@
+"""What there is to open: the shipped profiles and the jobs of the folder, for the start page."""
+
+import tomllib
+from collections.abc import Callable
+from dataclasses import dataclass
+from pathlib import Path
+
+from triage.app.contract import OpenJob
+from triage.data import data_folder
+from triage.errors import JobError
+from triage.job.folder import free_name, jobs_folder, make_folder
+
+_LONGEST_FILE = 4_000_000
+"""Files beyond this size [bytes] are listed by name only."""
+
+
+@dataclass(frozen=True, slots=True)
+class Item:
+    """One line of the start page."""
+
+    path: Path
+    title: str
+    kind: str
+    """``job`` or ``profile``."""
+
+
+def _title_of(path: Path) -> str:
+    """The title a file gives itself, or its name where it gives none or cannot be read."""
+    try:
+        if path.stat().st_size > _LONGEST_FILE:
+            return path.stem
+        found = tomllib.loads(path.read_text(encoding="utf-8"))
+    except (OSError, ValueError):
+        return path.stem
+    for table in (found, found.get("board"), found.get("job")):
+        title = table.get("title") if isinstance(table, dict) else None
+        if isinstance(title, str) and title:
+            return title
+    return path.stem
+
+
+def items(folder: Path | None) -> tuple[Item, ...]:
+    """Jobs of the folder, newest first, then the shipped profiles by name."""
+    jobs_at = jobs_folder(folder)
+    jobs = [path for path in jobs_at.glob("*.toml") if path.is_file()] if jobs_at.is_dir() else []
+    jobs.sort(key=lambda path: path.stat().st_mtime, reverse=True)
+    profiles = sorted(data_folder("profiles").glob("*.toml"))
+    return (
+        *(Item(path, _title_of(path), "job") for path in jobs),
+        *(Item(path, _title_of(path), "profile") for path in profiles),
+    )
+
+
+class Shelf:
+    """Opens and begins jobs; the heavy rooms of the program are imported with the first of them."""
+
+    def __init__(self, folder: Path | None = None) -> None:
+        self.folder = folder
+
+    def items(self) -> tuple[Item, ...]:
+        """What the start page lists."""
+        return items(self.folder)
+
+    def opener(self, path: Path) -> Callable[[], OpenJob]:
+        """What opens a job file when called."""
+
+        def begin() -> OpenJob:
+            from triage.job.bench import Bench
+
+            return Bench.open(path)
+
+        return begin
+
+    def beginner(self, profile: str) -> Callable[[], OpenJob]:
+        """What begins a job on a profile (name or path) when called, in a file of its own in the folder."""
+
+        def begin() -> OpenJob:
+            from triage.job.bench import Bench
+
+            if not profile:
+                raise JobError("profile", "no name given", "a shipped profile or the path of one")
+            path = free_name(make_folder(jobs_folder(self.folder)), Path(profile).stem)
+            return Bench.create(profile, path)
+
+        return begin

@@ -1,0 +1,1 @@
+"""Pure functions from the bench's records to marked lines; tested without a terminal."""

@@ -1,0 +1,52 @@
+"""The lines that stand on every screen of a job: where the job stands, whether the board is safe to touch,
+the keys."""
+
+from collections.abc import Sequence
+
+from triage.app.keys import COMMANDS, Command
+from triage.app.lines import Line, Span, apart, clip, line, width_of
+from triage.job.views import STAGES, JobView
+
+_STAGE_WORDS = {"cold": "cold readings", "live": "live readings"}
+
+
+def stage_words(stage: str) -> str:
+    """``3 of 7, cold readings``."""
+    if stage not in STAGES:
+        return stage
+    return f"step {STAGES.index(stage) + 1} of {len(STAGES)}: {_STAGE_WORDS.get(stage, stage).upper()}"
+
+
+def status_lines(view: JobView, place: str, width: int) -> tuple[Line, ...]:
+    """Two rows: the job and its stage; whether the board is safe to touch, with ``computing`` while it
+    lasts."""
+    live = view.stage == "live"
+    right = line(Span(f" {stage_words(view.stage)} ", "head"))
+    first = apart(line(Span(f" {place} ", "head"), " ", Span(view.title, "strong")), right, width)
+    note = Span(" computing... ", "near") if view.computing else Span(view.read_only, "bad")
+    touch = line(
+        Span("LIVE: hands off! " if live else "touch: ", "bad" if live else "strong"),
+        Span(view.safe_to_touch),
+    )
+    return first, apart(touch, line(note), width) if note.text else clip(touch, width)
+
+
+def key_line(commands: Sequence[Command], width: int, job: bool = True) -> Line:
+    """Keys with their words, as many as fit; each can be clicked."""
+    spans: list[Span] = []
+    for command in commands:
+        if not command.shown or (command.job and not job):
+            continue
+        more = [
+            Span(command.shown, "key", command.action),
+            Span(" " + command.label + "  ", "", command.action),
+        ]
+        if width_of(tuple(spans + more)) - 2 > width:
+            break
+        spans += more
+    return tuple(spans)
+
+
+def standard_keys(width: int, job: bool = True) -> Line:
+    """The key line of the commands that hold everywhere."""
+    return key_line(COMMANDS, width, job)

@@ -1,0 +1,80 @@
+"""Replacement in lines: what a position demands, how candidates meet it, why a part is refused."""
+
+from triage.app.lines import Line, Span, clip, columns, line, wrapped
+from triage.app.text.stress import amount
+from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
+
+
+def demand_lines(found: DemandView, width: int, rows: int) -> tuple[Line, ...]:
+    """Head with position and role, then a row a requirement with its reason."""
+    kind = "  SAFETY PART: like for like only" if found.safety_part else ""
+    out = [
+        line(
+            Span(f"{found.ref} {found.role} must withstand".ljust(width - len(kind)), "head"),
+            Span(kind, "head"),
+        )
+    ]
+    for one in found.requirements:
+        bound = line(Span(_bounds(one), "strong"))
+        old = f"old part {amount(one.offered, one.unit)}" if one.offered is not None else ""
+        out.append(
+            clip(
+                (
+                    *columns([(one.text, 26), (bound[0], 20), (Span(old, "quiet"), 18)]),
+                    Span(" "),
+                    Span(one.reason, "quiet"),
+                ),
+                width,
+            )
+        )
+    if found.note:
+        out += wrapped(found.note, width, "near")
+    return tuple(out[:rows])
+
+
+def _bounds(one: RequirementView) -> str:
+    low = "" if one.minimum is None else f"at least {amount(one.minimum, one.unit)}"
+    high = "" if one.maximum is None else f"at most {amount(one.maximum, one.unit)}"
+    if low and high:
+        return f"{amount(one.minimum, one.unit)} to {amount(one.maximum, one.unit)}"
+    return low or high or "as the old one"
+
+
+def candidate_line(one: CandidateView, width: int) -> Line:
+    """Type, class, how well it fits, its margins; a refused one says so."""
+    word = Span(f"{one.score * 100:3.0f} %", "good") if one.accepted else Span("NO   ", "bad")
+    text = "; ".join(one.margins) if one.accepted else "; ".join(one.refusals)
+    return clip(
+        line(word, "  ", Span(one.type.ljust(14), "strong"), Span(one.part_class.ljust(20), "quiet"), text),
+        width,
+    )
+
+
+def match_line(one: MatchView, width: int) -> Line:
+    """Type, class, how sure the marking is read, main ratings."""
+    return clip(
+        line(
+            Span(one.band.ljust(8), "near"),
+            Span(one.type.ljust(14), "strong"),
+            Span(one.part_class.ljust(20), "quiet"),
+            one.text,
+        ),
+        width,
+    )
+
+
+def candidate_detail(one: CandidateView, width: int) -> tuple[Line, ...]:
+    """All about one candidate: refusals first, then margins, notes, source."""
+    out: list[Line] = []
+    for refusal in one.refusals:
+        out += wrapped(refusal, width, "bad", first="refused: ", rest="  ")
+    if one.margins:
+        out += wrapped(
+            "; ".join(one.margins), width, "good" if one.accepted else "", first="margins: ", rest="  "
+        )
+    if one.notes:
+        out += wrapped("; ".join(one.notes), width, first="notes: ", rest="  ")
+    source = f"{one.source} ({one.confidence})" if one.confidence else one.source
+    if source:
+        out.append(clip(line(Span("source: " + source, "quiet")), width))
+    return tuple(out)

@@ -1,0 +1,87 @@
+"""Colours of the app: a dark and a light screen, and one that leaves colours to the terminal.
+
+Every pair of text and background keeps a contrast of at least 4.5:1 (WCAG 2.1, success criterion 1.4.3); the
+tests measure it on the drawn screens. Colour is never the only sign: each mark has a character or an
+attribute besides.
+"""
+
+from textual.theme import Theme
+
+_DARK = {
+    "ink": "#d8dee4",
+    "paper": "#11161b",
+    "quiet": "#9fb0bf",
+    "strong": "#ffffff",
+    "head": "#ffffff",
+    "head-paper": "#26394a",
+    "key": "#8ccbff",
+    "suspect": "#11161b",
+    "suspect-paper": "#ffbe5c",
+    "over": "#ff9b94",
+    "near": "#ffd27a",
+    "good": "#93dba0",
+    "red": "#ffffff",
+    "red-paper": "#b3261e",
+    "black": "#11161b",
+    "black-paper": "#d8dee4",
+    "cursor": "#ffffff",
+    "cursor-paper": "#2b5c8a",
+    "blurred-paper": "#2a333c",
+    "field": "#ffffff",
+    "field-paper": "#2a333c",
+    "bad": "#ff9b94",
+}
+_LIGHT = {
+    "ink": "#1b2127",
+    "paper": "#fafaf6",
+    "quiet": "#4d5a66",
+    "strong": "#000000",
+    "head": "#ffffff",
+    "head-paper": "#2d4a63",
+    "key": "#0b4f8a",
+    "suspect": "#1b2127",
+    "suspect-paper": "#ffc76b",
+    "over": "#a3150d",
+    "near": "#7a4a00",
+    "good": "#14611f",
+    "red": "#ffffff",
+    "red-paper": "#b3261e",
+    "black": "#ffffff",
+    "black-paper": "#1b2127",
+    "cursor": "#ffffff",
+    "cursor-paper": "#0b4f8a",
+    "blurred-paper": "#dcdfe0",
+    "field": "#000000",
+    "field-paper": "#e3e6e6",
+    "bad": "#a3150d",
+}
+_OWN = dict.fromkeys(_DARK, "ansi_default") | {
+    "key": "ansi_cyan",
+    "over": "ansi_red",
+    "bad": "ansi_red",
+    "near": "ansi_yellow",
+    "good": "ansi_green",
+}
+
+
+def _theme(name: str, colours: dict[str, str], dark: bool, ansi: bool = False) -> Theme:
+    return Theme(
+        name=name,
+        primary=colours["key"],
+        foreground=colours["ink"],
+        background=colours["paper"],
+        surface=colours["paper"],
+        panel=colours["paper"],
+        error=colours["bad"],
+        warning=colours["near"],
+        success=colours["good"],
+        accent=colours["key"],
+        dark=dark,
+        ansi=ansi,
+        variables={f"t-{key}": value for key, value in colours.items()},
+    )
+
+
+DARK = _theme("bench dark", _DARK, dark=True)
+LIGHT = _theme("bench light", _LIGHT, dark=False)
+OWN = _theme("terminal's own", _OWN, dark=True, ansi=True)

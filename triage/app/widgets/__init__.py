@@ -1,0 +1,1 @@
+"""Widgets of the app: panels of marked lines, lists, and fields."""

@@ -1,0 +1,59 @@
+"""Fields to type in: narrow, compact, without a blinking cursor; a click or Tab puts the cursor in."""
+
+from collections.abc import Sequence
+from typing import Any
+
+from textual.widgets import Input
+
+
+class Field(Input):
+    """A field for a value or a word."""
+
+    def __init__(self, value: str = "", placeholder: str = "", **names: Any) -> None:
+        super().__init__(value, placeholder, compact=True, select_on_focus=False, **names)
+        self.cursor_blink = False
+
+    def check_consume_key(self, key: str, character: str | None) -> bool:
+        """Leave ``?`` to the help key while the field is empty (called by Textual)."""
+        if character == "?" and not self.value:
+            return False
+        return super().check_consume_key(key, character)
+
+
+class ChoiceField(Field):
+    """A field for one of a few words: typing completes to the first that fits, up and down step through."""
+
+    BINDINGS = [("up", "step(-1)", "before"), ("down", "step(1)", "next")]  # noqa: RUF012 (Textual's own way)
+
+    def __init__(self, choices: Sequence[str], value: str = "", **names: Any) -> None:
+        super().__init__(value, **names)
+        self.choices = tuple(choices)
+
+    @property
+    def fitting(self) -> tuple[str, ...]:
+        """The choices that begin with what is typed, or contain it where none begins with it."""
+        typed = self.value.strip().lower()
+        starts = tuple(choice for choice in self.choices if choice.lower().startswith(typed))
+        return starts or tuple(choice for choice in self.choices if typed in choice.lower())
+
+    @property
+    def choice(self) -> str:
+        """The choice meant: the exact one, else the first that fits, else what is typed."""
+        typed = self.value.strip()
+        if not typed or typed in self.choices:
+            return typed
+        return self.fitting[0] if self.fitting else typed
+
+    def action_step(self, by: int) -> None:
+        """Go to the next choice in the list."""
+        if not self.choices:
+            return
+        here = self.choices.index(self.choice) if self.choice in self.choices else (-1 if by > 0 else 0)
+        self.value = self.choices[(here + by) % len(self.choices)]
+        self.cursor_position = len(self.value)
+
+    def settle(self) -> str:
+        """Write the choice meant out in full and return it."""
+        if self.value.strip() and self.value != self.choice:
+            self.value = self.choice
+        return self.choice
