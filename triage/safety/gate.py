@@ -147,7 +147,7 @@ def _discharged(facts: GateFacts) -> tuple[str, ...]:
         return ("unplug and read the bulk voltage",)
     if not facts.bulk_voltage < SAFE_VOLTAGE:
         return (
-            f"discharge: the bulk capacitor holds {facts.bulk_voltage:.0f} V, go on under {SAFE_VOLTAGE:.0f} V",
+            f"discharge the bulk capacitor from {facts.bulk_voltage:.0f} V to below {SAFE_VOLTAGE:.0f} V",
         )
     return ()
 
