@@ -9,9 +9,7 @@ TIME = "2026-01-31T08:15:00Z"
 BOARD: dict[str, Any] = {
     "id": "cube",
     "title": "invented 5 V cube",
-    "part": [
-        {"ref": "R1", "kind": "resistor", "value": {"resistance": 4700.0}, "pins": {"a": "x", "b": "y"}}
-    ],
+    "part": [{"ref": "R1", "kind": "resistor", "value": {"resistance": 4700.0}, "pins": {"a": "x", "b": "y"}}],
 }
 
 
@@ -34,9 +32,7 @@ def log() -> list[Entry]:
         make_entry("complaint", TIME, state="dead", condition="full"),
         make_entry("acknowledge", TIME, caution="isolation transformer"),
         make_entry("sign", TIME, sign="sound", ref=""),
-        make_entry(
-            "skip", TIME, function="esr", plus="x", minus="y", condition="cold", reason="no ESR meter"
-        ),
+        make_entry("skip", TIME, function="esr", plus="x", minus="y", condition="cold", reason="no ESR meter"),
         reading(float("inf"), typed="OL"),
         reading(0.1 + 0.2, typed="0.3"),
         make_entry("undo", TIME, entry=5),

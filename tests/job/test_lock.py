@@ -22,9 +22,7 @@ input()
 
 def test_the_second_session_is_told_who_and_since_when(tmp_path: Path) -> None:
     path = tmp_path / "job.toml"
-    other = subprocess.Popen(
-        [sys.executable, "-c", HOLD, str(path)], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True
-    )
+    other = subprocess.Popen([sys.executable, "-c", HOLD, str(path)], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True)
     assert other.stdout is not None and other.stdout.readline() == "True\n"
     lock = Lock(path)
     assert not lock.take()
@@ -47,9 +45,7 @@ def test_the_same_session_cannot_take_it_twice(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize(("age", "taken"), [(60.0, False), (STALE_AFTER + 60, True)])
-def test_a_lock_of_another_host_is_left_behind_after_a_working_day(
-    tmp_path: Path, age: float, taken: bool
-) -> None:
+def test_a_lock_of_another_host_is_left_behind_after_a_working_day(tmp_path: Path, age: float, taken: bool) -> None:
     lock = Lock(tmp_path / "job.toml")
     holder = {"user": "ann", "host": "van-2", "pid": 1, "started": "5", "since": "2026-01-31T08:15:00Z"}
     lock.path.write_text(json.dumps(holder))
@@ -76,9 +72,7 @@ def test_a_damaged_lock_counts_for_a_moment_only(tmp_path: Path, content: str) -
     assert lock.take()
 
 
-def test_without_hard_links_the_lock_is_created_exclusively(
-    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
-) -> None:
+def test_without_hard_links_the_lock_is_created_exclusively(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     def refuse(*_: object) -> None:
         raise PermissionError(1, "Operation not permitted")
 

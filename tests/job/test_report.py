@@ -14,13 +14,9 @@ from triage.job.render import FORMATS, PAGE_WIDTH, Section, Table, render
 from triage.job.report import ReportContent, RetestLine, sections, stress_text
 from triage.job.views import CautionView, StressView, VerdictView
 
-HOSTILE = (
-    '<script>alert(1)</script> \x1b]0;owned\x07 [bold]x[/] \u202eevil\u2066 | `a` ![x](http://x) & "q" \''
-)
+HOSTILE = '<script>alert(1)</script> \x1b]0;owned\x07 [bold]x[/] \u202eevil\u2066 | `a` ![x](http://x) & "q" \''
 
-STRESS = StressView(
-    "Q1", "main switch", "peak_voltage", 612.0, "V", 700.0, 560.0, 612 / 700, "over derated limit", "s", "c"
-)
+STRESS = StressView("Q1", "main switch", "peak_voltage", 612.0, "V", 700.0, 560.0, 612 / 700, "over derated limit", "s", "c")
 
 
 def content(text: str = "works on the bench") -> ReportContent:
@@ -107,9 +103,7 @@ def test_plain_text_keeps_to_the_width_of_the_page() -> None:
 
 def test_an_empty_section_says_that_it_is_empty() -> None:
     for format in FORMATS:
-        assert "none taken" in render(
-            "t", (Section("Readings", table=Table(("a",), ()), nothing="none taken"),), format
-        )
+        assert "none taken" in render("t", (Section("Readings", table=Table(("a",), ()), nothing="none taken"),), format)
 
 
 def test_an_unknown_format_is_refused_with_the_known_ones() -> None:

@@ -93,16 +93,12 @@ class FullDisk:
         raise OSError(errno.ENOSPC, os.strerror(errno.ENOSPC))
 
 
-def test_a_full_disk_leaves_the_old_file_and_the_session_intact(
-    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
-) -> None:
+def test_a_full_disk_leaves_the_old_file_and_the_session_intact(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     job = new_job(tmp_path)
     job.append(reading(1.0))
     before = job.path.read_bytes()
     with monkeypatch.context() as patch:
-        patch.setattr(
-            store.os, "fdopen", lambda fd, mode: FullDisk(fd, mode) if "w" in mode else io.FileIO(fd)
-        )
+        patch.setattr(store.os, "fdopen", lambda fd, mode: FullDisk(fd, mode) if "w" in mode else io.FileIO(fd))
         with pytest.raises(JobError, match=r"No space left on device.*nothing already entered is lost"):
             job.append(reading(2.0))
     assert job.path.read_bytes() == before
@@ -127,9 +123,7 @@ def test_a_pipe_in_place_of_a_job_does_not_hang(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize("step", ["fsync", "replace"])
-def test_a_failing_disk_at_any_step_leaves_the_old_file(
-    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, step: str
-) -> None:
+def test_a_failing_disk_at_any_step_leaves_the_old_file(tmp_path: Path, monkeypatch: pytest.MonkeyPatch, step: str) -> None:
     job = new_job(tmp_path)
     before = job.path.read_bytes()
 

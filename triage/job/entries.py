@@ -66,28 +66,33 @@ class Entry:
     they are."""
 
 
+Told = Evidence | frozenset[str]
+"""Evidence, or the refs of parts whose replacement did not cure: from there on the board is another one."""
+
+
 @dataclass(frozen=True, slots=True)
 class Replay:
     """What a log comes to."""
 
-    evidence: tuple[Evidence, ...] = ()
-    evidence_numbers: tuple[int, ...] = ()
-    """Entry number of each piece of evidence."""
+    told: tuple[Told, ...] = ()
+    """What the diagnosis takes, in order. Readings after a repair count only once it has turned out to be no
+    cure: those of a cured board say nothing about what was wrong with it."""
+    told_numbers: tuple[int, ...] = ()
+    """Entry number of each of them; for a failed repair that of its result."""
     skips: tuple[Probe, ...] = ()
+    """Since the last repair that did not cure."""
     hunches: tuple[str, ...] = ()
     acknowledged: frozenset[str] = frozenset()
     fitted: tuple[tuple[str, str], ...] = ()
     """(ref, type) in the order of fitting."""
-    failed_repairs: tuple[frozenset[str], ...] = ()
-    """Refs fitted at each time the adapter was found still faulty."""
     repaired: str = ""
-    """Last result, one of RESULTS."""
+    """Result of the last repair, one of RESULTS; empty while it is not known."""
     retests: tuple[tuple[str, str], ...] = ()
     """(line, one of RETEST_RESULTS) since the last part was fitted."""
     closed: str = ""
-    """The verdict the job was closed with."""
-    returned: bool = False
-    """True when the adapter came back after the repair."""
+    """The outcome the job was closed with; empty again when the adapter came back."""
+    returned: int = 0
+    """How many times the adapter came back after the repair."""
     undone: frozenset[int] = field(default_factory=frozenset)
     """Numbers of the entries that were taken back."""
 
@@ -146,39 +151,77 @@ def last_standing(entries: tuple[Entry, ...]) -> int | None:
 def replay(entries: tuple[Entry, ...]) -> Replay:
     """What the log comes to: evidence in order, skips, and how far the repair has got."""
     undone = undone_numbers(entries)
-    standing = [(n, entry) for n, entry in enumerate(entries, 1) if entry.kind != "undo" and n not in undone]
-    by_kind: dict[str, list[Mapping[str, Any]]] = {kind: [] for kind in KINDS}
-    evidence: list[tuple[int, Evidence]] = []
-    fitted: list[tuple[str, str]] = []
-    failed: list[frozenset[str]] = []
-    retests: list[Mapping[str, Any]] = []
-    for number, entry in standing:
-        said = entry.said
-        by_kind[entry.kind].append(said)
-        found = evidence_of(entry)
-        if found is not None:
-            evidence.append((number, found))
-        if entry.kind == "fitted":
-            fitted.append((said["ref"], said["type"]))
-            retests.clear()
-        if entry.kind == "retest":
-            retests.append(said)
-        if entry.kind == "repaired" and said["result"] == "still faulty":
-            failed.append(frozenset(ref for ref, _ in fitted))
+    course = _Course()
+    for number, entry in enumerate(entries, 1):
+        if entry.kind != "undo" and number not in undone:
+            course.take(number, entry)
     return Replay(
-        evidence=tuple(item for _, item in evidence),
-        evidence_numbers=tuple(number for number, _ in evidence),
-        skips=tuple(probe_of(said) for said in by_kind["skip"]),
-        hunches=tuple(said["ref"] for said in by_kind["hunch"]),
-        acknowledged=frozenset(said["caution"] for said in by_kind["acknowledge"]),
-        fitted=tuple(fitted),
-        failed_repairs=tuple(failed),
-        repaired=by_kind["repaired"][-1]["result"] if by_kind["repaired"] else "",
-        retests=tuple((said["check"], said["result"]) for said in retests),
-        closed=by_kind["closed"][-1]["verdict"] if by_kind["closed"] else "",
-        returned=bool(by_kind["returned"]),
+        told=tuple(told for _, told in course.told),
+        told_numbers=tuple(number for number, _ in course.told),
+        skips=tuple(course.skips),
+        hunches=tuple(course.hunches),
+        acknowledged=frozenset(course.acknowledged),
+        fitted=tuple(course.fitted),
+        repaired=course.repaired,
+        retests=tuple(course.retests),
+        closed=course.closed,
+        returned=course.returned,
         undone=undone,
     )
+
+
+class _Course:
+    """The state of a job while its log is read through."""
+
+    def __init__(self) -> None:
+        self.told: list[tuple[int, Told]] = []
+        self.skips: list[Probe] = []
+        self.hunches: list[str] = []
+        self.acknowledged: list[str] = []
+        self.fitted: list[tuple[str, str]] = []
+        self.retests: list[tuple[str, str]] = []
+        self.repaired = ""
+        self.closed = ""
+        self.returned = 0
+        self._on_trial: list[str] = []
+        """Refs fitted since the last result that was no cure."""
+        self._since: list[tuple[int, Told]] = []
+        """Evidence since the first of them was fitted."""
+
+    def take(self, number: int, entry: Entry) -> None:
+        """Take in one entry that stands."""
+        said = entry.said
+        evidence = evidence_of(entry)
+        if evidence is not None:
+            (self._since if self._on_trial else self.told).append((number, evidence))
+        elif entry.kind == "skip":
+            self.skips.append(probe_of(said))
+        elif entry.kind == "hunch":
+            self.hunches.append(said["ref"])
+        elif entry.kind == "acknowledge":
+            self.acknowledged.append(said["caution"])
+        elif entry.kind == "fitted":
+            self.fitted.append((said["ref"], said["type"]))
+            self._on_trial.append(said["ref"])
+            self.retests.clear()
+            self.repaired = ""
+        elif entry.kind == "retest":
+            self.retests.append((said["check"], said["result"]))
+        elif entry.kind == "closed":
+            self.closed = said["verdict"]
+        elif entry.kind in ("repaired", "returned"):
+            self._result(number, entry)
+
+    def _result(self, number: int, entry: Entry) -> None:
+        if entry.kind == "returned":
+            self.returned += 1
+            self.closed = ""
+            self.repaired = "still faulty"
+        else:
+            self.repaired = entry.said["result"]
+        if self.repaired == "still faulty" and self._on_trial:
+            self.told += [(number, frozenset(self._on_trial)), *self._since]
+            self._on_trial, self._since, self.skips = [], [], []
 
 
 def probe_of(said: Mapping[str, Any]) -> Probe:

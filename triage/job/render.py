@@ -65,10 +65,7 @@ def _text_table(table: Table) -> list[str]:
     for row in rows:
         cells = [textwrap.wrap(cell, width) or [""] for cell, width in zip(row, widths, strict=True)]
         for line in range(max(map(len, cells))):
-            parts = [
-                (cell[line] if line < len(cell) else "").ljust(width)
-                for cell, width in zip(cells, widths, strict=True)
-            ]
+            parts = [(cell[line] if line < len(cell) else "").ljust(width) for cell, width in zip(cells, widths, strict=True)]
             out.append(("  " + "  ".join(parts)).rstrip())
     out.insert(1, "  " + "  ".join("-" * width for width in widths))
     return out
@@ -141,10 +138,7 @@ def _as_html(title: str, sections: Sequence[Section]) -> str:
             body.append(f"<ul>{items}</ul>")
         if section.table and section.table.rows:
             heads = "".join(f"<th scope=col>{_html(head)}</th>" for head in section.table.heads)
-            rows = "".join(
-                "<tr>" + "".join(f"<td>{_html(cell)}</td>" for cell in row) + "</tr>"
-                for row in section.table.rows
-            )
+            rows = "".join("<tr>" + "".join(f"<td>{_html(cell)}</td>" for cell in row) + "</tr>" for row in section.table.rows)
             body.append(f"<table><thead><tr>{heads}</tr></thead><tbody>{rows}</tbody></table>")
         elif not section.lines:
             body.append(f"<p class=nothing>{_html(section.nothing)}</p>")
@@ -153,9 +147,7 @@ def _as_html(title: str, sections: Sequence[Section]) -> str:
         '<!DOCTYPE html>\n<html lang="en"><head><meta charset="utf-8">'
         f'<meta http-equiv="Content-Security-Policy" content="{_POLICY}">'
         '<meta name="viewport" content="width=device-width, initial-scale=1">'
-        f"<title>{_html(title)}</title><style>{_STYLE}</style></head>\n<body>\n"
-        + "\n".join(body)
-        + "\n</body></html>\n"
+        f"<title>{_html(title)}</title><style>{_STYLE}</style></head>\n<body>\n" + "\n".join(body) + "\n</body></html>\n"
     )
 
 

@@ -15,9 +15,9 @@ from triage.job.views import CautionView, StressView, VerdictView
 from triage.quantities import engineering
 
 DEFERENCE = (
-    "The readings and limits named here are the technician's own record. They replace neither the rules in force "
-    "at the place of use nor the test that those rules ask of a licensed person before the adapter goes back "
-    "into service."
+    "The readings and limits named here are the technician's own record. They replace neither the rules in "
+    "force at the place of use nor the test that those rules ask of a licensed person before the adapter "
+    "goes back into service."
 )
 
 SAYS = {
@@ -64,9 +64,7 @@ def sections(content: ReportContent) -> tuple[Section, ...]:
     """The sections of a report, in the order of the work."""
     standing = _standing(content.entries)
     return (
-        Section(
-            "Adapter", (f"Job {content.id}, opened {content.opened}.",), Table(("label", ""), content.label)
-        ),
+        Section("Adapter", (f"Job {content.id}, opened {content.opened}.",), Table(("label", ""), content.label)),
         Section("Complaint", _complaint(standing), nothing="none recorded"),
         Section("Inspection", _inspection(standing), nothing="nothing recorded"),
         Section("Readings", table=_readings(standing), nothing="none taken"),
@@ -188,8 +186,7 @@ def _retest(lines: Sequence[RetestLine]) -> Table:
 
 def _skipped(standing: Mapping[str, list[Entry]]) -> tuple[str, ...]:
     return tuple(
-        f"{probe_text(said)}: {said['reason'] or 'skipped'}"
-        for said in (entry.said for entry in standing.get("skip", ()))
+        f"{probe_text(said)}: {said['reason'] or 'skipped'}" for said in (entry.said for entry in standing.get("skip", ()))
     )
 
 

@@ -67,9 +67,7 @@ def create(path: Path, board: Mapping[str, Any], opened: str, profile: str) -> J
     Raises JobError when the file exists already or cannot be written.
     """
     if path.exists():
-        raise JobError(
-            str(path), "a file of that name is there already", advice="open it, or choose another name"
-        )
+        raise JobError(str(path), "a file of that name is there already", advice="open it, or choose another name")
     head = {"format": FORMAT, "opened": opened, "profile": profile}
     document: dict[str, Any] = {"job": head, "board": copy.deepcopy(dict(board))}
     return Job(path, document, (), write_document(path, document, b""))
@@ -120,10 +118,7 @@ def conflict_copies(path: Path) -> tuple[Path, ...]:
     return tuple(
         other
         for other in beside
-        if other != path
-        and other.name.startswith(path.stem)
-        and "conflict" in other.name.lower()
-        and other.suffix == path.suffix
+        if other != path and other.name.startswith(path.stem) and "conflict" in other.name.lower() and other.suffix == path.suffix
     )
 
 
@@ -152,9 +147,7 @@ def write_document(path: Path, document: Mapping[str, Any], expected: bytes) -> 
         raise JobError(
             str(path),
             f"cannot be written: {reason}",
-            advice=(
-                "nothing already entered is lost; free some space or use another folder, then enter it again"
-            ),
+            advice=("nothing already entered is lost; free some space or use another folder, then enter it again"),
         ) from None
     return hashlib.sha256(content).digest()
 
@@ -167,9 +160,7 @@ def _check_unchanged(path: Path, expected: bytes) -> None:
     if on_disk == expected:
         return
     if not expected:
-        raise JobError(
-            str(path), "a file of that name is there already", advice="open it, or choose another name"
-        )
+        raise JobError(str(path), "a file of that name is there already", advice="open it, or choose another name")
     found = "the file was changed by another program" if on_disk else "the file is gone"
     raise JobError(str(path), found, "the file as this session left it", "open the job again")
 

@@ -27,9 +27,7 @@ LONGEST_STRING = 20_000
 MOST_ITEMS = 60_000
 """Keys and array items in one file; a long job has about 6,000."""
 
-_QUOTED = re.compile(
-    r'"""(?:\\.|[^\\])*?"""|\'\'\'.*?\'\'\'|"(?:\\.|[^"\\\n])*"|\'[^\'\n]*\'|#[^\n]*', re.DOTALL
-)
+_QUOTED = re.compile(r'"""(?:\\.|[^\\])*?"""|\'\'\'.*?\'\'\'|"(?:\\.|[^"\\\n])*"|\'[^\'\n]*\'|#[^\n]*', re.DOTALL)
 
 
 def read_toml(path: Path) -> tuple[dict[str, Any], bytes]:
@@ -39,13 +37,9 @@ def read_toml(path: Path) -> tuple[dict[str, Any], bytes]:
         content = read_regular(path, LARGEST_FILE + 1)
     except OSError as error:
         reason = error.strerror or type(error).__name__
-        raise JobError(
-            str(path), f"cannot be read: {reason}", advice="check the name and the permissions"
-        ) from None
+        raise JobError(str(path), f"cannot be read: {reason}", advice="check the name and the permissions") from None
     except ValueError:
-        raise JobError(
-            "job name", "holds a character no file name can have", advice="type it again"
-        ) from None
+        raise JobError("job name", "holds a character no file name can have", advice="type it again") from None
     return parse_toml(content, str(path)), content
 
 
@@ -122,9 +116,7 @@ def _check_items(document: dict[str, Any], where: str) -> None:
         elif isinstance(value, list):
             pending.extend((child, depth + 1) for child in value)
         elif isinstance(value, str) and len(value) > LONGEST_STRING:
-            raise JobError(
-                where, "a text longer than a job can have", f"at most {LONGEST_STRING:,} characters"
-            )
+            raise JobError(where, "a text longer than a job can have", f"at most {LONGEST_STRING:,} characters")
         elif isinstance(value, int) and abs(value) >= 2**63:
             raise JobError(where, "a whole number beyond 64 bits", "a number of the trade")
         elif isinstance(value, float) and math.isnan(value):

@@ -214,6 +214,10 @@ class JobView:
     """The board drawn as text."""
     read_only: str = ""
     """Empty, or who has the job open and since when."""
+    waits_for: tuple[str, ...] = ()
+    """What must be done before a live reading is proposed, in order."""
+    looks: tuple[tuple[str, str, str], ...] = ()
+    """(key, text, what the look said or empty) of each thing to look at before the cold readings."""
 
 
 @dataclass(frozen=True, slots=True)

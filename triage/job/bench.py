@@ -1,0 +1,350 @@
+"""One open job with everything computed: what the app and the command line work with, and the Python
+interface.
+
+    with Bench.create("harbour-handset-charger", Path("cube.toml")) as bench:
+        bench.prepare()
+        bench.complain("dead", "dead", "full")
+        view = bench.read("ohms", "mains_l", "rect", "cold", "OL")
+
+Each method that accepts something first asks the gate, then has the entry on the disk, then answers with the
+new view. Belief, suggestion and verdict are a pure function of board and entries; the clock only stamps
+entries and, for safety's sake, lets acknowledgements expire with the day.
+"""
+
+import weakref
+from collections.abc import Callable, Mapping
+from datetime import UTC, datetime
+from pathlib import Path
+from types import TracebackType
+from typing import Any
+
+from triage.board.fault import Fault
+from triage.board.part import Board
+from triage.board.probe import COLD_FUNCTIONS, CONDITIONS, LIVE_FUNCTIONS, UNITS, Probe
+from triage.board.profile import board_from_dict, board_to_dict, load_profile
+from triage.errors import EntryError, JobError
+from triage.job import picture, store
+from triage.job.engine_room import Workings
+from triage.job.entries import last_standing, make_entry, replay
+from triage.job.gates import Rules, allow, facts_of
+from triage.job.lock import Lock
+from triage.job.record import report_sections
+from triage.job.render import render
+from triage.job.shown import entry_text, stress_view
+from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+from triage.quantities import parse_reading
+
+Clock = Callable[[], datetime]
+
+
+def utc_now() -> datetime:
+    """The present, UTC."""
+    return datetime.now(UTC)
+
+
+class Bench:
+    """One open job."""
+
+    def __init__(self, job: store.Job, lock: Lock | None, workings: Workings | None, clock: Clock) -> None:
+        """Use ``create`` or ``open``. lock: None for a session that only looks."""
+        if workings is None:
+            from triage.job.wiring import Wiring
+
+            workings = Wiring()
+        self.workings = workings
+        self.board: Board = board_from_dict(job.board, str(job.path))
+        """The board as it came onto the mat."""
+        self.job = job
+        self._lock = lock
+        self._clock = clock
+        self._needs = workings.retest(self.board)
+        self._rules = Rules.of_board(
+            self.board,
+            items=[key for key, _ in workings.looks(self.board)],
+            before_power=[need.key for need in self._needs if need.before_power],
+            required=[need.key for need in self._needs if need.required],
+            live_lines=[need.key for need in self._needs if need.live],
+        )
+        self.answers: picture.Answers | None = None
+        """What ``prepare`` computed; None before."""
+        if lock is not None:
+            weakref.finalize(self, lock.release)
+
+    @classmethod
+    def create(cls, profile: str | Path, path: Path, workings: Workings | None = None, clock: Clock = utc_now) -> "Bench":
+        """A new job on a profile (name of a shipped one or path of a file), in a new file.
+
+        Raises ProfileError for a profile with faults, JobError when the file cannot be made or is there
+        already.
+        """
+        board = load_profile(str(profile))
+        path = _resolved(path)
+        lock = Lock(path)
+        if not lock.take() and lock.holder:
+            raise JobError(str(path), f"in use by {lock.holder}", advice="choose another name")
+        try:
+            job = store.create(path, board_to_dict(board), _stamp(clock), Path(profile).stem)
+            return cls(job, lock, workings, clock)
+        except BaseException:
+            lock.release()
+            raise
+
+    @classmethod
+    def open(cls, path: Path, workings: Workings | None = None, clock: Clock = utc_now, write: bool = True) -> "Bench":
+        """Open a job file. Where another session has it, or nothing can be written, it opens read-only.
+
+        write: False to look only, without taking the lock. Raises JobError for a file that is no job.
+        """
+        path = _resolved(path)
+        lock = Lock(path) if write else None
+        if lock is not None and lock.take():
+            store.clear_drafts(path)
+        try:
+            return cls(store.load(path), lock, workings, clock)
+        except BaseException:
+            if lock is not None:
+                lock.release()
+            raise
+
+    def __enter__(self) -> "Bench":
+        return self
+
+    def __exit__(self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None) -> None:
+        self.release()
+
+    def release(self) -> None:
+        """Give the job free for other sessions; it can still be looked at here."""
+        if self._lock is not None:
+            self._lock.release()
+
+    @property
+    def path(self) -> Path:
+        """The job file."""
+        return self.job.path
+
+    @property
+    def read_only(self) -> str:
+        """Why nothing can be entered here, or empty."""
+        if self._lock is None:
+            return "opened to look only"
+        if self._lock.held:
+            return ""
+        if self._lock.holder:
+            return f"in use by {self._lock.holder}"
+        return f"the folder cannot be written: {self._lock.problem or 'no lock'}"
+
+    def prepare(self, factors: Mapping[Fault, float] | None = None) -> None:
+        """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
+        first time.
+
+        factors: what the bench's own closed jobs say on each fault (``triage.job.learning``).
+        """
+        self.answers = picture.Answers(self.workings.diagnosis(self.board, factors or {}), self.stresses_before())
+
+    def view(self, message: str = "") -> JobView:
+        """What there is to show now."""
+        return picture.view(self, message)
+
+    def facts(self, probability: Mapping[Fault, float] | None = None, found: bool = False) -> Any:
+        """The facts that the gates know (``triage.safety.gate.GateFacts``)."""
+        return facts_of(self._rules, self.job.entries, _stamp(self._clock)[:10], probability, found)
+
+    @property
+    def rules(self) -> Rules:
+        """What the gates of this board ask for."""
+        return self._rules
+
+    @property
+    def needs(self) -> tuple[Any, ...]:
+        """The lines of the retest."""
+        return self._needs
+
+    def acknowledge(self, key: str) -> JobView:
+        """A caution was read; ``all`` stands for every caution of the board."""
+        known = [caution.key for caution in picture.cautions_of(self)]
+        if key == "all":
+            for one in known[:-1]:
+                self._enter("acknowledge", caution=one)
+            key = known[-1]
+        if key not in known:
+            raise EntryError("caution", f"{key!r}", "one of " + ", ".join(known))
+        return self._enter("acknowledge", caution=key)
+
+    def complain(self, text: str, state: str, condition: str = "full") -> JobView:
+        """What is wrong, in the customer's words and as one of ``triage.board.evidence.STATES``, and under
+        which load."""
+        return self._enter("complaint", state=state, condition=condition, typed=text)
+
+    def see(self, sign: str, ref: str = "") -> JobView:
+        """Something seen, heard, smelt or felt, at a part or on the whole adapter."""
+        return self._enter("sign", sign=sign, ref=self._ref(ref) if ref else "")
+
+    def look(self, item: str, look: str) -> JobView:
+        """What one look of the inspection said, one of ``triage.safety.gate.LOOKS``."""
+        return self._enter("look", item=item, look=look)
+
+    def read(self, function: str, plus: str, minus: str, condition: str, text: str, instrument: str = "") -> JobView:
+        """A reading as typed: ``4k7``, ``0.62``, ``OL``. Raises EntryError or QuantityError naming what is
+        wrong."""
+        probe = self._probe(function, plus, minus, condition)
+        value = parse_reading(text, probe.unit)
+        more = {"instrument": instrument} if instrument else {}
+        return self._enter("reading", **probe._asdict(), value=value, unit=probe.unit, typed=text, **more)
+
+    def skip(self, function: str, plus: str, minus: str, condition: str, reason: str = "") -> JobView:
+        """A reading that cannot or shall not be taken."""
+        return self._enter("skip", **self._probe(function, plus, minus, condition)._asdict(), reason=reason)
+
+    def power(self, on: bool) -> JobView:
+        """The adapter was powered up through the current limit, or unplugged."""
+        return self._enter("power", on=on)
+
+    def undo(self) -> JobView:
+        """Take the last standing entry back. Raises EntryError when there is none."""
+        number = last_standing(self.job.entries)
+        if number is None:
+            raise EntryError("undo", "there is no entry to take back")
+        return self._enter("undo", entry=number)
+
+    def suspect(self, ref: str) -> JobView:
+        """The technician's own hunch."""
+        return self._enter("hunch", ref=self._ref(ref))
+
+    def note(self, text: str) -> JobView:
+        """A remark for the next reader."""
+        return self._enter("note", note=text)
+
+    def stresses(self) -> tuple[StressView, ...]:
+        """Stresses at their worst conditions, with the parts fitted so far."""
+        return self._stress_views(self.board_now())
+
+    def stresses_before(self) -> tuple[StressView, ...]:
+        """Stresses of the board as it came onto the mat."""
+        return self.answers.stresses if self.answers else self._stress_views(self.board)
+
+    def board_now(self) -> Board:
+        """The board with the parts fitted so far."""
+        board = self.board
+        for ref, type in replay(self.job.entries).fitted:
+            board = self.workings.fitted(board, ref, type)
+        return board
+
+    def _stress_views(self, board: Board) -> tuple[StressView, ...]:
+        return tuple(stress_view(one, board) for one in self.workings.stresses(board))
+
+    def demand(self, ref: str) -> DemandView:
+        """What the position of a part asks of a replacement. Raises EntryError for an unknown part."""
+        return self.workings.demand(self.board, self._ref(ref))
+
+    def candidates(self, ref: str) -> tuple[CandidateView, ...]:
+        """Catalog parts for a position, best first."""
+        return self.workings.candidates(self.board, self._ref(ref))
+
+    def ask(self, ref: str, type: str) -> CandidateView:
+        """One catalog part held against a position, with what it fails."""
+        return self.workings.ask(self.board, self._ref(ref), type)
+
+    def matches(self, marking: str) -> tuple[MatchView, ...]:
+        """Catalog parts that a half-read marking may mean."""
+        return self.workings.matches(marking)
+
+    def what_if(self, ref: str, type: str) -> tuple[StressView, ...]:
+        """The stresses with this part in this position, nothing recorded."""
+        return self._stress_views(self.workings.fitted(self.board_now(), self._ref(ref), type))
+
+    def fit(self, ref: str, type: str) -> JobView:
+        """A part was fitted. Raises EntryError when a hard rule forbids it in that position."""
+        ref = self._ref(ref)
+        asked = self.workings.ask(self.board, ref, type)
+        if not asked.accepted:
+            raise EntryError(f"{type} at {ref}", "; ".join(asked.refusals), advice="choose one of the candidates")
+        self.workings.fitted(self.board_now(), ref, asked.type)
+        return self._enter("fitted", ref=ref, type=asked.type)
+
+    def repaired(self, result: str) -> JobView:
+        """What the repair led to: ``works``, ``still faulty`` or ``given up``."""
+        if not replay(self.job.entries).fitted and result == "still faulty":
+            raise EntryError("repaired", "no part has been fitted", advice="record what was fitted first")
+        return self._enter("repaired", result=result)
+
+    def retest(self, check: str, result: str, text: str = "") -> JobView:
+        """A line of the retest came out as ``pass``, ``fail`` or ``too close to call``; text: what was
+        read."""
+        known = [need.key for need in self._needs]
+        if known and check not in known:
+            raise EntryError("retest", f"{check!r}", "one of " + ", ".join(known))
+        return self._enter("retest", check=check, result=result, typed=text)
+
+    def close(self, verdict: str) -> JobView:
+        """Close the job: ``repaired``, or whatever else became of the adapter (``replaced``, ``scrapped``
+        ...)."""
+        return self._enter("closed", verdict=verdict)
+
+    def returned(self, reason: str) -> JobView:
+        """The adapter came back after the repair; the job is open again."""
+        return self._enter("returned", reason=reason)
+
+    def report(self, format: str = "text") -> str:
+        """The record of the job as ``text``, ``markdown`` or ``html``."""
+        return render(f"{self.board.title}: repair record", report_sections(self), format)
+
+    def _enter(self, kind: str, **said: Any) -> JobView:
+        """Ask the gate, put the entry on the disk, show what it led to."""
+        if self.read_only:
+            raise JobError(str(self.path), self.read_only, advice="nothing can be entered in this session")
+        entry = make_entry(kind, _stamp(self._clock), **said)
+        allow(self._rules, self._facts_now(), kind, said)
+        self.job.append(entry)
+        if self._lock is not None:
+            self._lock.touch()
+        return self.view(entry_text(entry))
+
+    def _facts_now(self) -> Any:
+        """The facts with the shorts that the belief rules out, where it has been computed."""
+        return self.facts(picture.fault_chances(self)) if self.answers else self.facts()
+
+    def _ref(self, ref: str) -> str:
+        """The ref as the board spells it."""
+        for part in self.board.parts:
+            if part.ref.lower() == ref.strip().lower():
+                return part.ref
+        refs = ", ".join(part.ref for part in self.board.parts)
+        raise EntryError("part", f"{ref[:40]!r}", f"one of {refs}")
+
+    def _probe(self, function: str, plus: str, minus: str, condition: str) -> Probe:
+        if function not in UNITS:
+            raise EntryError("function", f"{function[:40]!r}", "one of " + ", ".join(COLD_FUNCTIONS + LIVE_FUNCTIONS))
+        if condition not in CONDITIONS:
+            raise EntryError("condition", f"{condition[:40]!r}", "one of " + ", ".join(CONDITIONS))
+        probe = Probe(function, self._node(plus), self._node(minus), condition)
+        if function in COLD_FUNCTIONS and probe.live:
+            raise EntryError(str(probe), f"{function} is read on the unpowered board only", "the condition cold")
+        if function in LIVE_FUNCTIONS and not probe.live and not self._rules.is_bulk(probe):
+            raise EntryError(
+                str(probe),
+                "nothing drives that on the unpowered board",
+                "noload, half or full",
+                "only the bulk capacitor is read in volts while cold",
+            )
+        if probe.plus == probe.minus:
+            raise EntryError(str(probe), "both leads on one node", "two different nodes")
+        return probe
+
+    def _node(self, node: str) -> str:
+        nodes = [name for side in self.board.sides.values() for name in side]
+        for name in nodes:
+            if name.lower() == node.strip().lower():
+                return name
+        raise EntryError("node", f"{node[:40]!r}", "one of " + ", ".join(nodes))
+
+
+def _stamp(clock: Clock) -> str:
+    return clock().astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%SZ")
+
+
+def _resolved(path: Path) -> Path:
+    """The real file behind a link, so that it is the file that is replaced and locked."""
+    try:
+        return Path(path).expanduser().resolve()
+    except (OSError, ValueError, RuntimeError):
+        raise JobError("job name", "leads to no file", advice="type it again") from None

@@ -1,0 +1,66 @@
+"""What a job needs from the rooms that compute, in one narrow list.
+
+``Workings`` says what is asked; ``triage.job.wiring`` joins the real rooms to it, tests bring a stand-in.
+Everything here is a pure function of the board, so that a job gives the same answers wherever it is opened.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Protocol
+
+from triage.board.fault import Fault
+from triage.board.part import Board
+from triage.board.stress import Stress
+from triage.diagnosis.engine import Diagnosis
+from triage.job.views import CandidateView, DemandView, MatchView
+
+
+@dataclass(frozen=True, slots=True)
+class RetestNeed:
+    """One line of the retest as the safety room asks for it."""
+
+    key: str
+    text: str
+    limit: str
+    """What must hold, with its unit."""
+    source: str
+    live: bool = False
+    """True for a line that needs the adapter powered."""
+    before_power: bool = False
+    """True for a line that must pass before a repaired adapter is powered."""
+    required: bool = True
+    """True for a line without which the job cannot be closed as repaired."""
+
+
+class Workings(Protocol):
+    """The computing rooms as a job sees them."""
+
+    def diagnosis(self, board: Board, factors: Mapping[Fault, float]) -> Diagnosis:
+        """Expected readings, priors and costs of a board; slow at first, kept afterwards.
+
+        factors: what the bench's own closed jobs say on each fault; empty without any.
+        """
+
+    def stresses(self, board: Board) -> tuple[Stress, ...]:
+        """Every stress of every part at its worst condition."""
+
+    def demand(self, board: Board, ref: str) -> DemandView:
+        """What the position of a part asks of a replacement."""
+
+    def candidates(self, board: Board, ref: str) -> tuple[CandidateView, ...]:
+        """Catalog parts that meet the demand, best first."""
+
+    def ask(self, board: Board, ref: str, type: str) -> CandidateView:
+        """One catalog part held against the demand, with every rule it fails."""
+
+    def matches(self, marking: str) -> tuple[MatchView, ...]:
+        """Catalog parts that a half-read marking may mean, best first."""
+
+    def fitted(self, board: Board, ref: str, type: str) -> Board:
+        """The board with this part in this position."""
+
+    def looks(self, board: Board) -> tuple[tuple[str, str], ...]:
+        """(key, text) of each thing to look at before the cold readings."""
+
+    def retest(self, board: Board) -> tuple[RetestNeed, ...]:
+        """What must hold after the repair."""

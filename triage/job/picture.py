@@ -1,0 +1,144 @@
+"""Puts together what is shown of an open job: stage, suspects, next reading, verdict and what the gates wait
+for."""
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from triage.board.fault import Fault
+from triage.board.probe import Probe
+from triage.diagnosis.after_repair import Fitted
+from triage.diagnosis.engine import Diagnosis, Job
+from triage.job import shown
+from triage.job.display import plain
+from triage.job.entries import Replay, replay
+from triage.job.gates import bulk_open, live_open, open_check, waits_for
+from triage.job.views import CautionView, JobView, StressView, SuggestionView, SuspectView, VerdictView
+from triage.safety.cautions import cautions
+from triage.safety.gate import GateFacts, safe_to_touch, stage
+
+if TYPE_CHECKING:
+    from triage.job.bench import Bench
+
+BULK_MINUTES = 1.0
+"""Time to read the bulk voltage before the costs are known [min]; common practice, no source."""
+
+
+@dataclass(frozen=True, slots=True)
+class Answers:
+    """What was computed once for a job's board."""
+
+    diagnosis: Diagnosis
+    stresses: tuple[StressView, ...]
+    """Of the board as it came onto the mat."""
+
+
+def asked(state: Replay) -> Job:
+    """The log as the diagnosis takes it."""
+    entries = tuple(Fitted(told) if isinstance(told, frozenset) else told for told in state.told)
+    return Job(entries, frozenset(state.hunches), frozenset(state.skips))
+
+
+def fault_chances(bench: "Bench") -> dict[Fault, float]:
+    """Present chance of each fault, alone or along with others [-]."""
+    assert bench.answers is not None
+    diagnosis = bench.answers.diagnosis
+    belief = diagnosis.belief(asked(replay(bench.job.entries)))
+    chances: dict[Fault, float] = {}
+    for hypothesis, chance in zip(diagnosis.expectations.hypotheses, belief, strict=True):
+        for fault in hypothesis.faults:
+            chances[fault] = chances.get(fault, 0.0) + float(chance)
+    return chances
+
+
+def view(bench: "Bench", message: str) -> JobView:
+    """All a screen shows of the job now."""
+    entries = bench.job.entries
+    state = replay(entries)
+    suspects: tuple[SuspectView, ...] = ()
+    verdict = VerdictView("open")
+    if bench.answers is None:
+        facts = bench.facts()
+        suggestion = _first_of_all(bench, facts, state)
+    else:
+        diagnosis, job = bench.answers.diagnosis, asked(state)
+        found = diagnosis.verdict(job)
+        facts = bench.facts(fault_chances(bench), found.status != "open")
+        stresses = bench.answers.stresses
+        suspects = tuple(shown.suspect_view(one, bench.board, stresses) for one in diagnosis.suspects(job))
+        verdict = shown.verdict_view(found, bench.board, stresses, diagnosis.evidence(job))
+        suggestion = None
+        if found.status == "open" and not facts.closed and not facts.repaired:
+            suggestion = _next(bench, facts, state, job)
+    return JobView(
+        id=plain(bench.job.id),
+        title=plain(bench.board.title),
+        stage=stage(facts),
+        safe_to_touch=plain(safe_to_touch(facts)),
+        suspects=suspects,
+        suggestion=suggestion,
+        verdict=verdict,
+        entries=tuple(shown.entry_view(n, one, n in state.undone) for n, one in enumerate(entries, 1)),
+        message=plain(message or _standing_message(bench, facts, suggestion)),
+        computing=bench.answers is None,
+        cautions=cautions_of(bench, facts),
+        drawing=plain(bench.board.drawing, 8000, lines=True),
+        read_only=plain(bench.read_only),
+        waits_for=tuple(plain(one) for one in waits_for(facts)),
+        looks=_looks(bench, facts),
+    )
+
+
+def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[CautionView, ...]:
+    """The cautions of the board, and which are acknowledged today."""
+    known = (facts or bench.facts()).acknowledged
+    return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known) for one in cautions(bench.board))
+
+
+def _looks(bench: "Bench", facts: GateFacts) -> tuple[tuple[str, str, str], ...]:
+    seen = dict(facts.looks)
+    return tuple((key, plain(text), seen.get(key, "")) for key, text in bench.workings.looks(bench.board))
+
+
+def _first_of_all(bench: "Bench", facts: GateFacts, state: Replay) -> SuggestionView | None:
+    """The bulk reading, as long as it is due and was not skipped."""
+    probe, store = bench.rules.bulk_probe, bench.rules.bulk
+    if store is None or probe is None or probe in state.skips or not bulk_open(bench.rules, facts):
+        return None
+    minutes = BULK_MINUTES
+    if bench.answers is not None:
+        minutes = bench.answers.diagnosis.costs.reading["volts_dc"]
+    return shown.bulk_suggestion(store, minutes) if facts.unplugged and not facts.closed else None
+
+
+def _next(bench: "Bench", facts: GateFacts, state: Replay, job: Job) -> SuggestionView | None:
+    """The bulk reading first; then the diagnosis; then the shorts that stand before power."""
+    assert bench.answers is not None
+    first = _first_of_all(bench, facts, state)
+    if first is not None:
+        return first
+    diagnosis = bench.answers.diagnosis
+    live = live_open(facts)
+
+    def gate(probe: Probe) -> bool:
+        return live if probe.live else facts.unplugged
+
+    suggestion = diagnosis.suggest(job, gate)
+    if suggestion is not None:
+        return shown.suggestion_view(suggestion)
+    check = open_check(bench.rules, facts)
+    if live or check is None:
+        return None
+    return shown.check_suggestion(check, diagnosis.costs.minutes(check.probe, ()))
+
+
+def _standing_message(bench: "Bench", facts: GateFacts, suggestion: SuggestionView | None) -> str:
+    """What keeps the job from going on, or what is to be known on opening it."""
+    if bench.job.conflicts:
+        names = ", ".join(path.name for path in bench.job.conflicts)
+        return f"a sync program left other versions of this job: {names}; compare them before going on"
+    if bench.read_only:
+        return f"read-only: {bench.read_only}"
+    if bench.answers is not None and suggestion is None and not facts.repaired and not facts.found:
+        missing = waits_for(facts)
+        return f"live readings wait: first {missing[0]}" if missing else ""
+    return ""

@@ -1,0 +1,61 @@
+"""Collects the content of a job's report from the open job."""
+
+from typing import TYPE_CHECKING
+
+from triage.job.entries import replay
+from triage.job.picture import cautions_of, view
+from triage.job.render import Section
+from triage.job.report import ReportContent, RetestLine, sections
+from triage.quantities import engineering
+
+if TYPE_CHECKING:
+    from triage.job.bench import Bench
+
+RESULTS = {"pass": "passed", "fail": "failed", "too close to call": "too close to call"}
+
+
+def report_sections(bench: "Bench") -> tuple[Section, ...]:
+    """The sections of the report on an open job; computes what is missing for it."""
+    if bench.answers is None:
+        bench.prepare()
+    shown = view(bench, "")
+    state = replay(bench.job.entries)
+    head = bench.job.document["job"]
+    retest, missing = _retest(bench)
+    return sections(
+        ReportContent(
+            id=bench.job.id,
+            title=bench.board.title,
+            opened=str(head.get("opened", "")),
+            label=_label(bench),
+            entries=bench.job.entries,
+            verdict=shown.verdict,
+            before=bench.stresses_before(),
+            after=bench.stresses() if state.fitted else (),
+            retest=retest,
+            not_done=(*missing, *(f"not looked at: {text}" for _, text, look in shown.looks if not look)),
+            cautions=cautions_of(bench),
+        )
+    )
+
+
+def _label(bench: "Bench") -> tuple[tuple[str, str], ...]:
+    board, label = bench.board, bench.board.label
+    year = str(label.marked_year) if label.marked_year else "not marked"
+    return (
+        ("adapter", board.title),
+        ("profile", str(bench.job.document["job"].get("profile", ""))),
+        ("input", label.input),
+        ("output", f"{engineering(label.output_voltage, 'V')}, {engineering(label.output_current, 'A')}"),
+        ("protection class", label.insulation_class),
+        ("year", year),
+    )
+
+
+def _retest(bench: "Bench") -> tuple[tuple[RetestLine, ...], tuple[str, ...]]:
+    """(every line with its result, the lines not done)."""
+    done = dict(replay(bench.job.entries).retests)
+    lines = tuple(
+        RetestLine(need.text, need.limit, need.source, RESULTS.get(done.get(need.key, ""), "not done")) for need in bench.needs
+    )
+    return lines, tuple(f"retest: {need.text}" for need in bench.needs if need.key not in done)
