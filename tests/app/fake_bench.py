@@ -73,13 +73,11 @@ CAUTIONS = (
     ),
     (
         "bulk",
-        "C1 (4.7 uF, 400 V) can hold 325 V. Bleed it through 10 kohm 2 W for 1 s, "
-        "then read it below 60 V before touching.",
+        "C1 (4.7 uF, 400 V) can hold 325 V. Bleed it through 10 kohm 2 W for 1 s, then read it below 60 V before touching.",
     ),
     (
         "live",
-        "For live readings use an isolating transformer and a current-limited feed; "
-        "one hand, clip the black lead first.",
+        "For live readings use an isolating transformer and a current-limited feed; one hand, clip the black lead first.",
     ),
 )
 
@@ -111,8 +109,7 @@ _READINGS = (
         "rect",
         "cold",
         0.5,
-        "the fusible resistor opens with a shorted switch, so this splits the two leading suspects "
-        "from the rest",
+        "the fusible resistor opens with a shorted switch, so this splits the two leading suspects from the rest",
         (
             ("about 10 ohm", 5.0, 20.0, 0.44, "the input path is whole"),
             ("OL", 1e6, math.inf, 0.56, "RF1 is open; something took it"),
@@ -214,9 +211,7 @@ STRESSES = (
         "invented",
         "230 V, full load",
     ),
-    v.StressView(
-        "LED1", "power LED", "average_current", 0.003, "A", None, None, None, "rating unknown", "", "230 V"
-    ),
+    v.StressView("LED1", "power LED", "average_current", 0.003, "A", None, None, None, "rating unknown", "", "230 V"),
 )
 
 _TYPES = (
@@ -242,9 +237,7 @@ def _value(text: str, unit: str) -> float:
     try:
         return float(cleaned.rstrip("kMm")) * scale
     except ValueError:
-        raise QuantityError(
-            "reading", repr(text), f"a value in {unit}", "type for instance 4k7 or OL"
-        ) from None
+        raise QuantityError("reading", repr(text), f"a value in {unit}", "type for instance 4k7 or OL") from None
 
 
 @dataclass
@@ -276,9 +269,7 @@ class FakeBench:
         weights = [fault[2] for fault in _FAULTS]
         for (_, plus, minus, _), value in self.values.items():
             for index, fault in enumerate(_FAULTS):
-                low, high = _BANDS.get((plus, minus), {}).get(
-                    fault[0], _SOUND.get((plus, minus), (-math.inf, math.inf))
-                )
+                low, high = _BANDS.get((plus, minus), {}).get(fault[0], _SOUND.get((plus, minus), (-math.inf, math.inf)))
                 weights[index] *= 1.0 if low <= value <= high else 0.01
         total = sum(weights)
         return [weight / total for weight in weights]
@@ -295,8 +286,7 @@ class FakeBench:
     def _suspects(self) -> tuple[v.SuspectView, ...]:
         ranked = sorted(zip(self._belief(), _FAULTS, strict=True), key=lambda pair: -pair[0])
         return tuple(
-            v.SuspectView(ref, mode, share, along, role, stress)
-            for share, (ref, mode, _, along, role, stress) in ranked
+            v.SuspectView(ref, mode, share, along, role, stress) for share, (ref, mode, _, along, role, stress) in ranked
         )
 
     def _suggestion(self) -> v.SuggestionView | None:
@@ -385,21 +375,15 @@ class FakeBench:
             if node not in nodes:
                 raise EntryError("reading", f"no node {node!r}", "one of " + ", ".join(nodes))
         self.values[function, plus, minus, condition] = _value(text, UNITS[function])
-        return self._log(
-            f"{function} {plus} {minus} {condition}: {text}", ("read", (function, plus, minus, condition))
-        )
+        return self._log(f"{function} {plus} {minus} {condition}: {text}", ("read", (function, plus, minus, condition)))
 
     def skip(self, function: str, plus: str, minus: str, condition: str, reason: str) -> v.JobView:
         self.skipped.append((function, plus, minus, condition))
-        return self._log(
-            f"skipped {function} {plus} {minus}: {reason}", ("skip", (function, plus, minus, condition))
-        )
+        return self._log(f"skipped {function} {plus} {minus}: {reason}", ("skip", (function, plus, minus, condition)))
 
     def undo(self) -> v.JobView:
         standing = [
-            index
-            for index, entry in enumerate(self.said)
-            if not entry.undone and not entry.text.startswith("taken back")
+            index for index, entry in enumerate(self.said) if not entry.undone and not entry.text.startswith("taken back")
         ]
         if not standing:
             raise JobError("undo", "no entry stands", advice="nothing to take back")
@@ -459,11 +443,7 @@ class FakeBench:
     def ask(self, ref: str, type: str) -> v.CandidateView:
         for name, part_class, score, accepted, margins in _TYPES:
             if name.lower() == type.lower():
-                refusals = (
-                    ()
-                    if accepted
-                    else (f"{name}: collector-emitter 700 V is below the 910 V this place demands",)
-                )
+                refusals = () if accepted else (f"{name}: collector-emitter 700 V is below the 910 V this place demands",)
                 return v.CandidateView(
                     name,
                     part_class,
@@ -475,9 +455,7 @@ class FakeBench:
                     accepted,
                     refusals,
                 )
-        raise JobError(
-            "part", f"no type {type!r} in the catalog", "a type number", "type a few characters to search"
-        )
+        raise JobError("part", f"no type {type!r} in the catalog", "a type number", "type a few characters to search")
 
     def matches(self, marking: str) -> tuple[v.MatchView, ...]:
         wanted = marking.lower()
@@ -489,9 +467,7 @@ class FakeBench:
 
     def fit(self, ref: str, type: str) -> v.JobView:
         if self.ask(ref, type).refusals:
-            raise JobError(
-                f"{ref} {type}", "is not rated for this place", "an accepted candidate", "see its refusals"
-            )
+            raise JobError(f"{ref} {type}", "is not rated for this place", "an accepted candidate", "see its refusals")
         self.fitted[ref] = type
         return self._log(f"fitted {type} at {ref}")
 
@@ -510,8 +486,9 @@ class FakeBench:
 class FakeShelf:
     """A start page with one job and one profile on it."""
 
-    def __init__(self, folder: Path, prepare_seconds: float = 0.0) -> None:
+    def __init__(self, folder: Path, prepare_seconds: float = 0.0, at_bench: bool = False) -> None:
         self.folder = folder
+        self.at_bench = at_bench
         self.prepare_seconds = prepare_seconds
         self.bench: FakeBench | None = None
 
@@ -529,4 +506,9 @@ class FakeShelf:
 
     def _made(self, path: Path) -> OpenJob:
         self.bench = FakeBench(path, self.prepare_seconds)
+        if self.at_bench:
+            self.bench.prepare()
+            self.bench.complain("", "dead", "full")
+            for key, _ in CAUTIONS:
+                self.bench.acknowledge(key)
         return self.bench

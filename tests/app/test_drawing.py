@@ -21,9 +21,7 @@ def test_suspects_and_leads_carry_their_signs():
 
 
 def test_no_colour_is_needed_to_tell_marks_apart():
-    assert (
-        len({sign for word in ("Q1", "RF1", "bulk", "pgnd", "R2") for sign in [MARKS.around(word)[:2]]}) == 5
-    )
+    assert len({sign for word in ("Q1", "RF1", "bulk", "pgnd", "R2") for sign in [MARKS.around(word)[:2]]}) == 5
 
 
 def test_the_shape_of_the_drawing_stays():

@@ -31,9 +31,7 @@ def test_skips_carry_their_reason(text, reason):
     assert understand(text) == ("skip", reason, None)
 
 
-@pytest.mark.parametrize(
-    ("text", "kind"), [("u", "undo"), ("undo", "undo"), ("/", "menu"), ("+", "other"), ("  ", "nothing")]
-)
+@pytest.mark.parametrize(("text", "kind"), [("u", "undo"), ("undo", "undo"), ("/", "menu"), ("+", "other"), ("  ", "nothing")])
 def test_words_of_one_hand(text, kind):
     assert understand(text).kind == kind
 

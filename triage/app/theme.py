@@ -62,6 +62,8 @@ _OWN = dict.fromkeys(_DARK, "ansi_default") | {
     "near": "ansi_yellow",
     "good": "ansi_green",
 }
+_TEXTUAL_OWN = {"ansi-background": "ansi_black", "ansi-foreground": "ansi_white"}
+"""Names that Textual's own style sheets want of a theme with the terminal's colours."""
 
 
 def _theme(name: str, colours: dict[str, str], dark: bool, ansi: bool = False) -> Theme:
@@ -78,7 +80,7 @@ def _theme(name: str, colours: dict[str, str], dark: bool, ansi: bool = False) -
         accent=colours["key"],
         dark=dark,
         ansi=ansi,
-        variables={f"t-{key}": value for key, value in colours.items()},
+        variables={f"t-{key}": value for key, value in colours.items()} | (_TEXTUAL_OWN if ansi else {}),
     )
 
 

@@ -3,7 +3,7 @@
 from collections.abc import Sequence
 from typing import ClassVar
 
-from triage.app.entry_form import Asked, EntryForm
+from triage.app.screens.entry_form import Asked, EntryForm
 
 
 class HunchScreen(EntryForm):

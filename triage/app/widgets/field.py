@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 from typing import Any
 
+from textual import events
 from textual.widgets import Input
 
 
@@ -13,11 +14,14 @@ class Field(Input):
         super().__init__(value, placeholder, compact=True, select_on_focus=False, **names)
         self.cursor_blink = False
 
-    def check_consume_key(self, key: str, character: str | None) -> bool:
-        """Leave ``?`` to the help key while the field is empty (called by Textual)."""
-        if character == "?" and not self.value:
-            return False
-        return super().check_consume_key(key, character)
+    async def _on_key(self, event: events.Key) -> None:
+        """Leave ``?`` to the help page while the field is empty; within words it is a letter."""
+        if event.character == "?" and not self.value:
+            event.stop()
+            event.prevent_default()
+            await self.app.run_action("help")
+            return
+        await super()._on_key(event)
 
 
 class ChoiceField(Field):

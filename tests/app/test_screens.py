@@ -1,0 +1,357 @@
+"""Screens by what a technician does: each story is keys pressed and what the screen then says."""
+
+import asyncio
+from pathlib import Path
+
+import pytest
+from textual.pilot import Pilot
+
+from tests.app.screens import BEGIN, CAUTIONS, COMPLAIN, play, press, settle, text_of, type_in
+from triage.app.glyphs import ASCII
+from triage.app.keys import COMMANDS
+
+PLACES = ("f2", "f3", "f4", "f5", "f6", "f7", "f8")
+
+
+def field_of(pilot: Pilot[int]) -> str:
+    return str(pilot.app.screen.query_one("#field").value)  # type: ignore[attr-defined]
+
+
+def test_the_start_page_says_what_to_do_first(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        text = text_of(pilot.app)
+        assert "pull the plug" in text
+        assert "go on" in text and "Tide gauge supply" in text
+        assert "begin" in text and "Radio desk cube" in text
+
+    play(tmp_path, story)
+
+
+def test_a_new_job_asks_for_the_complaint_then_the_cautions_then_reads(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN)
+        assert "What is wrong with it?" in text_of(pilot.app)
+        await press(pilot, *COMPLAIN)
+        assert "cautions: 3 to acknowledge" in text_of(pilot.app)
+        await press(pilot, *CAUTIONS[:2])
+        assert "cautions: 1 to acknowledge" in text_of(pilot.app)
+        await press(pilot, "enter")
+        text = text_of(pilot.app)
+        assert "COLD READINGS" in text and "next  volts DC" in text
+
+    app = play(tmp_path, story)
+    assert app.shelf.bench.said[0].text == "complaint: dead at full"  # type: ignore[attr-defined]
+
+
+def test_no_reading_is_asked_for_while_a_caution_is_open(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN, *COMPLAIN, *CAUTIONS[:2], "f2")
+        assert "next  volts DC" not in text_of(pilot.app)
+
+    play(tmp_path, story)
+
+
+def test_readings_narrow_the_suspects_to_a_verdict(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "12 V")
+        assert "touch: yes" in text_of(pilot.app)
+        await type_in(pilot, "*")
+        await type_in(pilot, "0.8")
+        text = text_of(pilot.app)
+        assert "found  Q1 ce short + RF1 open" in text
+        assert "replace Q1 RF1" in text and "why: collector-emitter" in text
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_the_field_is_empty_again_after_an_accepted_reading(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "12")
+        assert field_of(pilot) == ""
+        assert pilot.app.focused is pilot.app.screen.query_one("#field")
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_a_refused_value_stays_in_the_field_and_the_reason_is_beside_it(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "1x2")
+        assert field_of(pilot) == "1x2"
+        assert "expected a value in V" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_skipping_goes_on_to_another_reading_and_undo_brings_it_back(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "12")
+        assert "+mains_l+" in text_of(pilot.app)
+        await type_in(pilot, "can't reach")
+        assert "+coll+" in text_of(pilot.app)
+        await press(pilot, "f9")
+        assert "+mains_l+" in text_of(pilot.app)
+        await type_in(pilot, "s")
+        await type_in(pilot, "u")
+        assert "+mains_l+" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_any_reading_can_be_entered_in_one_line_or_in_the_form(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "ohms coll pgnd 0.6")
+        assert "noted: ohms coll pgnd cold: 0.6" in text_of(pilot.app)
+        await type_in(pilot, "+")
+        assert "A reading of your own choice" in text_of(pilot.app)
+        for text in ("oh", "bulk", "base", "", "OL"):
+            await type_in(pilot, text) if text != "oh" else await press(pilot, "enter")
+        assert "bulk base cold: OL" in text_of(pilot.app)
+        assert "next" in text_of(pilot.app) or "found" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_an_unknown_node_is_refused_and_the_form_stays(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "ohms nowhere pgnd 5")
+        assert "no node 'nowhere'" in text_of(pilot.app)
+        assert field_of(pilot) == "ohms nowhere pgnd 5"
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_a_sign_is_entered_with_its_part(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press("f8")
+        await settle(pilot)
+        await type_in(pilot, "bul")
+        await type_in(pilot, "C4")
+        text = text_of(pilot.app)
+        assert "noted: seen: bulging C4" in text and "next" in text
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_stress_page_shows_bars_and_words(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, "f3")
+        text = text_of(pilot.app)
+        assert "!! Q1" in text and "over rating" in text and "253 V, no load" in text
+        await press(pilot, "down")
+        assert "R1 startup resistor" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_moves_page_shows_what_each_entry_did(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "12")
+        await type_in(pilot, "*")
+        await press(pilot, "f4")
+        text = text_of(pilot.app)
+        assert "Q1 ce short" in text and "last +" in text and "ohms mains_l rect cold: OL" in text
+
+    play(tmp_path, story, at_bench=True)
+
+
+async def found(pilot: Pilot[int]) -> None:
+    """Play from the bench to the verdict."""
+    for text in ("12", "*", "0.8"):
+        await type_in(pilot, text)
+
+
+def test_a_candidate_is_fitted_and_its_stresses_are_shown(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await found(pilot)
+        await press(pilot, "f5")
+        text = text_of(pilot.app)
+        assert "at least 910 V" in text and "MJE13005" in text and "MJE13003" not in text
+        await press(pilot, "enter", "down", "enter")
+        text = text_of(pilot.app)
+        assert "noted: fitted KSC5027 at Q1" in text
+        assert "104 % -> 66 %" in text
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_a_half_read_marking_finds_parts_while_typing_and_shows_why_one_is_refused(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await found(pilot)
+        await press(pilot, "f5", "tab")
+        for key in "13003":
+            await pilot.press(key)
+        await settle(pilot)
+        text = text_of(pilot.app)
+        assert "MJE13003" in text and "1N4007" not in text
+        assert "refused: MJE13003: collector-emitter 700 V is below" in text
+        await press(pilot, "enter", "enter")
+        assert "is not rated for this place" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_repair_and_close_lead_to_the_record(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await found(pilot)
+        await press(pilot, "f6", "enter")
+        assert "RETEST" in text_of(pilot.app)
+        await press(pilot, "end")
+        await press(pilot, "enter")
+        text = text_of(pilot.app)
+        assert "CLOSED" in text and "saved after every entry" in text and "complaint: dead at full" in text
+
+    app = play(tmp_path, story, at_bench=True)
+    assert app.shelf.bench.closed == "Q1 ce_short"  # type: ignore[attr-defined]
+
+
+@pytest.mark.parametrize("key", PLACES)
+def test_help_stands_behind_every_screen(tmp_path, key):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press(key)
+        await settle(pilot)
+        before = text_of(pilot.app)
+        await pilot.press("f1")
+        await settle(pilot)
+        assert text_of(pilot.app) != before and " help " in text_of(pilot.app).splitlines()[0]
+        await press(pilot, "escape")
+        assert text_of(pilot.app) == before
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_a_question_mark_asks_for_help_in_an_empty_field_and_is_a_letter_in_words(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press("question_mark")
+        await settle(pilot)
+        assert "In the reading field:" in text_of(pilot.app)
+        await press(pilot, "escape")
+        await pilot.press("4", "question_mark")
+        assert field_of(pilot) == "4?"
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_every_place_is_reached_from_every_place_by_the_same_key(tmp_path):
+    names = {
+        "f2": " bench ",
+        "f3": " stress ",
+        "f4": " moves ",
+        "f5": " parts ",
+        "f6": " retest ",
+        "f7": " record ",
+    }
+
+    async def story(pilot: Pilot[int]) -> None:
+        for start in names:
+            for key, name in names.items():
+                await press(pilot, start, key)
+                assert text_of(pilot.app).startswith(name)
+                assert len(pilot.app.screen_stack) == 3
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_the_menu_finds_commands_by_name(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "/")
+        assert "how hard each part is driven" in text_of(pilot.app)
+        await type_in(pilot, "rating and")
+        assert text_of(pilot.app).startswith(" stress ")
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_every_command_of_the_table_can_be_run(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        for command in COMMANDS:
+            if command.action not in ("quit", "suspend_process", "start"):
+                await pilot.app.run_action(command.action)
+                await settle(pilot)
+                await pilot.app.run_action("go('bench')")
+                await settle(pilot)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_going_back_to_the_start_page_puts_the_job_away(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.app.run_action("start")
+        await settle(pilot)
+        assert "go on" in text_of(pilot.app)
+        await press(pilot, "f3")
+        assert "go on" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_the_screen_answers_while_the_bench_computes(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press("down", "enter")
+        for _ in range(100):
+            await asyncio.sleep(0.01)
+            if "complaint" in text_of(pilot.app):
+                break
+        await pilot.press("f2")
+        await pilot.pause()
+        text = text_of(pilot.app)
+        assert "computing..." in text
+        await pilot.press("1", "2")
+        assert field_of(pilot) == "12"
+        await settle(pilot)
+        assert "computing..." not in text_of(pilot.app)
+
+    play(tmp_path, story, prepare_seconds=2.0)
+
+
+@pytest.mark.parametrize("size", [(80, 24), (100, 30), (120, 40), (160, 50)])
+def test_a_resize_keeps_what_was_typed_and_the_keys_in_sight(tmp_path, size):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press("4", "7")
+        await pilot.resize_terminal(*size)
+        await settle(pilot)
+        text = text_of(pilot.app)
+        assert field_of(pilot) == "47"
+        assert len(text.splitlines()) == size[1] and "F2 bench" in text.splitlines()[-1]
+        assert "next  volts DC" in text and "*Q1" in text
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_in_ascii_nothing_else_reaches_the_screen(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        assert text_of(pilot.app).isascii()
+        for key in PLACES:
+            await pilot.press(key)
+            await settle(pilot)
+            assert text_of(pilot.app).isascii()
+
+    play(tmp_path, story, at_bench=True, glyphs=ASCII, own_colours=True)
+
+
+def test_text_from_files_is_never_markup_nor_an_escape(tmp_path: Path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN, "down", "enter", "enter")
+        await pilot.press("left_square_bracket", "r", "e", "d", "right_square_bracket", "enter")
+        await settle(pilot)
+        bench = pilot.app.desk.bench  # type: ignore[attr-defined]
+        bench._log("\x1b[31m[bold]x[/bold]\x1b]0;owned\x07")
+        pilot.app.desk.enter(lambda one: one.see("smell", ""))  # type: ignore[attr-defined]
+        await settle(pilot)
+        await press(pilot, "f7")
+        text = text_of(pilot.app)
+        assert "[red]" in text and "[bold]x[/bold]" in text and "\x1b" not in text and "\x07" not in text
+
+    play(tmp_path, story)
+
+
+def test_a_click_on_the_key_line_does_what_the_key_does(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        at = text_of(pilot.app).splitlines()[-1].index("F3")
+        await pilot.click("#keys", offset=(at, 0))
+        await settle(pilot)
+        assert text_of(pilot.app).startswith(" stress ")
+        await pilot.click("#list", offset=(5, 3))
+        await settle(pilot)
+        assert "C1 bulk capacitor" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
