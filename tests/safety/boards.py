@@ -106,9 +106,7 @@ def brick(discharge_resistance: float | None = 1e6, year: int | None = 2019) -> 
         two("CY1", "capacitor", "Y capacitor", "pgnd", "sgnd", capacitance=2.2e-9),
     ]
     if discharge_resistance is not None:
-        parts.append(
-            two("R9", "resistor", "X discharge resistor", "line", "mains_n", resistance=discharge_resistance)
-        )
+        parts.append(two("R9", "resistor", "X discharge resistor", "line", "mains_n", resistance=discharge_resistance))
     return Board(
         "brick",
         "19 V 3.42 A laptop supply",

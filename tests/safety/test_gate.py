@@ -78,9 +78,7 @@ class History:
     def after(self, event: GateEvent) -> "History":
         match event.kind:
             case "acknowledge":
-                return replace(
-                    self, **{"cold_acknowledged" if event.key == "c" else "live_acknowledged": True}
-                )
+                return replace(self, **{"cold_acknowledged" if event.key == "c" else "live_acknowledged": True})
             case "look":
                 return replace(self, look=event.value)
             case "bulk voltage":
@@ -94,15 +92,11 @@ class History:
             case "repair":
                 return replace(self, repaired=True, short="open", lines=())
             case "retest cold" | "retest live":
-                return replace(
-                    self, lines=tuple(sorted({**dict(self.lines), event.key: event.value}.items()))
-                )
+                return replace(self, lines=tuple(sorted({**dict(self.lines), event.key: event.value}.items())))
             case "close" | "close as repaired":
                 return replace(self, closed=True)
             case "another day":
-                return replace(
-                    self, cold_acknowledged=False, live_acknowledged=False, powered=False, below_60=False
-                )
+                return replace(self, cold_acknowledged=False, live_acknowledged=False, powered=False, below_60=False)
         return self
 
     def may_be_powered(self) -> bool:
@@ -172,9 +166,7 @@ def walked() -> list[tuple[GateFacts, History, GateEvent, bool]]:
 
 def test_no_path_passes_a_shut_gate(walked) -> None:
     """On every path the machine takes exactly the events that the independent record permits."""
-    wrong = [
-        (history, event, taken) for _, history, event, taken in walked if taken != history.permits(event)
-    ]
+    wrong = [(history, event, taken) for _, history, event, taken in walked if taken != history.permits(event)]
     assert wrong == []
     print(f"{len(walked) // len(ALPHABET)} states, {len(walked)} events tried")
 
@@ -216,10 +208,7 @@ def test_from_every_open_state_the_job_can_be_closed_unrepaired(walked) -> None:
 )
 def test_each_requirement_is_needed(left_out, monkeypatch) -> None:
     """The walk can fail: without any one requirement some path passes a shut gate."""
-    weaker = {
-        action: tuple(need for need in needs if need is not left_out)
-        for action, needs in REQUIREMENTS.items()
-    }
+    weaker = {action: tuple(need for need in needs if need is not left_out) for action, needs in REQUIREMENTS.items()}
     monkeypatch.setattr(gate, "REQUIREMENTS", weaker)
     assert any(taken and not history.permits(event) for _, history, event, taken in walk(FRESH))
 

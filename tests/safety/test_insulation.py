@@ -38,9 +38,7 @@ def test_altitude_stretches_the_clearance_only_above_2000_m() -> None:
 
 
 def test_outside_the_table_is_said_with_its_range() -> None:
-    with pytest.raises(
-        insulation.InsulationRangeError, match="1200 is outside the printed table; expected 10 to 1000"
-    ):
+    with pytest.raises(insulation.InsulationRangeError, match="1200 is outside the printed table; expected 10 to 1000"):
         insulation.creepage(1200.0)
 
 

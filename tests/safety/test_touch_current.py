@@ -37,8 +37,4 @@ def test_newer_adapters_and_earthed_ones_have_other_limits() -> None:
 
 def test_network_reads_a_little_less_than_the_short_circuit_current() -> None:
     for capacitance in (1e-10, 2.2e-9, 1e-8):
-        assert (
-            0.97
-            < network_reading(capacitance, 230.0, 50.0) / capacitor_current(capacitance, 230.0, 50.0)
-            < 1.0
-        )
+        assert 0.97 < network_reading(capacitance, 230.0, 50.0) / capacitor_current(capacitance, 230.0, 50.0) < 1.0

@@ -115,9 +115,7 @@ def bulk_store(board: Board) -> Store | None:
 
 
 def _on_mains(part: Part) -> bool:
-    return (
-        any(role in part.role for role in (*_BULK_ROLES, *_ACROSS_LINE_ROLES)) and "capacitance" in part.value
-    )
+    return any(role in part.role for role in (*_BULK_ROLES, *_ACROSS_LINE_ROLES)) and "capacitance" in part.value
 
 
 def _store(board: Board, part: Part) -> Store:
@@ -208,10 +206,7 @@ class Bleeder:
 
 def shop_resistors() -> tuple[ResistorKind, ...]:
     """The resistor kinds of an ordinary bench, from the shipped table."""
-    return tuple(
-        ResistorKind(r["kind"], r["power_W"], r["voltage_V"], r["overload"])
-        for r in table("discharge")["resistor"]
-    )
+    return tuple(ResistorKind(r["kind"], r["power_W"], r["voltage_V"], r["overload"]) for r in table("discharge")["resistor"])
 
 
 def propose_bleeder(store: Store, kinds: Iterable[ResistorKind] | None = None) -> Bleeder | None:
@@ -221,11 +216,7 @@ def propose_bleeder(store: Store, kinds: Iterable[ResistorKind] | None = None) -
     Fewest in series first, then the kind with the smallest rated power that will do. Rules: first current at
     most 0.2 A, below the touch-safe voltage within 2 s, voltage and first power inside the kind's limits.
     """
-    found = [
-        b
-        for kind in (shop_resistors() if kinds is None else kinds)
-        if (b := _bleeder(store, kind)) is not None
-    ]
+    found = [b for kind in (shop_resistors() if kinds is None else kinds) if (b := _bleeder(store, kind)) is not None]
     return min(found, key=lambda b: (b.count, b.resistor.power, b.peak_power), default=None)
 
 

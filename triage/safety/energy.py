@@ -70,9 +70,7 @@ def limit_in_force(supply: str, power: float, day: date, region: str = "EU") -> 
     return _limit(max(dated, key=lambda pair: pair[0])[1], supply, power)
 
 
-def board_limits(
-    board: Board, today: date, region: str = "EU"
-) -> tuple[EnergyLimit | None, EnergyLimit | None]:
+def board_limits(board: Board, today: date, region: str = "EU") -> tuple[EnergyLimit | None, EnergyLimit | None]:
     """What held when a board's adapter was marked (None: unknown year, or nothing held), and what holds
     today."""
     label = board.label

@@ -146,9 +146,7 @@ def _discharged(facts: GateFacts) -> tuple[str, ...]:
     if facts.bulk_voltage is None:
         return ("unplug and read the bulk voltage",)
     if not facts.bulk_voltage < SAFE_VOLTAGE:
-        return (
-            f"discharge the bulk capacitor from {facts.bulk_voltage:.0f} V to below {SAFE_VOLTAGE:.0f} V",
-        )
+        return (f"discharge the bulk capacitor from {facts.bulk_voltage:.0f} V to below {SAFE_VOLTAGE:.0f} V",)
     return ()
 
 

@@ -130,20 +130,14 @@ def load(path: Path = SHIPPED) -> Instruments:
     if not isinstance(records, list) or not records:
         raise InstrumentError(path.name, "holds no [[instrument]]", "at least one")
     for number, record in enumerate(records, start=1):
-        name = (
-            str(record.get("name", f"instrument {number}"))
-            if isinstance(record, dict)
-            else f"instrument {number}"
-        )
+        name = str(record.get("name", f"instrument {number}")) if isinstance(record, dict) else f"instrument {number}"
         rows = record.get("function", []) if isinstance(record, dict) else []
         for row in rows if isinstance(rows, list) else []:
             function = _function(name, row, faults)
             if function is not None:
                 functions.append(function)
     if faults:
-        raise InstrumentError(
-            path.name, "; ".join(faults), advice="see the head of the shipped instruments.toml"
-        )
+        raise InstrumentError(path.name, "; ".join(faults), advice="see the head of the shipped instruments.toml")
     return Instruments(tuple(functions))
 
 
@@ -157,9 +151,7 @@ def _function(name: str, row: Mapping[str, Any], faults: list[str]) -> Function 
     scales = _numbers(row, "ranges", where, faults)
     if scales != sorted(set(scales)) or any(scale <= 0.0 for scale in scales):
         faults.append(f"{where}: ranges must be above 0 and rise")
-    share, counts, size = (
-        _column(row, column, len(scales), where, faults) for column in ("percent", "counts", "count_size")
-    )
+    share, counts, size = (_column(row, column, len(scales), where, faults) for column in ("percent", "counts", "count_size"))
     current = _column(row, "test_current_A", len(scales), where, faults) if "test_current_A" in row else []
     for column in ("offset", "test_voltage_V"):
         if not _is_number(row.get(column, 0.0)):
@@ -167,8 +159,7 @@ def _function(name: str, row: Mapping[str, Any], faults: list[str]) -> Function 
     if len(faults) > before:
         return None
     ranges = tuple(
-        Range(scale, share[i] / 100.0, counts[i], size[i], current[i] if current else None)
-        for i, scale in enumerate(scales)
+        Range(scale, share[i] / 100.0, counts[i], size[i], current[i] if current else None) for i, scale in enumerate(scales)
     )
     source = Source(
         str(row.get("document", "instruments file")),

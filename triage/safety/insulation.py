@@ -40,9 +40,7 @@ def rated_impulse(line_to_neutral: float, category: str = "II") -> float:
     raise InsulationRangeError("mains voltage", f"{line_to_neutral:g} V", "at most 1000 V")
 
 
-def clearance(
-    impulse: float, pollution_degree: int = 2, grade: str = "basic", altitude: float = 0.0
-) -> float:
+def clearance(impulse: float, pollution_degree: int = 2, grade: str = "basic", altitude: float = 0.0) -> float:
     """Least clearance [m] for an impulse voltage [V peak], pollution degree 1 to 3, grade and altitude [m].
 
     Reinforced: the next preferred impulse voltage, or 160 % of one that is not preferred. Linear between
@@ -52,29 +50,19 @@ def clearance(
     record = table("insulation")["clearance"]
     if grade == "reinforced":
         preferred = record["preferred_impulse_V"]
-        impulse = (
-            next((v for v in preferred if v > impulse), math.inf) if impulse in preferred else 1.6 * impulse
-        )
+        impulse = next((v for v in preferred if v > impulse), math.inf) if impulse in preferred else 1.6 * impulse
     column = record[f"PD{pollution_degree}_mm"]
     impulse = max(impulse, record["impulse_V"][0])
-    return (
-        _interpolated(impulse, record["impulse_V"], column, "impulse voltage")
-        * 1e-3
-        * altitude_factor(altitude)
-    )
+    return _interpolated(impulse, record["impulse_V"], column, "impulse voltage") * 1e-3 * altitude_factor(altitude)
 
 
 def altitude_factor(altitude: float) -> float:
     """Factor on the clearance for an altitude [m], 1 up to 2000 m. Source: IEC 60664-1:2007, table A.2."""
     record = table("insulation")["altitude"]
-    return _interpolated(
-        max(altitude, record["altitude_m"][0]), record["altitude_m"], record["factor"], "altitude"
-    )
+    return _interpolated(max(altitude, record["altitude_m"][0]), record["altitude_m"], record["factor"], "altitude")
 
 
-def creepage(
-    working_voltage: float, group: str = "III", pollution_degree: int = 2, grade: str = "basic"
-) -> float:
+def creepage(working_voltage: float, group: str = "III", pollution_degree: int = 2, grade: str = "basic") -> float:
     """Least creepage distance [m] for a working voltage [V rms], material group (GROUPS) and pollution
     degree 2 or 3.
 

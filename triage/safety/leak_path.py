@@ -74,9 +74,7 @@ def junctions(parts: Iterable[Part]) -> tuple[tuple[str, str], ...]:
     )
 
 
-def resistance_seen(
-    branches: Iterable[Branch], diodes: Iterable[tuple[str, str]], plus: str, minus: str
-) -> float:
+def resistance_seen(branches: Iterable[Branch], diodes: Iterable[tuple[str, str]], plus: str, minus: str) -> float:
     """Resistance between two nodes with ``plus`` driven positive.
 
     Parameters: branches (node, node, conductance [S]), diodes (anode node, cathode node), plus and minus
@@ -84,9 +82,7 @@ def resistance_seen(
     opened until none changes.
     """
     branches, diodes = list(branches), list(diodes)
-    names = sorted(
-        {plus, minus, *(n for a, b, _ in branches for n in (a, b)), *(n for d in diodes for n in d)}
-    )
+    names = sorted({plus, minus, *(n for a, b, _ in branches for n in (a, b)), *(n for d in diodes for n in d)})
     place = {name: i for i, name in enumerate(names)}
     closed: frozenset[int] = frozenset()
     seen: set[frozenset[int]] = set()
@@ -97,9 +93,7 @@ def resistance_seen(
         # A closed junction stays closed while it carries current forward, an open one closes above a
         # microvolt.
         closed = frozenset(
-            i
-            for i, (a, k) in enumerate(diodes)
-            if voltage[place[a]] - voltage[place[k]] > (1e-15 if i in closed else 1e-6)
+            i for i, (a, k) in enumerate(diodes) if voltage[place[a]] - voltage[place[k]] > (1e-15 if i in closed else 1e-6)
         )
     return 1.0 / conductance if conductance > 2 * _FLOOR * len(names) else float("inf")
 
@@ -122,9 +116,7 @@ def _solve(net: list[Branch], place: dict[str, int], plus: int, minus: int) -> t
     return voltage, float(matrix[plus] @ voltage)
 
 
-def discharge_resistance(
-    board: Board, plus: str, minus: str, without: str = "", junctions_too: bool = True
-) -> float:
+def discharge_resistance(board: Board, plus: str, minus: str, without: str = "", junctions_too: bool = True) -> float:
     """Resistance through which a capacitor between two nodes of the unplugged board empties [ohm].
 
     ``without`` leaves one part out, as if it had failed open; ``junctions_too`` False counts linear parts

@@ -62,9 +62,7 @@ def first_power_up(board: Board) -> PowerUp:
         lamp_power=lamp,
         lamp_current=lamp / board.mains.nominal,
         current_limit=max(limit["least_A"], _two_digits_up(limit["times_input_current"] * current)),
-        transformer_va=max(
-            limit["transformer_least_VA"], _two_digits_up(2.0 * current * board.mains.nominal)
-        ),
+        transformer_va=max(limit["transformer_least_VA"], _two_digits_up(2.0 * current * board.mains.nominal)),
         load_resistance=board.full_load,
         load_power=power,
         source=source_of(row),

@@ -106,13 +106,9 @@ def parse_fuse(text: str) -> FuseMarking:
     Raises SafetyPartError. Source: IEC 60127-1, marking.
     """
     compact = re.sub(r"\s+", "", text).replace(",", ".")
-    match = re.fullmatch(
-        r"(FF|TT|F|M|T)?(\d+(?:\.\d+)?)(mA|A)([LEH])?(?:/?(\d+)V~?)?", compact, re.IGNORECASE
-    )
+    match = re.fullmatch(r"(FF|TT|F|M|T)?(\d+(?:\.\d+)?)(mA|A)([LEH])?(?:/?(\d+)V~?)?", compact, re.IGNORECASE)
     if match is None:
-        raise SafetyPartError(
-            "fuse marking", repr(text), "speed, amperes, breaking letter, volts as in T1AL250V"
-        )
+        raise SafetyPartError("fuse marking", repr(text), "speed, amperes, breaking letter, volts as in T1AL250V")
     speed, number, unit, breaking, volts = match.groups()
     amps = float(number) * (1e-3 if unit.lower() == "ma" else 1.0)
     return FuseMarking((speed or "").upper(), amps, (breaking or "").upper(), float(volts) if volts else None)

@@ -120,9 +120,7 @@ def verdict(
     return "pass" if inside else "too close to call"
 
 
-def conformity(
-    value: float, uncertainty: float, low: float | None = None, high: float | None = None
-) -> float:
+def conformity(value: float, uncertainty: float, low: float | None = None, high: float | None = None) -> float:
     """Probability that the true value lies within its limits [0..1], normal, no prior. JCGM 106:2012, 7.4."""
     if uncertainty <= 0.0 or not math.isfinite(value):
         return float((low is None or value >= low) and (high is None or value <= high))
