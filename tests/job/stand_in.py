@@ -102,9 +102,6 @@ class StandIn:
         )
         return replace(board, parts=parts)
 
-    def looks(self, board: Board) -> tuple[tuple[str, str], ...]:
-        return (("case", "case and plug whole"), ("barrier", "nothing bridges the barrier"))
-
     def retest(self, board: Board) -> tuple[RetestNeed, ...]:
         return (
             RetestNeed("insulation", "insulation resistance", "at least 2 Mohm", "house table", False, True),

@@ -9,6 +9,7 @@ from triage.board.fault import Fault
 from triage.errors import EntryError, GateError, JobError, ProfileError, QuantityError
 from triage.job.bench import Bench
 from triage.job.views import JobView
+from triage.safety.inspection import InspectionError
 
 
 @pytest.fixture
@@ -107,6 +108,24 @@ def test_no_live_reading_is_suggested_or_taken_before_everything_that_power_asks
     view = bench.read("volts_dc", "out", "sgnd", "noload", "4.6")
     assert view.suspects[0].ref == "C5"
     assert "NOT safe" in view.safe_to_touch
+
+
+def test_a_look_says_what_it_means_and_becomes_evidence(bench: Bench) -> None:
+    bench.acknowledge("all")
+    view = bench.look("capacitors", "bulging", "c5")
+    assert next(one for one in view.looks if one.key == "capacitors").said == "doubtful"
+    assert view.entries[-1].text == "bulging at C5"
+    assert view.suspects[0].ref == "C5"
+    with pytest.raises(InspectionError, match="leaking"):
+        bench.look("capacitors", "sad")
+
+
+def test_carbon_across_the_barrier_forbids_the_repair(bench: Bench) -> None:
+    through_cautions(bench)
+    bench.look("board", "charred across barrier")
+    with pytest.raises(GateError, match="veto on board"):
+        bench.fit("R1", "high-voltage film 500 V")
+    assert bench.close("scrapped").stage == "closed"
 
 
 def test_a_charged_bulk_capacitor_is_asked_for_again(bench: Bench) -> None:
@@ -228,8 +247,8 @@ def test_refused_input_leaves_nothing_in_the_file(bench: Bench) -> None:
         bench.complain("x", "kaputt", "full")
     with pytest.raises(EntryError, match="one of insulation, output"):
         bench.retest("smoke", "pass")
-    with pytest.raises(EntryError, match="one of barrier, case"):
-        bench.look("plug", "sound")
+    with pytest.raises(EntryError, match="one of board"):
+        bench.look("smell", "sound")
     with pytest.raises(EntryError, match="caution"):
         bench.acknowledge("nothing")
     with pytest.raises(EntryError, match="fitted"):

@@ -32,7 +32,8 @@ from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import entry_text, stress_view
 from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
-from triage.quantities import parse_reading
+from triage.quantities import parse, parse_reading
+from triage.safety.inspection import items, judge
 
 Clock = Callable[[], datetime]
 
@@ -60,7 +61,6 @@ class Bench:
         self._needs = workings.retest(self.board)
         self._rules = Rules.of_board(
             self.board,
-            items=[key for key, _ in workings.looks(self.board)],
             before_power=[need.key for need in self._needs if need.before_power],
             required=[need.key for need in self._needs if need.required],
             live_lines=[need.key for need in self._needs if need.live],
@@ -179,9 +179,23 @@ class Bench:
         """Something seen, heard, smelt or felt, at a part or on the whole adapter."""
         return self._enter("sign", sign=sign, ref=self._ref(ref) if ref else "")
 
-    def look(self, item: str, look: str) -> JobView:
-        """What one look of the inspection said, one of ``triage.safety.gate.LOOKS``."""
-        return self._enter("look", item=item, look=look)
+    def look(self, item: str, answer: str, ref: str = "") -> JobView:
+        """What one look of the inspection found: one of its answers, or a length (``6.5 mm``) or count as
+        typed.
+
+        Raises EntryError or InspectionError naming the answers there are. What the diagnosis takes from it is
+        entered as signs of its own.
+        """
+        ref = self._ref(ref) if ref else ""
+        asked = next((one for one in items(self.board) if one.key == item), None)
+        if asked is None:
+            raise EntryError("look", f"{item[:40]!r}", "one of " + ", ".join(one.key for one in items(self.board)))
+        value = answer if asked.answers else parse(answer, "m" if asked.unit == "m" else "1")
+        finding = judge(self.board, item, value, ref)
+        view = self._enter("look", item=item, look=finding.verdict, answer=answer, ref=ref, text=finding.text)
+        for sign in finding.signs:
+            view = self._enter("sign", sign=sign.sign, ref=sign.ref)
+        return view
 
     def read(self, function: str, plus: str, minus: str, condition: str, text: str, instrument: str = "") -> JobView:
         """A reading as typed: ``4k7``, ``0.62``, ``OL``. Raises EntryError or QuantityError naming what is

@@ -59,8 +59,5 @@ class Workings(Protocol):
     def fitted(self, board: Board, ref: str, type: str) -> Board:
         """The board with this part in this position."""
 
-    def looks(self, board: Board) -> tuple[tuple[str, str], ...]:
-        """(key, text) of each thing to look at before the cold readings."""
-
     def retest(self, board: Board) -> tuple[RetestNeed, ...]:
         """What must hold after the repair."""

@@ -35,7 +35,7 @@ _PROBE: dict[str, Any] = {"function": FUNCTIONS, "plus": _TEXT, "minus": _TEXT, 
 KINDS: dict[str, dict[str, Any]] = {
     "complaint": {"state": STATES, "condition": CONDITIONS[1:]},
     "sign": {"sign": SIGNS, "ref": _TEXT},
-    "look": {"item": _TEXT, "look": LOOKS},
+    "look": {"item": _TEXT, "look": LOOKS, "answer": _TEXT, "ref": _TEXT},
     "reading": {**_PROBE, "value": _NUMBER},
     "skip": {**_PROBE, "reason": _TEXT},
     "undo": {"entry": int},

@@ -12,9 +12,10 @@ from triage.job import shown
 from triage.job.display import plain
 from triage.job.entries import Replay, replay
 from triage.job.gates import bulk_open, live_open, open_check, waits_for
-from triage.job.views import CautionView, JobView, StressView, SuggestionView, SuspectView, VerdictView
+from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
 from triage.safety.cautions import cautions
 from triage.safety.gate import GateFacts, safe_to_touch, stage
+from triage.safety.inspection import items
 
 if TYPE_CHECKING:
     from triage.job.bench import Bench
@@ -94,9 +95,12 @@ def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[Caution
     return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known) for one in cautions(bench.board))
 
 
-def _looks(bench: "Bench", facts: GateFacts) -> tuple[tuple[str, str, str], ...]:
+def _looks(bench: "Bench", facts: GateFacts) -> tuple[LookView, ...]:
     seen = dict(facts.looks)
-    return tuple((key, plain(text), seen.get(key, "")) for key, text in bench.workings.looks(bench.board))
+    return tuple(
+        LookView(one.key, one.question, one.answers, one.unit, one.refs, not one.touch, seen.get(one.key, ""))
+        for one in items(bench.board)
+    )
 
 
 def _first_of_all(bench: "Bench", facts: GateFacts, state: Replay) -> SuggestionView | None:

@@ -33,7 +33,7 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
             before=bench.stresses_before(),
             after=bench.stresses() if state.fitted else (),
             retest=retest,
-            not_done=(*missing, *(f"not looked at: {text}" for _, text, look in shown.looks if not look)),
+            not_done=(*missing, *(f"not looked at: {one.text}" for one in shown.looks if not one.said)),
             cautions=cautions_of(bench),
         )
     )

@@ -124,7 +124,10 @@ def _inspection(standing: Mapping[str, list[Entry]]) -> tuple[str, ...]:
         f"{entry.said['sign']} {'at ' + entry.said['ref'] if entry.said['ref'] else 'on the whole adapter'}"
         for entry in standing.get("sign", ())
     ]
-    looks = [f"{entry.said['item']}: {entry.said['look']}" for entry in standing.get("look", ())]
+    looks = [
+        f"{entry.said['item']}: {entry.said['look']}; {entry.said.get('text', entry.said['answer'])}"
+        for entry in standing.get("look", ())
+    ]
     return (*signs, *looks)
 
 

@@ -8,11 +8,13 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from triage.board.part import Board
-from triage.board.probe import UNITS, Probe
+from triage.board.probe import Probe
 from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis, Job
-from triage.diagnosis.explain import FUNCTION_WORDS, Suggestion, Weighed
+from triage.diagnosis.explain import Suggestion
 from triage.diagnosis.verdict import Suspect, Verdict
+from triage.diagnosis.weigh import Weighed
+from triage.diagnosis.words import FUNCTION_WORDS
 from triage.job.display import plain
 from triage.job.entries import Entry
 from triage.job.report import reading_text, stress_text
@@ -186,7 +188,7 @@ def _why(ref: str, board: Board, stresses: Sequence[StressView]) -> str:
 def expected_text(diagnosis: Diagnosis, job: Job, probe: Probe) -> str:
     """What the meter should show under each leading suspect, in a line; empty when nothing is known."""
     found = diagnosis.expected(job, probe)
-    return plain(", ".join(f"{name} {engineering(value, probe.unit, 2)}" for name, value in found))
+    return plain(", ".join(f"{one.suspect} {engineering(one.value, probe.unit, 2)}" for one in found))
 
 
 def entry_view(number: int, entry: Entry, undone: bool) -> EntryView:
@@ -218,7 +220,7 @@ _WORDS = {
     "hunch": "hunch: {ref}",
     "acknowledge": "acknowledged: {caution}",
     "fitted": "fitted at {ref}: {type}",
-    "look": "looked at {item}: {look}",
+    "look": "looked at {item}: {answer} ({look})",
     "repaired": "after the repair: {result}",
     "retest": "retest {check}: {result}",
     "closed": "closed: {verdict}",
@@ -233,8 +235,3 @@ class _Shown(dict[str, Any]):
 
     def __init__(self, said: Mapping[str, Any]) -> None:
         super().__init__({key: str(value) for key, value in said.items()})
-
-
-def unit_of(function: str) -> str:
-    """SI unit of a meter function."""
-    return UNITS[function]

@@ -192,6 +192,25 @@ class CautionView:
 
 
 @dataclass(frozen=True, slots=True)
+class LookView:
+    """One thing to look at or to measure on the board."""
+
+    key: str
+    text: str
+    """The question."""
+    answers: tuple[str, ...] = ()
+    """Possible answers; empty when a length or a count is asked for."""
+    unit: str = ""
+    """``m`` or ``layers`` where a number is asked for."""
+    refs: tuple[str, ...] = ()
+    """Parts of the board it is about."""
+    needed: bool = True
+    """True when it comes before the cold readings; the others need a discharged board."""
+    said: str = ""
+    """What the last look said: ``sound``, ``doubtful``, ``restorable``, ``veto``, or empty."""
+
+
+@dataclass(frozen=True, slots=True)
 class JobView:
     """All a screen shows of an open job at one moment."""
 
@@ -216,8 +235,8 @@ class JobView:
     """Empty, or who has the job open and since when."""
     waits_for: tuple[str, ...] = ()
     """What must be done before a live reading is proposed, in order."""
-    looks: tuple[tuple[str, str, str], ...] = ()
-    """(key, text, what the look said or empty) of each thing to look at before the cold readings."""
+    looks: tuple[LookView, ...] = ()
+    """Everything to look at or to measure before the board is judged."""
 
 
 @dataclass(frozen=True, slots=True)
