@@ -118,7 +118,7 @@ def clamp_cycle(leakage: Values, peak: Values, frequency: Values, reflected: Val
 
     >>> cycle = clamp_cycle(30e-6, 0.6, 65e3, 80.0, 100e3, 1e-9)
     >>> round(float(cycle.peak), 1), round(float(cycle.power), 3)
-    (249.5, 0.536)
+    (249.3, 0.536)
     """
     leakage, capacitance = np.asarray(leakage, float), np.asarray(capacitance, float)
     impedance, speed = np.sqrt(leakage / capacitance), 1.0 / np.sqrt(leakage * capacitance)
@@ -126,18 +126,21 @@ def clamp_cycle(leakage: Values, peak: Values, frequency: Values, reflected: Val
 
     def rise(valley: Values) -> tuple[Values, Values]:
         above = valley - reflected
-        return reflected + np.hypot(above, kick), np.arctan2(kick, above) / speed
+        reset = np.arctan2(kick, above) / speed
+        top = reflected + np.hypot(above, kick)
+        # what the resistor takes away while the leakage current still flows
+        return top - 0.5 * (valley + top) * reset / tau, reset
 
     low = reflected + 0.0 * kick * tau * period
     high = low + kick + 20.0 * (clamp_voltage(leakage, peak, frequency, reflected, resistance) - reflected)
     for _ in range(60):
         valley = 0.5 * (low + high)
         top, reset = rise(valley)
-        falls = top * np.exp(-period / tau) < valley
+        falls = top * np.exp(-(period - reset) / tau) < valley
         low, high = np.where(falls, low, valley), np.where(falls, valley, high)
     top, reset = rise(valley)
-    # the short rise counts like the fall: both run between the same two voltages
-    rms = np.sqrt(top ** 2 * tau / 2.0 * (1.0 - np.exp(-2.0 * period / tau)) / period)
+    fall = top ** 2 * tau / 2.0 * (1.0 - np.exp(-2.0 * (period - reset) / tau))
+    rms = np.sqrt((fall + reset * (valley ** 2 + valley * top + top ** 2) / 3.0) / period)
     return ClampCycle(valley, top, rms, rms ** 2 / resistance, reset)
 
 

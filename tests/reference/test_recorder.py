@@ -1,0 +1,38 @@
+"""The recorder itself: what it lets pass, what it fails, what it counts."""
+
+import numpy as np
+import pytest
+
+from tests.reference.conftest import OutsideChecks
+
+
+def test_counts_every_element_and_keeps_the_worst_share() -> None:
+    checks = OutsideChecks()
+    checks("s", "book", [1.0, 2.002, 3.0], [1.0, 2.0, 3.0], 0.01)
+    checks("s", "book", 10.5, 10.0, 1.0, absolute=True)
+    assert checks.lines() == [("s", "book", "4", "50 %", "1 absolute")]
+    assert checks.summary == "4 checks against 1 sources, 0 failed"
+
+
+@pytest.mark.parametrize("got, expected", [
+    (1.02, 1.0), (np.nan, 1.0), (1.0, np.nan), (np.inf, 1.0), (1.0, np.inf), (0.1, 0.0), ([1.0, 1.02], [1.0, 1.0])])
+def test_fails_and_records_what_is_off(got: object, expected: object) -> None:
+    checks = OutsideChecks()
+    with pytest.raises(AssertionError):
+        checks("s", "book", got, expected, 0.01)
+    assert checks.rows["s", "book"].failed == 1
+
+
+def test_open_line_and_missing_value_agree_with_themselves() -> None:
+    OutsideChecks()("s", "book", [np.inf, np.nan, 0.0], [np.inf, np.nan, 0.0], 0.01)
+
+
+def test_texts_and_rates() -> None:
+    checks = OutsideChecks()
+    checks.same("s", "book", "open", "open")
+    checks.at_least("s", "book", 0.97, 0.95)
+    with pytest.raises(AssertionError):
+        checks.same("s", "book", "open", "short")
+    with pytest.raises(AssertionError):
+        checks.at_least("s", "book", 0.94, 0.95)
+    assert checks.rows["s", "book"].failed == 2
