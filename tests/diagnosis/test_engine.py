@@ -67,9 +67,7 @@ def test_two_processes_believe_the_same_bits() -> None:
     )
     root = Path(__file__).resolve().parents[2]
     texts = {
-        subprocess.run(
-            [sys.executable, "-c", code], cwd=root, capture_output=True, text=True, check=True
-        ).stdout
+        subprocess.run([sys.executable, "-c", code], cwd=root, capture_output=True, text=True, check=True).stdout
         for _ in range(2)
     }
     assert len(texts) == 1 and texts.pop().strip()
@@ -214,12 +212,10 @@ def test_the_careful_way_also_ends_right() -> None:
         suggestion = D.suggest(state, everything, careful=True)
         if suggestion is None:
             break
-        state = replace(
-            state, entries=(*state.entries, Reading(suggestion.probe, float(truth[suggestion.probe])))
-        )
+        state = replace(state, entries=(*state.entries, Reading(suggestion.probe, float(truth[suggestion.probe]))))
     assert D.verdict(state, careful=True).repair == ("C1",)
 
 
 def test_expected_values_name_the_leading_suspects() -> None:
-    shown = dict(D.expected(job(DEAD, Reading(sb.OHMS_C1, 0.1)), sb.DIODE_D1))
+    shown = {e.suspect: e.value for e in D.expected(job(DEAD, Reading(sb.OHMS_C1, 0.1)), sb.DIODE_D1)}
     assert shown["C1 short"] == pytest.approx(0.6, rel=0.05)

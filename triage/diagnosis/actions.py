@@ -29,6 +29,11 @@ class Actions:
         """Chance that each repair is exactly what is needed, shape (repairs,) [-]."""
         return np.bincount(self.of, weights=belief, minlength=len(self.repairs)).astype(np.float64)
 
+    def joint(self, bins: NDArray[np.floating], belief: NDArray[np.floating]) -> NDArray[np.float64]:
+        """P(outcome and repair) of one reading, shape (outcomes, repairs) [-]; bins: p(outcome | hypothesis).
+        """
+        return np.stack([self.chances(row.astype(np.float64) * belief) for row in bins])
+
     def cures(self, action: int) -> NDArray[np.bool_]:
         """Hypotheses that a repair cures: those whose parts are all replaced by it. Shape (H,)."""
         wanted = self.repairs[action]

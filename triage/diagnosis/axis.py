@@ -80,15 +80,25 @@ class Axis:
         return cls(instrument, start, max(1, math.ceil((stop - start) / CELL)), ends)
 
     def index(self, value: NDArray[np.floating] | float) -> NDArray[np.int32]:
-        """Cell of each reading [SI]; OL is ``cells``, unknown (nan) is -1, what lies outside goes to the end
-        cells.
+        """Cell in which each reading [SI] is shown; OL is ``cells``, unknown (nan) is -1.
+
+        What lies outside the cells goes to the end cells.
+        """
+        return np.minimum(self.place(value), self.cells)
+
+    def place(self, value: NDArray[np.floating] | float) -> NDArray[np.int32]:
+        """Cell in which each true value [SI] lies, counted on beyond the limit of the range; unknown (nan) is
+        -1.
+
+        A value above the limit, but near it, may still be shown as a number; ``inf`` never is.
         """
         values = np.asarray(value, dtype=float)
         position = to_axis(values, self.instrument)
         with np.errstate(invalid="ignore"):
-            cell = np.clip(np.floor((position - self.start) / CELL), 0, self.cells - 1)
-            cell = np.where(values > self.instrument.over, self.cells, cell)
-        cell = np.where(np.isposinf(values), self.cells, cell)
+            cell = np.maximum(np.floor((position - self.start) / CELL), 0)
+            over = values > self.instrument.over
+            cell = np.where(over, np.clip(cell, self.cells, self.cells + _REACH), np.minimum(cell, self.cells - 1))
+        cell = np.where(np.isposinf(values), self.cells + 2 * _REACH, cell)
         return np.where(np.isnan(values), -1, cell).astype(np.int32)
 
     def edge(self, cell: int) -> float:
@@ -107,13 +117,15 @@ class Axis:
         Parameters
         ----------
         edge: 0 .. cells; 0 gives 0, ``cells`` gives the chance that the display does not show OL.
-        cell: expected cells (not OL, not unknown), broadcast against ``edge``.
+        cell: places of expected values (not unknown), broadcast against ``edge``.
         width: index into WIDTHS, broadcast against the others.
         """
         step = np.clip(np.asarray(edge) - 1 - cell, -_REACH, _REACH) + _REACH
         chance = smear_table()[width, step]
         chance = np.where(np.asarray(edge) <= 0, 0.0, chance)
-        return chance if self.ends_at_limit else np.where(np.asarray(edge) >= self.cells, 1.0, chance)
+        if self.ends_at_limit:
+            return chance
+        return np.where(np.asarray(edge) >= self.cells, np.where(cell >= self.cells, 0.0, 1.0), chance)
 
 
 def draw_width(position: NDArray[np.floating]) -> NDArray[np.uint8]:
@@ -130,9 +142,7 @@ def draw_width(position: NDArray[np.floating]) -> NDArray[np.uint8]:
     with np.errstate(invalid="ignore"):
         mean = np.where(finite, position, 0.0).sum(axis=1) / count
         spread = np.sqrt(np.where(finite, (position - mean[:, None]) ** 2, 0.0).sum(axis=1) / count)
-        between = np.where(
-            np.isfinite(quartile[0]) & np.isfinite(quartile[1]), (quartile[1] - quartile[0]) / 1.34, 0.0
-        )
+        between = np.where(np.isfinite(quartile[0]) & np.isfinite(quartile[1]), (quartile[1] - quartile[0]) / 1.34, 0.0)
     bandwidth = 0.9 * np.where(between > 0, np.minimum(spread, between), 0.0) * count**-0.2
     exact = 2.0 * np.log2(np.sqrt(1.0 + bandwidth**2))
     return np.clip(np.rint(exact), 0, len(WIDTHS) - 1).astype(np.uint8)

@@ -89,8 +89,6 @@ def with_hunches(
     suspected = set(refs)
     if not suspected:
         return prior
-    raised = np.array(
-        [factor if any(f.ref in suspected for f in hypothesis.faults) else 1.0 for hypothesis in hypotheses]
-    )
+    raised = np.array([factor if any(f.ref in suspected for f in hypothesis.faults) else 1.0 for hypothesis in hypotheses])
     weight = prior * raised
     return weight / weight.sum()

@@ -42,9 +42,7 @@ class Costs:
                 ", ".join(meters) or "nothing",
                 f"the keys {', '.join(sorted(needed))}",
             )
-        owned = frozenset(
-            key for key, row in meters.items() if isinstance(row, dict) and row.get("owned") is True
-        )
+        owned = frozenset(key for key, row in meters.items() if isinstance(row, dict) and row.get("owned") is True)
         return cls(
             owned,
             group("reading", COLD_FUNCTIONS + LIVE_FUNCTIONS),

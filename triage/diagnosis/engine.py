@@ -17,16 +17,20 @@ from triage.board.probe import Probe
 from triage.diagnosis import explain, look_ahead
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.after_repair import Fitted, carry_over
+from triage.diagnosis.ahead import Expected, RepairStep, expected_values, repair_plan
 from triage.diagnosis.belief import Likelihoods, posterior, with_hunches
+from triage.diagnosis.conflicts import conflicts_of, hitting_sets
 from triage.diagnosis.costs import Costs
 from triage.diagnosis.expectations import Expectations
-from triage.diagnosis.explain import Suggestion, Weighed
+from triage.diagnosis.explain import Suggestion
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
 from triage.diagnosis.next_reading import Candidate, candidates, cold_first
 from triage.diagnosis.priors import Prior
 from triage.diagnosis.settings import Settings
 from triage.diagnosis.verdict import Suspect, Verdict, best_repair, conclude, settled, suspects
+from triage.diagnosis.weigh import Weighed, evidence_ratios
+from triage.diagnosis.words import suspect_name
 
 Entry = Evidence | Fitted
 """What the diagnosis takes from a job, in the order of entry."""
@@ -158,14 +162,27 @@ class Diagnosis:
         belief = posterior(start, self._likelihoods.log(since))
         lead = suspects(belief, self.expectations.hypotheses)[0]
         members = np.array([sorted(h.root) == sorted(lead.root) for h in self.expectations.hypotheses])
-        name = explain.suspect_name(self.expectations.hypotheses[lead.index])
-        return explain.evidence_ratios(since, self._likelihoods.log, start, members, name)
+        name = suspect_name(self.expectations.hypotheses[lead.index])
+        return evidence_ratios(since, self._likelihoods.log, start, members, name)
 
-    def expected(self, job: Job, probe: Probe) -> tuple[tuple[str, float], ...]:
-        """(suspect, expected reading [SI]) for the leading suspects; empty for a probe nothing is known of.
-        """
+    def expected(self, job: Job, probe: Probe, count: int = 5) -> tuple[Expected, ...]:
+        """What the meter should show under the leading suspects; empty for a probe nothing is known of."""
         column = self.expectations.column(probe)
-        return () if column is None else explain.expected_values(self.model, column, self.belief(job))
+        return () if column is None else expected_values(self.model, column, self.belief(job), count)
+
+    def repair_plan(self, job: Job) -> tuple[RepairStep, ...]:
+        """The repairs to try, in the order that costs least on average."""
+        return repair_plan(self.actions, self.belief(job), self.costs, self.kinds)
+
+    def what_is_left(self, job: Job) -> list[frozenset[str]]:
+        """When nothing fits: the smallest sets of parts that could together explain the odd readings, listed
+        fault or not.
+
+        Empty when no reading is odd, or when the odd ones share no part.
+        """
+        readings = [entry for entry in self._phase(job)[1] if isinstance(entry, Reading)]
+        conflicts = conflicts_of(self.model, readings, self.settings.misfit_tail)
+        return hitting_sets(conflicts, largest=2)
 
     def _careful_choice(self, belief: NDArray[np.float64], ranked: tuple[Candidate, ...]) -> Candidate:
         """The choice of the two-step look ahead; the best by impurity where repairing now would be cheapest.
@@ -192,9 +209,7 @@ class Diagnosis:
 
     def _phase(self, job: Job) -> tuple[NDArray[np.float64], list[Evidence]]:
         """Belief at the last repair (or the prior), and the evidence since."""
-        belief = with_hunches(
-            self.prior, self.expectations.hypotheses, job.hunches, self.settings.hunch_factor
-        )
+        belief = with_hunches(self.prior, self.expectations.hypotheses, job.hunches, self.settings.hunch_factor)
         since: list[Evidence] = []
         for entry in job.entries:
             if isinstance(entry, Fitted):
@@ -209,9 +224,7 @@ class Diagnosis:
                 since.append(entry)
         return belief, since
 
-    def _ranked(
-        self, job: Job, belief: NDArray[np.float64], gate: Callable[[Probe], bool]
-    ) -> tuple[Candidate, ...]:
+    def _ranked(self, job: Job, belief: NDArray[np.float64], gate: Callable[[Probe], bool]) -> tuple[Candidate, ...]:
         taken = _taken(self._phase_entries(job))
         ranked = candidates(
             self.model,
@@ -225,9 +238,7 @@ class Diagnosis:
             gate,
         )
         sound = not self.actions.repairs[best_repair(belief, self.actions)[0]]
-        least = (
-            self.settings.least_worth_when_sound_per_minute if sound else self.settings.least_worth_per_minute
-        )
+        least = self.settings.least_worth_when_sound_per_minute if sound else self.settings.least_worth_per_minute
         return cold_first(ranked, least)
 
     @staticmethod

@@ -69,9 +69,7 @@ def single_faults(weights: Mapping[Fault, float], collateral: CollateralMap) -> 
     return tuple(found)
 
 
-def pairs(
-    weights: Mapping[Fault, float], collateral: CollateralMap, share: float, floor: float
-) -> tuple[Weighted, ...]:
+def pairs(weights: Mapping[Fault, float], collateral: CollateralMap, share: float, floor: float) -> tuple[Weighted, ...]:
     """Two independent faults, each with what it takes along, the likeliest first.
 
     A pair in which a collateral did not happen carries the chance that it did not: forgetting this makes

@@ -63,12 +63,8 @@ def factors(
     faults = {fault for job in (*pooled, *profile) for fault in job} | set(found) | set(found_here)
     result = {}
     for fault in sorted(faults):
-        belief = Gamma(POOLED_STRENGTH, POOLED_STRENGTH).after(
-            found.count(fault), sum(j.get(fault, 0.0) for j in pooled)
-        )
+        belief = Gamma(POOLED_STRENGTH, POOLED_STRENGTH).after(found.count(fault), sum(j.get(fault, 0.0) for j in pooled))
         expected = sum(job.get(fault, 0.0) for job in profile)
-        here = Gamma(PROFILE_STRENGTH * belief.mean, PROFILE_STRENGTH).after(
-            found_here.count(fault), expected
-        )
+        here = Gamma(PROFILE_STRENGTH * belief.mean, PROFILE_STRENGTH).after(found_here.count(fault), expected)
         result[fault] = here.mean if profile else belief.mean
     return result

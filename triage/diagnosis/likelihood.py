@@ -39,7 +39,7 @@ class ReadingModel:
             samples = expectations.samples[:, column, :]
             axis = Axis.spanning(samples, instrument)
             self.axes.append(axis)
-            self._cells.append(axis.index(samples))
+            self._cells.append(axis.place(samples))
             self._widths.append(draw_width(to_axis(samples, instrument)))
         self._build_bins()
 
@@ -63,8 +63,7 @@ class ReadingModel:
         open_line = last > axis.cells
         top = np.ones(cell.shape) if open_line else axis.below(last, cell, width)
         bottom = np.zeros(cell.shape) if first <= 0 else axis.below(min(first, axis.cells), cell, width)
-        mass = np.where(cell == axis.cells, float(open_line), top - bottom)
-        return np.where(cell < 0, np.nan, mass)
+        return np.where(cell < 0, np.nan, top - bottom)
 
     def slip(self, column: int, first: int, last: int) -> float:
         """Chance of a grossly wrong reading in cells ``first`` to ``last`` - 1 [-]."""
@@ -115,7 +114,7 @@ class ReadingModel:
             if not known.size:
                 rows.append(np.full(axis.cells + 1, 1.0 / (axis.cells + 1)))
                 continue
-            values, counts = np.unique(known[known < axis.cells], return_counts=True)
+            values, counts = np.unique(known, return_counts=True)
             below = axis.below(edges, values[None, :], int(self._widths[column][h])) @ (counts / known.size)
             rows.append(np.append(np.diff(below), 1.0 - below[-1]))
         return np.stack(rows)
@@ -140,11 +139,7 @@ class ReadingModel:
             rows += self._bin_rows(column, cuts)
         self.edges = edges
         """For each probe the cells at which its bins begin, and the end; the last bin is OL."""
-        self.bins = (
-            np.stack(rows).astype(np.float32)
-            if rows
-            else np.zeros((0, len(self.expectations.hypotheses)), np.float32)
-        )
+        self.bins = np.stack(rows).astype(np.float32) if rows else np.zeros((0, len(self.expectations.hypotheses)), np.float32)
         """p(bin | hypothesis), gross errors included, shape (all bins of all probes, H)."""
         self.owner = np.asarray(owner, dtype=np.int64)
         """Probe of each row of ``bins``."""
@@ -152,15 +147,13 @@ class ReadingModel:
     def _bin_rows(self, column: int, cuts: list[int]) -> list[NDArray[np.float64]]:
         axis, cell = self.axes[column], self._cells[column]
         width = self._widths[column][:, None]
-        open_line = cell == axis.cells
         below = []
         for cut in cuts[:-1]:
-            chance = np.where(open_line, 0.0, axis.below(cut, cell, width))
+            chance = axis.below(cut, cell, width)
             below.append(_mean_known(np.where(cell < 0, np.nan, chance), self.slip(column, 0, cut)))
         below.append(np.ones(len(cell)))
         return [
-            (1 - self.gross) * (below[i + 1] - below[i])
-            + self.gross * self.slip(column, cuts[i], cuts[i + 1])
+            (1 - self.gross) * (below[i + 1] - below[i]) + self.gross * self.slip(column, cuts[i], cuts[i + 1])
             for i in range(len(cuts) - 1)
         ]
 

@@ -15,6 +15,7 @@ from numpy.typing import NDArray
 from triage.board.probe import Probe
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.costs import Costs
+from triage.diagnosis.information import gini_gain, joint_table
 from triage.diagnosis.likelihood import ReadingModel
 
 
@@ -44,36 +45,6 @@ def alive(belief: NDArray[np.float64], mass: float) -> NDArray[np.int64]:
     return np.sort(order[:reach])
 
 
-def outcome_weights(
-    bins: NDArray[np.floating], belief: NDArray[np.floating], action: NDArray[np.int64]
-) -> NDArray[np.floating]:
-    """P(outcome and repair), shape (outcomes, repairs that occur) [-].
-
-    Parameters
-    ----------
-    bins: p(outcome | hypothesis), shape (outcomes, H).
-    belief: shape (H,), adds up to 1.
-    action: repair of each hypothesis, shape (H,), in rising order.
-    """
-    starts = np.flatnonzero(np.diff(action, prepend=-1))
-    return np.add.reduceat(bins * belief, starts, axis=1)
-
-
-def gini_gain(joint: NDArray[np.floating], owner: NDArray[np.int64]) -> NDArray[np.float64]:
-    """Expected fall of the impurity of the repair for each reading, shape (readings,) [-].
-
-    Parameters
-    ----------
-    joint: P(outcome and repair) of all outcomes of all readings, shape (outcomes, repairs).
-    owner: reading of each outcome, 0 .. readings - 1, in rising order.
-    """
-    chance = joint.sum(axis=1)
-    purity = np.einsum("ka,ka->k", joint, joint) / np.maximum(chance, 1e-30)
-    starts = np.flatnonzero(np.diff(owner, prepend=-1))
-    before = np.add.reduceat(joint, starts, axis=0)
-    return np.add.reduceat(purity, starts).astype(float) - np.einsum("ra,ra->r", before, before)
-
-
 def rank(
     model: ReadingModel,
     belief: NDArray[np.float64],
@@ -91,7 +62,7 @@ def rank(
     wanted = np.zeros(len(model.axes), dtype=bool)
     wanted[columns] = True
     rows = np.flatnonzero(wanted[model.owner])
-    joint = outcome_weights(model.bins[np.ix_(rows, keep)], weight, actions.of[keep])
+    joint = joint_table(model.bins[np.ix_(rows, keep)], weight, actions.of[keep])
     return gini_gain(joint, np.searchsorted(columns, model.owner[rows]))
 
 
@@ -117,18 +88,12 @@ def candidates(
     out = set(taken) | set(left_out)
     probes = model.expectations.probes
     columns = np.array(
-        [
-            c
-            for c, probe in enumerate(probes)
-            if probe not in out and costs.can_take(probe) and model.known(c) and allowed(probe)
-        ],
+        [c for c, probe in enumerate(probes) if probe not in out and costs.can_take(probe) and model.known(c) and allowed(probe)],
         dtype=np.int64,
     )
     gains = rank(model, belief, actions, mass, columns)
     found = [
-        Candidate(
-            int(c), probes[c], costs.minutes(probes[c], taken), costs.danger(probes[c], sides), float(gain)
-        )
+        Candidate(int(c), probes[c], costs.minutes(probes[c], taken), costs.danger(probes[c], sides), float(gain))
         for c, gain in zip(columns, gains, strict=True)
     ]
     return tuple(sorted(found, key=lambda c: (-c.worth, c.column)))

@@ -56,9 +56,7 @@ class Prior:
         listed = dict(zip(self.hypotheses, self.chance, strict=True))
         chance = np.array([listed.get(hypothesis, 0.0) for hypothesis in hypotheses])
         if not chance.sum() > 0:
-            raise EntryError(
-                "prior", "none of the expected hypotheses", "the hypotheses the prior was made for"
-            )
+            raise EntryError("prior", "none of the expected hypotheses", "the hypotheses the prior was made for")
         return chance / chance.sum()
 
 

@@ -55,9 +55,7 @@ class Settings:
         """Settings from a file; all keys must be there. Raises EntryError."""
         table = load_table(path)
         unbounded = {"failed_repair_minutes": 1e4, "hunch_factor": 1e3}
-        return cls(
-            **{f.name: number(path.name, table, f.name, 0.0, unbounded.get(f.name, 1.0)) for f in fields(cls)}
-        )
+        return cls(**{f.name: number(path.name, table, f.name, 0.0, unbounded.get(f.name, 1.0)) for f in fields(cls)})
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,8 +85,7 @@ def instruments(path: Path = HERE / "instruments.toml") -> Mapping[str, Instrume
         for function, row in table.get(group, {}).items():
             where = f"{path.name}, {group}.{function}"
             error = {
-                key: number(where, row, key, 0.0, 1e9)
-                for key in ("relative", "model_relative", "absolute", "model_absolute")
+                key: number(where, row, key, 0.0, 1e9) for key in ("relative", "model_relative", "absolute", "model_absolute")
             }
             found[function] = Instrument(
                 str(row.get("meter", "multimeter")),

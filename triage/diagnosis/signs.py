@@ -85,9 +85,7 @@ def sign_table(path: Path = HERE / "signs.toml") -> SignTable:
     )
 
 
-def complaint_likelihood(
-    symptom: Symptom, expectations: Expectations, settings: Settings
-) -> NDArray[np.float64]:
+def complaint_likelihood(symptom: Symptom, expectations: Expectations, settings: Settings) -> NDArray[np.float64]:
     """p(complaint | hypothesis), shape (H,) [-]. Raises EntryError for an unknown state or condition."""
     if symptom.state not in STATES:
         raise EntryError("symptom", repr(symptom.state), f"one of {', '.join(STATES)}")
@@ -124,16 +122,12 @@ def sign_likelihood(sign: Sign, expectations: Expectations, kinds: Mapping[str, 
 
     def at(fault: Fault | None) -> float:
         signs = table.visible if sign.sign == "sound" else (sign.sign,)
-        chances = [
-            table.at_good(s) if fault is None else table.at_fault(s, kinds[fault.ref], fault.mode)
-            for s in signs
-        ]
+        chances = [table.at_good(s) if fault is None else table.at_fault(s, kinds[fault.ref], fault.mode) for s in signs]
         return float(np.prod([1 - c for c in chances])) if sign.sign == "sound" else chances[0]
 
     good = at(None)
     found = {
-        hypothesis: next((f for f in hypothesis.faults if f.ref == sign.ref), None)
-        for hypothesis in expectations.hypotheses
+        hypothesis: next((f for f in hypothesis.faults if f.ref == sign.ref), None) for hypothesis in expectations.hypotheses
     }
     return np.array([good if fault is None else at(fault) for fault in found.values()])
 
@@ -143,9 +137,7 @@ def _on_adapter(row: Mapping[str, float], expectations: Expectations) -> NDArray
     by_state = np.array([row.get(state, row["other"]) for state in STATES])
     codes = expectations.states.reshape(len(expectations.hypotheses), -1)
     known = codes >= 0
-    chance = np.where(known, by_state[np.maximum(codes, 0)], 0.0).sum(axis=1) / np.maximum(
-        known.sum(axis=1), 1
-    )
+    chance = np.where(known, by_state[np.maximum(codes, 0)], 0.0).sum(axis=1) / np.maximum(known.sum(axis=1), 1)
     chance = np.where(known.any(axis=1), chance, row["other"])
     outside = np.array([not hypothesis.root for hypothesis in expectations.hypotheses])
     return np.where(outside, row["outside"], chance)

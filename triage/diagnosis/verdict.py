@@ -14,9 +14,7 @@ from triage.board.fault import Fault, Hypothesis
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.misfit import Fit
 from triage.diagnosis.settings import Settings
-
-NO_PART_FAULT = "no part fault"
-"""Mode of the suspect that no part of the board is at fault; its ref is empty."""
+from triage.diagnosis.words import NO_PART_FAULT
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,9 +66,7 @@ def suspects(belief: NDArray[np.float64], hypotheses: Sequence[Hypothesis]) -> t
     found = []
     for members in groups.values():
         lead = max(members, key=lambda i: (belief[i], -i))
-        found.append(
-            Suspect(hypotheses[lead].root, float(belief[members].sum()), hypotheses[lead].collateral, lead)
-        )
+        found.append(Suspect(hypotheses[lead].root, float(belief[members].sum()), hypotheses[lead].collateral, lead))
     return tuple(sorted(found, key=lambda s: (-s.probability, s.index)))
 
 
