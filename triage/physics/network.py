@@ -4,6 +4,7 @@ Ohms and diode test are direct-current solutions with the meter as part of the c
 small-signal solution at its test frequency with every junction at rest.
 """
 
+import itertools
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -139,7 +140,7 @@ def _admittance(compiled: Compiled, omega: float) -> np.ndarray:
     add(ends[:, [1, 0]], _junction(p[:, 0] / p[:, 2], ones, p[:, 10], omega))
     add(ends[:, [0, 2]], p[:, 0] / THERMAL_VOLTAGE)
     ends, starts, inductance, resistance, _ = compiled.winding
-    for lo, hi in zip(starts[:-1], starts[1:], strict=True):
+    for lo, hi in itertools.pairwise(starts):
         impedance = 1j * omega * inductance[lo:hi, lo:hi] + np.diag(np.maximum(resistance[lo:hi], 1e-6))
         inverse = np.linalg.inv(impedance)
         for p_, q in np.ndindex(hi - lo, hi - lo):

@@ -17,6 +17,7 @@ from triage.physics.transient_devices import (
     VT,
     base_conductances,
     factor_and_solve,
+    inject,
     stamp,
     stamp_bipolars,
     stamp_diodes,
@@ -136,3 +137,59 @@ def read_all(nonzeros, program, resistor, winding, diode, bipolar, probes, slots
                 break
         out[k] = math.inf if ohm > meter[4] else (max(ohm, 0.0) if math.isfinite(ohm) else math.nan)
     return out
+
+
+@njit(**OPTIONS)
+def rest_point(nonzeros, program, resistor, winding, diode, bipolar, source):
+    """(found, node voltages [V], winding currents [A]) at direct current with every source at its value at time zero."""
+    base = copper_network(nonzeros, program, resistor, winding)
+    drive = np.zeros(program[0].shape[0])
+    for s in range(source[0].shape[0]):
+        par = source[2][s]
+        stamp(base, source[1][s], par[3])
+        inject(drive, source[0][s, 0], source[0][s, 1], -par[3] * par[0] * math.sin(par[2]))
+    v = np.zeros(program[0].shape[0])
+    nd, nq = diode[0].shape[0], bipolar[0].shape[0]
+    no_d, no_q, q_d, q_q = np.zeros(nd), np.zeros((nq, 2)), np.zeros(nd), np.zeros((nq, 2))
+    found = False
+    for power in range(2, 15):
+        extra = 10.0 ** (-power) if power < 14 else 0.0
+        found = _rest_newton(base, drive, program, diode, bipolar, v, extra, no_d, no_q, q_d, q_q)
+    currents = np.zeros(winding[3].shape[0])
+    for w in range(currents.shape[0]):
+        across = voltage(v, winding[0][w, 0]) - voltage(v, winding[0][w, 1])
+        currents[w] = across / max(winding[3][w], WINDING_LEAST)
+    return found, v, currents
+
+
+@njit(**OPTIONS)
+def _rest_newton(base, drive, program, diode, bipolar, v, extra, no_d, no_q, q_d, q_q):
+    """Newton's method at direct current with a shunt ``extra`` [S] from every node; True when it settled."""
+    pivot = program[0]
+    vd, vq = np.zeros(no_d.shape[0]), np.zeros(no_q.shape)
+    for d in range(vd.shape[0]):
+        vd[d] = min(voltage(v, diode[0][d, 0]) - voltage(v, diode[0][d, 1]), 1.0)
+    for k in range(vq.shape[0]):
+        sign = bipolar[3][k]
+        vq[k, 0] = min(sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 2])), 1.0)
+        vq[k, 1] = min(sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 0])), 1.0)
+    a, rhs = np.empty_like(base), np.empty_like(v)
+    for iteration in range(300):
+        a[:] = base
+        rhs[:] = drive
+        for k in range(pivot.shape[0]):
+            a[pivot[k]] += extra
+        limited = stamp_diodes(a, rhs, v, vd, diode, 0.0, no_d, q_d, GMIN)
+        limited = stamp_bipolars(a, rhs, v, vq, bipolar, 0.0, no_q, q_q, GMIN) or limited
+        if not factor_and_solve(a, rhs, program):
+            return False
+        moved = False
+        for k in range(v.shape[0]):
+            if not math.isfinite(rhs[k]):
+                return False
+            if abs(rhs[k] - v[k]) > 1e-6 * abs(v[k]) + 1e-7:
+                moved = True
+            v[k] = rhs[k]
+        if not moved and not limited and iteration > 0:
+            return True
+    return False

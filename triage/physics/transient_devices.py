@@ -155,7 +155,7 @@ def bipolar_state(vbe, vbc, p):
 
 @njit(**OPTIONS)
 def stamp_bipolars(a, rhs, v, vq, bipolar, a0, history, charge, gmin):
-    """Linearise all transistors about ``v``; ``vq``, ``history``, ``charge`` have a column each for base-emitter and base-collector."""
+    """Linearise all transistors about ``v``; ``vq``, ``history``, ``charge`` have columns base-emitter and base-collector."""
     ends, slots, params, polarity = bipolar
     limited = False
     for k in range(ends.shape[0]):

@@ -204,8 +204,8 @@ def run(program, nonzeros, resistor, capacitor, winding, diode, bipolar, source,
 
     ``state`` = (v, vc, iw) is read and left at the end point. ``times`` = (start, stop, start of statistics, largest step,
     smallest step, step below which the deviation is not asked). ``tolerances`` = (relative of Newton, absolute of Newton [V],
-    relative of a step, floor per capacitor, per winding, per diode, per transistor). ``swing`` = (switch node, its reference, bulk node, its reference)
-    counts excursions of the switch above 1.03 and below 0.78 of the bulk voltage. ``trace`` = (start, interval, nodes, rows).
+    relative of a step, floor per capacitor, per winding, per diode, per transistor). ``swing`` = (switch node, its
+    reference, bulk node, its reference) counts excursions of the switch above 1.03 and below 0.78 of the bulk voltage. ``trace`` = (start, interval, nodes, rows).
     """
     v, vc, iw = state
     stop, stats_from, h_max, h_min, h_trust = times[1], times[2], times[3], times[4], times[5]

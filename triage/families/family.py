@@ -1,0 +1,20 @@
+"""What the general solution needs to know of a family."""
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True, slots=True)
+class Family:
+    """One way of building an adapter."""
+
+    key: str
+    title: str
+    switch_role: str
+    """Role of the part whose swings are the switching frequency; empty in a mains-frequency family."""
+    start_roles: tuple[str, ...]
+    """Roles whose faults may keep the adapter from starting: these are also solved from rest."""
+    bulk_role: str = "bulk capacitor"
+    """Role of the capacitor behind the mains rectifier."""
+    output_role: str = "output capacitor"
+    look: tuple[str, ...] = ()
+    """What can be seen on a board of this family, for telling it apart."""

@@ -1,0 +1,193 @@
+"""The steady state of a powered board: one mains period after the other until it repeats.
+
+Charges that nothing refreshes are set to zero, a geometric drift of the output is followed to where it ends. Faults in the
+starting path are solved from rest as well: when nothing swings there, the adapter does not start, however well it would run.
+"""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from triage.board.circuit import NOMINAL, Draw, circuit, output_ground
+from triage.board.fault import Fault
+from triage.board.part import Board
+from triage.families.family import Family
+from triage.physics.netlist import Compiled, Netlist, compile_netlist
+from triage.physics.transient import V_MAX, Quality, State, Stretch, Watch, initial_state, rest_state, run_stretch
+
+MOST_PERIODS = 8
+SETTLED_OUTPUT = 0.012
+"""Change of the output over a period that counts as none, as a share of its rated value [-]."""
+SETTLED_CHARGE = 0.04
+"""Change of an electrolytic's voltage over a period that counts as none [-]."""
+QUIET_FREQUENCY = 60.0
+"""Below this nothing switches [Hz]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Settled:
+    """The last mains period of a run, and what it started from."""
+
+    stretch: Stretch
+    rows: Mapping[tuple[str, str], int]
+    """(ref or node, suffix) -> row of the statistics."""
+    capacitors: Mapping[str, float]
+    """Capacitor voltages at the end [V], to start a similar run from."""
+    periods: int
+    started: bool
+
+    def row(self, ref: str, suffix: str = "") -> np.ndarray:
+        """Statistics of one port, shape (9,)."""
+        result: np.ndarray = self.stretch.statistics[self.rows[ref, suffix]]
+        return result
+
+
+@dataclass(slots=True)
+class _Run:
+    """One board being settled."""
+
+    board: Board
+    family: Family
+    net: Netlist
+    compiled: Compiled
+    watch: Watch
+    quality: Quality
+    state: State
+    electrolytics: Mapping[str, int]
+    """Ref -> index among the capacitors."""
+    zeroed: int = 0
+    unfed_done: bool = False
+
+    def period(self) -> Stretch:
+        """The next mains period, begun at the crest."""
+        return run_stretch(self.compiled, self.state, 0.0, 1.0 / self.board.mains.frequency, self.watch, self.quality)
+
+
+def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
+           start: Mapping[str, float] | None = None, draw: Draw = NOMINAL) -> Settled:
+    """Steady state at ``mains`` [V rms] with ``load`` [ohm], begun from the capacitor voltages ``start`` [V].
+
+    Raises NoConvergence of the time-domain solution when it breaks off.
+    """
+    net = circuit(board, faults, draw=draw, mains=mains, load=load)
+    compiled = compile_netlist(net)
+    rows = {(port.ref, port.suffix): index for index, port in enumerate(net.ports)}
+    start_refs = {part.ref for part in board.parts if part.role in family.start_roles}
+    if any(fault.ref in start_refs for fault in faults):
+        run = _begin(board, family, net, compiled, quality, mains, {})
+        run.state = rest_state(compiled)
+        stretch = run.period()
+        if stretch.frequency == 0.0 and _output(run) < 0.1 * board.label.output_voltage:
+            return Settled(stretch, rows, _voltages(run), 1, False)
+    run = _begin(board, family, net, compiled, quality, mains, start or {})
+    stretch, periods = _repeat(run, rows)
+    return Settled(stretch, rows, _voltages(run), periods, True)
+
+
+def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quality: Quality, mains: float,
+           start: Mapping[str, float]) -> _Run:
+    """A run at the crest of the mains: the bulk capacitor charged, the others as given, else empty."""
+    bulk = board.by_role(family.bulk_role)
+    peak = 0.985 * mains * 2.0**0.5
+    known = {name: volts for name, volts in start.items() if name in compiled.names["capacitor"]}
+    if bulk is not None:
+        known[bulk.ref] = min(known.get(bulk.ref, peak), peak)
+    electrolytics = {part.ref: compiled.names["capacitor"].index(part.ref) for part in board.parts
+                     if part.kind == "electrolytic"}
+    return _Run(board, family, net, compiled, _watch(board, family, compiled), quality, initial_state(compiled, known),
+                electrolytics)
+
+
+def _watch(board: Board, family: Family, compiled: Compiled) -> Watch:
+    """The switch and the bulk voltage for the count of swings."""
+    switch, bulk = board.by_role(family.switch_role), board.by_role(family.bulk_role)
+    if switch is None or bulk is None:
+        return Watch()
+    drain = compiled.index(switch.pins["collector" if "collector" in switch.pins else "drain"])
+    ground = compiled.index(board.ground["primary"])
+    return Watch((drain, ground, compiled.index(bulk.pins["plus"]), ground))
+
+
+def _voltages(run: _Run) -> dict[str, float]:
+    """Capacitor voltages by name [V]."""
+    return dict(zip(run.compiled.names["capacitor"], map(float, run.state.capacitors), strict=True))
+
+
+def _output(run: _Run) -> float:
+    """Output voltage now [V]."""
+    plus, minus = run.compiled.index("out"), run.compiled.index(output_ground(run.board))
+    return float((run.state.nodes[plus] if plus >= 0 else 0.0) - (run.state.nodes[minus] if minus >= 0 else 0.0))
+
+
+def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, int]:
+    """Periods until the output repeats; returns the last one and how many there were."""
+    nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
+    limit = min((part.ratings["voltage"] for part in run.board.parts if part.role == run.family.output_role
+                 and "voltage" in part.ratings), default=1e9)
+    for number in range(1, MOST_PERIODS + 1):
+        before = run.state.capacitors.copy()
+        stretch = run.period()
+        change, output = _output(run) - output, _output(run)
+        if _empty_unfed(run, stretch, rows, before):
+            last, output = None, _resting_output(run)
+            continue
+        drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
+                     for ref, k in run.electrolytics.items()), default=0.0)
+        highest = stretch.statistics[rows["out", "node"], V_MAX]
+        if (abs(change) < SETTLED_OUTPUT * nominal and drift < SETTLED_CHARGE) or highest > 1.8 * limit:
+            break
+        last = _follow_drift(run, change, last)
+    return stretch, number
+
+
+def _resting_output(run: _Run) -> float:
+    """Voltage of the output capacitor [V], the output voltage of a board at rest."""
+    part = run.board.by_role(run.family.output_role)
+    return float(run.state.capacitors[run.electrolytics[part.ref]]) if part and part.ref in run.electrolytics else 0.0
+
+
+def _rated(run: _Run, ref: str) -> float:
+    return run.board.part(ref).ratings.get("voltage", 10.0)
+
+
+def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], before: np.ndarray) -> bool:
+    """Set charges to zero that nothing refreshes; True when the period must be run again."""
+    caps, power = run.state.capacitors, float(stretch.statistics[rows["ADAPTER", ""], 8])
+    bulk = run.board.by_role(run.family.bulk_role)
+    index = run.electrolytics.get(bulk.ref) if bulk else None
+    if run.zeroed < 2 and power < 2e-3 and index is not None and 1.0 < caps[index] < 0.9995 * before[index]:
+        run.state = initial_state(run.compiled)
+        run.zeroed += 1
+        return True
+    falling = [k for ref, k in run.electrolytics.items() if k != index and _only_falls(run, stretch, rows, ref, before)]
+    if falling and not run.unfed_done:
+        run.unfed_done = True
+        caps[falling] = 0.0
+        return True
+    if stretch.frequency < QUIET_FREQUENCY and run.zeroed < 2:
+        idle = [k for k in range(len(caps)) if k != index and 1e-2 < abs(caps[k]) < abs(before[k]) * (1 - 2e-4)]
+        if idle:
+            caps[idle] = 0.0
+            run.zeroed += 1
+            return True
+    return False
+
+
+def _only_falls(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], ref: str, before: np.ndarray) -> bool:
+    """True for an electrolytic whose voltage was never above its start and ends well below it."""
+    k = run.electrolytics[ref]
+    start, end = float(before[k]), float(run.state.capacitors[k])
+    highest = float(stretch.statistics[rows[ref, ""], V_MAX])
+    return 0.02 * run.board.label.output_voltage < end < 0.985 * start and highest <= start + 1e-3
+
+
+def _follow_drift(run: _Run, change: float, last: float | None) -> float | None:
+    """Move the output capacitor towards the end of a geometric drift; returns the change to compare the next one with."""
+    nominal = run.board.label.output_voltage
+    part = run.board.by_role(run.family.output_role)
+    if last is not None and change * last > 0.0 and abs(change) > 0.01 * nominal and 0.1 < change / last < 0.95 and part:
+        ratio, k = change / last, run.electrolytics[part.ref]
+        run.state.capacitors[k] = max(run.state.capacitors[k] + 0.9 * change * ratio / (1.0 - ratio), 0.0)
+        return None
+    return change
