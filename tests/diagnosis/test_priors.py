@@ -1,0 +1,105 @@
+"""Hypotheses and their chances before anything was seen. Reasoned checks unless a source is named."""
+
+import numpy as np
+import pytest
+
+from triage.board.fault import Fault, Hypothesis
+from triage.diagnosis.hypotheses import NO_PART_FAULT, Collateral, pairs, single_faults
+from triage.diagnosis.learning import POOLED_STRENGTH, factors
+from triage.diagnosis.priors import EVEN_SHARE, Weight, evened, outside_share, prior_of
+from triage.errors import EntryError
+
+A, B, C, D = (Fault(ref, "open") for ref in "ABCD")
+A2 = Fault("A", "short")
+WEIGHTS = {A: Weight(4.0), B: Weight(3.0), C: Weight(2.0), D: Weight(1.0), A2: Weight(1.0)}
+CHAIN = {A: (Collateral((C, D), 0.8),)}
+
+
+def test_chances_add_up_and_no_part_fault_has_its_share() -> None:
+    prior = prior_of(WEIGHTS, CHAIN)
+    assert prior.chance.sum() == pytest.approx(1.0, abs=1e-12)
+    assert prior.hypotheses[0] == NO_PART_FAULT and prior.chance[0] == pytest.approx(outside_share())
+
+
+def test_share_outside_the_board_follows_from_the_public_counts() -> None:
+    """180 of 263 causes: Open Repair Data (Open Repair Alliance), data to July 2025; see outside_causes.toml.
+    """
+    assert outside_share() == pytest.approx(180 / 263, abs=1e-12)
+
+
+def test_collateral_splits_a_root_by_its_chance() -> None:
+    found = {w.hypothesis: w.weight for w in single_faults({A: 4.0, B: 3.0}, CHAIN)}
+    assert found[Hypothesis((A,), (C, D))] == pytest.approx(3.2) and found[Hypothesis((A,))] == pytest.approx(0.8)
+    assert found[Hypothesis((B,))] == 3.0
+
+
+def test_ways_that_differ_with_the_load_share_the_chance() -> None:
+    both = {A: (Collateral((C,), 0.5), Collateral((D,), 0.3), Collateral((C,), 0.1))}
+    found = {w.hypothesis.collateral: w.weight for w in single_faults({A: 1.0}, both)}
+    assert found == pytest.approx({(C,): 0.6, (D,): 0.3, (): 0.1})
+
+
+def test_pairs_carry_their_share_and_the_chance_of_what_did_not_happen() -> None:
+    weights = {A: 0.4, B: 0.3, C: 0.3}
+    found = {w.hypothesis: w.weight for w in pairs(weights, {}, 0.04, 0.0)}
+    assert sum(found.values()) == pytest.approx(0.04)
+    split = {w.hypothesis: w.weight for w in pairs(weights, {A: (Collateral((D,), 0.9),)}, 0.04, 0.0)}
+    assert split[Hypothesis((A, B))] == pytest.approx(0.1 * found[Hypothesis((A, B))])
+    assert split[Hypothesis((A, B), (D,))] == pytest.approx(0.9 * found[Hypothesis((A, B))])
+
+
+def test_a_root_and_its_own_collateral_are_no_pair() -> None:
+    found = {w.hypothesis for w in pairs({A: 0.5, C: 0.5}, CHAIN, 0.04, 0.0)}
+    assert found == {Hypothesis((A, C))}, "only the pair in which the collateral did not happen is left"
+
+
+def test_two_modes_of_one_part_are_no_pair_and_the_floor_holds() -> None:
+    found = pairs({A: 0.5, A2: 0.3, B: 0.2}, {}, 0.04, 0.0)
+    assert all(len({f.ref for f in w.hypothesis.root}) == 2 for w in found)
+    assert pairs({A: 0.5, B: 0.5}, {}, 0.04, 0.05) == ()
+
+
+@pytest.mark.parametrize("floor", [1e-3, 3e-3, 8e-3])
+def test_the_floor_cuts_exactly(floor: float) -> None:
+    rng = np.random.default_rng(5)
+    weights = {Fault(f"P{i}", "open"): float(w) for i, w in enumerate(rng.dirichlet(np.ones(12) * 0.5))}
+    everything = pairs(weights, {}, 0.04, 0.0)
+    assert {w.hypothesis for w in pairs(weights, {}, 0.04, floor)} == {w.hypothesis for w in everything if w.weight >= floor}
+
+
+def test_an_even_share_bounds_every_fault_from_below() -> None:
+    even = evened({A: 1e6, B: 1e-6})
+    assert sum(even.values()) == pytest.approx(1.0) and even[B] == pytest.approx(EVEN_SHARE / 2, rel=1e-6)
+
+
+@pytest.mark.parametrize("weight", [0.0, -1.0, float("inf"), float("nan")])
+def test_a_weight_that_is_none_is_refused(weight: float) -> None:
+    with pytest.raises(EntryError, match="above 0"):
+        prior_of({A: Weight(weight), B: Weight(1.0)}, {})
+
+
+def test_prior_over_another_list_keeps_the_ratios() -> None:
+    prior = prior_of(WEIGHTS, CHAIN)
+    some = prior.over((Hypothesis((B,)), NO_PART_FAULT, Hypothesis((Fault("Z", "open"),))))
+    place = prior.hypotheses.index(Hypothesis((B,)))
+    assert some[0] / some[1] == pytest.approx(prior.chance[place] / prior.chance[0]) and some[2] == 0
+    with pytest.raises(EntryError, match="none of the expected"):
+        prior.over((Hypothesis((Fault("Z", "open"),)),))
+
+
+def test_closed_jobs_move_a_rate_as_far_as_they_count() -> None:
+    """(s + n) / (s + E): the mean of Gamma(s, s) after n failures where E were expected."""
+    jobs = [{A: 0.2, B: 0.8}] * 10
+    got = factors(jobs, [A] * 6 + [B] * 4)
+    assert got[A] == pytest.approx((POOLED_STRENGTH + 6) / (POOLED_STRENGTH + 2))
+    assert got[B] == pytest.approx((POOLED_STRENGTH + 4) / (POOLED_STRENGTH + 8))
+    prior = prior_of(WEIGHTS, {}, factors=got, pair_share=0.0)
+    plain = prior_of(WEIGHTS, {}, pair_share=0.0)
+    place = prior.hypotheses.index(Hypothesis((A,)))
+    assert prior.chance[place] > plain.chance[place] and "own closed jobs x2.00" in prior.why[A]
+
+
+def test_a_profile_starts_from_the_pooled_factor() -> None:
+    pooled = factors([{A: 0.5}] * 8, [A] * 8)
+    both = factors([{A: 0.5}] * 8, [A] * 8, [{A: 0.5}] * 2, [])
+    assert 1 < both[A] < pooled[A]
