@@ -19,7 +19,6 @@ from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.priors import Weight, prior_of
-from triage.job.engine_room import RetestNeed
 from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
 
 PROFILE = "harbour-handset-charger"
@@ -101,9 +100,3 @@ class StandIn:
             for part in board.parts
         )
         return replace(board, parts=parts)
-
-    def retest(self, board: Board) -> tuple[RetestNeed, ...]:
-        return (
-            RetestNeed("insulation", "insulation resistance", "at least 2 Mohm", "house table", False, True),
-            RetestNeed("output", "output at full load", "4.75 V to 5.25 V", "label", True),
-        )

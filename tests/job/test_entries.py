@@ -45,7 +45,7 @@ def test_an_adapter_that_comes_back_opens_the_job_again() -> None:
 
 
 def test_a_retest_counts_for_the_parts_fitted_before_it_only() -> None:
-    line = make_entry("retest", TIME, check="output", result="pass")
+    line = make_entry("retest", TIME, check="output", result="pass", counts_as="pass")
     later = make_entry("fitted", TIME, ref="C2", type="22u 25V")
     assert replay((*log(), line)).retests == (("output", "pass"),)
     assert replay((*log(), line, later)).retests == ()
@@ -85,7 +85,7 @@ SAID = {"kind": "reading", "function": "ohms", "plus": "x", "minus": "y", "condi
         ({**SAID, "function": 7}, "function"),
         ({"kind": "complaint", "state": "kaputt", "condition": "full"}, "state"),
         ({"kind": "undo", "entry": 1.5}, "entry"),
-        ({"kind": "retest", "check": "output", "result": "yes"}, "result"),
+        ({"kind": "retest", "check": "output", "result": "yes", "counts_as": "pass"}, "result"),
         ({"kind": "power", "on": "yes"}, "on"),
         ({"kind": "note", "note": "x" * 2001}, "note"),
         ({"kind": "spell"}, "kind"),

@@ -28,12 +28,14 @@ from triage.job.engine_room import Workings
 from triage.job.entries import last_standing, make_entry, replay
 from triage.job.gates import Rules, allow, facts_of
 from triage.job.lock import Lock
+from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import entry_text, stress_view
 from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
 from triage.quantities import parse, parse_reading
 from triage.safety.inspection import items, judge
+from triage.safety.retest import gate_keys
 
 Clock = Callable[[], datetime]
 
@@ -58,13 +60,10 @@ class Bench:
         self.job = job
         self._lock = lock
         self._clock = clock
-        self._needs = workings.retest(self.board)
-        self._rules = Rules.of_board(
-            self.board,
-            before_power=[need.key for need in self._needs if need.before_power],
-            required=[need.key for need in self._needs if need.required],
-            live_lines=[need.key for need in self._needs if need.live],
-        )
+        self.lines = lines_of(self.board, str(job.document["job"].get("opened", "")))
+        """The lines of the retest."""
+        self.rules = Rules.of_board(self.board, gate_keys(self.lines))
+        """What the gates of this board ask for."""
         self.answers: picture.Answers | None = None
         """What ``prepare`` computed; None before."""
         if lock is not None:
@@ -147,17 +146,7 @@ class Bench:
 
     def facts(self, probability: Mapping[Fault, float] | None = None, found: bool = False) -> Any:
         """The facts that the gates know (``triage.safety.gate.GateFacts``)."""
-        return facts_of(self._rules, self.job.entries, _stamp(self._clock)[:10], probability, found)
-
-    @property
-    def rules(self) -> Rules:
-        """What the gates of this board ask for."""
-        return self._rules
-
-    @property
-    def needs(self) -> tuple[Any, ...]:
-        """The lines of the retest."""
-        return self._needs
+        return facts_of(self.rules, self.job.entries, _stamp(self._clock)[:10], probability, found)
 
     def acknowledge(self, key: str) -> JobView:
         """A caution was read; ``all`` stands for every caution of the board."""
@@ -281,13 +270,13 @@ class Bench:
             raise EntryError("repaired", "no part has been fitted", advice="record what was fitted first")
         return self._enter("repaired", result=result)
 
-    def retest(self, check: str, result: str, text: str = "") -> JobView:
-        """A line of the retest came out as ``pass``, ``fail`` or ``too close to call``; text: what was
-        read."""
-        known = [need.key for need in self._needs]
-        if known and check not in known:
-            raise EntryError("retest", f"{check!r}", "one of " + ", ".join(known))
-        return self._enter("retest", check=check, result=result, typed=text)
+    def retest(self, line: str, text: str) -> JobView:
+        """What a line of the retest came out as: a reading as typed, or ``yes`` or ``no`` for a look."""
+        found = answer(self.lines, line, text)
+        more = {"instrument": found.instrument} if found.instrument else {}
+        return self._enter(
+            "retest", check=line, result=found.verdict, counts_as=found.counts_as, value=found.value, typed=text, **more
+        )
 
     def close(self, verdict: str) -> JobView:
         """Close the job: ``repaired``, or whatever else became of the adapter (``replaced``, ``scrapped``
@@ -307,7 +296,7 @@ class Bench:
         if self.read_only:
             raise JobError(str(self.path), self.read_only, advice="nothing can be entered in this session")
         entry = make_entry(kind, _stamp(self._clock), **said)
-        allow(self._rules, self._facts_now(), kind, said)
+        allow(self.rules, self._facts_now(), kind, said)
         self.job.append(entry)
         if self._lock is not None:
             self._lock.touch()
@@ -333,7 +322,7 @@ class Bench:
         probe = Probe(function, self._node(plus), self._node(minus), condition)
         if function in COLD_FUNCTIONS and probe.live:
             raise EntryError(str(probe), f"{function} is read on the unpowered board only", "the condition cold")
-        if function in LIVE_FUNCTIONS and not probe.live and not self._rules.is_bulk(probe):
+        if function in LIVE_FUNCTIONS and not probe.live and not self.rules.is_bulk(probe):
             raise EntryError(
                 str(probe),
                 "nothing drives that on the unpowered board",

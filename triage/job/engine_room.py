@@ -5,7 +5,6 @@ Everything here is a pure function of the board, so that a job gives the same an
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from typing import Protocol
 
 from triage.board.fault import Fault
@@ -13,23 +12,6 @@ from triage.board.part import Board
 from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
 from triage.job.views import CandidateView, DemandView, MatchView
-
-
-@dataclass(frozen=True, slots=True)
-class RetestNeed:
-    """One line of the retest as the safety room asks for it."""
-
-    key: str
-    text: str
-    limit: str
-    """What must hold, with its unit."""
-    source: str
-    live: bool = False
-    """True for a line that needs the adapter powered."""
-    before_power: bool = False
-    """True for a line that must pass before a repaired adapter is powered."""
-    required: bool = True
-    """True for a line without which the job cannot be closed as repaired."""
 
 
 class Workings(Protocol):
@@ -58,6 +40,3 @@ class Workings(Protocol):
 
     def fitted(self, board: Board, ref: str, type: str) -> Board:
         """The board with this part in this position."""
-
-    def retest(self, board: Board) -> tuple[RetestNeed, ...]:
-        """What must hold after the repair."""

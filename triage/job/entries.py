@@ -44,7 +44,7 @@ KINDS: dict[str, dict[str, Any]] = {
     "fitted": {"ref": _TEXT, "type": _TEXT},
     "power": {"on": bool},
     "repaired": {"result": RESULTS},
-    "retest": {"check": _TEXT, "result": RETEST_RESULTS},
+    "retest": {"check": _TEXT, "result": RETEST_RESULTS, "counts_as": RETEST_RESULTS},
     "closed": {"verdict": _TEXT},
     "returned": {"reason": _TEXT},
     "note": {"note": _TEXT},

@@ -36,12 +36,10 @@ class Rules:
     def of_board(
         cls,
         board: Board,
-        before_power: Iterable[str] = (),
-        required: Iterable[str] = (),
-        live_lines: Iterable[str] = (),
+        retest_keys: tuple[Iterable[str], Iterable[str], Iterable[str]] = ((), (), ()),
     ) -> "Rules":
-        """The rules of a board. before_power, required, live_lines: keys of the retest lines."""
-        start = facts_for(board, looks_needed(board), before_power, required, live_lines)
+        """The rules of a board. retest_keys: lines before power, required lines, live lines."""
+        start = facts_for(board, looks_needed(board), *retest_keys)
         return cls(board, start, bulk_store(board), short_checks(board))
 
     @property
@@ -81,7 +79,7 @@ def facts_of(
         for event in _events(rules, facts, entry):
             facts = _change(facts, event)
         if entry.kind == "retest":
-            done = {**dict(facts.retested), entry.said["check"]: entry.said["result"]}
+            done = {**dict(facts.retested), entry.said["check"]: entry.said["counts_as"]}
             facts = replace(facts, retested=frozenset(done.items()))
         if entry.kind == "returned" or entry.said.get("result") == "still faulty":
             # The search goes on, on a board that counts as not repaired.

@@ -12,6 +12,7 @@ from triage.job import shown
 from triage.job.display import plain
 from triage.job.entries import Replay, replay
 from triage.job.gates import bulk_open, live_open, open_check, waits_for
+from triage.job.proof import shown as shown_lines
 from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
 from triage.safety.cautions import cautions
 from triage.safety.gate import GateFacts, safe_to_touch, stage
@@ -86,6 +87,7 @@ def view(bench: "Bench", message: str) -> JobView:
         read_only=plain(bench.read_only),
         waits_for=tuple(plain(one) for one in waits_for(facts)),
         looks=_looks(bench, facts),
+        retest=shown_lines(bench.lines, dict(state.retests)),
     )
 
 

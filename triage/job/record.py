@@ -11,7 +11,7 @@ from triage.quantities import engineering
 if TYPE_CHECKING:
     from triage.job.bench import Bench
 
-RESULTS = {"pass": "passed", "fail": "failed", "too close to call": "too close to call"}
+RESULTS = {"": "not done", "pass": "passed", "fail": "failed", "too close to call": "too close to call"}
 
 
 def report_sections(bench: "Bench") -> tuple[Section, ...]:
@@ -21,7 +21,7 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
     shown = view(bench, "")
     state = replay(bench.job.entries)
     head = bench.job.document["job"]
-    retest, missing = _retest(bench)
+    retest = tuple(RetestLine(one.text, one.limit, one.source, RESULTS[one.result]) for one in shown.retest)
     return sections(
         ReportContent(
             id=bench.job.id,
@@ -33,7 +33,10 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
             before=bench.stresses_before(),
             after=bench.stresses() if state.fitted else (),
             retest=retest,
-            not_done=(*missing, *(f"not looked at: {one.text}" for one in shown.looks if not one.said)),
+            not_done=(
+                *(f"retest: {one.text}" for one in shown.retest if not one.result),
+                *(f"not looked at: {one.text}" for one in shown.looks if not one.said),
+            ),
             cautions=cautions_of(bench),
         )
     )
@@ -50,12 +53,3 @@ def _label(bench: "Bench") -> tuple[tuple[str, str], ...]:
         ("protection class", label.insulation_class),
         ("year", year),
     )
-
-
-def _retest(bench: "Bench") -> tuple[tuple[RetestLine, ...], tuple[str, ...]]:
-    """(every line with its result, the lines not done)."""
-    done = dict(replay(bench.job.entries).retests)
-    lines = tuple(
-        RetestLine(need.text, need.limit, need.source, RESULTS.get(done.get(need.key, ""), "not done")) for need in bench.needs
-    )
-    return lines, tuple(f"retest: {need.text}" for need in bench.needs if need.key not in done)

@@ -211,6 +211,27 @@ class LookView:
 
 
 @dataclass(frozen=True, slots=True)
+class RetestView:
+    """One line of the proof after a repair."""
+
+    key: str
+    text: str
+    function: str
+    """Meter function, or ``look`` for a line that is answered with yes or no."""
+    condition: str
+    """``cold``, ``noload``, ``half`` or ``full``."""
+    unit: str
+    limit: str
+    """What must hold, in words: ``4.75 V to 5.25 V``."""
+    required: bool
+    """True when the job cannot be closed as repaired without it."""
+    source: str
+    note: str = ""
+    result: str = ""
+    """``pass``, ``fail``, ``too close to call``, or empty while not done."""
+
+
+@dataclass(frozen=True, slots=True)
 class JobView:
     """All a screen shows of an open job at one moment."""
 
@@ -237,6 +258,8 @@ class JobView:
     """What must be done before a live reading is proposed, in order."""
     looks: tuple[LookView, ...] = ()
     """Everything to look at or to measure before the board is judged."""
+    retest: tuple[RetestView, ...] = ()
+    """What must hold after the repair, in the order to be done."""
 
 
 @dataclass(frozen=True, slots=True)
