@@ -25,17 +25,13 @@ def test_end_gauge(outside_check) -> None:
     outside_check("combined uncertainty [nm]", source, u, 32.0, 0.5, absolute=True)
     outside_check("degrees of freedom", source, math.floor(freedom), 16, 0.0, absolute=True)
     outside_check("coverage factor", source, coverage_factor(0.99, freedom), 2.92, 0.005, absolute=True)
-    outside_check(
-        "expanded uncertainty [nm]", source, coverage_factor(0.99, freedom) * u, 93.0, 0.6, absolute=True
-    )
+    outside_check("expanded uncertainty [nm]", source, coverage_factor(0.99, freedom) * u, 93.0, 0.6, absolute=True)
 
 
 def test_end_gauge_contributions(outside_check) -> None:
     """JCGM 100:2008, table H.1, last column: 25, 9.7, 2.9 and 16.6 nm (16.7 from the rounded 0.029 K)."""
     for part, printed in zip(H1, (25.0, 9.7, 2.9, 16.6), strict=True):
-        outside_check(
-            "contribution [nm]", "JCGM 100:2008, table H.1", part.share, printed, 0.1, absolute=True
-        )
+        outside_check("contribution [nm]", "JCGM 100:2008, table H.1", part.share, printed, 0.1, absolute=True)
 
 
 @pytest.mark.parametrize(
@@ -59,9 +55,7 @@ def test_end_gauge_contributions(outside_check) -> None:
 )
 def test_students_t(level, freedom, printed, outside_check) -> None:
     """JCGM 100:2008, table G.2 (from memory)."""
-    outside_check(
-        "t factor", "JCGM 100:2008, table G.2", coverage_factor(level, freedom), printed, 0.006, absolute=True
-    )
+    outside_check("t factor", "JCGM 100:2008, table G.2", coverage_factor(level, freedom), printed, 0.006, absolute=True)
 
 
 def test_students_t_against_a_library(outside_check) -> None:

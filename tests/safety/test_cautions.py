@@ -39,7 +39,8 @@ def test_iron_transformer_adapter_has_no_bulk_caution() -> None:
 
 def test_plug_pins_only_with_an_x_capacitor() -> None:
     assert "plug pins" not in by_key(charger())
-    assert "0.86 s" in by_key(brick())["plug pins"].text
+    assert "0.86 s to fall below 60 V. Do not" in by_key(brick())["plug pins"].text
+    assert "more than the 2 s allowed" in by_key(brick(None))["plug pins"].text
 
 
 def test_without_a_fitting_resistor_no_bleeder_is_proposed() -> None:

@@ -100,3 +100,17 @@ def test_tape_layers(layers, verdict) -> None:
 def test_answers_that_do_not_belong_are_refused_with_the_choices(key, answer, ref) -> None:
     with pytest.raises(inspection.InspectionError, match="expected"):
         inspection.judge(charger(), key, answer, ref)
+
+
+def test_a_wrong_fuse_forbids_power_and_says_why() -> None:
+    assert inspection.judge_fuse("T2AH250V", "T2AH250V").verdict == "sound"
+    wrong = inspection.judge_fuse("F2AL250V", "T2AH250V")
+    assert wrong.verdict == "restorable"
+    assert wrong.text == "speed F is not T; breaks 35 A, not 1500 A"
+
+
+def test_a_capacitor_of_lesser_class_forbids_power() -> None:
+    assert inspection.judge_capacitor_class("Y1", "Y2").verdict == "sound"
+    wrong = inspection.judge_capacitor_class("X2", "Y1")
+    assert (wrong.verdict, wrong.text) == ("restorable", "X2 must not stand in for Y1")
+    assert "60384-14" in str(wrong.source)

@@ -88,6 +88,7 @@ def test_electric_strength_is_never_asked_and_says_who_may() -> None:
     line = by_key(brick())["electric strength"]
     assert not line.required
     assert "trained person" in line.title
+    assert line.note == "type test of IEC 60950-1, mains to output: 3000 V ac or 4242 V dc"
 
 
 @pytest.mark.parametrize(("volts", "verdict"), [(5.0, "pass"), (4.77, "too close to call"), (4.60, "fail"), (5.4, "fail")])
@@ -110,6 +111,12 @@ def test_insulation_over_range_passes_and_two_megohms_is_too_close(full_bench) -
 def test_a_multimeter_is_no_insulation_tester() -> None:
     with pytest.raises(InstrumentError, match="insulation_ohms"):
         retest.judge(by_key(brick())["insulation"], math.inf, BENCH)
+
+
+def test_a_close_reading_tells_how_likely_it_is_within() -> None:
+    line = by_key(charger(2014))["output full load"]
+    assert retest.judge(line, 4.75, BENCH).within == pytest.approx(0.5)
+    assert retest.judge(line, 5.0, BENCH).within > 0.99
 
 
 def test_looks_take_yes_or_no() -> None:

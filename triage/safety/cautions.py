@@ -132,10 +132,13 @@ def _bulk_values(bulk: Store | None, resistors: tuple[ResistorKind, ...] | None)
 def _line_values(line: Store | None) -> dict[str, object]:
     if line is None:
         return {}
+    allowed = table("discharge")["plug"]["seconds"]
+    late = f" (more than the {allowed:.0f} s allowed: look for the discharge resistor)"
     return {
         "x_capacitor": True,
         "x_ref": line.ref,
         "x_volts": line.voltage,
         "x_time": time_text(line.board_time),
+        "x_late": late if line.board_time > allowed else "",
         "x_safe": line.safe_voltage,
     }

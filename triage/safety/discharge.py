@@ -11,6 +11,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from triage.board.part import Board, Part
+from triage.physics.capacitor_discharge import resistance_for_time, stored_energy, time_to_voltage
 from triage.safety.leak_path import discharge_resistance
 from triage.safety.limits import Source, source_of, table
 
@@ -19,39 +20,6 @@ _BULK_ROLES = ("bulk capacitor", "boost capacitor")
 _ACROSS_LINE_ROLES = ("X capacitor",)
 BOOST_VOLTAGE = 400.0
 """Usual output of a power-factor stage [V]; common practice, no source."""
-
-
-def stored_energy(capacitance: float, voltage: float) -> float:
-    """Energy of a charged capacitor [J]: C·V²/2, for capacitance [F] and voltage [V].
-
-    >>> round(stored_energy(10e-6, 325.0), 4)
-    0.5281
-    """
-    return 0.5 * capacitance * voltage**2
-
-
-def discharge_time(resistance: float, capacitance: float, start: float, end: float) -> float:
-    """Time [s] in which a capacitor [F] falls from ``start`` to ``end`` [V] through a resistance [ohm]:
-    R·C·ln(V0/V).
-
-    0 when it starts below ``end``; ``inf`` when nothing discharges it. Source: S. J. Oxley, TT electronics,
-    Design Tool 4.
-
-    >>> round(discharge_time(2200.0, 10e-6, 325.0, 60.0), 5)
-    0.03717
-    """
-    return resistance * capacitance * math.log(start / end) if start > end else 0.0
-
-
-def discharge_resistance_max(capacitance: float, start: float, end: float, seconds: float) -> float:
-    """Highest resistance [ohm] that takes a capacitor [F] from ``start`` to ``end`` [V] in the time [s].
-
-    Source: exponential discharge; the 2 s to 60 V of a mains plug are IEC 62368-1, 5.5.2.2.
-
-    >>> round(discharge_resistance_max(0.33e-6, 373.0, 60.0, 2.0) / 1e6, 3)
-    3.317
-    """
-    return seconds / (capacitance * math.log(start / end))
 
 
 def touch_safe_voltage(capacitance: float) -> float:
@@ -104,8 +72,14 @@ class Store:
 
 def stores(board: Board) -> tuple[Store, ...]:
     """Every capacitor of the mains side that holds more than its touch-safe voltage, largest energy first."""
-    found = [_store(board, part) for part in board.parts if part.kind in _CAPACITORS and _on_mains(part)]
-    return tuple(sorted((s for s in found if s.voltage > s.safe_voltage), key=lambda s: -s.energy))
+    found = [
+        _store(board, part, voltage)
+        for part in board.parts
+        if part.kind in _CAPACITORS
+        and _on_mains(part)
+        and (voltage := _left_with(board, part)) > touch_safe_voltage(_largest(part))
+    ]
+    return tuple(sorted(found, key=lambda store: -store.energy))
 
 
 def bulk_store(board: Board) -> Store | None:
@@ -118,37 +92,36 @@ def _on_mains(part: Part) -> bool:
     return any(role in part.role for role in (*_BULK_ROLES, *_ACROSS_LINE_ROLES)) and "capacitance" in part.value
 
 
-def _store(board: Board, part: Part) -> Store:
-    plus, minus = tuple(part.pins.values())[:2]
-    capacitance = part.value["capacitance"] * (1.0 + part.tolerance.get("capacitance", 0.2))
+def _largest(part: Part) -> float:
+    """Capacitance at the upper end of its tolerance [F]."""
+    return part.value["capacitance"] * (1.0 + part.tolerance.get("capacitance", 0.2))
+
+
+def _left_with(board: Board, part: Part) -> float:
+    """Highest voltage a capacitor can be left with [V]: the crest of the highest mains, or a boost stage's
+    output."""
     crest = math.sqrt(2.0) * board.mains.high
-    voltage = max(crest, BOOST_VOLTAGE) if "boost" in part.role else crest
+    return max(crest, BOOST_VOLTAGE) if "boost" in part.role else crest
+
+
+def _store(board: Board, part: Part, voltage: float) -> Store:
+    plus, minus = tuple(part.pins.values())[:2]
+    capacitance = _largest(part)
     safe = touch_safe_voltage(capacitance)
     # While the bulk capacitor is charged too, no junction helps an X capacitor to empty.
     through_junctions = not any(role in part.role for role in _ACROSS_LINE_ROLES)
 
     def time_without(ref: str) -> float:
         resistance = discharge_resistance(board, plus, minus, ref, through_junctions)
-        return discharge_time(resistance, capacitance, voltage, safe)
+        return float(time_to_voltage(voltage, safe, resistance, capacitance))
 
     sound = time_without("")
     others = [(time_without(other.ref), other.ref) for other in board.parts if other.ref != part.ref]
     worst, worst_ref = max(others, default=(sound, ""))
     if worst <= sound * 1.01:
         worst, worst_ref = sound, ""
-    return Store(
-        part.ref,
-        part.role,
-        plus,
-        minus,
-        capacitance,
-        voltage,
-        stored_energy(capacitance, voltage),
-        safe,
-        sound,
-        worst,
-        worst_ref,
-    )
+    energy = float(stored_energy(capacitance, voltage))
+    return Store(part.ref, part.role, plus, minus, capacitance, voltage, energy, safe, sound, worst, worst_ref)
 
 
 @dataclass(frozen=True, slots=True)
@@ -201,7 +174,7 @@ class Bleeder:
 
     def time_to(self, voltage: float) -> float:
         """Time to fall to a voltage [V] -> [s]."""
-        return discharge_time(self.resistance, self.capacitance, self.voltage, voltage)
+        return float(time_to_voltage(self.voltage, voltage, self.resistance, self.capacitance))
 
 
 def shop_resistors() -> tuple[ResistorKind, ...]:
@@ -222,7 +195,7 @@ def propose_bleeder(store: Store, kinds: Iterable[ResistorKind] | None = None) -
 
 def _bleeder(store: Store, kind: ResistorKind) -> Bleeder | None:
     rule = table("discharge")["bleed"]
-    most = discharge_resistance_max(store.capacitance, store.voltage, store.safe_voltage, rule["seconds"])
+    most = float(resistance_for_time(rule["seconds"], store.voltage, store.safe_voltage, store.capacitance))
     for count in range(1, rule["count_max"] + 1):
         each = _step_below(most / count, rule["resistance_E12"])
         bleeder = Bleeder(kind, count, each, store.voltage, store.capacitance, source_of(rule))

@@ -15,11 +15,12 @@ from triage.errors import GateError
 from triage.safety.cautions import needed
 from triage.safety.cold_checks import short_checks
 from triage.safety.discharge import bulk_store
+from triage.safety.limits import table
 
 STAGES = ("cautions", "inspection", "cold", "live", "repair", "retest", "closed")
 """The way of a job from the mat to the file, in order."""
 
-SAFE_VOLTAGE = 60.0
+SAFE_VOLTAGE = float(table("discharge")["touch_safe"]["dc_V"])
 """A bulk capacitor below this may be touched [V]; IEC 62368-1:2018, table 4 (ES1 dc), from memory."""
 
 LOOKS = ("sound", "doubtful", "restorable", "veto", "skipped")

@@ -15,6 +15,7 @@ from triage.board.part import Board
 from triage.errors import TriageError
 from triage.safety import insulation
 from triage.safety.limits import Source, source_of, table
+from triage.safety.safety_parts import class_source, fuse_fits, may_replace, parse_fuse
 from triage.safety.uncertainty import rectangular, verdict
 
 VERDICTS = ("sound", "doubtful", "restorable", "veto")
@@ -87,6 +88,27 @@ def judge(board: Board, key: str, answer: str | float, ref: str = "", length_unc
             raise InspectionError(key, repr(answer), "a length or number at or above 0")
         return _measured(board, row, float(answer), length_uncertainty)
     return _seen(board, row, answer, ref)
+
+
+def judge_fuse(fitted: str, original: str) -> Finding:
+    """What the markings of a fitted and the original fuse say, such as ``F2AL250V`` and ``T2AH250V``.
+
+    Raises SafetyPartError for a marking that cannot be read.
+    """
+    reasons = fuse_fits(parse_fuse(fitted), parse_fuse(original))
+    source = Source("IEC 60127-2", "breaking capacity and time gates", "verified")
+    said = "restorable" if reasons else "sound"
+    return Finding("fuse", said, "; ".join(reasons) or f"{fitted} as {original}", source, ())
+
+
+def judge_capacitor_class(fitted: str, original: str) -> Finding:
+    """What the classes of a fitted and the original X or Y capacitor say, such as ``X2`` and ``Y1``.
+
+    Raises SafetyPartError for a class that is not of the standard.
+    """
+    fits = may_replace(fitted, original)
+    text = f"{fitted} {'may' if fits else 'must not'} stand in for {original}"
+    return Finding("safety capacitors", "sound" if fits else "restorable", text, class_source(original), ())
 
 
 def _facts(board: Board, dismantled: bool) -> Mapping[str, bool]:

@@ -147,8 +147,3 @@ def through_insulation() -> float:
     """Least distance through a single solid layer of reinforced insulation [m]. Source: IEC 60950-1,
     2.10.5.2."""
     return float(table("insulation")["through_insulation"]["least_mm"]) * 1e-3
-
-
-def tape_layers() -> int:
-    """Layers of tape to count between primary and secondary winding: three, so that every pair can pass."""
-    return int(table("insulation")["thin_sheet"]["bench_layers"])

@@ -70,6 +70,8 @@ class RetestResult:
     """Name of the instrument; empty for a look."""
     verdict: str
     """``pass``, ``fail`` or ``too close to call``."""
+    within: float
+    """Probability that the true value lies within the limits [0..1]."""
 
 
 def lines(board: Board, instruments: Instruments, today: date, connector: str = "") -> tuple[RetestLine, ...]:
@@ -116,16 +118,17 @@ def judge(line: RetestLine, value: float, instruments: Instruments, standard_unc
     if math.isnan(value) or (line.function == LOOK and value not in (0.0, 1.0)):
         raise RetestError(line.key, f"{value!r} is no answer", "1 or 0" if line.function == LOOK else "a reading")
     if line.function == LOOK:
-        return RetestResult(line.key, value, 0.0, "", "pass" if value else "fail")
+        return RetestResult(line.key, value, 0.0, "", "pass" if value else "fail", value)
     name = "given with the reading"
     if standard_uncertainty is None:
         meter = instruments.best(line.function, value)
         standard_uncertainty = instruments.accuracy(line.function, value if math.isfinite(value) else 0.0)
         name = meter.instrument if meter else ""
         if math.isinf(value) and line.low is not None and instruments.highest(line.function) < line.low:
-            return RetestResult(line.key, value, math.inf, name, "too close to call")
+            return RetestResult(line.key, value, math.inf, name, "too close to call", 0.5)
     said = uncertainty.verdict(value, standard_uncertainty, line.low, line.high)
-    return RetestResult(line.key, value, standard_uncertainty, name, said)
+    within = uncertainty.conformity(value, standard_uncertainty, line.low, line.high)
+    return RetestResult(line.key, value, standard_uncertainty, name, said, within)
 
 
 def load_regulation(idle: RetestResult, full: RetestResult) -> tuple[float, float]:
@@ -134,7 +137,8 @@ def load_regulation(idle: RetestResult, full: RetestResult) -> tuple[float, floa
     The accuracy of one meter is the same error twice, so that the counts alone count; taken as independent
     here, which is the larger figure. JCGM 100:2008, 5.1.2.
     """
-    return idle.value - full.value, math.hypot(idle.uncertainty, full.uncertainty)
+    inputs = (uncertainty.Contribution(idle.uncertainty), uncertainty.Contribution(full.uncertainty, -1.0))
+    return idle.value - full.value, uncertainty.combined(inputs)
 
 
 def counts_as_passed(line: RetestLine, verdict: str) -> bool:

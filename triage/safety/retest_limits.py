@@ -7,6 +7,7 @@ from datetime import date
 from triage.board.part import Board
 from triage.safety import output
 from triage.safety.energy import board_limits, region_of
+from triage.safety.insulation import barrier
 from triage.safety.limits import Source, source_of, table
 from triage.safety.touch_current import touch_current
 
@@ -48,6 +49,17 @@ def _insulation(case: RetestCase, condition: str) -> Bounds:
         source_of(record),
         f"at {record['test_V']:.0f} V dc; a sound adapter reads above 20 Mohm",
     )
+
+
+def _electric_strength(case: RetestCase, condition: str) -> Bounds:
+    """No limit for the bench; the type-test voltage of the adapter's own standard is told, for who may do
+    it."""
+    standard = barrier(case.board).standard
+    rows = table("insulation")["electric_strength"]
+    row = next((row for row in rows if row["standard"] == standard), rows[0])
+    alternating = f"{row['reinforced_ac_V']:.0f} V ac or " if "reinforced_ac_V" in row else ""
+    note = f"type test of {row['standard']}, mains to output: {alternating}{row['reinforced_dc_V']:.0f} V dc"
+    return Bounds(None, None, source_of(row), note)
 
 
 def _touch_current(case: RetestCase, condition: str) -> Bounds:
@@ -98,6 +110,7 @@ def _temperature(case: RetestCase, condition: str) -> Bounds:
 LIMITS: Mapping[str, Callable[[RetestCase, str], Bounds]] = {
     "protective conductor": _protective_conductor,
     "insulation": _insulation,
+    "electric strength": _electric_strength,
     "touch current": _touch_current,
     "no-load power": _no_load_power,
     "output": _output,

@@ -5,37 +5,12 @@ the line only half of the time and the reading is lower. What the meter shows is
 measuring network of IEC 60990.
 """
 
-import math
 from dataclasses import dataclass
 
 from triage.board.part import Board, Part
+from triage.physics.y_capacitor import touch_reading
 from triage.safety.insulation import rated_voltage
 from triage.safety.limits import Source, source_of, table
-
-
-def capacitor_current(capacitance: float, voltage: float, frequency: float) -> float:
-    """Current [A rms] of a capacitor [F] on a voltage [V rms] at a frequency [Hz]: 2·pi·f·C·U.
-
-    >>> round(capacitor_current(2.2e-9, 264.0, 60.0) * 1e3, 3)
-    0.219
-    """
-    return 2.0 * math.pi * frequency * capacitance * voltage
-
-
-def network_reading(capacitance: float, voltage: float, frequency: float) -> float:
-    """Reading [A rms] of the perception/reaction network fed through a capacitor [F] from a voltage [V rms]
-    at [Hz].
-
-    U2 over the body resistance. Source: IEC 60990:2016, figure 4.
-    """
-    parts = table("touch_current")["network"]
-    jw = 2j * math.pi * frequency
-    skin = 1.0 / (1.0 / parts["series_ohm"] + jw * parts["series_F"])
-    filter_branch = parts["filter_ohm"] + 1.0 / (jw * parts["filter_F"])
-    body = 1.0 / (1.0 / parts["body_ohm"] + 1.0 / filter_branch)
-    u1 = voltage * body / (1.0 / (jw * capacitance) + skin + body)
-    u2 = u1 / (jw * parts["filter_F"]) / filter_branch
-    return abs(complex(u2)) / parts["body_ohm"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,7 +57,7 @@ def touch_current(board: Board) -> TouchCurrent:
         newest.pop("IEC 60950-1")
     row = min(newest.values(), key=lambda row: row["amps_rms"])
     return TouchCurrent(
-        network_reading(capacitance, voltage, frequency) if capacitance else 0.0,
+        float(touch_reading(capacitance, voltage, frequency).weighted) if capacitance else 0.0,
         row["amps_rms"],
         voltage,
         capacitance,
