@@ -81,6 +81,21 @@ CAUTIONS = (
     ),
 )
 
+LOOKS = (
+    v.LookView("board", "Board: browned, charred or carbonised anywhere?", ("sound", "browned", "charred")),
+    v.LookView("capacitors", "Electrolytics: bulged top, pushed-out bung, leaked?", ("sound", "bulging"), "", ("C1", "C4", "C5")),
+    v.LookView("distance", "Shortest way over the board between the sides", (), "m", (), False),
+)
+
+
+NEEDS = (
+    v.RetestView(
+        "insulation", "insulation between the sides at 500 V", "ohms", "cold", "ohm", "at least 2 Mohm", True, "invented"
+    ),
+    v.RetestView("output", "output", "volts_dc", "full", "V", "4.75 V to 5.25 V", True, "invented", "through the current limit"),
+)
+
+
 _FAULTS = (
     ("Q1", "ce_short", 0.34, ("RF1.open",), "main switch", "collector-emitter voltage 104 % of rating"),
     ("RF1", "open", 0.22, (), "fusible input resistor", ""),
@@ -255,6 +270,10 @@ class FakeBench:
     acknowledged: list[str] = field(default_factory=list)
     fitted: dict[str, str] = field(default_factory=dict)
     result: str = ""
+    looked: dict[str, str] = field(default_factory=dict)
+    checked: dict[str, str] = field(default_factory=dict)
+    powered: bool = False
+    released: bool = False
     closed: str = ""
     message: str = ""
 
@@ -269,7 +288,8 @@ class FakeBench:
         weights = [fault[2] for fault in _FAULTS]
         for (_, plus, minus, _), value in self.values.items():
             for index, fault in enumerate(_FAULTS):
-                low, high = _BANDS.get((plus, minus), {}).get(fault[0], _SOUND.get((plus, minus), (-math.inf, math.inf)))
+                sound = _SOUND.get((plus, minus), (-math.inf, math.inf))
+                low, high = _BANDS.get((plus, minus), {}).get(fault[0], sound)
                 weights[index] *= 1.0 if low <= value <= high else 0.01
         total = sum(weights)
         return [weight / total for weight in weights]
@@ -277,10 +297,12 @@ class FakeBench:
     def _stage(self) -> str:
         if self.closed:
             return "closed"
-        if self.result == "works":
-            return "retest"
         if len(self.acknowledged) < len(CAUTIONS):
             return "cautions"
+        if any(one.needed and one.key not in self.looked for one in LOOKS):
+            return "inspection"
+        if self.fitted:
+            return "retest"
         return "repair" if self._verdict().status == "found" else "cold"
 
     def _suspects(self) -> tuple[v.SuspectView, ...]:
@@ -330,7 +352,7 @@ class FakeBench:
         if not self.ready:
             return self._framed(computing=True)
         verdict = self._verdict()
-        gate_open = len(self.acknowledged) == len(CAUTIONS)
+        gate_open = self._stage() not in ("cautions", "inspection")
         return self._framed(
             suspects=self._suspects(),
             verdict=verdict,
@@ -339,7 +361,10 @@ class FakeBench:
 
     def _framed(self, **more: object) -> v.JobView:
         read = ("volts_dc", "bulk", "pgnd", "cold") in self.values
+        looks = tuple(replace(one, said=self.looked.get(one.key, "")) for one in LOOKS)
         return v.JobView(
+            looks=looks,
+            retest=tuple(replace(one, result=self.checked.get(one.key, "")) for one in NEEDS),
             id=BOARD.id,
             title=BOARD.title,
             stage=self._stage() if self.ready else "cautions",
@@ -364,7 +389,29 @@ class FakeBench:
     def complain(self, text: str, state: str, condition: str) -> v.JobView:
         return self._log(f"complaint: {state} at {condition}" + (f", {text}" if text else ""))
 
+    def look(self, item: str, answer: str, ref: str = "") -> v.JobView:
+        self.looked[item] = "sound" if answer == "sound" else "doubtful"
+        return self._log(f"looked at {item}: {answer} {ref}".strip())
+
+    def power(self, on: bool) -> v.JobView:
+        self.powered = on
+        return self._log("powered up" if on else "unplugged")
+
+    def note(self, text: str) -> v.JobView:
+        return self._log(f"note: {text}")
+
+    def release(self) -> None:
+        self.released = True
+
+    def retest(self, line: str, text: str) -> v.JobView:
+        need = next(one for one in NEEDS if one.key == line)
+        _value(text, need.unit)
+        self.checked[line] = "pass"
+        return self._log(f"retest {line}: pass ({text})")
+
     def see(self, sign: str, ref: str) -> v.JobView:
+        if sign == "sound" and not ref:
+            self.looked |= {one.key: "sound" for one in LOOKS if one.key not in self.looked}
         if ref and ref not in {part.ref for part in BOARD.parts}:
             raise EntryError("sign", f"no part {ref}", "a ref of the board", "look at the drawing")
         return self._log(f"seen: {sign} {ref}".strip())
@@ -400,6 +447,9 @@ class FakeBench:
 
     def suspect(self, ref: str) -> v.JobView:
         return self._log(f"hunch: {ref}")
+
+    def what_if(self, ref: str, type: str) -> tuple[v.StressView, ...]:
+        return (replace(STRESSES[0], rating=1100.0, limit=880.0, ratio=0.66, verdict="ok"), *STRESSES[1:])
 
     def stresses(self) -> tuple[v.StressView, ...]:
         if self.fitted:
@@ -511,4 +561,5 @@ class FakeShelf:
             self.bench.complain("", "dead", "full")
             for key, _ in CAUTIONS:
                 self.bench.acknowledge(key)
+            self.bench.see("sound", "")
         return self.bench

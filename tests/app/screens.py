@@ -21,7 +21,9 @@ COMPLAIN = ("down", "enter", "enter", "enter")
 """The adapter is dead, seen at full load, no words."""
 CAUTIONS = ("enter", "enter", "enter")
 """Three cautions, one by one."""
-TO_BENCH = (*BEGIN, *COMPLAIN, *CAUTIONS)
+LOOKED = ("enter", "enter", "enter", "enter")
+"""Board and capacitors looked at and sound."""
+TO_BENCH = (*BEGIN, *COMPLAIN, *CAUTIONS, *LOOKED)
 
 
 def strips(app: Any) -> list[Strip]:
@@ -95,7 +97,8 @@ def play(
     prepare_seconds: float = 0.0,
     at_bench: bool = False,
 ) -> TriageApp:
-    """Run a story on a fresh app, from the start page or from the first reading, and return the app when it is over."""
+    """Run a story on a fresh app, from the start page or from the first reading, and return the app when it
+    is over."""
     shelf = FakeShelf(folder, prepare_seconds, at_bench)
     job = folder / "radio-desk-cube.toml" if at_bench else None
     app = TriageApp(shelf, Terminal(own_colours, glyphs), job)  # type: ignore[arg-type]

@@ -1,7 +1,7 @@
 """Contrast of every text on its background, measured on the drawn screens.
 
-Published: WCAG 2.1, success criterion 1.4.3 (at least 4.5:1) and the definitions of contrast ratio and relative luminance
-in its glossary; the pair black on white is 21:1 by definition.
+Published: WCAG 2.1, success criterion 1.4.3 (at least 4.5:1) and the definitions of contrast ratio and
+relative luminance in its glossary; the pair black on white is 21:1 by definition.
 """
 
 import pytest
@@ -70,6 +70,9 @@ def test_every_text_is_readable(tmp_path, theme):
         await press(pilot, *TO_BENCH[2:5])
         await look()
         await press(pilot, "enter", "enter", "enter", "enter")
+        await look()
+        await look("down", "enter", "down")
+        await press(pilot, "f8", "end", "enter")
         await look()
         await type_in(pilot, "12")
         await look("1", "x", "enter")

@@ -6,7 +6,7 @@ from pathlib import Path
 import pytest
 from textual.pilot import Pilot
 
-from tests.app.screens import BEGIN, CAUTIONS, COMPLAIN, play, press, settle, text_of, type_in
+from tests.app.screens import BEGIN, CAUTIONS, COMPLAIN, LOOKED, play, press, settle, text_of, type_in
 from triage.app.glyphs import ASCII
 from triage.app.keys import COMMANDS
 
@@ -36,6 +36,8 @@ def test_a_new_job_asks_for_the_complaint_then_the_cautions_then_reads(tmp_path)
         await press(pilot, *CAUTIONS[:2])
         assert "cautions: 1 to acknowledge" in text_of(pilot.app)
         await press(pilot, "enter")
+        assert "INSPECTION" in text_of(pilot.app)
+        await press(pilot, *LOOKED)
         text = text_of(pilot.app)
         assert "COLD READINGS" in text and "next  volts DC" in text
 
@@ -122,8 +124,8 @@ def test_an_unknown_node_is_refused_and_the_form_stays(tmp_path):
 
 def test_a_sign_is_entered_with_its_part(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
-        await pilot.press("f8")
-        await settle(pilot)
+        await type_in(pilot, "/")
+        await type_in(pilot, "seen")
         await type_in(pilot, "bul")
         await type_in(pilot, "C4")
         text = text_of(pilot.app)
@@ -190,18 +192,58 @@ def test_a_half_read_marking_finds_parts_while_typing_and_shows_why_one_is_refus
     play(tmp_path, story, at_bench=True)
 
 
-def test_repair_and_close_lead_to_the_record(tmp_path):
+def test_a_repaired_adapter_is_retested_and_the_job_closed(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await found(pilot)
-        await press(pilot, "f6", "enter")
-        assert "RETEST" in text_of(pilot.app)
-        await press(pilot, "end")
+        await press(pilot, "f5", "enter", "enter", "f6")
+        text = text_of(pilot.app)
+        assert "RETEST" in text and "insulation between the sides at 500 V: at least 2 Mohm" in text
         await press(pilot, "enter")
+        await type_in(pilot, "50M")
+        assert "noted: retest insulation: pass (50M)" in text_of(pilot.app)
+        await press(pilot, "enter")
+        await type_in(pilot, "5.02 V")
+        assert text_of(pilot.app).count("ok ") == 2
+        await press(pilot, "down", "down", "down", "enter")
         text = text_of(pilot.app)
         assert "CLOSED" in text and "saved after every entry" in text and "complaint: dead at full" in text
 
     app = play(tmp_path, story, at_bench=True)
-    assert app.shelf.bench.closed == "Q1 ce_short"  # type: ignore[attr-defined]
+    assert app.shelf.bench.closed == "repaired"  # type: ignore[attr-defined]
+
+
+def test_each_look_is_answered_with_its_part(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN, *COMPLAIN, *CAUTIONS)
+        assert "to look at: 2 before the readings" in text_of(pilot.app)
+        await press(pilot, "enter", "enter")
+        assert "to look at: 1 before the readings" in text_of(pilot.app)
+        await press(pilot, "enter", "down", "enter")
+        await type_in(pilot, "c4")
+        text = text_of(pilot.app)
+        assert "noted: looked at capacitors: bulging C4" in text and text.startswith(" bench ")
+
+    play(tmp_path, story)
+
+
+def test_everything_else_can_be_called_sound_at_once(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN, *COMPLAIN, *CAUTIONS)
+        await pilot.press("end")
+        await press(pilot, "enter")
+        assert text_of(pilot.app).startswith(" bench ")
+
+    play(tmp_path, story)
+
+
+def test_power_is_told_in_the_reading_field(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await type_in(pilot, "on")
+        assert "noted: powered up" in text_of(pilot.app)
+        await type_in(pilot, "off")
+        assert "noted: unplugged" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
 
 
 @pytest.mark.parametrize("key", PLACES)

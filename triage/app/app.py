@@ -94,12 +94,12 @@ class TriageApp(App[int]):
         view = self.desk.view
         if view is None:
             return
-        place = "bench"
-        if not view.entries:
-            place = "intake"
-        elif view.stage == "cautions":
-            place = "cautions"
-        self.action_go(place)
+        self.action_go("intake" if not view.entries else self.place_of_stage())
+
+    def place_of_stage(self) -> str:
+        """The place where the job goes on at its present stage."""
+        stage = self.desk.view.stage if self.desk.view else ""
+        return {"cautions": "cautions", "inspection": "looks", "retest": "retest", "closed": "record"}.get(stage, "bench")
 
     def begin(self, profile: str) -> None:
         """Begin a job on a profile."""
@@ -154,6 +154,10 @@ class TriageApp(App[int]):
     def action_undo(self) -> None:
         """Take the last entry back."""
         self.desk.enter(lambda bench: bench.undo())
+
+    def action_power(self, on: bool) -> None:
+        """Say that the adapter was powered up or unplugged."""
+        self.desk.enter(lambda bench: bench.power(on))
 
     def action_start(self) -> None:
         """Put the job away and go back to the start page."""

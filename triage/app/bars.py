@@ -13,9 +13,7 @@ def share_bar(share: float, width: int, glyphs: Glyphs) -> str:
     return glyphs.fill * filled + glyphs.rest * (width - filled)
 
 
-def stress_bar(
-    ratio: float, limit: float | None, width: int, glyphs: Glyphs, mark: str, span: float = 1.25
-) -> Line:
+def stress_bar(ratio: float, limit: float | None, width: int, glyphs: Glyphs, mark: str, span: float = 1.25) -> Line:
     """A stress as a share of its rating, with ``:`` at the derated limit and ``|`` at the rating.
 
     Parameters

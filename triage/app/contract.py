@@ -37,6 +37,12 @@ class OpenJob(Protocol):
     def see(self, sign: str, ref: str) -> JobView:
         """Something seen, heard, smelt or felt."""
 
+    def look(self, item: str, answer: str, ref: str = "") -> JobView:
+        """What one look of the inspection found."""
+
+    def power(self, on: bool) -> JobView:
+        """The adapter was powered up through the current limit, or unplugged."""
+
     def read(self, function: str, plus: str, minus: str, condition: str, text: str) -> JobView:
         """A reading as typed."""
 
@@ -45,6 +51,9 @@ class OpenJob(Protocol):
 
     def undo(self) -> JobView:
         """Take the last entry back."""
+
+    def note(self, text: str) -> JobView:
+        """A remark for the next reader."""
 
     def suspect(self, ref: str) -> JobView:
         """The technician's own hunch."""
@@ -64,14 +73,23 @@ class OpenJob(Protocol):
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         """Catalog parts that a half-read marking may mean."""
 
+    def what_if(self, ref: str, type: str) -> tuple[StressView, ...]:
+        """The stresses with a part fitted, nothing recorded."""
+
     def fit(self, ref: str, type: str) -> JobView:
         """A part was fitted."""
 
     def repaired(self, result: str) -> JobView:
         """What the repair led to."""
 
+    def retest(self, line: str, text: str) -> JobView:
+        """What a line of the retest came out as: a reading as typed, ``yes`` or ``no`` for a look."""
+
     def close(self, verdict: str) -> JobView:
         """Close the job."""
 
     def report(self, format: str) -> str:
         """The report as ``text`` or ``markdown``."""
+
+    def release(self) -> None:
+        """Give the job free for other sessions."""

@@ -26,9 +26,7 @@ class Desk:
     fault : called with an exception that no person at the bench can mend
     """
 
-    def __init__(
-        self, deliver: Deliver, changed: Callable[[], None], fault: Callable[[Exception], None]
-    ) -> None:
+    def __init__(self, deliver: Deliver, changed: Callable[[], None], fault: Callable[[Exception], None]) -> None:
         self._deliver = deliver
         self._changed = changed
         self._fault = fault
@@ -144,6 +142,8 @@ class Desk:
         """Let go of the job; answers still to come for it are dropped."""
         self._quick.forget()
         self._slow.forget()
+        if self.bench is not None:
+            self.bench.release()
         self.bench, self.view, self.message, self.refused, self.pending = None, None, "", False, False
         self.track = []
 

@@ -1,12 +1,14 @@
 """What all screens have in common: a status line above, a message line and the key line below, lines sized
 to the screen."""
 
-from typing import TYPE_CHECKING, ClassVar, cast
+from collections.abc import Callable
+from typing import TYPE_CHECKING, ClassVar, TypeVar, cast
 
 from textual import events
 from textual.app import ComposeResult
 from textual.screen import Screen
 
+from triage.app.contract import OpenJob
 from triage.app.desk import Desk
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, clip, line, wrapped
@@ -16,6 +18,9 @@ from triage.job.views import JobView
 
 if TYPE_CHECKING:
     from triage.app.app import TriageApp
+
+T = TypeVar("T")
+U = TypeVar("U")
 
 
 class Frame(Screen[None]):
@@ -93,6 +98,14 @@ class Frame(Screen[None]):
 
     def refresh_body(self, view: JobView | None) -> None:
         """Show the newest view in the body."""
+
+    def ask(self, lane: str, call: Callable[[OpenJob], T], then: Callable[[T], None], failed: Callable[[str], None]) -> None:
+        """Ask the bench something that changes nothing; nothing is shown when this screen is gone by then."""
+
+        def while_here(show: Callable[[U], None]) -> Callable[[U], None]:
+            return lambda answer: show(answer) if self.is_attached and self.is_running else None
+
+        self.desk.look(lane, call, while_here(then), while_here(failed))
 
     def show_message(self, text: str = "", refused: bool = False) -> None:
         """Show a message, or the newest one of the desk; what it cannot hold is cut."""

@@ -93,10 +93,6 @@ class Glyphs:
         return letters or "?"
 
 
-FULL = Glyphs(
-    "full", box=True, braille=True, up="▲", down="▼", rule="─", fill="█", rest="░", ramp=" ▁▂▃▄▅▆▇█"
-)
+FULL = Glyphs("full", box=True, braille=True, up="▲", down="▼", rule="─", fill="█", rest="░", ramp=" ▁▂▃▄▅▆▇█")
 BOX = Glyphs("box", box=True, braille=False, up="^", down="v", rule="─", fill="#", rest=".", ramp=" .:-=+*#@")
-ASCII = Glyphs(
-    "ascii", box=False, braille=False, up="^", down="v", rule="-", fill="#", rest=".", ramp=" .:-=+*#@"
-)
+ASCII = Glyphs("ascii", box=False, braille=False, up="^", down="v", rule="-", fill="#", rest=".", ramp=" .:-=+*#@")

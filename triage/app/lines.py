@@ -71,7 +71,7 @@ def clip(row: Line, width: int, more: str = "~") -> Line:
             break
         kept.append(span)
         left -= cells
-    return (*(span for span in kept if span.text), Span(more, "quiet"))[-width - 1 :]
+    return line(*kept, Span(more, "quiet"))
 
 
 def fit(text: str, width: int, more: str = "~") -> str:

@@ -127,9 +127,7 @@ def chart(
     labels = 8
     columns, rows = width - labels - 1, height - 1
     canvas = _canvas(series, levels, columns, rows, x_range, y_range, glyphs)
-    ticks = {
-        rows - 1 - _place(y, y_range, rows * 4) // 4: y for y in round_ticks(*y_range, max(rows // 2, 1))
-    }
+    ticks = {rows - 1 - _place(y, y_range, rows * 4) // 4: y for y in round_ticks(*y_range, max(rows // 2, 1))}
     out = []
     for row in range(rows):
         label = f"{ticks[row]:.4g} {y_unit}" if row in ticks else ""

@@ -34,14 +34,10 @@ def refusal(environ: Mapping[str, str], stdin: TextIO, stderr: TextIO) -> Termin
     """Why the app cannot draw here, or None. The screen is drawn on stderr, keys come from stdin."""
     advice = "use the sub-commands, for instance `triage next JOB`"
     if environ.get("TERM", "dumb") in ("", "dumb"):
-        return TerminalError(
-            "TERM", repr(environ.get("TERM", "")), "a terminal that can place text, such as xterm", advice
-        )
+        return TerminalError("TERM", repr(environ.get("TERM", "")), "a terminal that can place text, such as xterm", advice)
     for name, stream in (("standard input", stdin), ("standard error", stderr)):
         if stream is None or not stream.isatty():
-            return TerminalError(
-                name, "is not a terminal", "both standard input and error on a terminal", advice
-            )
+            return TerminalError(name, "is not a terminal", "both standard input and error on a terminal", advice)
     return None
 
 

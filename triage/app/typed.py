@@ -14,13 +14,16 @@ _NO_REACH = ("can't reach", "cant reach", "cannot reach", "c")
 _UNDO = ("undo", "u")
 _MENU = ("/",)
 _OTHER = ("+",)
+_POWER = ("on", "power")
+_UNPLUG = ("off", "unplug", "unplugged")
 
 
 class Typed(NamedTuple):
     """What was meant."""
 
     kind: str
-    """``reading``, ``skip``, ``undo``, ``menu``, ``other`` (a form for any reading) or ``nothing``."""
+    """``reading``, ``skip``, ``undo``, ``menu``, ``other`` (a form for any reading), ``on``, ``off`` or
+    ``nothing``."""
     text: str = ""
     """The value as typed, or the reason of a skip."""
     probe: Probe | None = None
@@ -47,7 +50,7 @@ def understand(text: str) -> Typed:
         return Typed("skip", "skipped")
     if word.startswith(("skip ", "s ")):
         return Typed("skip", text.split(" ", 1)[1])
-    for words, kind in ((_UNDO, "undo"), (_MENU, "menu"), (_OTHER, "other")):
+    for words, kind in ((_UNDO, "undo"), (_MENU, "menu"), (_OTHER, "other"), (_POWER, "on"), (_UNPLUG, "off")):
         if word in words:
             return Typed(kind)
     return _whole_reading(text) or Typed("reading", text)

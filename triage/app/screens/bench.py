@@ -60,9 +60,7 @@ class BenchScreen(Frame):
         for node in (found.minus, found.plus) if found else ():
             for row in rows_of(rows, node)[:1]:
                 board.scroll_to_row(row)
-        suspects.show(
-            suspect_lines(view.suspects, self._beside or self.wide, self._rooms.suspects, self.glyphs)
-        )
+        suspects.show(suspect_lines(view.suspects, self._beside or self.wide, self._rooms.suspects, self.glyphs))
         if self._rooms.log:
             log.show(log_lines(view.entries, self.wide, self._rooms.log))
         self._show_next(view)
@@ -109,10 +107,7 @@ class BenchScreen(Frame):
             text = (
                 "computing what each fault would show; signs (F8) can be entered meanwhile"
                 if view.computing
-                else (
-                    view.message
-                    or "no reading left that would tell more; F6 closes the job, + enters any reading"
-                )
+                else (view.message or "no reading left that would tell more; F6 closes the job, + enters any reading")
             )
             lines = (line(Span("next ", "head")), *wrapped(text, self.wide))
         panel.show(lines)
@@ -124,9 +119,11 @@ class BenchScreen(Frame):
     def on_input_submitted(self, event: Field.Submitted) -> None:
         """Do what was typed."""
         typed = understand(event.value)
-        if typed.kind in ("menu", "other", "undo"):
+        if typed.kind in ("menu", "other", "undo", "on", "off"):
             event.input.value = ""
             {
+                "on": lambda: self.triage.action_power(True),
+                "off": lambda: self.triage.action_power(False),
                 "menu": self.triage.action_menu,
                 "undo": self.triage.action_undo,
                 "other": lambda: self.triage.action_form("reading"),

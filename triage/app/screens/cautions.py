@@ -29,11 +29,7 @@ class CautionsScreen(Frame):
         """Acknowledged ones carry ``ok``, the others ``!``."""
         cautions = self._cautions()
         open_ones = sum(not caution.acknowledged for caution in cautions)
-        text = (
-            f"cautions: {open_ones} to acknowledge, Enter on each"
-            if open_ones
-            else "cautions: all acknowledged, F2 goes on"
-        )
+        text = f"cautions: {open_ones} to acknowledge, Enter on each" if open_ones else "cautions: all acknowledged, F2 goes on"
         rows = [
             (
                 one.key,
@@ -59,7 +55,7 @@ class CautionsScreen(Frame):
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
         """Acknowledge; when none is left, go on to the bench."""
         if all(one.acknowledged for one in self._cautions()):
-            self.triage.action_go("bench")
+            self.triage.action_go(self.triage.place_of_stage())
         elif not next(one.acknowledged for one in self._cautions() if one.key == event.key):
             self.desk.enter(lambda bench: bench.acknowledge(event.key), self._accepted)
         else:
@@ -69,7 +65,7 @@ class CautionsScreen(Frame):
         if any(not one.acknowledged for one in self._cautions()):
             self._to_next()
         else:
-            self.triage.action_go("bench")
+            self.triage.action_go(self.triage.place_of_stage())
 
     def _to_next(self) -> None:
         left = [one.key for one in self._cautions() if not one.acknowledged]

@@ -48,15 +48,11 @@ class IntakeScreen(Frame):
 
     def refresh_body(self, view: JobView | None) -> None:
         """The list and the labels."""
-        self.panel("ask").show(
-            (line(Span("What is wrong with it? ", "strong"), "Enter on the line that fits best."),)
-        )
+        self.panel("ask").show((line(Span("What is wrong with it? ", "strong"), "Enter on the line that fits best."),))
         rows = [(state, line(Span(state.ljust(26), "strong"), _MEANS.get(state, ""))) for state in STATES]
         self.query_one("#states", ListPanel).fill(rows)
         self.panel("load-label").show((line("seen under load: "),))
-        self.panel("load-hint").show(
-            (line(Span(f"  {', '.join(CONDITIONS[1:])} (up and down change it)", "quiet")),)
-        )
+        self.panel("load-hint").show((line(Span(f"  {', '.join(CONDITIONS[1:])} (up and down change it)", "quiet")),))
         self.panel("words-label").show((line("in the owner's words (may stay empty): "),))
 
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
@@ -75,5 +71,4 @@ class IntakeScreen(Frame):
         self.desk.enter(lambda bench: bench.complain(words, state, condition), self._accepted)
 
     def _accepted(self) -> None:
-        view = self.desk.view
-        self.triage.action_go("cautions" if view and view.stage == "cautions" else "bench")
+        self.triage.action_go(self.triage.place_of_stage())

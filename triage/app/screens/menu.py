@@ -27,15 +27,17 @@ class MenuScreen(Form):
         yield ListPanel(id="list")
 
     def _fitting(self) -> list[Command]:
-        wanted = self.query_one("#wanted", Field).value.lower().split()
+        """Commands that hold every word typed; those whose label begins with it first."""
+        typed = self.query_one("#wanted", Field).value.lower().strip()
         job = self.desk.view is not None
-        return [
+        fits = [
             one
             for one in COMMANDS
             if (job or not one.job)
             and one.action != "menu"
-            and all(word in f"{one.label} {one.help}".lower() for word in wanted)
+            and all(word in f"{one.label} {one.help}".lower() for word in typed.split())
         ]
+        return sorted(fits, key=lambda one: not one.label.startswith(typed))
 
     def refresh_body(self, view: JobView | None) -> None:
         """What fits the letters typed."""

@@ -9,7 +9,7 @@ from textual.widgets import Input
 from triage.app.frame import Frame
 from triage.app.lines import Span, line
 from triage.app.text.parts import candidate_detail, candidate_line, demand_lines, match_line
-from triage.app.text.stress import before_after
+from triage.app.text.stress import before_after, with_it
 from triage.app.widgets.field import ChoiceField, Field
 from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
@@ -33,16 +33,10 @@ class PartsScreen(Frame):
         """Fields, demand, list, detail."""
         bench, view = self.desk.bench, self.desk.view
         refs = [part.ref for part in bench.board.parts] if bench else []
-        wanted = (
-            (view.verdict.repair or tuple(one.ref for one in view.suspects if one.ref in refs))
-            if view
-            else ()
-        )
+        wanted = (view.verdict.repair or tuple(one.ref for one in view.suspects if one.ref in refs)) if view else ()
         with Horizontal(classes="row"):
             yield Panel(id="ref-label")
-            yield ChoiceField(
-                [*wanted, *(ref for ref in refs if ref not in wanted)], wanted[0] if wanted else "", id="ref"
-            )
+            yield ChoiceField([*wanted, *(ref for ref in refs if ref not in wanted)], wanted[0] if wanted else "", id="ref")
             yield Panel(id="marking-label")
             yield Field(id="marking")
             yield Panel(id="hint")
@@ -71,7 +65,7 @@ class PartsScreen(Frame):
             return
         self._ref, self._candidates = ref, {}
         self.panel("demand").show((line(Span(f"computing what {ref} must withstand...", "near")),))
-        self.desk.look(
+        self.ask(
             "demand",
             lambda bench: (bench.demand(ref), bench.candidates(ref), bench.stresses()),
             self._demand,
@@ -94,11 +88,7 @@ class PartsScreen(Frame):
             rows = [(one.type, match_line(one, self.wide)) for one in self._matches]
             head = f"catalog parts that {marking!r} may mean, asked for {self._ref or 'no position yet'}"
         else:
-            rows = [
-                (one.type, candidate_line(one, self.wide))
-                for one in self._candidates.values()
-                if one.accepted
-            ]
+            rows = [(one.type, candidate_line(one, self.wide)) for one in self._candidates.values() if one.accepted]
             head = f"rated for {self._ref}, best first" if rows else f"no candidate for {self._ref} yet"
         self.query_one("#list", ListPanel).fill(rows, line(Span(head.ljust(self.wide), "head")))
         self._show_detail()
@@ -108,11 +98,24 @@ class PartsScreen(Frame):
         known = self._candidates.get(key)
         if known is not None:
             self.panel("detail").show(candidate_detail(known, self.wide))
+            if known.accepted:
+                self._what_if(known)
             return
         self.panel("detail").show(())
         if key and self._ref:
             ref = self._ref
-            self.desk.look("ask", lambda bench: bench.ask(ref, key), self._asked, self._ask_failed)
+            self.ask("ask", lambda bench: bench.ask(ref, key), self._asked, self._ask_failed)
+
+    def _what_if(self, known: CandidateView) -> None:
+        """Add what the stresses would be with the part under the cursor."""
+        ref, before = self._ref, self._before
+
+        def show(after: tuple[StressView, ...]) -> None:
+            if self.query_one("#list", ListPanel).key == known.type:
+                rows = (*candidate_detail(known, self.wide)[:3], *with_it(before, after, ref, self.wide))
+                self.panel("detail").show(rows)
+
+        self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed)
 
     def _asked(self, found: CandidateView) -> None:
         self._candidates[found.type] = found
@@ -135,7 +138,7 @@ class PartsScreen(Frame):
             self._matches = ()
             self._fill()
             return
-        self.desk.look("marking", lambda bench: bench.matches(text), self._matched, self._ask_failed)
+        self.ask("marking", lambda bench: bench.matches(text), self._matched, self._ask_failed)
 
     def _matched(self, found: tuple[MatchView, ...]) -> None:
         self._matches = found
@@ -159,4 +162,4 @@ class PartsScreen(Frame):
             self._before = after
             self.panel("demand").show(before_after(before, after, ref, self.wide))
 
-        self.desk.look("stress", lambda bench: bench.stresses(), show, self._failed)
+        self.ask("stress", lambda bench: bench.stresses(), show, self._failed)

@@ -21,9 +21,7 @@ class ReadingScreen(EntryForm):
         nodes = tuple(node for side in bench.board.sides.values() for node in side) if bench else ()
         found = view.suggestion if view else None
         return (
-            Asked(
-                "function", "function", COLD_FUNCTIONS + LIVE_FUNCTIONS, found.function if found else "ohms"
-            ),
+            Asked("function", "function", COLD_FUNCTIONS + LIVE_FUNCTIONS, found.function if found else "ohms"),
             Asked("plus", "red lead on", nodes),
             Asked("minus", "black lead on", nodes),
             Asked("condition", "board is", CONDITIONS, found.condition if found else "cold"),

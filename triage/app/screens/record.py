@@ -33,7 +33,7 @@ class RecordScreen(Frame):
         bench = self.desk.bench
         if bench is not None:
             self.panel("file").show((line("saved after every entry: ", Span(str(bench.path), "strong")),))
-            self.desk.look("report", lambda one: one.report("text"), self._show, self._failed)
+            self.ask("report", lambda one: one.report("text"), self._show, self._failed)
 
     def _show(self, text: str) -> None:
         self.panel("report").show(tuple(clip(line(row), self.wide) for row in text.splitlines()))

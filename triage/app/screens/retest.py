@@ -1,63 +1,102 @@
-"""After the repair: what it led to, and closing the job."""
+"""After the repair: the checks with their limits, what the repair led to, and closing the job."""
 
 from typing import ClassVar
 
 from textual.app import ComposeResult
+from textual.containers import Horizontal
+from textual.widgets import Input
 
 from triage.app.frame import Frame
-from triage.app.lines import Line, Span, line
+from triage.app.lines import Line, Span, line, wrapped
 from triage.app.text.bench import mode_words
+from triage.app.text.retest import answer_hint, retest_detail, retest_line
+from triage.app.typed import understand
+from triage.app.widgets.field import Field
 from triage.app.widgets.panel import ListPanel, Panel
-from triage.job.views import JobView
+from triage.job.views import JobView, RetestView
 
-_RESULTS = (
-    ("works", "the adapter works again"),
-    ("still faulty", "the same or another fault is there: the readings go on"),
-    ("given up", "not worth while, or not safe to repair"),
-)
+_SAY = {
+    "repaired works": ("it works", "the repair led to a working adapter"),
+    "repaired still faulty": ("still faulty", "the same or another fault is there: the readings go on"),
+    "repaired given up": ("given up", "not worth while, or not safe to repair"),
+    "close repaired": ("close: repaired", "every needed check has passed"),
+    "close replaced": ("close: replaced", "the adapter is replaced by another one"),
+    "close scrapped": ("close: scrapped", "the adapter goes to recycling"),
+}
 
 
 class RetestScreen(Frame):
-    """Results of the repair, then the close."""
+    """Checks and outcomes in one list; the result of a check is entered below it."""
 
     PLACE: ClassVar[str] = "retest"
     NAME: ClassVar[str] = "retest"
+    AUTO_FOCUS = "#list"
     CSS_PATH = "retest.tcss"
 
     def body(self) -> ComposeResult:
-        """What stands, and what can be said now."""
-        yield Panel(id="stands")
+        """What was found, the list, the line in full, its reading."""
+        yield Panel(id="found")
         yield ListPanel(id="list")
+        yield Panel(id="full")
+        with Horizontal(classes="row"):
+            yield Panel(id="read-label")
+            yield Field(id="read")
+            yield Panel(id="hint")
 
     def refresh_body(self, view: JobView | None) -> None:
-        """The verdict, then the choices."""
+        """The checks with their results, then what can be said."""
         if view is None:
             return
         fault = f"{view.verdict.ref} {mode_words(view.verdict.mode)}".strip() or view.verdict.status
-        self.panel("stands").show((line("fault found: ", Span(fault, "strong")),))
-        rows: list[tuple[str, Line]] = [
-            (key, line(Span(key.ljust(16), "strong"), text)) for key, text in _RESULTS
-        ]
-        rows.append(
-            (
-                "close",
-                line(
-                    Span("close the job".ljust(16), "strong"), "keep the verdict and the record as they stand"
-                ),
-            )
-        )
-        self.query_one("#list", ListPanel).fill(
-            rows, line(Span("after the repair: Enter on what is true".ljust(self.wide), "head"))
-        )
+        self.panel("found").show((line("fault found: ", Span(fault, "strong")),))
+        rows: list[tuple[str, Line]] = [(one.key, retest_line(one, self.wide)) for one in view.retest]
+        rows += [(key, line("   ", Span(word.ljust(18), "key"), text)) for key, (word, text) in _SAY.items()]
+        head = "after the repair: the checks in order, then what came of it; Enter takes a line"
+        self.query_one("#list", ListPanel).fill(rows, line(Span(head.ljust(self.wide), "head")))
+        self._show_full()
+
+    def _here(self) -> RetestView | None:
+        key = self.query_one("#list", ListPanel).key
+        view = self.desk.view
+        return next((one for one in view.retest if one.key == key), None) if view else None
+
+    def _show_full(self) -> None:
+        here = self._here()
+        waits = self.desk.view.waits_for if self.desk.view else ()
+        note = f"before power: {'; '.join(waits)}" if waits else ""
+        self.panel("full").show(retest_detail(here, self.wide) if here else wrapped(note, self.wide, "near"))
+        self.panel("read-label").show((line(Span("reading ", "strong")),) if here else ())
+        self.panel("hint").show((line(Span(f" {answer_hint(here)}", "quiet")),) if here else ())
+
+    def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
+        """Show the line in full."""
+        self._show_full()
 
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
-        """Say it to the bench."""
-        key = event.key
-        view = self.desk.view
-        if view is None:
+        """A check: on to its result. An outcome: into the job."""
+        if self._here() is not None:
+            self.query_one("#read").focus()
             return
-        if key == "close":
-            verdict = f"{view.verdict.ref} {view.verdict.mode}".strip() or view.verdict.status
-            self.desk.enter(lambda bench: bench.close(verdict), lambda: self.triage.action_go("record"))
+        what, _, word = event.key.partition(" ")
+        if what == "close":
+            self.desk.enter(lambda bench: bench.close(word), lambda: self.triage.action_go("record"))
         else:
-            self.desk.enter(lambda bench: bench.repaired(key))
+            self.desk.enter(lambda bench: bench.repaired(word), self._repaired)
+
+    def _repaired(self) -> None:
+        view = self.desk.view
+        if view is not None and view.stage not in ("retest", "repair"):
+            self.triage.action_go("bench")
+
+    def on_input_submitted(self, event: Input.Submitted) -> None:
+        """The reading of the check under the cursor."""
+        here = self._here()
+        if here is not None:
+            text = understand(event.value).text
+            self.desk.enter(lambda bench: bench.retest(here.key, text), self._accepted)
+
+    def _accepted(self) -> None:
+        self.query_one("#read", Field).value = ""
+        panel = self.query_one("#list", ListPanel)
+        panel.focus()
+        panel.action_move(1)

@@ -12,9 +12,7 @@ class SignScreen(EntryForm):
 
     PLACE: ClassVar[str] = "sign"
     NAME: ClassVar[str] = "seen"
-    HEAD = (
-        "What was seen, heard, smelt or felt; `sound` says that the part was looked at and nothing was found."
-    )
+    HEAD = "What was seen, heard, smelt or felt; `sound` says that the part was looked at and nothing was found."
 
     def asked(self) -> Sequence[Asked]:
         """Sign, then part."""

@@ -74,9 +74,7 @@ class StartScreen(Frame):
             )
         head = line(Span("jobs and profiles".ljust(self.wide), "head"))
         if not rows:
-            self.show_message(
-                "no jobs and no profiles found: install triage again, or name a profile when starting"
-            )
+            self.show_message("no jobs and no profiles found: install triage again, or name a profile when starting")
         self.query_one("#items", ListPanel).fill(rows, head)
 
     def refresh_body(self, view: JobView | None) -> None:

@@ -33,7 +33,7 @@ class StressScreen(Frame):
         if not self._asked:
             self._asked = True
             self.panel("detail").show((line(Span("computing the stresses...", "near")),))
-            self.desk.look("stress", lambda bench: bench.stresses(), self._show, self._failed)
+            self.ask("stress", lambda bench: bench.stresses(), self._show, self._failed)
         elif self._found:
             self._show(self._found)
 

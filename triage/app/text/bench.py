@@ -125,11 +125,7 @@ def suggestion_lines(
         out.append(clip(line(Span("! " + found.hazard, "bad")), width))
     keep = max(rows - len(out) - min(len(found.outcomes), 2), 1)
     reason = wrapped(found.reason, width)
-    out += (
-        reason[:keep]
-        if len(reason) <= keep
-        else (*reason[: keep - 1], clip((*reason[keep - 1], Span(" ..." * 30)), width))
-    )
+    out += reason[:keep] if len(reason) <= keep else (*reason[: keep - 1], clip((*reason[keep - 1], Span(" ..." * 30)), width))
     for outcome in found.outcomes[: max(rows - len(out), 0)]:
         out.append(
             clip(
@@ -181,13 +177,9 @@ def verdict_lines(found: VerdictView, width: int, rows: int) -> tuple[Line, ...]
         text = "no single or joint fault explains the entries: read the last ones again (F9 takes one back)"
         return (line(Span("does not fit ", "bad")), *wrapped(found.why or text, width))[:rows]
     if found.status == "no part fault":
-        head = line(
-            Span("found ", "head"), Span(" no part of the board: look at cord, plug, joints, cable", "strong")
-        )
+        head = line(Span("found ", "head"), Span(" no part of the board: look at cord, plug, joints, cable", "strong"))
         return (head, *wrapped(found.why, width))[:rows]
-    what = f"{found.ref} {mode_words(found.mode)}" + "".join(
-        f" + {mode_words(fault)}" for fault in found.collateral
-    )
+    what = f"{found.ref} {mode_words(found.mode)}" + "".join(f" + {mode_words(fault)}" for fault in found.collateral)
     head = apart(
         line(Span("found ", "head"), " ", Span(what, "strong")),
         line(Span(percent(found.probability), "strong")),
@@ -216,9 +208,5 @@ def log_lines(entries: Sequence[EntryView], width: int, rows: int) -> tuple[Line
     out = [line(Span("entries".ljust(width), "head"))]
     for entry in entries[-rows:]:
         text = f"{entry.text} (taken back)" if entry.undone else entry.text
-        out.append(
-            clip(
-                line(Span(f"{entry.number:3d} ", "quiet"), Span(text, "quiet" if entry.undone else "")), width
-            )
-        )
+        out.append(clip(line(Span(f"{entry.number:3d} ", "quiet"), Span(text, "quiet" if entry.undone else "")), width))
     return tuple(out)

@@ -44,7 +44,7 @@ def key_line(commands: Sequence[Command], width: int, job: bool = True) -> Line:
         if width_of(tuple(spans + more)) - 2 > width:
             break
         spans += more
-    return tuple(spans)
+    return clip(tuple(spans), width, more="")
 
 
 def standard_keys(width: int, job: bool = True) -> Line:

@@ -69,9 +69,7 @@ def candidate_detail(one: CandidateView, width: int) -> tuple[Line, ...]:
     for refusal in one.refusals:
         out += wrapped(refusal, width, "bad", first="refused: ", rest="  ")
     if one.margins:
-        out += wrapped(
-            "; ".join(one.margins), width, "good" if one.accepted else "", first="margins: ", rest="  "
-        )
+        out += wrapped("; ".join(one.margins), width, "good" if one.accepted else "", first="margins: ", rest="  ")
     if one.notes:
         out += wrapped("; ".join(one.notes), width, first="notes: ", rest="  ")
     source = f"{one.source} ({one.confidence})" if one.confidence else one.source

@@ -38,9 +38,7 @@ def stress_line(one: StressView, width: int, glyphs: Glyphs) -> Line:
     sign, mark = _SIGNS.get(one.verdict, ("? ", "quiet"))
     bar = _bar_width(width)
     limit = one.limit / one.rating if one.limit is not None and one.rating else None
-    drawn = (
-        stress_bar(one.ratio, limit, bar, glyphs, mark) if one.ratio is not None else line(f"[{'':{bar}}]")
-    )
+    drawn = stress_bar(one.ratio, limit, bar, glyphs, mark) if one.ratio is not None else line(f"[{'':{bar}}]")
     left = columns(
         [
             (Span(sign, mark), 2),
@@ -50,9 +48,7 @@ def stress_line(one: StressView, width: int, glyphs: Glyphs) -> Line:
         ]
     )
     share = "-" if one.ratio is None else f"{one.ratio * 100:.0f} %"
-    right = columns(
-        [(amount(one.limit, one.unit), -9), (amount(one.rating, one.unit), -9), (Span(share, mark), -5)]
-    )
+    right = columns([(amount(one.limit, one.unit), -9), (amount(one.rating, one.unit), -9), (Span(share, mark), -5)])
     return (*left, Span("  "), *drawn, Span(" "), *right)
 
 
@@ -70,9 +66,7 @@ def stress_detail(one: StressView, width: int) -> tuple[Line, ...]:
     return (head, *wrapped(limits + source, width))
 
 
-def before_after(
-    before: Sequence[StressView], after: Sequence[StressView], ref: str, width: int
-) -> tuple[Line, ...]:
+def before_after(before: Sequence[StressView], after: Sequence[StressView], ref: str, width: int) -> tuple[Line, ...]:
     """Stresses of one part with the old and the new one fitted."""
     then = {(one.ref, one.quantity): one for one in before}
     rows = [line(Span(f"stresses of {ref}: before -> now".ljust(width), "head"))]
@@ -95,3 +89,15 @@ def before_after(
             )
         )
     return tuple(rows)
+
+
+def with_it(before: Sequence[StressView], after: Sequence[StressView], ref: str, width: int) -> tuple[Line, ...]:
+    """In a line or two, the shares of rating of one part as they are and as they would be."""
+    then = {(one.ref, one.quantity): one.ratio for one in before}
+    told = []
+    for one in after:
+        if one.ref == ref and one.ratio is not None:
+            was = then.get((one.ref, one.quantity))
+            old = "-" if was is None else f"{was * 100:.0f} %"
+            told.append(f"{quantity_words(one.quantity)} {old} -> {one.ratio * 100:.0f} %")
+    return wrapped("with it: " + "; ".join(told), width, rest="  ") if told else ()

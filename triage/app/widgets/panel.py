@@ -50,9 +50,7 @@ class Panel(Widget):
         """Show these lines; only rows that differ from what is on screen are painted."""
         before = [self._row(y) for y in range(self.size.height)]
         new = self._folded(lines)
-        resized = (
-            len(new) != len(self._lines) and self.styles.height is not None and self.styles.height.is_auto
-        )
+        resized = len(new) != len(self._lines) and self.styles.height is not None and self.styles.height.is_auto
         self._lines = new
         self._top = self._bounded(self._top if top is None else top)
         if resized:

@@ -1,0 +1,146 @@
+"""Lines made of the bench's records: what is cut, kept and said (reasoned cases)."""
+
+import math
+
+import pytest
+
+from tests.app.fake_bench import BOARD, STRESSES
+from triage.app.glyphs import ASCII
+from triage.app.lines import plain, width_of
+from triage.app.text.bench import (
+    log_lines,
+    mode_words,
+    percent,
+    rooms,
+    suggestion_lines,
+    suspect_lines,
+    verdict_lines,
+)
+from triage.app.text.frame import standard_keys, status_lines
+from triage.app.text.moves import move_lines
+from triage.app.text.stress import stress_head, stress_line, with_it
+from triage.job.views import EntryView, JobView, OutcomeView, SuggestionView, SuspectView, VerdictView
+
+SUGGESTION = SuggestionView(
+    "ohms",
+    "coll",
+    "pgnd",
+    "cold",
+    "ohm",
+    0.8,
+    "a shorted main switch shows below 5 ohm here, a sound one reads high " * 3,
+    (OutcomeView("below 5 ohm", 0, 5, 0.6, "Q1 is shorted"), OutcomeView("OL", 1e6, math.inf, 0.4, "Q1 is not shorted")),
+    "C1 may hold 325 V",
+)
+PINS = {"coll": ("Q1 collector", "D2 anode", "T1 pri_e"), "pgnd": ("C1 minus", "Q1 emitter")}
+WIDTHS = (40, 80, 120, 160)
+
+
+@pytest.mark.parametrize("share", [0.0, 1e-9, 0.004, 0.2, 0.999, 1.0])
+def test_only_certainty_is_written_as_nought_or_a_hundred(share):
+    assert (percent(share) == "0 %") == (share == 0)
+    assert (percent(share) == "100 %") == (share == 1)
+
+
+def test_modes_are_words():
+    assert mode_words("Q1.ce_short") == "Q1 ce short"
+
+
+@pytest.mark.parametrize("height", range(12, 60))
+@pytest.mark.parametrize("board", [5, 14, 30])
+@pytest.mark.parametrize("beside", [False, True])
+def test_the_rows_of_the_bench_add_up(height, board, beside):
+    room = rooms(height, board, beside)
+    used = room.board + (0 if beside else room.suspects) + room.next + room.log
+    assert used == height or (used > height and room.board == 3)
+    assert room.next >= 5 and room.suspects >= 3 and room.board >= 3
+
+
+@pytest.mark.parametrize("width", WIDTHS)
+@pytest.mark.parametrize("rows", [4, 5, 8, 12])
+def test_the_next_reading_fits_and_names_leads_reason_and_outcomes(width, rows):
+    lines = suggestion_lines(SUGGESTION, PINS, width, rows)
+    assert len(lines) <= rows and all(width_of(row) <= width for row in lines)
+    text = "\n".join(map(plain, lines))
+    assert "ohms" in text and "+coll" in text and "! C1 may hold 325 V" in text and "shorted" in text
+    if width >= 80:
+        assert "+coll+" in text and "-pgnd-" in text and "unplugged" in text and "Q1 collector" in text
+
+
+def test_a_live_reading_says_so_in_words():
+    live = SuggestionView("volts_dc", "out", "sgnd", "full", "V", 2.0, "why")
+    assert "LIVE" in plain(suggestion_lines(live, {}, 80, 5)[0])
+
+
+@pytest.mark.parametrize("width", WIDTHS)
+@pytest.mark.parametrize("rows", [3, 5, 8])
+def test_suspects_fit_and_the_first_is_marked(width, rows):
+    suspects = [
+        SuspectView("Q1", "ce_short", 0.6, ("RF1.open",), "main switch", "voltage 104 % of rating"),
+        SuspectView("RF1", "open", 0.4),
+        SuspectView("", "no part fault", 0.0),
+    ]
+    lines = suspect_lines(suspects, width, rows, ASCII)
+    assert len(lines) <= rows and all(width_of(row) <= width for row in lines)
+    text = "\n".join(map(plain, lines))
+    assert "*Q1 ce short" in text and "60 %" in text and "?RF1 open" in text
+
+
+@pytest.mark.parametrize(
+    ("status", "words"),
+    [
+        ("found", "replace Q1 RF1"),
+        ("no part fault", "cord, plug, joints"),
+        ("does not fit", "read the last ones again"),
+    ],
+)
+def test_each_verdict_says_what_to_do(status, words):
+    verdict = VerdictView(status, "Q1", "ce_short", ("RF1.open",), ("Q1", "RF1"), 0.97)
+    lines = verdict_lines(verdict, 80, 6)
+    assert words in "\n".join(map(plain, lines)) and len(lines) <= 6
+
+
+def test_an_open_verdict_takes_no_room():
+    assert verdict_lines(VerdictView("open"), 80, 6) == ()
+
+
+@pytest.mark.parametrize("width", WIDTHS)
+def test_the_status_says_job_stage_and_touch(width):
+    view = JobView("x", "Radio desk cube", "cold", "NOT safe to touch: unplug and read the bulk voltage", computing=True)
+    first, second = status_lines(view, "bench", width)
+    assert width_of(first) <= width and width_of(second) <= width
+    assert "COLD READINGS" in plain(first) and "computing" in plain(second)
+    if width >= 80:
+        assert "NOT safe to touch" in plain(second)
+
+
+def test_the_key_line_never_overflows():
+    assert all(width_of(standard_keys(width)) <= width for width in range(20, 200))
+
+
+@pytest.mark.parametrize("width", [80, 100, 160])
+@pytest.mark.parametrize("stress", STRESSES, ids=lambda one: one.ref)
+def test_stress_rows_line_up_with_their_head(width, stress):
+    row = plain(stress_line(stress, width, ASCII))
+    assert len(row) == len(plain(stress_head(width)).rstrip()) and len(row) <= width
+
+
+def test_stresses_with_a_part_fitted_are_told_as_shares():
+    after = (STRESSES[0].__class__("Q1", "main switch", "peak_voltage", 728.0, "V", 1100.0, 880.0, 0.66, "ok"),)
+    assert plain(with_it(STRESSES, after, "Q1", 80)[0]) == "with it: peak voltage 104 % -> 66 %"
+
+
+def test_moves_show_rise_and_fall():
+    before = (SuspectView("Q1", "ce_short", 0.3), SuspectView("R1", "open", 0.7))
+    after = (SuspectView("Q1", "ce_short", 0.9), SuspectView("R1", "open", 0.1))
+    lines = move_lines([("start", before), ("ohms: 0.8", after)], 80, 6, ASCII)
+    assert "last +60" in plain(lines[1]) and "last -60" in plain(lines[2])
+
+
+def test_taken_back_entries_say_so():
+    lines = log_lines([EntryView(1, "", "ohms 5", undone=True), EntryView(2, "", "ohms 6")], 60, 5)
+    assert "(taken back)" in plain(lines[1]) and "(taken back)" not in plain(lines[2])
+
+
+def test_the_stand_in_board_names_nodes_that_the_drawing_has():
+    assert all(node in BOARD.drawing for node in ("bulk", "pgnd", "coll", "base"))
