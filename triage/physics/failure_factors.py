@@ -38,7 +38,7 @@ def environment_factor(part_class: str, code: str = "GB") -> float:
     return float(TABLE["environment"][part_class][TABLE["environment"]["codes"].index(code)])
 
 
-def quality_factor(part_class: str, quality: str | float) -> float:
+def quality_factor(part_class: str, quality: str | Values) -> Values:
     """Factor of the screening of the part.
 
     part_class [key]: row of the quality table: semiconductor, microcircuit, resistor, capacitor ...
@@ -50,7 +50,7 @@ def quality_factor(part_class: str, quality: str | float) -> float:
     >>> quality_factor("semiconductor", "plastic")
     8.0
     """
-    return float(TABLE["quality"][part_class][quality]) if isinstance(quality, str) else float(quality)
+    return float(TABLE["quality"][part_class][quality]) if isinstance(quality, str) else quality
 
 
 def slope_temperature_factor(temperature: Values, slope: float) -> Values:
