@@ -48,6 +48,7 @@ ALPHABET = (
     GateEvent("power up"),
     GateEvent("live reading"),
     GateEvent("unplug"),
+    GateEvent("power taken back"),
     GateEvent("repair"),
     *(
         GateEvent(kind, key, verdict)
@@ -89,6 +90,8 @@ class History:
                 return replace(self, powered=True, below_60=False)
             case "unplug":
                 return replace(self, powered=False)
+            case "power taken back":
+                return replace(self, powered=False, below_60=False)
             case "repair":
                 return replace(self, repaired=True, short="open", lines=())
             case "retest cold" | "retest live":
@@ -110,7 +113,7 @@ class History:
 
     def permits(self, event: GateEvent) -> bool:
         """The safety rule of an event, in words of the bench: see design, safety."""
-        if self.closed and event.kind not in ("unplug", "another day"):
+        if self.closed and event.kind not in ("unplug", "power taken back", "another day"):
             return False
         looked = self.cold_acknowledged and self.look != ""
         live_line = event.kind.startswith("retest") and event.key == "r2"

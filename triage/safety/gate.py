@@ -304,6 +304,12 @@ def _unplug(facts: GateFacts, event: GateEvent) -> GateFacts:
     return replace(facts, unplugged=True)
 
 
+def _taken_back(facts: GateFacts, event: GateEvent) -> GateFacts:
+    """An entry that powered the board was a slip of the pen: whether it was powered is unknown, so is the
+    bulk."""
+    return replace(facts, unplugged=True, bulk_voltage=None)
+
+
 def _same(facts: GateFacts, event: GateEvent) -> GateFacts:
     return facts
 
@@ -344,6 +350,7 @@ EVENTS: Mapping[str, tuple[str | None, Callable[[GateFacts, GateEvent], GateFact
     "power up": ("power up", _power),
     "live reading": ("live reading", _same),
     "unplug": (None, _unplug),
+    "power taken back": (None, _taken_back),
     "repair": ("repair", _fit),
     "retest cold": ("retest cold", _retest),
     "retest live": ("retest live", _retest),
