@@ -1,6 +1,6 @@
 """Limits of the safety room against the printed figures of standards, copied here with their source.
 
-How each figure was read is said beside it: ``verified`` was read in a public text (a transcription, test
+How each figure was read is said beside it: ``verified`` was read in a public text (a public copy, test
 report, law text or data sheet, not the priced standard), ``from memory`` was not read again.
 """
 
