@@ -3,6 +3,7 @@
 import numpy as np
 import pytest
 
+from triage.board.kinds import kinds
 from triage.physics import derating, electrolytic_life, failure_factors, failure_modes, failure_rate, thermal
 
 
@@ -121,6 +122,14 @@ def test_every_kind_has_shares_a_rate_and_sources(kind: str) -> None:
     assert tuple(shares) == KINDS[kind]
     assert sum(shares.values()) == pytest.approx(1.0) and min(shares.values()) > 0.0
     assert failure_modes.mode_row(kind) is not None and failure_modes.mode_source(kind).endswith(")")
+    assert failure_rate.part_rate(kind) > 0.0
+
+
+@pytest.mark.parametrize("kind", sorted(kinds()))
+def test_every_kind_that_a_board_may_have_is_known(kind: str) -> None:
+    """A rate, and a row of shares that names all modes of the kind."""
+    row = failure_modes.mode_row(kind)
+    assert row is not None and set(kinds()[kind].fault_modes) <= set(row.modes)
     assert failure_rate.part_rate(kind) > 0.0
 
 
