@@ -125,7 +125,9 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
     nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
     limit = min((part.ratings["voltage"] for part in run.board.parts if part.role == run.family.output_role
                  and "voltage" in part.ratings), default=1e9)
-    for number in range(1, MOST_PERIODS + 1):
+    number = 0
+    while number < MOST_PERIODS:
+        number += 1
         before = run.state.capacitors.copy()
         stretch = run.period()
         change, output = _output(run) - output, _output(run)

@@ -1,0 +1,87 @@
+"""Cold readings to expect: of every hypothesis, over specimens drawn within the tolerances.
+
+Each specimen has all its part values drawn once, and the size of each fault once: a leak is seldom just the nominal one. The
+same specimens are used for every hypothesis, so that hypotheses differ by their faults and not by the luck of the draw.
+"""
+
+import os
+from collections.abc import Callable, Sequence
+from concurrent.futures import ThreadPoolExecutor, as_completed
+from itertools import combinations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from triage.board.circuit import NOMINAL, Draw, circuit
+from triage.board.fault import Fault, Hypothesis
+from triage.board.kinds import kinds
+from triage.board.part import Board
+from triage.board.probe import Probe
+from triage.physics.netlist import compile_netlist, with_values
+from triage.physics.network import HAND_METER, Meter, read_bridge, read_network
+
+SEVERITY_SPREAD = {"leaky": 0.8, "high": 0.6, "high_esr": 0.5, "low_capacitance": 0.35, "low_gain": 0.35, "low_voltage": 0.08,
+                   "shorted_turns": 0.3}
+"""Standard deviation of the natural logarithm of a fault's size about its nominal departure [-]; common practice, no source."""
+
+
+def cold_probes(board: Board) -> tuple[Probe, ...]:
+    """Every reading a meter can take of the unpowered board: node pairs of one side, and the capacitors."""
+    probes = []
+    for nodes in board.sides.values():
+        for a, b in combinations(nodes, 2):
+            probes += [Probe("ohms", a, b), Probe("diode", a, b), Probe("diode", b, a)]
+    known = {node for nodes in board.sides.values() for node in nodes}
+    for part in board.parts:
+        if "capacitance" in kinds()[part.kind].values:
+            a, b = list(part.pins.values())[:2]
+            if a in known and b in known:
+                probes += [Probe("esr", a, b), Probe("capacitance", a, b)]
+    return tuple(dict.fromkeys(probes))
+
+
+def specimens(board: Board, count: int, seed: int = 1) -> tuple[Draw, ...]:
+    """``count`` specimens: values uniform within their tolerance, fault sizes log-normal. The same for the same seed."""
+    rng = np.random.default_rng(seed)
+    columns = [(part, key) for part in board.parts for key in part.tolerance if key in part.value]
+    shares = rng.uniform(-1.0, 1.0, (count, len(columns)))
+    faults = [(part.ref, mode) for part in board.parts for mode in (part.fault_modes or kinds()[part.kind].fault_modes)
+              if mode in SEVERITY_SPREAD]
+    sizes = np.exp(rng.standard_normal((count, len(faults))) * [SEVERITY_SPREAD[mode] for _, mode in faults])
+    return tuple(
+        Draw({(part.ref, key): part.value[key] * (1.0 + part.tolerance[key] * shares[d, c])
+              for c, (part, key) in enumerate(columns)},
+             {fault: float(sizes[d, f]) for f, fault in enumerate(faults)})
+        for d in range(count))
+
+
+def read_cold(board: Board, faults: Sequence[Fault], probes: Sequence[Probe], draws: Sequence[Draw] = (NOMINAL,),
+              meter: Meter = HAND_METER) -> NDArray[np.float64]:
+    """Readings of cold probes of a board with these faults; inf is OL, nan no solution. Shape (len(probes), len(draws))."""
+    triples = [(p.function, p.plus, p.minus) for p in probes]
+    pairs = [(p.plus, p.minus) for p in probes]
+    direct = [k for k, p in enumerate(probes) if p.function in ("ohms", "diode")]
+    bridge = [k for k, p in enumerate(probes) if p.function in ("esr", "capacitance")]
+    out = np.empty((len(probes), len(draws)))
+    compiled = None
+    for d, draw in enumerate(draws):
+        net = circuit(board, faults, draw=draw, cold=True)
+        compiled = compile_netlist(net, pairs) if compiled is None else with_values(compiled, net)
+        if direct:
+            out[direct, d] = read_network(compiled, [triples[k] for k in direct], meter)
+        if bridge:
+            out[bridge, d] = read_bridge(compiled, [triples[k] for k in bridge], meter)
+    return out
+
+
+def cold_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Sequence[Probe], draws: Sequence[Draw],
+                 progress: Callable[[int, int], None] | None = None) -> NDArray[np.float32]:
+    """Readings over hypotheses, probes and specimens; shape (H, P, D). ``progress`` hears (done, wanted)."""
+    out = np.empty((len(hypotheses), len(probes), len(draws)), dtype=np.float32)
+    with ThreadPoolExecutor(max_workers=os.cpu_count() or 1) as pool:
+        jobs = {pool.submit(read_cold, board, hypothesis.faults, probes, draws): h for h, hypothesis in enumerate(hypotheses)}
+        for done, job in enumerate(as_completed(jobs), 1):
+            out[jobs[job]] = job.result()
+            if progress:
+                progress(done, len(hypotheses))
+    return out
