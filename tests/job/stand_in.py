@@ -5,7 +5,6 @@ It answers through the real diagnosis, so that gates, suggestions and verdicts o
 only the physics is left out. The readings are invented.
 """
 
-from collections.abc import Mapping
 from dataclasses import replace
 from datetime import UTC, datetime, timedelta
 
@@ -19,6 +18,7 @@ from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.priors import Weight, prior_of
+from triage.job.learning import Experience
 from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
 
 PROFILE = "harbour-handset-charger"
@@ -58,9 +58,10 @@ class Clock:
 class StandIn:
     """Answers like the computing rooms."""
 
-    def diagnosis(self, board: Board, factors: Mapping[Fault, float]) -> Diagnosis:
+    def diagnosis(self, board: Board, experience: Experience) -> Diagnosis:
         faults = {Fault.parse(text): Weight(1.0) for text in TABLE if text}
-        prior = prior_of(faults, {}, factors, pair_share=0.0)
+        shares = {fault: 1.0 / len(faults) for fault in faults}
+        prior = prior_of(faults, {}, experience.factors(shares), pair_share=0.0)
         chance = np.random.default_rng(5)
         samples = np.empty((len(prior.hypotheses), len(PROBES), DRAWS))
         states = np.zeros((len(prior.hypotheses), 3, 1), dtype=int)

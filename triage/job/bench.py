@@ -27,6 +27,7 @@ from triage.job import picture, store
 from triage.job.engine_room import Workings
 from triage.job.entries import last_standing, make_entry, replay
 from triage.job.gates import Rules, allow, facts_of
+from triage.job.learning import NONE, experience_from_dict, experience_of
 from triage.job.lock import Lock
 from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
@@ -62,6 +63,8 @@ class Bench:
         self._clock = clock
         self.lines = lines_of(self.board, str(job.document["job"].get("opened", "")))
         """The lines of the retest."""
+        self.experience = experience_from_dict(job.document["job"].get("closed_jobs"), str(job.path))
+        """What the bench's closed jobs said when this one was begun."""
         self.rules = Rules.of_board(self.board, gate_keys(self.lines))
         """What the gates of this board ask for."""
         self.answers: picture.Answers | None = None
@@ -70,9 +73,17 @@ class Bench:
             weakref.finalize(self, lock.release)
 
     @classmethod
-    def create(cls, profile: str | Path, path: Path, workings: Workings | None = None, clock: Clock = utc_now) -> "Bench":
+    def create(
+        cls,
+        profile: str | Path,
+        path: Path,
+        workings: Workings | None = None,
+        clock: Clock = utc_now,
+        learn: bool = True,
+    ) -> "Bench":
         """A new job on a profile (name of a shipped one or path of a file), in a new file.
 
+        learn: let the closed jobs of the same folder count in what is likely.
         Raises ProfileError for a profile with faults, JobError when the file cannot be made or is there
         already.
         """
@@ -82,7 +93,9 @@ class Bench:
         if not lock.take() and lock.holder:
             raise JobError(str(path), f"in use by {lock.holder}", advice="choose another name")
         try:
-            job = store.create(path, board_to_dict(board), _stamp(clock), Path(profile).stem)
+            experience = experience_of(path.parent, board) if learn else NONE
+            head = {"closed_jobs": experience.to_dict()} if experience.family_jobs else {}
+            job = store.create(path, board_to_dict(board), _stamp(clock), Path(profile).stem, head)
             return cls(job, lock, workings, clock)
         except BaseException:
             lock.release()
@@ -132,13 +145,11 @@ class Bench:
             return f"in use by {self._lock.holder}"
         return f"the folder cannot be written: {self._lock.problem or 'no lock'}"
 
-    def prepare(self, factors: Mapping[Fault, float] | None = None) -> None:
+    def prepare(self) -> None:
         """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
-        first time.
-
-        factors: what the bench's own closed jobs say on each fault (``triage.job.learning``).
-        """
-        self.answers = picture.Answers(self.workings.diagnosis(self.board, factors or {}), self.stresses_before())
+        first time."""
+        diagnosis = self.workings.diagnosis(self.board, self.experience)
+        self.answers = picture.Answers(diagnosis, self.stresses_before())
 
     def view(self, message: str = "") -> JobView:
         """What there is to show now."""
@@ -280,12 +291,25 @@ class Bench:
 
     def close(self, verdict: str) -> JobView:
         """Close the job: ``repaired``, or whatever else became of the adapter (``replaced``, ``scrapped``
-        ...)."""
-        return self._enter("closed", verdict=verdict)
+        ...).
+
+        The fault that the next job may learn from is noted: that of the verdict, confirmed when its part was
+        replaced and the adapter works.
+        """
+        return self._enter("closed", verdict=verdict, **picture.lesson(self))
 
     def returned(self, reason: str) -> JobView:
         """The adapter came back after the repair; the job is open again."""
         return self._enter("returned", reason=reason)
+
+    def why(self) -> dict[tuple[str, str], str]:
+        """(ref, mode) -> where the chance of that fault comes from before anything was seen; after
+        ``prepare``."""
+        return picture.derivations(self)
+
+    def evidence(self) -> tuple[str, ...]:
+        """What each entry did to the odds of the leading suspect, in a line each; after ``prepare``."""
+        return picture.weighed_lines(self)
 
     def report(self, format: str = "text") -> str:
         """The record of the job as ``text``, ``markdown`` or ``html``."""

@@ -4,23 +4,22 @@
 Everything here is a pure function of the board, so that a job gives the same answers wherever it is opened.
 """
 
-from collections.abc import Mapping
 from typing import Protocol
 
-from triage.board.fault import Fault
 from triage.board.part import Board
 from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
+from triage.job.learning import Experience
 from triage.job.views import CandidateView, DemandView, MatchView
 
 
 class Workings(Protocol):
     """The computing rooms as a job sees them."""
 
-    def diagnosis(self, board: Board, factors: Mapping[Fault, float]) -> Diagnosis:
+    def diagnosis(self, board: Board, experience: Experience) -> Diagnosis:
         """Expected readings, priors and costs of a board; slow at first, kept afterwards.
 
-        factors: what the bench's own closed jobs say on each fault; empty without any.
+        experience: the bench's own closed jobs.
         """
 
     def stresses(self, board: Board) -> tuple[Stress, ...]:

@@ -91,6 +91,38 @@ def view(bench: "Bench", message: str) -> JobView:
     )
 
 
+def derivations(bench: "Bench") -> dict[tuple[str, str], str]:
+    """(ref, mode) -> derivation of the chance of that fault before anything was seen; empty before
+    ``prepare``."""
+    why = bench.answers.diagnosis.why if bench.answers else {}
+    return {(fault.ref, fault.mode): plain(text, 1000) for fault, text in why.items()}
+
+
+def weighed_lines(bench: "Bench") -> tuple[str, ...]:
+    """What each entry did to the odds of the leading suspect: the factor, and the entry in words."""
+    if bench.answers is None:
+        return ()
+    job = asked(replay(bench.job.entries))
+    return tuple(f"x{one.ratio:.3g}  {plain(one.text)}" for one in bench.answers.diagnosis.evidence(job))
+
+
+def lesson(bench: "Bench") -> dict[str, object]:
+    """What the next job may learn from this one: root fault, role of its part, and whether its repair cured.
+
+    Empty where nothing was computed or no single part is accused.
+    """
+    state = replay(bench.job.entries)
+    if bench.answers is None:
+        return {}
+    suspect = bench.answers.diagnosis.verdict(asked(state)).suspect
+    if suspect is None or len(suspect.root) != 1:
+        return {}
+    fault = suspect.root[0]
+    replaced = fault.ref in {ref for ref, _ in state.fitted}
+    role = bench.board.part(fault.ref).role
+    return {"fault": str(fault), "role": role, "cured": replaced and state.repaired == "works"}
+
+
 def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[CautionView, ...]:
     """The cautions of the board, and which are acknowledged today."""
     known = (facts or bench.facts()).acknowledged

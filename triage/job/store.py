@@ -61,14 +61,16 @@ class Job:
         self.entries = (*self.entries, entry)
 
 
-def create(path: Path, board: Mapping[str, Any], opened: str, profile: str) -> Job:
+def create(path: Path, board: Mapping[str, Any], opened: str, profile: str, more: Mapping[str, Any] | None = None) -> Job:
     """A new job file. board: the board as tables. opened: UTC, ISO 8601. profile: where the board came from.
+
+    more: further keys of the table [job].
 
     Raises JobError when the file exists already or cannot be written.
     """
     if path.exists():
         raise JobError(str(path), "a file of that name is there already", advice="open it, or choose another name")
-    head = {"format": FORMAT, "opened": opened, "profile": profile}
+    head = {"format": FORMAT, "opened": opened, "profile": profile, **(more or {})}
     document: dict[str, Any] = {"job": head, "board": copy.deepcopy(dict(board))}
     return Job(path, document, (), write_document(path, document, b""))
 
