@@ -1,0 +1,89 @@
+"""The condensed reference circuits, and how their words map to the program's."""
+
+import csv
+import math
+from pathlib import Path
+
+from triage.board.fault import Fault
+from triage.board.part import Board
+from triage.board.probe import Probe
+from triage.board.circuit import output_ground
+
+DATA = Path(__file__).parent / "data"
+PROFILES = {"rcc-zener": "harbour-handset-charger"}
+"""Reference circuit -> the shipped profile that has its values."""
+MODES = {"low_c": "low_capacitance", "low_vz": "low_voltage"}
+FUNCTIONS = {"cap": "capacitance"}
+SOURCE = "reference circuits, simulated with ngspice 39"
+
+
+def fault_of(text: str) -> tuple[Fault, ...]:
+    """Faults of ``R1.open`` or ``D1.short+RF1.open``; none for ``healthy`` and an empty text."""
+    if text in ("", "healthy"):
+        return ()
+    faults = []
+    for one in text.split("+"):
+        ref, _, mode = one.partition(".")
+        faults.append(Fault(ref, MODES.get(mode, mode)))
+    return tuple(faults)
+
+
+def number(text: str) -> float:
+    """A reading: OL is infinite, an empty field or nan is not known."""
+    if text == "OL":
+        return math.inf
+    return float(text) if text and text != "nan" else math.nan
+
+
+def _lines(circuit: str, table: str) -> list[list[str]]:
+    with (DATA / f"{circuit.replace('-', '_')}_{table}.csv").open(newline="", encoding="utf-8") as file:
+        return list(csv.reader(file))
+
+
+def cold_table(circuit: str) -> dict[str, dict[Probe, float]]:
+    """Fault -> cold reading -> value, complete for every fault."""
+    sound: dict[Probe, float] = {}
+    table: dict[str, dict[Probe, float]] = {"healthy": sound}
+    for fault, plus, minus, function, value in _lines(circuit, "cold")[1:]:
+        probe = Probe(FUNCTIONS.get(function, function), plus, minus)
+        table.setdefault(fault, {})[probe] = number(value)
+    return {fault: {**sound, **rows} for fault, rows in table.items()}
+
+
+def live_table(circuit: str, board: Board) -> dict[tuple[str, str], tuple[tuple[Fault, ...], dict[Probe, float]]]:
+    """(fault, condition) -> (collateral, live readings); conditions ending in ``_after`` have the collateral applied."""
+    lines = _lines(circuit, "live")
+    names = lines[0][3:]
+    table = {}
+    for fault, condition, chain, *values in lines[1:]:
+        load = condition.removesuffix("_after")
+        readings = {probe: number(value) for name, value in zip(names, values, strict=True)
+                    if (probe := observation(board, name, load)) is not None}
+        table[fault, condition] = (fault_of(chain), readings)
+    return table
+
+
+def observation(board: Board, name: str, load: str) -> Probe | None:
+    """The probe of an observation such as ``v_dc.bulk``; None for one that no instrument of ours takes."""
+    kind, _, where = name.partition(".")
+    primary = board.ground["primary"]
+    if kind in ("v_dc", "v_pp"):
+        side = board.side_of(where)
+        return Probe({"v_dc": "volts_dc", "v_pp": "volts_pp"}[kind], where, board.ground[side], load) if side else None
+    if kind == "v_ac":
+        plus, _, minus = where.partition("-")
+        return Probe("volts_ac", plus, minus, load)
+    back = "mains_n" if board.side_of("mains_n") else primary
+    if name == "p_in":
+        return Probe("watts", "mains_l", back, load)
+    if name == "i_ac":
+        return Probe("amps_ac", "mains_l", back, load)
+    if name == "f_sw":
+        switch = board.by_role("main switch")
+        return Probe("hertz", switch.pins["collector"], primary, load) if switch else None
+    return None
+
+
+def output_probe(board: Board, load: str) -> Probe:
+    """The output voltage under a load."""
+    return Probe("volts_dc", "out", output_ground(board), load)
