@@ -2,7 +2,7 @@
 
 Sources are named beside each table: IEC 60062 (marking codes for resistors and capacitors), IEC 60063
 (preferred number series), EIA-96, EIA RS-198 and the EIA voltage codes, as collected in handbook topic 08 of
-the reference data and read there in public transcriptions.
+the reference data and read there in public copies of the tables.
 """
 
 import tomllib
