@@ -65,11 +65,11 @@ def diode_model(part: Part) -> Mapping[str, float]:
 def _diode_case(part: Part) -> str:
     """Which stand-in a diode of unknown type takes; a common-practice guess from role and ratings, no source."""
     volts, amperes = part.ratings.get("voltage", 1000.0), part.ratings.get("current", 1.0)
-    if part.kind == "led":
-        return "led"
+    if part.kind in ("led", "bridge"):
+        return part.kind
     if part.role.startswith("output rectifier") and volts <= 150.0:
         if amperes >= 4.0:
-            return "schottky_5A"
+            return "schottky_5A" if volts <= 60.0 else "schottky_10A"
         return "schottky_60" if volts <= 60.0 else "schottky_100"
     if amperes <= 0.3:
         return "small_signal"

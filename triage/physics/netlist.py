@@ -35,6 +35,8 @@ BIPOLAR_DEFAULTS = {"saturation_current": 1e-14, "gain": 100.0, "reverse_gain": 
                     "collector_capacitance": 0.0, "collector_potential": 0.75, "collector_grading": 0.33,
                     "forward_transit_time": 0.0, "reverse_transit_time": 0.0}
 
+TERMINALS = 5
+"""Most terminals of a part that is more than a junction."""
 PORT_RESISTOR, PORT_CAPACITOR, PORT_WINDING, PORT_SOURCE, PORT_NONE = range(5)
 
 
@@ -62,6 +64,8 @@ class Netlist:
     diodes: list[tuple[str, str, str, Mapping[str, float]]] = field(default_factory=list)
     bipolars: list[tuple[str, str, str, str, Mapping[str, float], float]] = field(default_factory=list)
     sources: list[tuple[str, str, str, float, float, float, float]] = field(default_factory=list)
+    transfers: list[tuple[str, str, str, str, str, float]] = field(default_factory=list)
+    behaviours: list[tuple[str, int, tuple[str, ...], Sequence[float], Sequence[float]]] = field(default_factory=list)
     ports: list[Port] = field(default_factory=list)
 
     def resistor(self, name: str, a: str, b: str, resistance: float) -> None:
@@ -99,6 +103,15 @@ class Netlist:
         self.resistor(f"{name}:e", emitter, f"{name}:ei", full["emitter_resistance"])
         self.bipolars.append((name, f"{name}:ci", f"{name}:bi", f"{name}:ei", full, polarity))
 
+    def transfer(self, name: str, a: str, b: str, plus: str, minus: str, conductance: float) -> None:
+        """Let conductance [S] x (v(plus) - v(minus)) flow from ``a`` through the element into ``b``."""
+        self.transfers.append((name, a, b, plus, minus, conductance))
+
+    def behaviour(self, name: str, kind: int, nodes: Sequence[str], parameters: Sequence[float],
+                  state: Sequence[float] = ()) -> None:
+        """Add a part that is more than a junction; ``kind`` and the orders are those of transient_behaviour."""
+        self.behaviours.append((name, kind, tuple(nodes), parameters, state))
+
     def sine(self, name: str, plus: str, minus: str, amplitude: float, frequency: float, phase: float,
              resistance: float) -> None:
         """Add a sine source [V, Hz, rad] behind its resistance [ohm]."""
@@ -123,6 +136,8 @@ class Compiled:
     diode: tuple[Any, ...]
     bipolar: tuple[Any, ...]
     source: tuple[Any, ...]
+    transfer: tuple[Any, ...]
+    behaviour: tuple[Any, ...]
     port: tuple[Any, ...]
     names: dict[str, list[str]]
 
@@ -165,6 +180,8 @@ def compile_netlist(net: Netlist, extra_pairs: Sequence[tuple[str, str]] = ()) -
         source=(_ints([[nodes[a], nodes[b]] for _, a, b, *_ in net.sources], 2),
                 _ints([stamp(a, b) for _, a, b, *_ in net.sources], 4),
                 _floats([[v, f, p, 1.0 / r] for *_, v, f, p, r in net.sources], 4)),
+        transfer=_transfer_arrays(net, nodes, slots, width),
+        behaviour=_behaviour_arrays(net, nodes, slots, width),
         port=_port_arrays(net, nodes),
         names={"resistor": [e[0] for e in net.resistors], "capacitor": [e[0] for e in net.capacitors],
                "winding": [e[0] for e in net.windings], "diode": [e[0] for e in net.diodes],
@@ -187,6 +204,8 @@ def with_values(compiled: Compiled, net: Netlist) -> Compiled:
                    np.array([r for *_, r, _ in net.capacitors]), compiled.capacitor[4]),
         winding=(ends, starts, matrix, np.array([w[5] for w in net.windings]), stamps),
         diode=(*compiled.diode[:2], _diode_rows(net)),
+        transfer=(compiled.transfer[0], np.array([t[5] for t in net.transfers], dtype=float)),
+        behaviour=(*compiled.behaviour[:3], *_behaviour_arrays(net, compiled.nodes, {}, 0)[3:]),
         bipolar=(*compiled.bipolar[:2], _floats([[m[key] for key in BIPOLAR_PARAMETERS] for *_, m, _ in net.bipolars],
                                                 len(BIPOLAR_PARAMETERS)), compiled.bipolar[3]),
     )
@@ -216,6 +235,10 @@ def _couplings(net: Netlist) -> list[tuple[str, str]]:
     pairs += [(a, b) for _, a, b, *_ in net.sources]
     for _, c, b, e, *_ in net.bipolars:
         pairs += [(c, b), (b, e), (c, e)]
+    for _, a, b, plus, minus, _ in net.transfers:
+        pairs += [(a, plus), (a, minus), (b, plus), (b, minus)]
+    for _, _, terminals, *_ in net.behaviours:
+        pairs += [(a, b) for i, a in enumerate(terminals) for b in terminals[i + 1:]]
     for group in range(len(net.groups)):
         ends = [node for _, a, b, g, *_ in net.windings if g == group for node in (a, b)]
         pairs += [(a, b) for i, a in enumerate(ends) for b in ends[i + 1:]]
@@ -328,6 +351,32 @@ def _bipolar_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple
             stamps[q, s] = slots.get((i, j), width) if i >= 0 and j >= 0 else width
     values = _floats([[m[key] for key in BIPOLAR_PARAMETERS] for *_, m, _ in net.bipolars], len(BIPOLAR_PARAMETERS))
     return ends, stamps, values, np.array([e[5] for e in net.bipolars], dtype=float)
+
+
+def _transfer_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple[int, int], int], width: int
+                     ) -> tuple[Any, ...]:
+    """(four slots: a-plus, b-minus, a-minus, b-plus; conductances)."""
+    rows = []
+    for _, a, b, plus, minus, _ in net.transfers:
+        i, j, p, q = nodes[a], nodes[b], nodes[plus], nodes[minus]
+        rows.append([slots.get(pair, width) if min(pair) >= 0 else width for pair in ((i, p), (j, q), (i, q), (j, p))])
+    return _ints(rows, 4), np.array([t[5] for t in net.transfers], dtype=float)
+
+
+def _behaviour_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple[int, int], int], width: int
+                      ) -> tuple[Any, ...]:
+    """(terminal nodes, padded with the reference; slots row by row; kinds; parameters; states to begin with)."""
+    count = len(net.behaviours)
+    ends = np.full((count, TERMINALS), -1, dtype=np.int64)
+    stamps = np.full((count, TERMINALS * TERMINALS), width, dtype=np.int64)
+    parameters, states = np.zeros((count, 16)), np.zeros((count, 8))
+    for b, (_, _, terminals, values, state) in enumerate(net.behaviours):
+        ends[b, :len(terminals)] = [nodes[name] for name in terminals]
+        for s, (i, j) in enumerate((i, j) for i in ends[b] for j in ends[b]):
+            stamps[b, s] = slots.get((i, j), width) if i >= 0 and j >= 0 else width
+        parameters[b, :len(values)] = values
+        states[b, :len(state)] = state
+    return ends, stamps, np.array([e[1] for e in net.behaviours], dtype=np.int64), parameters, states
 
 
 def _port_arrays(net: Netlist, nodes: Mapping[str, int]) -> tuple[Any, ...]:

@@ -41,7 +41,7 @@ def _kind(key: str, pins: tuple[str, str], modes: tuple[str, ...]) -> PartKind:
 
 KINDS = (
     _kind("capacitor", ("a", "b"), ("open", "short", "low_capacitance")),
-    _kind("electrolytic", ("plus", "minus"), ("open", "short", "low_capacitance", "high_esr", "leaky")),
+    _kind("electrolytic", ("plus", "minus"), ("open", "short", "low_capacitance", "high_esr", "leaky", "dry")),
     _kind("y_capacitor", ("a", "b"), ("open", "short")),
     _kind("x_capacitor", ("a", "b"), ("open", "short", "low_capacitance")),
 )

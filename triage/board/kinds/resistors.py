@@ -30,8 +30,9 @@ def _kind(key: str, modes: tuple[str, ...], values: dict[str, str] | None = None
 
 
 KINDS = (
-    _kind("resistor", ("open", "high")),
+    _kind("resistor", ("open", "high", "short")),
     _kind("fusible_resistor", ("open", "high")),
     _kind("fuse", ("open",)),
-    _kind("ntc", ("open", "high"), {"cold_resistance": "ohm"}),
+    _kind("thermal_fuse", ("open",)),
+    _kind("ntc", ("open", "high", "short"), {"cold_resistance": "ohm"}),
 )
