@@ -171,7 +171,7 @@ def test_what_stays_impossible_does_not_fit() -> None:
         Reading(sb.DIODE_D1, 2.12),
     )
     verdict = D.verdict(job(*entries))
-    assert verdict.status == "does not fit" and str(sb.DIODE_D1) in verdict.again
+    assert verdict.status == "does not fit" and str(sb.DIODE_D1) in verdict.odd
 
 
 def test_likelihood_ratios_multiply_to_the_posterior_odds() -> None:

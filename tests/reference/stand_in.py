@@ -45,6 +45,10 @@ class Tables:
         return {part["ref"]: KIND.get(part["kind"], part["kind"]) for part in self.bom["part"]}
 
     @property
+    def pins(self) -> dict[str, frozenset[str]]:
+        return {part["ref"]: frozenset(part["pins"].values()) for part in self.bom["part"]}
+
+    @property
     def sides(self) -> dict[str, str]:
         return {node: side for side, nodes in self.bom["sides"].items() for node in nodes}
 
@@ -63,21 +67,11 @@ def load(folder: Path) -> Tables:
         if row["observation"] == "collateral":
             collateral.setdefault(row["fault"], {}).setdefault(row["condition"], []).append(row["value"])
         elif row["observation"] != "failed":
-            seen.setdefault(row["fault"], {}).setdefault(row["condition"], {})[row["observation"]] = float(
-                row["value"]
-            )
-    after = {
-        fault: {load_: rows.get(load_ + "_after", rows[load_]) for load_ in LOADS}
-        for fault, rows in seen.items()
-    }
+            seen.setdefault(row["fault"], {}).setdefault(row["condition"], {})[row["observation"]] = float(row["value"])
+    after = {fault: {load_: rows.get(load_ + "_after", rows[load_]) for load_ in LOADS} for fault, rows in seen.items()}
     live = {fault: _live(bom, rows) for fault, rows in after.items()}
-    state = {
-        fault: {load_: _state(bom, load_, rows, after["healthy"]) for load_ in LOADS}
-        for fault, rows in after.items()
-    }
-    taken = {
-        fault: {load_: tuple(chain) for load_, chain in rows.items()} for fault, rows in collateral.items()
-    }
+    state = {fault: {load_: _state(bom, load_, rows, after["healthy"]) for load_ in LOADS} for fault, rows in after.items()}
+    taken = {fault: {load_: tuple(chain) for load_, chain in rows.items()} for fault, rows in collateral.items()}
     return Tables(bom, cold, live, state, taken)
 
 
@@ -94,15 +88,11 @@ def _live(bom: dict, rows: dict[str, dict[str, float]]) -> dict[Probe, float]:
             elif kind == "v_ac":
                 found[Probe("volts_ac", *node.split("-"), condition)] = value
             elif name in ("p_in", "i_ac"):
-                found[Probe({"p_in": "watts", "i_ac": "amps_ac"}[name], "plug", "plug", condition)] = max(
-                    value, 0.0
-                )
+                found[Probe({"p_in": "watts", "i_ac": "amps_ac"}[name], "plug", "plug", condition)] = max(value, 0.0)
     return found
 
 
-def _state(
-    bom: dict, load_: str, rows: dict[str, dict[str, float]], healthy: dict[str, dict[str, float]]
-) -> str | None:
+def _state(bom: dict, load_: str, rows: dict[str, dict[str, float]], healthy: dict[str, dict[str, float]]) -> str | None:
     """State of the adapter from its readings, by the rule that the blind cases of the reference use."""
     rated, here, good = bom["label"]["output_v"], rows[load_], healthy[load_]
     out = {name: values["v_dc.out"] for name, values in rows.items()}

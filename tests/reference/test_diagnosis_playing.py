@@ -24,7 +24,7 @@ def tables(shared: Path) -> stand_in.Tables:
 def diagnosis(tables: stand_in.Tables) -> Diagnosis:
     expected = stand_in.expectations(tables)
     weights = {h.root[0]: Weight(1.0) for h in expected.hypotheses if h.root}
-    return Diagnosis(expected, prior_of(weights, {}, pair_share=0), tables.kinds, tables.sides)
+    return Diagnosis(expected, prior_of(weights, {}, pair_share=0), tables.kinds, tables.sides, pins=tables.pins)
 
 
 def play_all(diagnosis: Diagnosis, tables: stand_in.Tables, meter: Meter, looked: bool) -> list[Play]:

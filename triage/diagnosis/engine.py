@@ -5,8 +5,8 @@ A ``Diagnosis`` holds what was computed once for a board and keeps nothing of a 
 function of the entries given to it.
 """
 
-from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -27,6 +27,7 @@ from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
 from triage.diagnosis.next_reading import Candidate, candidates, cold_first
 from triage.diagnosis.priors import Prior
+from triage.diagnosis.second_look import nothing_fits, odd_readings, reading_at_part
 from triage.diagnosis.settings import Settings
 from triage.diagnosis.verdict import Suspect, Verdict, best_repair, conclude, settled, suspects
 from triage.diagnosis.weigh import Weighed, evidence_ratios
@@ -59,6 +60,7 @@ class Diagnosis:
         sides: Mapping[str, str],
         settings: Settings | None = None,
         costs: Costs | None = None,
+        pins: Mapping[str, frozenset[str]] | None = None,
     ) -> None:
         """Tabulate the expectations.
 
@@ -69,6 +71,7 @@ class Diagnosis:
         kinds: ref -> part kind.
         sides: node -> ``primary`` or ``secondary``.
         settings, costs: by default those of the shipped files.
+        pins: ref -> nodes of the part; with them a verdict is confirmed by a reading at the part itself.
         Raises EntryError when prior and expectations have no hypothesis in common.
         """
         self.settings = settings or Settings.load()
@@ -76,10 +79,11 @@ class Diagnosis:
         self.expectations = expectations
         self.prior = prior.over(expectations.hypotheses)
         self.why = prior.why
-        self.kinds, self.sides = kinds, sides
+        self.kinds, self.sides, self.pins = kinds, sides, pins or {}
         self.actions = Actions.of_hypotheses(expectations.hypotheses)
         self.model = ReadingModel(expectations, self.settings)
         self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings)
+        self._last: tuple[Job, Standing] | None = None
 
     @classmethod
     def of_board(
@@ -92,12 +96,13 @@ class Diagnosis:
     ) -> "Diagnosis":
         """The diagnosis of a board, kinds and sides taken from it."""
         sides = {node: side for side, nodes in board.sides.items() for node in nodes}
-        return cls(expectations, prior, {part.ref: part.kind for part in board.parts}, sides, settings, costs)
+        kinds = {part.ref: part.kind for part in board.parts}
+        pins = {part.ref: frozenset(part.pins.values()) for part in board.parts}
+        return cls(expectations, prior, kinds, sides, settings, costs, pins)
 
     def belief(self, job: Job) -> NDArray[np.float64]:
         """Chance of each hypothesis about the present state of the board, shape (H,), adds up to 1 [-]."""
-        start, since = self._phase(job)
-        return posterior(start, self._likelihoods.log(since))
+        return self._standing(job).belief
 
     def suspects(self, job: Job) -> tuple[Suspect, ...]:
         """What may be wrong, by root fault, the likeliest first; the probabilities add up to 1."""
@@ -113,14 +118,16 @@ class Diagnosis:
         careful: two-step value of information and the careful stop, for boards where a wrong repair destroys
             parts.
         """
-        belief = self.belief(job)
-        ranked = self._ranked(job, belief, gate)
+        standing = self._standing(job)
+        belief = standing.belief
+        if nothing_fits(self.model, standing.readings, belief, self.settings.misfit_tail):
+            return None
+        ranked = self._ranked(job, standing, gate)
         worth = ranked[0].worth if ranked else 0.0
         enough, exhausted = settled(belief, self.actions, self.settings, careful, worth)
         if enough:
-            doubt = next((c for c in self._doubtful(job, belief) if gate(c.probe)), None)
-            return None if doubt is None else explain.measure_again(self.model, belief, self.actions, doubt)
-        if exhausted or not ranked:
+            return self._second_look(job, standing, gate)
+        if exhausted:
             return None
         choice = self._careful_choice(belief, ranked) if careful else ranked[0]
         return explain.suggestion(self.model, belief, self.actions, choice)
@@ -128,38 +135,34 @@ class Diagnosis:
     def verdict(self, job: Job, careful: bool = False) -> Verdict:
         """What the job has come to; ``careful`` as in ``suggest``.
 
-        It stays open while a doubtful reading can be measured again, and while a reading behind the gate is
+        It stays open while a doubtful reading can be measured again or the part itself be read, and while a
+        reading behind the gate is
         still worth its minutes: ``suggest`` then has nothing to offer, and the caller can say what the gate
-        waits for.
+            waits for.
         """
-        belief = self.belief(job)
-        ranked = self._ranked(job, belief, lambda probe: True)
-        waits = bool(self._doubtful(job, belief))
-        return conclude(
-            belief,
+        standing = self._standing(job)
+        ranked = self._ranked(job, standing, _everything)
+        odd = nothing_fits(self.model, standing.readings, standing.belief, self.settings.misfit_tail)
+        verdict = conclude(
+            standing.belief,
             self.expectations.hypotheses,
             self.actions,
             self.settings,
             careful,
             ranked[0].worth if ranked else 0.0,
-            self.fit(job, belief),
-            waits,
+            self._fit(standing),
+            odd,
         )
-
-    def fit(self, job: Job, belief: NDArray[np.float64]) -> Fit | None:
-        """How the readings since the last repair fit the best repair; None when there are none."""
-        readings = [entry for entry in self._phase(job)[1] if isinstance(entry, Reading)]
-        if not readings:
-            return None
-        action, _ = best_repair(belief, self.actions)
-        return fit_of(self.model, readings, np.where(self.actions.of == action, belief, 0.0))
+        if odd or verdict.status == "open":
+            return verdict
+        return replace(verdict, status="open") if self._second_look(job, standing, _everything) else verdict
 
     def evidence(self, job: Job) -> tuple[Weighed, ...]:
         """What each entry since the last repair did to the odds of the leading suspect, in the order of
         entry.
         """
-        start, since = self._phase(job)
-        belief = posterior(start, self._likelihoods.log(since))
+        standing = self._standing(job)
+        belief, start, since = standing.belief, standing.start, standing.since
         lead = suspects(belief, self.expectations.hypotheses)[0]
         members = np.array([sorted(h.root) == sorted(lead.root) for h in self.expectations.hypotheses])
         name = suspect_name(self.expectations.hypotheses[lead.index])
@@ -180,7 +183,7 @@ class Diagnosis:
 
         Empty when no reading is odd, or when the odd ones share no part.
         """
-        readings = [entry for entry in self._phase(job)[1] if isinstance(entry, Reading)]
+        readings = self._standing(job).readings
         conflicts = conflicts_of(self.model, readings, self.settings.misfit_tail)
         return hitting_sets(conflicts, largest=2)
 
@@ -191,61 +194,91 @@ class Diagnosis:
         found = look_ahead.best(self.model, belief, self.actions, self.costs, self.kinds, minutes, ranked)
         return found or ranked[0]
 
-    def _doubtful(self, job: Job, belief: NDArray[np.float64]) -> tuple[Candidate, ...]:
-        """Readings taken once that the best repair explains only by a slip: worth measuring again, worst
-        first.
-        """
-        fit = self.fit(job, belief)
-        if fit is None:
-            return ()
-        taken = _taken(self._phase_entries(job))
-        found = []
-        for probe in fit.doubtful(self.settings.misfit_tail):
-            column = self.expectations.column(probe)
-            if column is not None and taken.count(probe) == 1 and probe not in job.skipped:
-                minutes, danger = self.costs.minutes(probe, taken), self.costs.danger(probe, self.sides)
-                found.append(Candidate(column, probe, minutes, danger, 0.0))
-        return tuple(found)
+    def _second_look(self, job: Job, standing: "Standing", gate: Callable[[Probe], bool]) -> Suggestion | None:
+        """Before a verdict: the odd reading once more, then the suspected part itself."""
 
-    def _phase(self, job: Job) -> tuple[NDArray[np.float64], list[Evidence]]:
-        """Belief at the last repair (or the prior), and the evidence since."""
-        belief = with_hunches(self.prior, self.expectations.hypotheses, job.hunches, self.settings.hunch_factor)
+        def allowed(probe: Probe) -> bool:
+            return probe not in job.skipped and self.costs.can_take(probe) and gate(probe)
+
+        taken, belief = standing.taken, standing.belief
+        odd = odd_readings(self._fit(standing), taken, self.settings.misfit_tail)
+        again = next((probe for probe in odd if allowed(probe)), None)
+        if again is not None:
+            return explain.measure_again(self.model, belief, self.actions, self._candidate(again, taken))
+        action, _ = best_repair(belief, self.actions)
+        lead = int(np.argmax(np.where(self.actions.of == action, belief, -1.0)))
+        at_part = reading_at_part(self.model, lead, self.pins, taken, allowed)
+        if at_part is None:
+            return None
+        return explain.confirmation(self.model, belief, self.actions, self._candidate(at_part, taken), lead)
+
+    def _candidate(self, probe: Probe, taken: Sequence[Probe]) -> Candidate:
+        column = self.expectations.probes.index(probe)
+        return Candidate(column, probe, self.costs.minutes(probe, taken), self.costs.danger(probe, self.sides), 0.0)
+
+    def _fit(self, standing: "Standing") -> Fit | None:
+        """How the readings since the last repair fit the best repair; None when there are none."""
+        if not standing.readings:
+            return None
+        action, _ = best_repair(standing.belief, self.actions)
+        weights = np.where(self.actions.of == action, standing.belief, 0.0)
+        return fit_of(self.model, standing.readings, weights)
+
+    def _standing(self, job: Job) -> "Standing":
+        """Belief and evidence since the last repair; the last answer is kept, as a screen asks for several
+        things at once.
+        """
+        if self._last is None or self._last[0] != job:
+            self._last = (job, self._computed_standing(job))
+        return self._last[1]
+
+    def _computed_standing(self, job: Job) -> "Standing":
+        start = with_hunches(self.prior, self.expectations.hypotheses, job.hunches, self.settings.hunch_factor)
         since: list[Evidence] = []
         for entry in job.entries:
-            if isinstance(entry, Fitted):
-                belief = carry_over(
-                    posterior(belief, self._likelihoods.log(since)),
-                    self.expectations.hypotheses,
-                    entry.refs,
-                    self.settings,
-                )
-                since = []
-            else:
+            if not isinstance(entry, Fitted):
                 since.append(entry)
-        return belief, since
+                continue
+            belief = posterior(start, self._likelihoods.log(since))
+            start, since = carry_over(belief, self.expectations.hypotheses, entry.refs, self.settings), []
+        belief = posterior(start, self._likelihoods.log(since))
+        taken = [entry.probe for entry in since if isinstance(entry, Reading)]
+        ranked = candidates(self.model, belief, self.actions, self.settings.scored_mass, self.costs, self.sides, taken)
+        return Standing(belief, start, tuple(since), ranked)
 
-    def _ranked(self, job: Job, belief: NDArray[np.float64], gate: Callable[[Probe], bool]) -> tuple[Candidate, ...]:
-        taken = _taken(self._phase_entries(job))
-        ranked = candidates(
-            self.model,
-            belief,
-            self.actions,
-            self.settings.scored_mass,
-            self.costs,
-            self.sides,
-            taken,
-            job.skipped,
-            gate,
-        )
-        sound = not self.actions.repairs[best_repair(belief, self.actions)[0]]
+    def _ranked(self, job: Job, standing: "Standing", gate: Callable[[Probe], bool]) -> tuple[Candidate, ...]:
+        """The readings that may be suggested now, best first; live ones only when no cold one is worth
+        taking.
+        """
+        ranked = tuple(c for c in standing.candidates if c.probe not in job.skipped and gate(c.probe))
+        sound = not self.actions.repairs[best_repair(standing.belief, self.actions)[0]]
         least = self.settings.least_worth_when_sound_per_minute if sound else self.settings.least_worth_per_minute
         return cold_first(ranked, least)
 
-    @staticmethod
-    def _phase_entries(job: Job) -> Sequence[Entry]:
-        last = max((i for i, entry in enumerate(job.entries) if isinstance(entry, Fitted)), default=-1)
-        return job.entries[last + 1 :]
+
+@dataclass(frozen=True, slots=True)
+class Standing:
+    """Where a job stands."""
+
+    belief: NDArray[np.float64]
+    """Chance of each hypothesis now, shape (H,) [-]."""
+    start: NDArray[np.float64]
+    """The same at the last repair, or before anything was seen."""
+    since: tuple[Evidence, ...]
+    """Evidence since then, in the order of entry."""
+    candidates: tuple[Candidate, ...]
+    """Readings not taken yet that the shop can take, most gain per minute first."""
+
+    @property
+    def readings(self) -> list[Reading]:
+        """Readings since the last repair."""
+        return [entry for entry in self.since if isinstance(entry, Reading)]
+
+    @property
+    def taken(self) -> list[Probe]:
+        """Their probes."""
+        return [reading.probe for reading in self.readings]
 
 
-def _taken(entries: Iterable[Entry]) -> list[Probe]:
-    return [entry.probe for entry in entries if isinstance(entry, Reading)]
+def _everything(probe: Probe) -> bool:
+    return True

@@ -17,7 +17,7 @@ from triage.diagnosis.information import information
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.next_reading import Candidate
 from triage.diagnosis.verdict import best_repair
-from triage.diagnosis.words import NO_PART_FAULT, percent_words, probe_words
+from triage.diagnosis.words import NO_PART_FAULT, percent_words, probe_words, suspect_name
 from triage.quantities import engineering
 
 MOST_OUTCOMES = 3
@@ -86,6 +86,14 @@ def measure_again(model: ReadingModel, belief: NDArray[np.float64], actions: Act
     reason = f"Measure the {probe_words(probe)} again: what was read does not fit {lead}, which all the rest points to."
     bands = outcomes(model, belief, actions, choice.column)
     return Suggestion(probe, choice.minutes, reason, bands, hazard_words(probe), choice.gain, again=True)
+
+
+def confirmation(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, choice: Candidate, lead: int) -> Suggestion:
+    """A reading at the suspected part itself, before it is unsoldered."""
+    name = suspect_name(model.expectations.hypotheses[lead])
+    reason = f"Confirm {name} at the part itself before unsoldering it: {probe_words(choice.probe)}."
+    bands = outcomes(model, belief, actions, choice.column)
+    return Suggestion(choice.probe, choice.minutes, reason, bands, hazard_words(choice.probe), choice.gain)
 
 
 def outcomes(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, column: int) -> tuple[Outcome, ...]:

@@ -34,13 +34,17 @@ class ReadingModel:
         """One axis for each probe."""
         self._cells: list[NDArray[np.int32]] = []
         self._widths: list[NDArray[np.uint8]] = []
+        self._row: list[NDArray[np.int64]] = []
+        # Most faults leave most readings as they are: equal rows of draws are kept and reckoned once.
         for column, probe in enumerate(expectations.probes):
             instrument = instruments()[probe.function]
             samples = expectations.samples[:, column, :]
             axis = Axis.spanning(samples, instrument)
             self.axes.append(axis)
-            self._cells.append(axis.place(samples))
-            self._widths.append(draw_width(to_axis(samples, instrument)))
+            cells, first, row = _equal_rows(axis.place(samples))
+            self._cells.append(cells)
+            self._widths.append(draw_width(to_axis(samples[first], instrument)))
+            self._row.append(row)
         self._build_bins()
 
     @property
@@ -52,7 +56,7 @@ class ReadingModel:
         """True when the probe can be taken under at least one hypothesis."""
         return bool((self._cells[column] >= 0).any())
 
-    def fit(self, column: int, first: int, last: int) -> NDArray[np.float64]:
+    def _fit(self, column: int, first: int, last: int) -> NDArray[np.float64]:
         """Chance of a sound reading in cells ``first`` to ``last`` - 1, for each draw; shape (H, D), nan
         where unknown.
 
@@ -91,15 +95,9 @@ class ReadingModel:
         for value in sorted(values):
             cell = int(self.axes[column].index(value))
             slip = self.slip(column, cell, cell + 1)
-            joint *= (1 - eps) * self.fit(column, cell, cell + 1) + eps * slip
+            joint *= (1 - eps) * self._fit(column, cell, cell + 1) + eps * slip
             unknown *= slip
-        return _mean_known(joint, unknown)
-
-    def sound(self, column: int, value: float) -> NDArray[np.float64]:
-        """The part of p(reading | hypothesis) that is no gross error, shape (H,) [-]."""
-        cell = int(self.axes[column].index(value))
-        slip = self.slip(column, cell, cell + 1)
-        return (1 - self.gross) * _mean_known(self.fit(column, cell, cell + 1), slip)
+        return _mean_known(joint, unknown)[self._row[column]]
 
     def sound_table(self, column: int, keep: NDArray[np.integer]) -> NDArray[np.float64]:
         """p(cell | hypothesis) of readings without gross errors for the hypotheses ``keep``, shape
@@ -108,14 +106,14 @@ class ReadingModel:
         axis = self.axes[column]
         edges = np.arange(axis.cells + 1)[:, None]
         rows = []
-        for h in keep:
-            cell = self._cells[column][h]
+        for place in self._row[column][keep]:
+            cell = self._cells[column][place]
             known = cell[cell >= 0]
             if not known.size:
                 rows.append(np.full(axis.cells + 1, 1.0 / (axis.cells + 1)))
                 continue
             values, counts = np.unique(known, return_counts=True)
-            below = axis.below(edges, values[None, :], int(self._widths[column][h])) @ (counts / known.size)
+            below = axis.below(edges, values[None, :], int(self._widths[column][place])) @ (counts / known.size)
             rows.append(np.append(np.diff(below), 1.0 - below[-1]))
         return np.stack(rows)
 
@@ -124,11 +122,12 @@ class ReadingModel:
         to 1.
         """
         cells = self.axes[column].cells + 1
-        return np.stack([self._mixed(column, cell, cell + 1) for cell in range(cells)], axis=1)
+        table = np.stack([self._mixed(column, cell, cell + 1) for cell in range(cells)], axis=1)
+        return table[self._row[column]]
 
     def _mixed(self, column: int, first: int, last: int) -> NDArray[np.float64]:
         slip = self.slip(column, first, last)
-        return (1 - self.gross) * _mean_known(self.fit(column, first, last), slip) + self.gross * slip
+        return (1 - self.gross) * _mean_known(self._fit(column, first, last), slip) + self.gross * slip
 
     def _build_bins(self) -> None:
         edges, rows, owner = [], [], []
@@ -136,7 +135,7 @@ class ReadingModel:
             cuts = _bin_edges(self._cells[column], axis.cells)
             edges.append(cuts)
             owner += [column] * (len(cuts) - 1)
-            rows += self._bin_rows(column, cuts)
+            rows += [row[self._row[column]] for row in self._bin_rows(column, cuts)]
         self.edges = edges
         """For each probe the cells at which its bins begin, and the end; the last bin is OL."""
         self.bins = np.stack(rows).astype(np.float32) if rows else np.zeros((0, len(self.expectations.hypotheses)), np.float32)
@@ -156,6 +155,15 @@ class ReadingModel:
             (1 - self.gross) * (below[i + 1] - below[i]) + self.gross * self.slip(column, cuts[i], cuts[i + 1])
             for i in range(len(cuts) - 1)
         ]
+
+
+def _equal_rows(
+    cells: NDArray[np.int32],
+) -> tuple[NDArray[np.int32], NDArray[np.int64], NDArray[np.int64]]:
+    """(different rows, where each first occurs, row of each hypothesis)."""
+    packed = np.ascontiguousarray(cells).view(np.dtype((np.void, cells.dtype.itemsize * cells.shape[1]))).ravel()
+    _, first, row = np.unique(packed, return_index=True, return_inverse=True)
+    return cells[first], first.astype(np.int64), row.astype(np.int64)
 
 
 def _mean_known(values: NDArray[np.float64], otherwise: float) -> NDArray[np.float64]:

@@ -15,6 +15,9 @@ from triage.board.evidence import Reading
 from triage.board.probe import Probe
 from triage.diagnosis.likelihood import ReadingModel
 
+MIXED = 64
+"""Hypotheses at most whose expectations are mixed; the others weigh too little to explain a reading."""
+
 
 @dataclass(frozen=True, slots=True)
 class Fit:
@@ -53,7 +56,8 @@ def fit_of(model: ReadingModel, readings: Sequence[Reading], weights: NDArray[np
     Each reading is held against the mixture of what the weighted hypotheses expect, without gross errors.
     """
     found = []
-    keep = np.flatnonzero(weights > 1e-3 * weights.max())
+    likeliest = np.argsort(-weights, kind="stable")[:MIXED]
+    keep = likeliest[weights[likeliest] > 1e-3 * weights[likeliest[0]]]
     share = weights[keep] / weights[keep].sum()
     latest = {reading.probe: reading.value for reading in readings}
     for probe in sorted(latest):

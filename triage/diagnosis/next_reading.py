@@ -6,7 +6,7 @@ edge cutting; Golovin, Krause, Ray, Near-optimal Bayesian active learning with n
 divided by minutes with hazard.
 """
 
-from collections.abc import Callable, Collection, Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -73,23 +73,15 @@ def candidates(
     mass: float,
     costs: Costs,
     sides: Mapping[str, str],
-    taken: Collection[Probe],
-    left_out: Collection[Probe],
-    allowed: Callable[[Probe], bool],
+    taken: Sequence[Probe],
 ) -> tuple[Candidate, ...]:
-    """The readings that may be taken now, most gain per minute first.
+    """The readings not taken yet that the shop can take, most gain per minute first; no gate is asked.
 
-    Parameters
-    ----------
-    taken: readings in the order they were taken; none is suggested again.
-    left_out: skipped ones.
-    allowed: the gate; asked for every reading, live ones above all.
+    taken: readings in the order they were taken.
     """
-    out = set(taken) | set(left_out)
     probes = model.expectations.probes
     columns = np.array(
-        [c for c, probe in enumerate(probes) if probe not in out and costs.can_take(probe) and model.known(c) and allowed(probe)],
-        dtype=np.int64,
+        [c for c, p in enumerate(probes) if p not in taken and costs.can_take(p) and model.known(c)], dtype=np.int64
     )
     gains = rank(model, belief, actions, mass, columns)
     found = [

@@ -36,7 +36,6 @@ class Settings:
 
     stop_target: float
     careful_target: float
-    sound_target: float
     least_worth_per_minute: float
     least_worth_when_sound_per_minute: float
     gross_error: float

@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from triage.board.fault import Fault, Hypothesis
+from triage.board.probe import Probe
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.misfit import Fit
 from triage.diagnosis.settings import Settings
@@ -54,7 +55,7 @@ class Verdict:
     """Chance that this repair cures [-]."""
     exhausted: bool
     """True when no reading that may still be taken is worth its minutes."""
-    again: tuple[str, ...] = ()
+    odd: tuple[str, ...] = ()
     """Readings that do not fit this repair, as texts of their probes, worst first."""
 
 
@@ -88,9 +89,8 @@ def settled(
     """
     action, cure = best_repair(belief, actions)
     if not actions.repairs[action]:
-        target = max(settings.sound_target, settings.careful_target if careful else 0.0)
         exhausted = best_worth < settings.least_worth_when_sound_per_minute
-        return cure >= target and exhausted, exhausted
+        return exhausted, exhausted
     exhausted = best_worth < settings.least_worth_per_minute
     return cure >= (settings.careful_target if careful else settings.stop_target) or exhausted, exhausted
 
@@ -103,24 +103,26 @@ def conclude(
     careful: bool,
     best_worth: float,
     fit: Fit | None,
-    waits: bool = False,
+    unexplained: Sequence[Probe] = (),
 ) -> Verdict:
     """The verdict on a belief.
 
     Parameters
     ----------
     fit: how the readings fit the leading repair; None when none was taken.
-    waits: a doubtful reading is still to be measured again.
+    unexplained: readings measured again that nothing on the list explains.
     Other parameters as in ``settled``.
     """
     action, cure = best_repair(belief, actions)
     lead = next(s for s in suspects(belief, hypotheses) if actions.of[s.index] == action)
     enough, exhausted = settled(belief, actions, settings, careful, best_worth)
-    again = tuple(map(str, fit.doubtful(settings.misfit_tail))) if fit else ()
-    if not enough or waits:
+    odd = tuple(map(str, unexplained or (fit.doubtful(settings.misfit_tail) if fit else ())))
+    if unexplained:
+        status = "does not fit"
+    elif not enough:
         status = "open"
     elif fit is not None and fit.overall < settings.misfit_tail:
         status = "does not fit"
     else:
         status = "found" if lead.root else NO_PART_FAULT
-    return Verdict(status, lead, tuple(sorted(actions.repairs[action])), cure, exhausted, again)
+    return Verdict(status, lead, tuple(sorted(actions.repairs[action])), cure, exhausted, odd)
