@@ -162,6 +162,8 @@ def test_part_rate_follows_role_and_stress() -> None:
     assert failure_rate.part_rate("bridge") == pytest.approx(4.0 * failure_rate.part_rate("diode", "mains rectifier"))
     mains, flyback = (failure_rate.part_rate("transformer", f"{name} transformer") for name in ("mains", "flyback"))
     assert mains < flyback
+    usual = failure_rate.capacitor_rate("CE", 1e-6, 0.5, 60.0)
+    assert failure_rate.part_rate("electrolytic") == pytest.approx(usual)
     assert failure_rate.part_rate("fuse", environment="GM") == pytest.approx(0.08)
 
 
