@@ -15,6 +15,11 @@ class Family:
     """Roles whose faults may keep the adapter from starting: these are also solved from rest."""
     bulk_role: str = "bulk capacitor"
     """Role of the capacitor behind the mains rectifier."""
-    output_role: str = "output capacitor"
+    output_roles: tuple[str, ...] = ("output capacitor",)
+    """Roles of the capacitors that hold the output voltage."""
+    supply_role: str = ""
+    """Role of the capacitor a controller lives on; empty where there is none."""
+    largest_step: float = 0.0
+    """Largest time step where nothing switches [s]; 0 leaves it to the solution."""
     look: tuple[str, ...] = ()
     """What can be seen on a board of this family, for telling it apart."""

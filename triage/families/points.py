@@ -22,7 +22,7 @@ from triage.board.profile import board_to_dict
 from triage.families import family_of
 from triage.families.destruction import destroyed
 from triage.families.live import live_probes, live_readings
-from triage.families.steady import Settled, settle
+from triage.families.steady import Settled, rated_start, settle
 from triage.physics.transient import POWER, QUICK, NoConvergence, Quality
 
 SOLUTION = 1
@@ -139,8 +139,7 @@ class OperatingPoints:
         """Capacitor voltages of the sound board under this load [V]; rated ones for the sound board itself."""
         if faults:
             return self.at((), load).capacitors
-        output = self.board.by_role(family_of(self.board.family).output_role)
-        return {output.ref: self.board.label.output_voltage} if output else {}
+        return rated_start(self.board, family_of(self.board.family))
 
     def chains(self, roots: Iterable[Fault]) -> dict[Fault, dict[str, tuple[Fault, ...]]]:
         """For each root fault and load the parts that it takes along, in order of destruction."""

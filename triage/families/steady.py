@@ -11,7 +11,7 @@ import numpy as np
 
 from triage.board.circuit import NOMINAL, Draw, circuit, output_ground
 from triage.board.fault import Fault
-from triage.board.part import Board
+from triage.board.part import Board, Part
 from triage.families.family import Family
 from triage.physics.netlist import Compiled, Netlist, compile_netlist
 from triage.physics.transient import V_MAX, Quality, State, Stretch, Watch, initial_state, rest_state, run_stretch
@@ -23,6 +23,27 @@ SETTLED_CHARGE = 0.04
 """Change of an electrolytic's voltage over a period that counts as none [-]."""
 QUIET_FREQUENCY = 60.0
 """Below this nothing switches [Hz]."""
+
+
+def output_parts(board: Board, family: Family) -> tuple[Part, ...]:
+    """The electrolytics that hold the output voltage."""
+    return tuple(part for part in board.parts if part.role in family.output_roles and part.kind == "electrolytic"
+                 and part.pins["plus"] in ("out", *_beyond_coil(board)))
+
+
+def _beyond_coil(board: Board) -> tuple[str, ...]:
+    """Nodes that a filter coil joins to the output."""
+    return tuple(node for part in board.parts if part.kind == "inductor" and "out" in part.pins.values()
+                 for node in part.pins.values())
+
+
+def rated_start(board: Board, family: Family) -> dict[str, float]:
+    """Capacitor voltages to begin a sound board with [V]: outputs at their rated voltage, the supply of a controller awake."""
+    start = {part.ref: board.label.output_voltage for part in output_parts(board, family)}
+    supply, controller = board.by_role(family.supply_role), next((p for p in board.parts if p.kind == "pwm_controller"), None)
+    if supply is not None and controller is not None:
+        start[supply.ref] = 0.997 * controller.value["start_voltage"]
+    return start
 
 
 @dataclass(frozen=True, slots=True)
@@ -123,8 +144,8 @@ def _output(run: _Run) -> float:
 def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, int]:
     """Periods until the output repeats; returns the last one and how many there were."""
     nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
-    limit = min((part.ratings["voltage"] for part in run.board.parts if part.role == run.family.output_role
-                 and "voltage" in part.ratings), default=1e9)
+    limit = min((part.ratings["voltage"] for part in output_parts(run.board, run.family) if "voltage" in part.ratings),
+                default=1e9)
     number = 0
     while number < MOST_PERIODS:
         number += 1
@@ -145,8 +166,8 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
 
 def _resting_output(run: _Run) -> float:
     """Voltage of the output capacitor [V], the output voltage of a board at rest."""
-    part = run.board.by_role(run.family.output_role)
-    return float(run.state.capacitors[run.electrolytics[part.ref]]) if part and part.ref in run.electrolytics else 0.0
+    parts = output_parts(run.board, run.family)
+    return float(run.state.capacitors[run.electrolytics[parts[0].ref]]) if parts else 0.0
 
 
 def _rated(run: _Run, ref: str) -> float:
@@ -187,9 +208,11 @@ def _only_falls(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int]
 def _follow_drift(run: _Run, change: float, last: float | None) -> float | None:
     """Move the output capacitor towards the end of a geometric drift; returns the change to compare the next one with."""
     nominal = run.board.label.output_voltage
-    part = run.board.by_role(run.family.output_role)
-    if last is not None and change * last > 0.0 and abs(change) > 0.01 * nominal and 0.1 < change / last < 0.95 and part:
-        ratio, k = change / last, run.electrolytics[part.ref]
-        run.state.capacitors[k] = max(run.state.capacitors[k] + 0.9 * change * ratio / (1.0 - ratio), 0.0)
+    parts = output_parts(run.board, run.family)
+    if last is not None and change * last > 0.0 and abs(change) > 0.01 * nominal and 0.1 < change / last < 0.95 and parts:
+        ratio = change / last
+        for part in parts:
+            k = run.electrolytics[part.ref]
+            run.state.capacitors[k] = max(run.state.capacitors[k] + 0.9 * change * ratio / (1.0 - ratio), 0.0)
         return None
     return change

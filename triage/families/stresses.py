@@ -16,7 +16,7 @@ from triage.board.part import Board, Part
 from triage.board.stress import Stress
 from triage.families import family_of
 from triage.families.points import LOADS, NO_LOAD, load_resistance
-from triage.families.steady import Settled, settle
+from triage.families.steady import Settled, rated_start, settle
 from triage.physics.derating import derating
 from triage.physics.electrolytic_life import life
 from triage.physics.netlist import compile_netlist
@@ -64,8 +64,7 @@ def worst_corners(board: Board) -> tuple[Condition, ...]:
 def settle_corners(board: Board, corners: Iterable[Condition], quality: Quality = FINE) -> dict[Condition, Settled]:
     """Steady state of the sound board in each corner, solved side by side."""
     family = family_of(board.family)
-    output = board.by_role(family.output_role)
-    start = {output.ref: board.label.output_voltage} if output else {}
+    start = rated_start(board, family)
 
     def one(corner: Condition) -> Settled:
         return settle(board, family, (), mains=corner.mains, load=corner.load, quality=quality, start=start)
