@@ -4,17 +4,15 @@ import asyncio
 import os
 import signal
 import sys
-from importlib import import_module
 from pathlib import Path
-from typing import Any
 
 from textual.app import App
 from textual.binding import Binding
-from textual.screen import Screen
 
 from triage.app import terminal, theme
 from triage.app.desk import Desk
 from triage.app.keys import COMMANDS
+from triage.app.places import Places, make_screen
 from triage.app.shelf import Shelf
 
 _SAVE_SECONDS = 3.0
@@ -54,6 +52,7 @@ class TriageApp(App[int]):
         self.desk = Desk(self.call_later, self._changed, self._fault)
         self.faults: list[Exception] = []
         self._first = (job, profile)
+        self.places = Places(self)
         for each in (theme.DARK, theme.LIGHT, theme.OWN):
             self.register_theme(each)
         self.theme = (theme.OWN if look.own_colours else theme.DARK).name
@@ -70,7 +69,7 @@ class TriageApp(App[int]):
                 loop.add_signal_handler(number, self._leave_on, number)
             except (NotImplementedError, RuntimeError, ValueError):
                 continue
-        self.push_screen(self._screen("start"))
+        self.push_screen(make_screen("start"))
         job, profile = self._first
         if job is not None:
             self.desk.open(self.shelf.opener(job), self._opened)
@@ -80,14 +79,6 @@ class TriageApp(App[int]):
     def _leave_on(self, number: int) -> None:
         self.desk.finish(_SAVE_SECONDS)
         self.exit(128 + number, return_code=128 + number)
-
-    @staticmethod
-    def _screen(place: str, *arguments: Any) -> Screen[Any]:
-        """The screen of a place, from the module of that name, imported when first wanted."""
-        module = import_module(f"triage.app.screens.{place}")
-        screen = getattr(module, f"{place.title()}Screen")(*arguments)
-        assert isinstance(screen, Screen)
-        return screen
 
     def _opened(self) -> None:
         """Go to the first thing this job needs."""
@@ -123,20 +114,12 @@ class TriageApp(App[int]):
         if self.desk.view is None:
             self._changed()
             return
-        while len(self.screen_stack) > 3:
-            self.pop_screen()
-        if getattr(self.screen, "PLACE", "") == place:
-            return
-        screen = self._screen(place)
-        if len(self.screen_stack) > 2:
-            self.switch_screen(screen)
-        else:
-            self.push_screen(screen)
+        self.places.show(place)
 
     def action_form(self, name: str) -> None:
         """Open a form for an entry in front of the screen."""
         if self.desk.view is not None and getattr(self.screen, "PLACE", "") != name:
-            self.push_screen(self._screen(name))
+            self.push_screen(make_screen(name))
 
     def action_help(self) -> None:
         """Open the page on the screen in front, or close it."""
@@ -144,12 +127,12 @@ class TriageApp(App[int]):
         if place == "help":
             self.pop_screen()
         else:
-            self.push_screen(self._screen("help", place))
+            self.push_screen(make_screen("help", place))
 
     def action_menu(self) -> None:
         """Open the list of all commands."""
         if getattr(self.screen, "PLACE", "") != "menu":
-            self.push_screen(self._screen("menu"))
+            self.push_screen(make_screen("menu"))
 
     def action_undo(self) -> None:
         """Take the last entry back."""
@@ -161,8 +144,7 @@ class TriageApp(App[int]):
 
     def action_start(self) -> None:
         """Put the job away and go back to the start page."""
-        while len(self.screen_stack) > 2:
-            self.pop_screen()
+        self.places.clear()
         self.desk.put_away()
         self._changed()
 

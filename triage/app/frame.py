@@ -51,7 +51,7 @@ class Frame(Screen[None]):
     @property
     def wide(self) -> int:
         """Columns of the screen."""
-        return self.size.width or 80
+        return self.app.size.width
 
     def compose(self) -> ComposeResult:
         """Status, body, message, keys."""
@@ -74,7 +74,11 @@ class Frame(Screen[None]):
 
     def on_screen_resume(self) -> None:
         """Show what changed while another screen was in front."""
+        self.entered()
         self.refresh_view()
+
+    def entered(self) -> None:
+        """Forget what may be out of date when the screen comes to the front."""
 
     def on_resize(self, event: events.Resize) -> None:
         """Write every line anew for the new width, once the layout is done."""

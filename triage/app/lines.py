@@ -48,6 +48,17 @@ def line(*parts: str | Span) -> Line:
     return tuple(span for span in spans if span.text)
 
 
+def merged(row: Line) -> Line:
+    """The line with neighbouring spans of the same mark and action joined: fewer style changes to send."""
+    spans: list[Span] = []
+    for span in row:
+        if spans and spans[-1][1:] == span[1:]:
+            spans[-1] = spans[-1]._replace(text=spans[-1].text + span.text)
+        else:
+            spans.append(span)
+    return tuple(spans)
+
+
 def plain(row: Line) -> str:
     """The text of a line without its marks."""
     return "".join(span.text for span in row)

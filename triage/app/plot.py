@@ -9,7 +9,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 from triage.app.glyphs import Glyphs
-from triage.app.lines import Line, Span, fit, line
+from triage.app.lines import Line, Span, fit, line, merged
 
 _DOT_BITS = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
 """Bits of a braille cell by dot row and column (Unicode Standard, block U+2800)."""
@@ -159,14 +159,4 @@ def _canvas(
                 if char != " ":
                     shown = char if glyphs.braille or number == 0 else "x"
                     cells[row][column] = (shown, "suspect" if number else "strong")
-    return [_merged(row) for row in cells]
-
-
-def _merged(cells: list[tuple[str, str]]) -> Line:
-    spans: list[Span] = []
-    for char, mark in cells:
-        if spans and spans[-1].mark == mark:
-            spans[-1] = spans[-1]._replace(text=spans[-1].text + char)
-        else:
-            spans.append(Span(char, mark))
-    return tuple(spans)
+    return [merged(tuple(Span(char, mark) for char, mark in row)) for row in cells]

@@ -79,7 +79,7 @@ class BenchScreen(Frame):
         """Give each panel its rows and columns."""
         columns = max(map(width_of, drawing), default=0)
         self._beside = self.wide - columns - 1 if self.wide - columns > _BESIDE else 0
-        self._rooms = rooms(self.size.height - _FIXED, len(drawing), bool(self._beside))
+        self._rooms = rooms(self.app.size.height - _FIXED, len(drawing), bool(self._beside))
         self.set_class(bool(self._beside), "-beside")
         board, suspects, log = self.panel("board"), self.panel("suspects"), self.panel("log")
         board.styles.width = columns if self._beside else "1fr"

@@ -57,8 +57,9 @@ class MenuScreen(Form):
         self.query_one("#list", ListPanel).fill(rows)
 
     def on_input_changed(self, event: Input.Changed) -> None:
-        """Narrow the list."""
+        """Narrow the list and take the best of what fits."""
         self.refresh_body(None)
+        self.query_one("#list", ListPanel).action_move(-len(COMMANDS))
 
     def action_step(self, by: int) -> None:
         """Move the cursor of the list while typing."""

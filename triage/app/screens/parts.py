@@ -31,12 +31,9 @@ class PartsScreen(Frame):
 
     def body(self) -> ComposeResult:
         """Fields, demand, list, detail."""
-        bench, view = self.desk.bench, self.desk.view
-        refs = [part.ref for part in bench.board.parts] if bench else []
-        wanted = (view.verdict.repair or tuple(one.ref for one in view.suspects if one.ref in refs)) if view else ()
         with Horizontal(classes="row"):
             yield Panel(id="ref-label")
-            yield ChoiceField([*wanted, *(ref for ref in refs if ref not in wanted)], wanted[0] if wanted else "", id="ref")
+            yield ChoiceField((), id="ref")
             yield Panel(id="marking-label")
             yield Field(id="marking")
             yield Panel(id="hint")
@@ -50,6 +47,19 @@ class PartsScreen(Frame):
         self.panel("ref-label").show((line(Span("position ", "strong")),))
         self.panel("marking-label").show((line(Span("  marking ", "strong")),))
         self.panel("hint").show((line(Span("  Enter on a line of the list fits it", "quiet")),))
+
+    def entered(self) -> None:
+        """Offer the positions of the verdict first, else the suspects; keep the one chosen while it is among
+        them."""
+        bench, view = self.desk.bench, self.desk.view
+        if bench is None or view is None:
+            return
+        refs = [part.ref for part in bench.board.parts]
+        wanted = [ref for ref in view.verdict.repair or [one.ref for one in view.suspects] if ref in refs]
+        field = self.query_one("#ref", ChoiceField)
+        field.choices = (*wanted, *(ref for ref in refs if ref not in wanted))
+        if wanted and self._ref not in view.verdict.repair:
+            field.value = wanted[0]
         self._ask()
 
     def refresh_body(self, view: JobView | None) -> None:

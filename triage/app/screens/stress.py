@@ -28,13 +28,18 @@ class StressScreen(Frame):
         yield ListPanel(id="list")
         yield Panel(id="detail")
 
+    def entered(self) -> None:
+        """A part may have been fitted meanwhile."""
+        self._asked = False
+
     def refresh_body(self, view: JobView | None) -> None:
         """Ask for the stresses once, then show them for this width."""
         if not self._asked:
             self._asked = True
-            self.panel("detail").show((line(Span("computing the stresses...", "near")),))
+            if not self._found:
+                self.panel("detail").show((line(Span("computing the stresses...", "near")),))
             self.ask("stress", lambda bench: bench.stresses(), self._show, self._failed)
-        elif self._found:
+        if self._found:
             self._show(self._found)
 
     def _failed(self, text: str) -> None:

@@ -17,7 +17,7 @@ from textual.strip import Strip
 from textual.widget import Widget
 
 from triage.app.glyphs import FULL, Glyphs
-from triage.app.lines import MARKS, Line, Span, clip, width_of
+from triage.app.lines import MARKS, Line, Span, clip, merged, width_of
 
 
 class Panel(Widget):
@@ -60,7 +60,7 @@ class Panel(Widget):
 
     def _folded(self, lines: Sequence[Line]) -> tuple[Line, ...]:
         fold = self.glyphs.fold
-        return tuple(tuple(span._replace(text=fold(span.text)) for span in row) for row in lines)
+        return tuple(merged(tuple(span._replace(text=fold(span.text)) for span in row)) for row in lines)
 
     def scroll_rows(self, rows: int) -> None:
         """Move the view by some rows."""
@@ -266,8 +266,12 @@ class ListPanel(Panel, can_focus=True):
 
     def on_focus(self) -> None:
         """Repaint the cursor row as the one keys go to."""
-        self.refresh()
+        self._paint_cursor()
 
     def on_blur(self) -> None:
         """Repaint the cursor row as one that keys do not go to."""
-        self.refresh()
+        self._paint_cursor()
+
+    def _paint_cursor(self) -> None:
+        y = self._cursor - self._top + (1 if self._head else 0)
+        self.refresh(Region(0, y, self.size.width, 1))
