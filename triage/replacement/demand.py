@@ -1,0 +1,388 @@
+"""What a position demands of the part fitted there, in figures.
+
+The computed worst-case stress over its derating factor is the minimum, not the dead part's rating: the dead part may have
+been the mistake, and then the demand says so. Beside that stand the window around the value, what the dead part offered,
+and the rules of ``positions.toml``. What a candidate does with the demand is judged in ``triage.replacement.rules``.
+"""
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from triage.board.part import Board, Part
+from triage.board.stress import QUANTITIES, Stress
+from triage.errors import EntryError
+from triage.replacement.catalog import Catalog
+from triage.replacement.catalog_part import CatalogPart
+from triage.replacement.positions import Need, Position, plain_role, position_of
+
+KIND_CLASSES = {
+    "bipolar_transistor": "bipolar_transistor", "mosfet": "mosfet", "optocoupler": "optocoupler", "bridge": "bridge",
+    "shunt_reference": "shunt_reference", "regulator": "linear_regulator", "zener": "zener", "fuse": "fuse", "ntc": "ntc",
+    "varistor": "varistor", "resistor": "resistor", "fusible_resistor": "fusible_resistor", "led": "led",
+    "electrolytic": "electrolytic", "tvs": "tvs",
+}
+"""Part kind of a board -> the catalog class it is ordered from, where there is one alone."""
+
+UNITS = {
+    "V": "V", "A": "A", "W": "W", "ohm": "ohm", "F": "F", "C": "C", "s": "s", "Hz": "Hz", "J": "J", "K": "K", "h": "h",
+    "degC": "degC", "percent": "%", "mm": "mm", "Vac": "V", "Vdc": "V", "Vrms": "V",
+}
+"""Unit at the end of a catalog key -> unit as shown."""
+
+_HALF_WAVE = 8.3e-3
+"""Duration of the surge that a rectifier's IFSM is given for [s]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Requirement:
+    """One figure or word that a candidate must meet."""
+
+    key: str
+    """Catalog field."""
+    text: str
+    """The field in words."""
+    unit: str
+    """Unit as shown, empty for a word."""
+    reason: str
+    """How the figure came about: ``460 V at 253 V, full load / 0.8``."""
+    source: str
+    """Where the fraction or the rule is from."""
+    minimum: float | None = None
+    maximum: float | None = None
+    words: tuple[str, ...] = ()
+    """Words allowed; empty for a figure."""
+    alternatives: tuple[str, ...] = ()
+    """Fields that may stand for ``key``."""
+    stressed: float | None = None
+    """The computed stress over its factor alone, where there is one: the minimum may be the old part's own rating."""
+    offered: float | str | None = None
+    """What the dead part offered."""
+    mistake: str = ""
+    """Says that the dead part was itself below the demand, with figures; empty when it was not."""
+    if_known: bool = False
+    """A candidate that leaves the figure out passes with a note."""
+    rule: str = ""
+    """Name of a rule with a shape of its own: ``gain near`` a known gain, or ``gain band`` of the old type."""
+    undecided: bool = False
+    """Neither the stress nor the dead part's rating is known, so that nothing can be promised for this figure."""
+
+
+@dataclass(frozen=True, slots=True)
+class Demand:
+    """Everything a position asks of the part fitted there."""
+
+    ref: str
+    role: str
+    kind: str
+    classes: tuple[str, ...]
+    """Catalog classes that may be fitted; empty: only the very same part."""
+    requirements: tuple[Requirement, ...]
+    safety: bool
+    """A safety part: like for like, no combination, nothing from memory alone."""
+    original: CatalogPart | None
+    """The dead part as the catalog knows it."""
+    original_type: str
+    """Type or marking read off the dead part."""
+    same_pins: bool = False
+    never: tuple[str, ...] = ()
+    together: tuple[str, ...] = ()
+    """Parts to replace or check with it."""
+    note: str = ""
+
+    @property
+    def mistakes(self) -> tuple[str, ...]:
+        """Where the dead part was itself below the demand."""
+        return tuple(requirement.mistake for requirement in self.requirements if requirement.mistake)
+
+    def window(self, key: str) -> tuple[float, float] | None:
+        """Lowest and highest allowed value of a field that has both bounds, or None."""
+        for requirement in self.requirements:
+            if requirement.key == key and requirement.minimum is not None and requirement.maximum is not None:
+                return requirement.minimum, requirement.maximum
+        return None
+
+
+def demand(board: Board, ref: str, stresses: Sequence[Stress], catalog: Catalog) -> Demand:
+    """The demand of the position ``ref``.
+
+    ``stresses`` are the worst-case stresses of the board (other refs are passed over). Raises EntryError when the board
+    has no such part.
+    """
+    try:
+        part = board.part(ref)
+    except KeyError:
+        raise EntryError(f"part {ref!r}", "not on this board", "one of " + ", ".join(p.ref for p in board.parts)) from None
+    original = catalog.find(part.type) if part.type else None
+    dead_class = original.part_class if original else KIND_CLASSES.get(part.kind, "")
+    position = position_of(board, part, dead_class) or position_of(board, part)
+    if position is None:
+        return Demand(
+            ref=ref, role=part.role, kind=part.kind, classes=(), requirements=(), safety=False, original=original,
+            original_type=part.type, note="no rule for this position: fit the very same type",
+        )
+    if original and original.part_class not in position.classes + position.was:
+        original = None
+    own = tuple(stress for stress in stresses if stress.ref == ref)
+    figures = _Figures(board, part, own, original)
+    requirements = tuple(found for need in position.needs if (found := figures.requirement(need)))
+    return Demand(
+        ref=ref, role=plain_role(part.role), kind=part.kind, classes=position.classes, requirements=requirements,
+        safety=position.safety, original=original, original_type=part.type, same_pins=position.same_pins,
+        never=position.never, together=position.together, note=_notes(position, part),
+    )
+
+
+def _notes(position: Position, part: Part) -> str:
+    words = [position.note] if position.note else []
+    if part.origin == "estimated" and position.classes:
+        words.append("the old value is only estimated: read or measure it before ordering")
+    return "; ".join(words)
+
+
+def unit_of(key: str) -> str:
+    """The unit at the end of a catalog key, empty when there is none."""
+    words = key.split("_")
+    if words[-1] == "W" and "K" in words and "per" in words:
+        return "K/W"
+    return UNITS.get(words[-1], "")
+
+
+def figure(value: float, unit: str) -> str:
+    """A figure of a demand as read aloud, four digits at most: ``0.15 A``, ``4.7 uF``, ``75 ns``."""
+    if unit in ("F", "s", "C") and value != 0:
+        for scale, letter in ((1.0, ""), (1e-3, "m"), (1e-6, "u"), (1e-9, "n"), (1e-12, "p")):
+            if abs(value) >= scale * 0.9999999:
+                return f"{value / scale:.4g} {letter}{unit}"
+    if unit == "ohm" and abs(value) >= 1e3:
+        return f"{value / 1e6:.4g} Mohm" if abs(value) >= 1e6 else f"{value / 1e3:.4g} kohm"
+    return f"{value:.4g} {unit}".strip()
+
+
+def _words_of(key: str) -> str:
+    return WORDS.get(key, key.rpartition("_")[0].replace("_", " ") or key)
+
+
+WORDS = {
+    "vrrm_V": "repetitive reverse voltage", "vr_dc_V": "reverse voltage", "if_av_A": "average forward current",
+    "ifsm_A": "surge current", "trr_max_s": "recovery time", "tj_max_degC": "junction temperature limit",
+    "vf_max_V": "forward voltage", "vcbo_V": "collector-base voltage", "vceo_V": "collector-emitter voltage",
+    "ic_A": "collector current", "ptot_W": "power", "hfe_min": "current gain band", "ts_max_s": "storage time",
+    "vdss_V": "drain-source voltage", "id_A": "drain current", "rds_on_max_ohm": "on resistance", "qg_max_C": "gate charge",
+    "vgs_max_V": "gate-source voltage", "vgs_th_max_V": "gate threshold", "c_F": "capacitance", "vr_Vdc": "rated voltage",
+    "vr_Vac": "rated ac voltage", "ripple_120Hz_A": "ripple current at 120 Hz", "ripple_100kHz_A": "ripple current at 100 kHz",
+    "z_100kHz_20C_ohm": "impedance at 100 kHz", "t_max_degC": "temperature rating", "r_ohm": "resistance",
+    "v_lim_V": "voltage limit", "p_W": "power", "kind": "kind of element", "vz_V": "zener voltage",
+    "izt_A": "test current", "tol_percent": "tolerance", "ctr_min_percent": "transfer ratio, lowest",
+    "ctr_max_percent": "transfer ratio, highest", "viso_Vrms": "isolation voltage", "if_max_A": "LED current",
+    "vref_V": "reference voltage", "vka_max_V": "cathode voltage", "ika_max_A": "cathode current",
+    "ika_min_A": "least cathode current", "in_A": "rated current", "breaking_A": "breaking capacity",
+    "r25_ohm": "resistance at 25 degC",
+    "disc_mm": "disc diameter", "imax_A": "continuous current", "v1mA_V": "voltage at 1 mA", "vac_max_V": "ac voltage",
+    "energy_J": "pulse energy", "vout_V": "output voltage", "vin_max_V": "input voltage", "iout_A": "output current",
+    "dropout_typ_V": "dropout", "vbr_min_V": "breakdown voltage, lowest", "vbr_max_V": "breakdown voltage, highest",
+    "ppp_W": "pulse power", "p_steady_W": "steady power", "vr_max_V": "reverse voltage", "safety_class": "safety class",
+    "lead_pitch_mm": "lead pitch", "speed": "speed", "case": "body", "standard": "standard", "grade": "grade",
+    "polarity": "polarity", "channel": "channel",
+}
+"""Catalog field -> the words for it on screen and in reports."""
+
+
+@dataclass(frozen=True, slots=True)
+class _Figures:
+    """Turns the needs of a position into requirements for one part of one board."""
+
+    board: Board
+    part: Part
+    stresses: tuple[Stress, ...]
+    original: CatalogPart | None
+
+    def requirement(self, need: Need) -> Requirement | None:
+        """The requirement of one need, or None where nothing is known that it could ask."""
+        if need.rule:
+            return self._gain(need)
+        if need.words or (need.like == "equal" and unit_of(need.key) == ""):
+            return self._word(need)
+        if need.value or need.value_at_most:
+            return self._window(need)
+        if need.like_rating:
+            return self._same_rating(need)
+        return self._bounds(need)
+
+    def _word(self, need: Need) -> Requirement | None:
+        had = self.original.text(need.key) if self.original else ""
+        words, reason = need.words, "the position takes " + " or ".join(need.words)
+        if need.like == "equal":
+            if had:
+                words, reason = (had,), f"the old part: {had}"
+            else:
+                return Requirement(
+                    need.key, _words_of(need.key), "", "the old part's is not known: read it off the body", need.source,
+                    words=words, undecided=True,
+                )
+        if not words:
+            return None
+        return Requirement(need.key, _words_of(need.key), "", reason, need.source, words=words, offered=had or None)
+
+    def _gain(self, need: Need) -> Requirement | None:
+        """The gain may lie 30 % off the old one; where only the old type is known, the bands must lie alike."""
+        gain = next((self.part.value[key] for key in need.value if key in self.part.value), None)
+        low = self.original.number("hfe_min") if self.original else None
+        high = self.original.number("hfe_max") if self.original else None
+        if gain is not None:
+            low, high = gain * (1 - need.low), gain * (1 + need.high)
+            rule, reason = "gain near", f"gain {gain:.3g} of the old part, {need.high:.0%} either way"
+        elif low is not None and high is not None:
+            rule, reason = "gain band", "band of the old part"
+        else:
+            return None
+        return Requirement(
+            need.key, _words_of(need.key), "", reason, need.source, minimum=low, maximum=high, rule=rule, offered=gain or low,
+        )
+
+    def _window(self, need: Need) -> Requirement | None:
+        unit = unit_of(need.key)
+        if need.value_at_most:
+            value = self.part.value.get(need.value_at_most)
+            if value is None:
+                return None
+            return Requirement(
+                need.key, _words_of(need.key), unit, f"old part {figure(value, unit)} x {need.share:g}", need.source,
+                maximum=value * need.share, offered=value,
+            )
+        value = next((self.part.value[key] for key in need.value if key in self.part.value), None)
+        if value is None and self.original is not None:
+            value = self.original.number(need.key)
+        if value is None:
+            return Requirement(
+                need.key, _words_of(need.key), unit, "the old value is not known: read or measure it", need.source,
+                undecided=True,
+            )
+        ends = (value * (1 - need.low), value * (1 + need.high))
+        slack = 1e-9 * abs(value)
+        return Requirement(
+            need.key, _words_of(need.key), unit, f"{figure(value, unit)}, -{need.low:.0%} to +{need.high:.0%}", need.source,
+            minimum=min(ends) - slack, maximum=max(ends) + slack, offered=value,
+        )
+
+    def _same_rating(self, need: Need) -> Requirement:
+        unit = unit_of(need.key)
+        value = self.part.ratings.get(need.like_rating)
+        if value is None and self.original is not None:
+            value = self.original.number(need.key)
+        if value is None:
+            return Requirement(
+                need.key, _words_of(need.key), unit, "the old rating is not known: read it off the body", need.source,
+                undecided=True,
+            )
+        return Requirement(
+            need.key, _words_of(need.key), unit, f"equal to the old part, {figure(value, unit)}", need.source,
+            minimum=value * 0.999, maximum=value * 1.001, offered=value,
+        )
+
+    def _bounds(self, need: Need) -> Requirement | None:
+        """Minimum and maximum from stress, mains, floor, the dead part's rating and its catalog figures."""
+        unit = unit_of(need.key)
+        stressed, reason = self._stressed(need)
+        offered = self._offered(need)
+        lows = [(stressed, reason), (self._floor(need), "least rating for the place")]
+        if need.own and need.like != "at_most":
+            lows.append((offered if need.rating else None, "rating of the old part"))
+        highs: list[tuple[float | None, str]] = []
+        had = self._had(need)
+        if had is not None:
+            bound, words = had * need.share + need.plus, "as the old part"
+            if need.share != 1.0:
+                words += f", x {need.share:g}"
+            if need.plus:
+                words += f", + {need.plus:g}"
+            if need.like in ("at_least", "equal"):
+                lows.append((bound * (0.999 if need.like == "equal" else 1.0), words))
+            if need.like in ("at_most", "equal"):
+                highs.append((bound * (1.001 if need.like == "equal" else 1.0), words))
+        highs.append(self._ceiling(need, had))
+        low = max(((value, text) for value, text in lows if value is not None), default=(None, ""), key=lambda low: low[0])
+        high = self._highest(need, highs)
+        if low[0] is None and high[0] is None:
+            asks = bool(need.stress or need.of) and not need.as_
+            return Requirement(
+                need.key, _words_of(need.key), unit, "neither its stress nor the old rating is known", need.source,
+                alternatives=need.alternatives, undecided=True,
+            ) if asks and not (need.if_known or need.rating == "") else None
+        return Requirement(
+            need.key, _words_of(need.key), unit, "; ".join(text for text in (low[1], high[1]) if text), need.source,
+            minimum=low[0], maximum=high[0], stressed=stressed, alternatives=need.alternatives, offered=offered,
+            mistake=self._mistake(need, stressed, offered), if_known=need.if_known,
+        )
+
+    def _highest(self, need: Need, highs: list[tuple[float | None, str]]) -> tuple[float | None, str]:
+        known = [(value, text) for value, text in highs if value is not None]
+        if not known:
+            return None, ""
+        return max(known, key=lambda high: high[0]) if need.ceiling_stress else min(known, key=lambda high: high[0])
+
+    def _ceiling(self, need: Need, had: float | None) -> tuple[float | None, str]:
+        if need.ceiling_stress:
+            worst = self._worst(need.ceiling_stress)
+            if worst is not None:
+                unit = unit_of(need.key)
+                return worst.value * need.times, f"{need.times:g} x {figure(worst.value, unit)} flowing there"
+            return None, ""
+        if had is not None and need.like == "at_most":
+            return None, ""
+        return need.ceiling, "limit of the position" if need.ceiling is not None else ""
+
+    def _worst(self, quantities: Sequence[str]) -> Stress | None:
+        known = [s for s in self.stresses if s.quantity in quantities and math.isfinite(s.value) and s.value]
+        return max(known, key=lambda stress: abs(stress.value), default=None)
+
+    def _stressed(self, need: Need) -> tuple[float | None, str]:
+        """Stress over factor, and how it was reached."""
+        factor = need.factor or 1.0
+        if need.of:
+            value = self.board.mains.high * (math.sqrt(2) if need.of == "mains_peak" else 1.0)
+            words = f"{value:.4g} V of {'mains peak' if need.of == 'mains_peak' else 'mains'}"
+            return value / factor, words + (f" / {factor:g}" if factor != 1.0 else "")
+        worst = self._worst(need.stress)
+        if worst is None:
+            return None, ""
+        value = abs(worst.value)
+        words = f"{figure(value, QUANTITIES[worst.quantity])}"
+        if worst.condition:
+            words += f" at {worst.condition}"
+        if need.as_ == "half_wave_surge":
+            value = math.sqrt(2 * value / _HALF_WAVE)
+            words += f" = {value:.3g} A for {_HALF_WAVE * 1e3:g} ms"
+        return value / factor, words + (f" / {factor:g}" if factor != 1.0 else "")
+
+    def _floor(self, need: Need) -> float | None:
+        floors = [need.floor]
+        if (need.floor_230 is not None or need.floor_120 is not None) and not self._is_secondary():
+            floors.append(need.floor_230 if self.board.mains.high > 150.0 else need.floor_120)
+        return max((floor for floor in floors if floor is not None), default=None)
+
+    def _is_secondary(self) -> bool:
+        return any(self.board.side_of(node) == "secondary" for node in self.part.pins.values())
+
+    def _offered(self, need: Need) -> float | None:
+        own = self.part.ratings.get(need.rating) if need.rating else None
+        return own if own is not None else self._had(need)
+
+    def _had(self, need: Need) -> float | None:
+        return self.original.number(need.key, *need.alternatives) if self.original else None
+
+    def _mistake(self, need: Need, stressed: float | None, offered: float | None) -> str:
+        """Tells when the dead part was below the computed demand, with both figures."""
+        if stressed is None or offered is None or abs(offered) >= stressed or need.of:
+            return ""
+        worst = self._worst(need.stress)
+        if worst is None:
+            return ""
+        unit = unit_of(need.key)
+        word = worst.quantity.replace("_", " ")
+        carried = f"carried {figure(abs(worst.value), worst.unit)} {word} against a rating of {figure(offered, unit)}"
+        if need.as_:
+            return ""
+        if abs(worst.value) > abs(offered):
+            return carried + ": it was past its rating"
+        return carried + f", of which {need.factor:.2g} is the recommended share"
