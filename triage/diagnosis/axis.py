@@ -27,8 +27,12 @@ _REACH = 6 * int(WIDTHS[-1] / CELL)
 
 
 def to_axis(value: NDArray[np.floating] | float, instrument: Instrument) -> NDArray[np.floating]:
-    """Reading(s) [SI] in standard errors from zero [-]; keeps ``inf`` and ``nan``."""
-    ratio = np.asarray(value, dtype=float) * (instrument.relative / instrument.absolute)
+    """Reading(s) [SI] in standard errors from zero [-]; keeps ``inf`` and ``nan``; below zero only where the
+    display does.
+    """
+    shown = np.asarray(value, dtype=float)
+    shown = shown if instrument.signed else np.maximum(shown, 0.0)
+    ratio = shown * (instrument.relative / instrument.absolute)
     return np.arcsinh(ratio) / instrument.relative
 
 

@@ -71,6 +71,8 @@ class Instrument:
     """Above this the display shows OL [SI]; ``inf`` when it never does."""
     step: float
     """Smallest difference shown [SI]."""
+    signed: bool = False
+    """False for a display that never shows less than zero."""
 
 
 @cache
@@ -92,5 +94,6 @@ def instruments(path: Path = HERE / "instruments.toml") -> Mapping[str, Instrume
                 (error["absolute"] ** 2 + error["model_absolute"] ** 2) ** 0.5,
                 number(where, row, "over", 0.0, 1e12) if "over" in row else float("inf"),
                 number(where, row, "step", 0.0, 1e9),
+                row.get("signed") is True,
             )
     return found
