@@ -55,7 +55,7 @@ class Bench:
             from triage.job.wiring import Wiring
 
             workings = Wiring()
-        self.workings = workings
+        self.workings: Workings = workings
         self.board: Board = board_from_dict(job.board, str(job.path))
         """The board as it came onto the mat."""
         self.job = job

@@ -5,15 +5,19 @@ kept lies under a key that changes with everything it depends on.
 """
 
 import contextlib
+import io
 import json
 import os
 import tempfile
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any, Protocol
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
 
 LARGEST = 64_000_000
 """A kept answer beyond this is not read [bytes]."""
-MOST = 200
+MOST = 400
 """Answers kept; the oldest go first."""
 
 
@@ -24,11 +28,65 @@ def cache_folder() -> Path:
     return base / "triage"
 
 
+class Kept(Protocol):
+    """Where answers by key may be had from."""
+
+    def has(self, key: str) -> bool:
+        """True when there is a table under the key."""
+
+    def get(self, key: str) -> Any:
+        """The table under the key, or None."""
+
+    def put(self, key: str, answer: Any) -> None:
+        """Keep a table."""
+
+    def get_array(self, key: str) -> "NDArray[Any] | None":
+        """The array under the key, or None."""
+
+    def put_array(self, key: str, answer: "NDArray[Any]") -> None:
+        """Keep an array."""
+
+
+class Shipped:
+    """Answers that come with the program for the shipped profiles, and behind them a cache for all others."""
+
+    def __init__(self, folder: Path, behind: Kept) -> None:
+        """folder: where the shipped answers lie; it is only read."""
+        self._shipped = Cache(folder)
+        self._behind = behind
+
+    def has(self, key: str) -> bool:
+        """True when there is a table under the key."""
+        return self._shipped.has(key) or self._behind.has(key)
+
+    def get(self, key: str) -> Any:
+        """The table under the key, or None."""
+        found = self._shipped.get(key)
+        return found if found is not None else self._behind.get(key)
+
+    def put(self, key: str, answer: Any) -> None:
+        """Keep a table in the cache."""
+        self._behind.put(key, answer)
+
+    def get_array(self, key: str) -> "NDArray[Any] | None":
+        """The array under the key, or None."""
+        found = self._shipped.get_array(key)
+        return found if found is not None else self._behind.get_array(key)
+
+    def put_array(self, key: str, answer: "NDArray[Any]") -> None:
+        """Keep an array in the cache."""
+        self._behind.put_array(key, answer)
+
+
 class Cache:
-    """Keeps JSON answers by key."""
+    """Keeps answers by key: tables as JSON, arrays as numpy writes them."""
 
     def __init__(self, folder: Path | None = None) -> None:
         self.folder = folder if folder is not None else cache_folder() / "answers"
+
+    def has(self, key: str) -> bool:
+        """True when there is a table under the key."""
+        return (self.folder / f"{key}.json").is_file()
 
     def get(self, key: str) -> Any:
         """What was kept under the key, or None."""
@@ -40,13 +98,36 @@ class Cache:
 
     def put(self, key: str, answer: Any) -> None:
         """Keep an answer; a full or read-only disk only means that it is not kept."""
-        with contextlib.suppress(OSError, ValueError):
+        with contextlib.suppress(ValueError):
+            self._write(f"{key}.json", json.dumps(answer).encode())
+
+    def get_array(self, key: str) -> "NDArray[Any] | None":
+        """The array that was kept under the key, or None."""
+        import numpy as np
+
+        path = self.folder / f"{key}.npy"
+        with contextlib.suppress(OSError, ValueError, EOFError):
+            if path.stat().st_size <= LARGEST:
+                found: NDArray[Any] = np.load(path, allow_pickle=False)
+                return found
+        return None
+
+    def put_array(self, key: str, answer: "NDArray[Any]") -> None:
+        """Keep an array, on the terms of ``put``."""
+        import numpy as np
+
+        content = io.BytesIO()
+        np.save(content, answer, allow_pickle=False)
+        self._write(f"{key}.npy", content.getvalue())
+
+    def _write(self, name: str, content: bytes) -> None:
+        with contextlib.suppress(OSError):
             self.folder.mkdir(mode=0o700, parents=True, exist_ok=True)
             descriptor, draft = tempfile.mkstemp(prefix=".", suffix=".new", dir=self.folder)
             try:
-                with os.fdopen(descriptor, "w", encoding="utf-8") as file:
-                    json.dump(answer, file)
-                os.replace(draft, self.folder / f"{key}.json")
+                with os.fdopen(descriptor, "wb") as file:
+                    file.write(content)
+                os.replace(draft, self.folder / name)
             except BaseException:
                 with contextlib.suppress(OSError):
                     os.unlink(draft)
@@ -54,6 +135,6 @@ class Cache:
             self._drop_oldest()
 
     def _drop_oldest(self) -> None:
-        kept = sorted(self.folder.glob("*.json"), key=lambda path: path.stat().st_mtime)
+        kept = sorted(self.folder.glob("[!.]*"), key=lambda path: path.stat().st_mtime)
         for path in kept[:-MOST]:
             path.unlink()

@@ -9,10 +9,12 @@ by likeness.
 
 import contextlib
 import hashlib
+import multiprocessing
 import os
 import sqlite3
 import time
 from collections.abc import Iterable, Iterator, Sequence
+from concurrent.futures import ProcessPoolExecutor
 from dataclasses import astuple, fields
 from pathlib import Path
 from types import TracebackType
@@ -30,7 +32,9 @@ SCAN_EVERY = 30.0
 write into a file in place."""
 SETTLED = 2.0
 """A folder time younger than this may still hide a second change in the same tick [s]."""
-BATCH = 500
+BATCH = 1000
+MANY = 4000
+"""Files from which on they are read on all processors."""
 CONSIDERED = 300
 """Jobs that the likeness is computed for."""
 
@@ -43,6 +47,7 @@ class Index:
         self.folder = folder
         self.place = place
         self._base = self._opened()
+        self._pool: ProcessPoolExecutor | None = None
 
     @classmethod
     def of_folder(cls, folder: Path) -> "Index":
@@ -109,15 +114,15 @@ class Index:
         if settled and not force and state.get("scanned", 0) - folder_time > SETTLED * 1e9:
             return 0
         changed = self._changes()
-        read = 0
-        for batch in _batches(changed, BATCH):
-            with self._base:
-                self._take(batch)
-            read += len(batch)
+        with _pool_for(len(changed)) as self._pool:
+            for batch in _batches(changed, BATCH):
+                with self._base:
+                    self._take(batch)
+        self._pool = None
         with self._base:
             rows = [("folder_time", folder_time), ("scanned", now)]
             self._base.executemany("INSERT OR REPLACE INTO state VALUES (?, ?)", rows)
-        return read
+        return len(changed)
 
     def _changes(self) -> list[tuple[str, int, int]]:
         """(file, size, time) of the new and changed files; forgets those that are gone."""
@@ -143,17 +148,19 @@ class Index:
         self._forget(name for name, _, _ in batch)
         marks = ", ".join("?" * (4 + len(COLUMNS)))
         names = "file, size, time, problem, " + ", ".join(COLUMNS)
-        for name, size, changed_at in batch:
-            problem = ""
-            try:
-                one = read_summary(self.folder / name)
-            except JobError as error:
-                one, problem = Summary(plain(Path(name).stem, 100)), plain(str(error))
+        for (name, size, changed_at), (one, problem) in zip(batch, self._read(batch), strict=True):
             row = self._base.execute(
                 f"INSERT INTO job({names}) VALUES ({marks})", (name, size, changed_at, problem, *astuple(one))
             )
             if not problem:
                 self._base.execute("INSERT INTO words(rowid, text) VALUES (?, ?)", (row.lastrowid, _searched(one)))
+
+    def _read(self, batch: Sequence[tuple[str, int, int]]) -> list[tuple[Summary, str]]:
+        """Summaries of the files of a batch, on all processors when there are many."""
+        paths = [self.folder / name for name, _, _ in batch]
+        if self._pool is None:
+            return [_summary_or_problem(path) for path in paths]
+        return list(self._pool.map(_summary_or_problem, paths, chunksize=100))
 
     def count(self) -> int:
         """Number of jobs, unreadable ones left out."""
@@ -191,6 +198,21 @@ class Index:
         for row in self._base.execute(f"SELECT {', '.join(COLUMNS)} FROM job {clause}", list(values)):
             summary = Summary(*row)
             yield summary
+
+
+def _pool_for(files: int) -> "contextlib.AbstractContextManager[ProcessPoolExecutor | None]":
+    """Processes to read many files with, or none where starting them would cost more than it saves."""
+    if files < MANY:
+        return contextlib.nullcontext()
+    return ProcessPoolExecutor(mp_context=multiprocessing.get_context("spawn"))
+
+
+def _summary_or_problem(path: Path) -> tuple[Summary, str]:
+    """What a file tells, or why it tells nothing."""
+    try:
+        return read_summary(path), ""
+    except JobError as error:
+        return Summary(plain(path.stem, 100)), plain(str(error))
 
 
 def _job_files(folder: Path) -> Iterator[tuple[str, int, int]]:

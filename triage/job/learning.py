@@ -66,6 +66,12 @@ NONE = Experience()
 """No closed jobs, or learning switched off."""
 
 
+def handbook_shares(weights: Mapping[Fault, float]) -> dict[Fault, float]:
+    """Weights made to add up to 1: the chance of each fault, given that a part failed [-]."""
+    total = sum(weights.values())
+    return {fault: weight / total for fault, weight in weights.items()}
+
+
 def experience_from_dict(found: object, where: str) -> Experience:
     """The counts of a job file; none where the file has none. Raises JobError naming the key that is
     wrong."""

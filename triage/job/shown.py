@@ -168,7 +168,7 @@ def verdict_view(verdict: Verdict, board: Board, stresses: Sequence[StressView],
         verdict.probability,
         _why(ref, board, stresses),
         tuple(plain(one.text) for one in strongest[:MOST_EVIDENCE])
-        + tuple(plain(f"does not fit, measure again: {text}") for text in verdict.again),
+        + tuple(plain(f"does not fit, measure again: {text}") for text in verdict.odd),
     )
 
 

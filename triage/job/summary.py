@@ -15,6 +15,10 @@ from triage.job.display import plain
 from triage.job.toml_guard import LARGEST_FILE, parse_toml, read_regular
 
 _PARTS = re.compile(rb"^\[\[board\.part\]\].*?(?=^\[\[entry\]\]|\Z)", re.MULTILINE | re.DOTALL)
+_MEASURED = re.compile(
+    rb'(^\[\[entry\]\]\ntime = "[^"\n]*"\n)kind = "(?:reading|skip|acknowledge|look)"\n(?:\w+ = [^\n]*\n)*', re.MULTILINE
+)
+"""Entries that no list of jobs shows, all but their time."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,7 +56,7 @@ def read_summary(path: Path) -> Summary:
     except OSError as error:
         raise JobError(path.name, f"cannot be read: {error.strerror or type(error).__name__}") from None
     try:
-        document = parse_toml(_PARTS.sub(b"", content), path.name)
+        document = parse_toml(_MEASURED.sub(rb"\1", _PARTS.sub(b"", content)), path.name)
     except JobError:
         # The cut may have gone through a text that only looks like a part; the whole file decides.
         document = parse_toml(content, path.name)

@@ -1,0 +1,125 @@
+"""Answers as lines of text for a person at a terminal."""
+
+from collections.abc import Sequence
+
+from triage.commands.output import columns, percent
+from triage.job.report import SAYS, stress_text
+from triage.job.views import (
+    NO_PART_FAULT,
+    CandidateView,
+    DemandView,
+    JobView,
+    MatchView,
+    ReadingExpected,
+    StressView,
+    SuspectView,
+)
+from triage.quantities import engineering
+from triage.units import UNITS
+
+MOST_SUSPECTS = 12
+"""Suspects listed: those after them share what is left."""
+
+
+def suspect_lines(suspects: Sequence[SuspectView]) -> list[str]:
+    """Suspects, likeliest first."""
+    rows = [
+        (percent(one.probability), one.ref or "-", one.mode, " ".join(one.collateral), one.role, one.stress)
+        for one in suspects[:MOST_SUSPECTS]
+    ]
+    rest = sum(one.probability for one in suspects[MOST_SUSPECTS:])
+    lines = columns(("chance", "part", "fault", "took with it", "role", "stress past its limit"), rows)
+    return lines + ([f"{len(suspects) - MOST_SUSPECTS} others together {percent(rest)}"] if rest else [])
+
+
+def verdict_lines(view: JobView) -> list[str]:
+    """What the job has come to."""
+    verdict = view.verdict
+    lines = [f"verdict: {SAYS[verdict.status]}"]
+    if verdict.status == "open":
+        return lines
+    if verdict.ref:
+        lines[0] += f": {verdict.ref} {verdict.mode.replace('_', ' ')}, {percent(verdict.probability)}"
+    if verdict.collateral:
+        lines.append("it took with it: " + ", ".join(verdict.collateral))
+    if verdict.repair:
+        lines.append("replace: " + ", ".join(verdict.repair))
+    if verdict.why:
+        lines.append("why: " + verdict.why)
+    return lines + [f"  {text}" for text in verdict.evidence]
+
+
+def next_lines(view: JobView) -> list[str]:
+    """The next reading, or the verdict and what the gates wait for."""
+    one = view.suggestion
+    if one is None:
+        waits = [f"first: {text}" for text in view.waits_for] if view.verdict.status == "open" else []
+        return [*verdict_lines(view), *waits]
+    lines = [f"{one.function} {one.plus} {one.minus} {one.condition}   ({one.minutes:.1f} min)", one.reason]
+    if one.hazard:
+        lines.append("mind: " + one.hazard)
+    rows = [(outcome.text, percent(outcome.probability), outcome.says) for outcome in one.outcomes]
+    return lines + columns(("outcome", "chance", "would mean"), rows)
+
+
+def view_lines(view: JobView) -> list[str]:
+    """A job after an entry: what was noted, what leads, what comes next."""
+    lines = [f"{view.id}: {view.message}" if view.message else view.id]
+    if view.suspects:
+        lead = view.suspects[0]
+        name = f"{lead.ref} {lead.mode}" if lead.ref else NO_PART_FAULT
+        lines.append(f"stage {view.stage}; leading suspect {name}, {percent(lead.probability)}")
+    return lines + next_lines(view)
+
+
+def stress_lines(stresses: Sequence[StressView]) -> list[str]:
+    """Stresses by part."""
+    rows = [(one.ref, one.role, stress_text(one), one.condition, one.source) for one in stresses]
+    return columns(("part", "role", "stress", "worst at", "source of the limit"), rows)
+
+
+def demand_lines(demand: DemandView) -> list[str]:
+    """What a position asks for."""
+    rows = [(one.text, _bounds(one.minimum, one.maximum, one.unit), one.reason, one.source) for one in demand.requirements]
+    lines = [f"{demand.ref} {demand.role}" + (": safety part, like for like only" if demand.safety_part else "")]
+    lines += columns(("asks for", "limits", "because", "source"), rows) if rows else []
+    return lines + ([demand.note] if demand.note else [])
+
+
+def _bounds(low: float | None, high: float | None, unit: str) -> str:
+    def show(value: float) -> str:
+        return engineering(value, unit) if unit in UNITS else f"{value:.4g} {unit}".strip()
+
+    if low is not None and high is not None:
+        return f"{show(low)} to {show(high)}"
+    if low is not None:
+        return f"at least {show(low)}"
+    return f"at most {show(high)}" if high is not None else ""
+
+
+def candidate_lines(candidates: Sequence[CandidateView]) -> list[str]:
+    """Catalog parts for a position."""
+    rows = [
+        (one.type, one.part_class, f"{one.score:.2f}", "; ".join(one.margins if one.accepted else one.refusals),
+         one.confidence)
+        for one in candidates
+    ]  # fmt: skip
+    return columns(("type", "class", "score", "margins or refusals", "confidence"), rows)
+
+
+def match_lines(matches: Sequence[MatchView]) -> list[str]:
+    """Catalog parts a marking may mean."""
+    return columns(
+        ("type", "class", "match", "ratings"),
+        [(one.type, one.part_class, f"{one.score:.0f} {one.band}", one.text) for one in matches],
+    )
+
+
+def expected_lines(expected: Sequence[ReadingExpected]) -> list[str]:
+    """Readings to expect."""
+    rows = [
+        (one.function, one.plus, one.minus, one.condition, one.text,
+         f"{engineering(one.low, one.unit)} to {engineering(one.high, one.unit)}")
+        for one in expected
+    ]  # fmt: skip
+    return columns(("function", "plus", "minus", "condition", "reading", "90 % of boards"), rows)

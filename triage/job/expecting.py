@@ -1,0 +1,148 @@
+"""What every instrument would show on a board under every hypothesis, put together from the families'
+answers.
+
+Cold readings come from specimens drawn within the tolerances. Readings and states of the powered board come
+from operating points solved beforehand (minutes to hours for a board, see ``Points``); a hypothesis whose
+point is not known yet has no expectation there, which the diagnosis takes as saying nothing. Independent
+pairs of faults have cold readings only.
+"""
+
+import hashlib
+import json
+import math
+from collections.abc import Callable, Mapping, Sequence
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from triage.board.evidence import STATES
+from triage.board.fault import Fault, Hypothesis
+from triage.board.part import Board
+from triage.board.probe import Probe
+from triage.board.profile import board_to_dict
+from triage.diagnosis.expectations import LOADS, UNKNOWN_STATE, Expectations
+from triage.diagnosis.hypotheses import Collateral, CollateralMap
+from triage.families import family_of
+from triage.families.cold import cold_probes, cold_samples, specimens
+from triage.families.live import live_probes, state_class, summary
+from triage.families.points import SOLUTION, OperatingPoints, Point, point_key
+from triage.job.cache import Kept
+from triage.job.views import ReadingExpected
+from triage.quantities import engineering
+
+DRAWS = 8
+"""Specimens: enough that the bands of a diagnosis do not move by more than the meter's own accuracy."""
+SEED = 1
+HEALTHY: tuple[Fault, ...] = ()
+RUN_ITS_COURSE = 0.85
+"""Chance that a destruction ran its course before the adapter was switched off [-]. Common practice, no
+source."""
+
+Progress = Callable[[int, int], None]
+
+
+def expectations(
+    board: Board, hypotheses: Sequence[Hypothesis], points: OperatingPoints, kept: Kept, progress: Progress | None = None
+) -> Expectations:
+    """Readings and states under every hypothesis; shape of the samples (hypotheses, probes, DRAWS)."""
+    family = family_of(board.family)
+    cold = cold_probes(board)
+    live = tuple(probe for load in LOADS for probe in live_probes(board, family, load))
+    samples = np.full((len(hypotheses), len(cold) + len(live), DRAWS), np.nan, dtype=np.float32)
+    samples[:, : len(cold)] = _cold(board, hypotheses, cold, kept, progress)
+    states = np.full((len(hypotheses), len(LOADS), 1), UNKNOWN_STATE, dtype=np.int64)
+    healthy = _known(points, HEALTHY)
+    for row, hypothesis in enumerate(hypotheses):
+        found = _known(points, hypothesis.faults)
+        values = {probe: value for point in found.values() for probe, value in point.readings.items()}
+        samples[row, len(cold) :] = np.array([values.get(probe, math.nan) for probe in live])[:, None]
+        states[row, :, 0] = _states(board, found, healthy)
+    return Expectations(tuple(hypotheses), (*cold, *live), samples, states)
+
+
+def expected_readings(
+    board: Board, faults: tuple[Fault, ...], points: OperatingPoints, kept: Kept
+) -> tuple[ReadingExpected, ...]:
+    """What each reading should show with these faults present: median and the middle 90 % over the
+    specimens."""
+    found = expectations(board, (Hypothesis(faults),), points, kept)
+    shown = []
+    for probe, draws in zip(found.probes, found.samples[0], strict=True):
+        known = np.sort(draws[~np.isnan(draws)].astype(float))
+        if known.size:
+            # Order statistics, not interpolation: between a value and OL there is nothing.
+            low, median, high = (float(known[round(share * (known.size - 1))]) for share in (0.05, 0.5, 0.95))
+            text = engineering(median, probe.unit)
+            shown.append(ReadingExpected(*probe, probe.unit, low, median, high, text))
+    return tuple(shown)
+
+
+def collateral_of(points: OperatingPoints, roots: Sequence[Fault]) -> CollateralMap:
+    """What each root fault takes along, from the points known; the loads are equally likely."""
+    ways: dict[Fault, tuple[Collateral, ...]] = {}
+    for root in roots:
+        chains = [chain for load in LOADS if (chain := _chain(points, root, load))]
+        counted = {chain: chains.count(chain) for chain in dict.fromkeys(chains)}
+        ways[root] = tuple(Collateral(chain, RUN_ITS_COURSE * count / len(LOADS)) for chain, count in counted.items())
+    return {root: found for root, found in ways.items() if found}
+
+
+def _chain(points: OperatingPoints, root: Fault, load: str) -> tuple[Fault, ...]:
+    """The parts that go along, as far as the points are known."""
+    chain: tuple[Fault, ...] = ()
+    while point_key((root, *chain), load) in points:
+        broken = points.at((root, *chain), load).breaks
+        if broken is None or broken in chain:
+            break
+        chain = (*chain, broken)
+    return chain
+
+
+def _known(points: OperatingPoints, faults: tuple[Fault, ...]) -> dict[str, Point]:
+    """The points of these faults by load, as far as they have been solved."""
+    return {load: points.at(faults, load) for load in LOADS if point_key(faults, load) in points}
+
+
+def _states(board: Board, found: Mapping[str, Point], healthy: Mapping[str, Point]) -> list[int]:
+    """State of the adapter under each load, as places in STATES; unknown where there is no solution."""
+    solved = {
+        load: point
+        for load, point in found.items()
+        if load in healthy and not any(math.isnan(value) for value in point.readings.values())
+    }
+    here = {load: summary(board, point.readings, load) for load, point in solved.items()}
+    sound = {load: summary(board, healthy[load].readings, load) for load in solved}
+    return [
+        STATES.index(state_class(board, load, here, sound, _is_hot(board, solved[load]))) if load in solved else UNKNOWN_STATE
+        for load in LOADS
+    ]
+
+
+def _is_hot(board: Board, point: Point) -> bool:
+    """True when a part gives off more than it is rated for."""
+    return any(point.powers.get(part.ref, 0.0) > part.ratings["power"] for part in board.parts if "power" in part.ratings)
+
+
+def _cold(
+    board: Board, hypotheses: Sequence[Hypothesis], probes: tuple[Probe, ...], kept: Kept, progress: Progress | None
+) -> NDArray[np.float32]:
+    """Cold readings, from the cache where they were computed before."""
+    key = f"cold-{_key(board, hypotheses)}"
+    shape = (len(hypotheses), len(probes), DRAWS)
+    known = kept.get_array(key)
+    if known is not None and known.shape == shape and known.dtype == np.float32:
+        return known
+    found = cold_samples(board, hypotheses, probes, specimens(board, DRAWS, SEED), progress)
+    kept.put_array(key, found)
+    return found
+
+
+def _key(board: Board, hypotheses: Sequence[Hypothesis]) -> str:
+    """Text that changes with anything that cold readings depend on."""
+    content: dict[str, Any] = board_to_dict(board)
+    for name in ("id", "title", "note", "drawing", "label", "mains"):
+        content.pop(name)
+    content["hypotheses"] = [str(hypothesis) for hypothesis in hypotheses]
+    content["solution"] = [SOLUTION, DRAWS, SEED]
+    return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:24]

@@ -1,0 +1,182 @@
+"""Joins the computing rooms to a job: the one place that knows which room answers what, and what is kept in
+the cache.
+
+Answers are pure functions of the board. What takes seconds is kept under the fingerprint of the board,
+rounded before it is used, so that a kept and a new answer are the same to the last digit.
+"""
+
+from collections.abc import Callable
+from functools import cached_property
+from typing import TYPE_CHECKING
+
+from triage.board.fault import Fault
+from triage.board.part import Board
+from triage.board.stress import Stress
+from triage.data import data_folder
+from triage.diagnosis.engine import Diagnosis
+from triage.errors import CatalogError
+from triage.job.cache import Cache, Kept, Shipped
+from triage.job.display import plain
+from triage.job.learning import NONE, Experience, handbook_shares
+from triage.job.views import CandidateView, DemandView, MatchView, ReadingExpected, RequirementView
+
+if TYPE_CHECKING:
+    from triage.families.points import OperatingPoints
+    from triage.replacement.catalog import Catalog
+    from triage.replacement.demand import Demand
+    from triage.replacement.ranking import Candidate
+
+PAIR_FLOOR = 1e-5
+"""Pairs of independent faults less likely than this are left out [-]: most of those above the floor of the
+diagnosis, which would take minutes to solve and hold less than a thousandth of the belief."""
+
+
+class Wiring:
+    """The computing rooms, joined."""
+
+    def __init__(self, cache: Kept | None = None) -> None:
+        """cache: where slow answers are kept; by default the user's cache folder behind what ships with the
+        program."""
+        self._kept = cache if cache is not None else Shipped(data_folder("profiles") / "kept", Cache())
+
+    @cached_property
+    def catalog(self) -> "Catalog":
+        """The shipped part catalog."""
+        from triage.replacement.catalog import Catalog
+
+        return Catalog()
+
+    def diagnosis(self, board: Board, experience: Experience) -> Diagnosis:
+        """Expected readings, priors and costs of a board.
+
+        experience: the bench's own closed jobs.
+        """
+        from triage.diagnosis.handbook import fault_weights
+        from triage.diagnosis.priors import prior_of
+        from triage.job.expecting import collateral_of, expectations
+
+        points = self.points(board)
+        weights = fault_weights(board, self.stresses(board))
+        shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
+        prior = prior_of(weights, collateral_of(points, tuple(weights)), experience.factors(shares), pair_floor=PAIR_FLOOR)
+        return Diagnosis.of_board(board, expectations(board, prior.hypotheses, points, self._kept), prior)
+
+    def points(self, board: Board) -> "OperatingPoints":
+        """The operating points of a board as far as they have been solved: shipped with its profile, or kept
+        here."""
+        from triage.families.points import OperatingPoints, fingerprint
+
+        return OperatingPoints(board, self._kept.get(f"points-{fingerprint(board)}"))
+
+    def solve(self, board: Board, progress: Callable[[str], None]) -> None:
+        """Solve everything that a job on this board asks for, and keep it: corners, operating points, cold
+        readings.
+
+        Minutes for a small board, hours for a large one; what was solved before an interruption stays.
+        progress: hears what has been done.
+        """
+        from triage.board.kinds import kinds
+        from triage.families.points import OperatingPoints, fingerprint
+        from triage.job.corners import solve_all_corners
+
+        solve_all_corners(board, self._kept)
+        progress("the sound board in nine corners")
+        key = f"points-{fingerprint(board)}"
+        points = OperatingPoints(board, self._kept.get(key))
+        for part in board.parts:
+            for mode in part.fault_modes or kinds()[part.kind].fault_modes:
+                points.chains((Fault(part.ref, mode),))
+                self._kept.put(key, points.kept())
+                progress(f"{part.ref}.{mode}")
+        self.diagnosis(board, NONE)
+        progress("the cold readings")
+
+    def stresses(self, board: Board) -> tuple[Stress, ...]:
+        """Every stress of every part at its worst condition; a minute for a circuit that was never solved."""
+        from triage.job.corners import board_stresses
+
+        return board_stresses(board, self._kept)
+
+    def expected(self, board: Board, faults: tuple[Fault, ...]) -> tuple[ReadingExpected, ...]:
+        """What each reading should show under these faults: median and the middle 90 % of boards."""
+        from triage.job.expecting import expected_readings
+
+        return expected_readings(board, faults, self.points(board), self._kept)
+
+    def fitted(self, board: Board, ref: str, type: str) -> Board:
+        """The board with this part in this position. Raises CatalogError for a type the catalog does not
+        know."""
+        from triage.job.fitting import with_part
+
+        part = self.catalog.find(type)
+        if part is None:
+            raise CatalogError(f"part for {ref}", f"{plain(type, 60)!r} is not in the catalog", advice="search its marking")
+        return with_part(board, ref, part)
+
+    def demand(self, board: Board, ref: str) -> DemandView:
+        """What the position of a part asks of a replacement."""
+        return _demand_view(self._demand(board, ref))
+
+    def _demand(self, board: Board, ref: str) -> "Demand":
+        from triage.replacement.demand import demand
+
+        return demand(board, ref, self.stresses(board), self.catalog)
+
+    def candidates(self, board: Board, ref: str) -> tuple[CandidateView, ...]:
+        """Catalog parts for a position, best first; behind them those that only a look into the sheet stands
+        against."""
+        from triage.replacement.ranking import candidates, to_confirm
+
+        demand = self._demand(board, ref)
+        found = (*candidates(self.catalog, demand), *to_confirm(self.catalog, demand))
+        return tuple(_candidate_view(one) for one in found)
+
+    def ask(self, board: Board, ref: str, type: str) -> CandidateView:
+        """One catalog part held against the demand, with every rule it fails."""
+        from triage.replacement.ranking import ask
+
+        return _candidate_view(ask(self.catalog, self._demand(board, ref), type))
+
+    def matches(self, marking: str) -> tuple[MatchView, ...]:
+        """Catalog parts that a half-read marking may mean, best first."""
+        from triage.replacement.search import search
+
+        return tuple(
+            MatchView(plain(one.type), one.part_class, round(100.0 * one.score, 1), one.band, plain(one.text))
+            for one in search(self.catalog, marking)
+        )
+
+
+def _demand_view(asked: "Demand") -> DemandView:
+    requirements = tuple(
+        RequirementView(
+            one.key,
+            plain(one.text),
+            one.minimum,
+            one.maximum,
+            one.unit,
+            plain(one.reason),
+            plain(one.source),
+            one.offered if isinstance(one.offered, float | int) else None,
+        )
+        for one in asked.requirements
+    )
+    notes = [asked.note, *asked.mistakes, *(f"never: {text}" for text in asked.never), *asked.together]
+    return DemandView(
+        plain(asked.ref), plain(asked.role), requirements, asked.safety, plain("; ".join(filter(None, notes)), 1000)
+    )
+
+
+def _candidate_view(one: "Candidate") -> CandidateView:
+    notes = [*one.notes, *one.drawing.splitlines()]
+    return CandidateView(
+        plain(one.part.type),
+        one.part.part_class,
+        one.score,
+        tuple(map(plain, one.margins)),
+        tuple(map(plain, notes)),
+        plain(one.part.source),
+        one.part.confidence,
+        one.accepted,
+        tuple(plain(found.text) for found in one.refusals),
+    )
