@@ -110,7 +110,7 @@ KINDS = {
     "transformer": ("pri_open", "fb_open", "sec_open", "shorted_turns"), "inductor": ("open", "short"),
     "ntc": ("open", "high", "short"), "varistor": ("open", "short", "leaky"), "bridge": ("open", "d_open", "d_short"),
     "regulator": ("open", "short", "gnd_open", "out_short", "leaky"),
-    "shunt_reference": ("open", "short", "high_voltage", "leaky"),
+    "shunt_reference": ("open", "short", "vref_high", "leaky"),
     "pwm_controller": ("open", "vcc_short", "vcc_leaky", "drv_low", "drv_high"),
 }
 """Every part kind with the fault modes that the reference circuits give it."""
@@ -137,8 +137,15 @@ def test_rows_sum_to_one_and_every_role_row_stands_before_its_general_one() -> N
     for row in failure_modes.ROWS:
         assert sum(row.modes.values()) == pytest.approx(1.0), row.kinds
         assert row.confidence in {"verified", "from memory", "judgement"}
-    assert failure_modes.mode_row("electrolytic", "output capacitor").modes["high_esr"] == 0.55
-    assert failure_modes.mode_row("electrolytic", "bulk capacitor").modes["high_esr"] == 0.35
+    assert failure_modes.mode_row("electrolytic", "output capacitor").modes["high_esr"] == 0.40
+    assert failure_modes.mode_row("electrolytic", "bulk capacitor").modes["high_esr"] == 0.25
+
+
+def test_share_of_a_mode_the_part_lacks_goes_to_its_neighbour() -> None:
+    with_dry = failure_modes.mode_shares("electrolytic", "output capacitor", ["high_esr", "dry", "short"])
+    without = failure_modes.mode_shares("electrolytic", "output capacitor", ["high_esr", "short"])
+    assert without["high_esr"] == pytest.approx(with_dry["high_esr"] + with_dry["dry"])
+    assert without["short"] == pytest.approx(with_dry["short"])
 
 
 def test_modes_without_a_share_are_rare_and_kinds_without_a_row_even() -> None:

@@ -31,11 +31,13 @@ class ModeRow:
     source: str
     confidence: str
     """``verified``, ``from memory`` or ``judgement``."""
+    passes_to: dict[str, str]
+    """Mode that a part may lack -> mode that takes its share then."""
 
 
 ROWS: tuple[ModeRow, ...] = tuple(
     ModeRow(tuple(row["kinds"]), tuple(row.get("roles", ())), dict(row["modes"]),
-            row["source"], row["confidence"])
+            row["source"], row["confidence"], dict(row.get("passes_to", {})))
     for row in _TABLE["shares"])
 """All rows in the order in which they are tried."""
 
@@ -48,7 +50,7 @@ def mode_row(kind: str, role: str = "") -> ModeRow | None:
 
     Returns [key]: the first row of the kind whose role words fit.
 
-    >>> mode_row("electrolytic", "bulk capacitor").modes["high_esr"]
+    >>> mode_row("electrolytic", "bulk capacitor").modes["low_capacitance"]
     0.35
     """
     return next((row for row in ROWS if kind in row.kinds
@@ -63,8 +65,8 @@ def mode_shares(kind: str, role: str, modes: Iterable[str]) -> dict[str, float]:
     modes [key]: the fault modes that the part has.
 
     Returns [-]: mode -> share, in the order of ``modes``, summing to 1. Published modes that the part does
-        not have fall away and the rest is scaled up; a mode without a published share gets a small one; a
-        kind without a row gets equal shares. Empty when there are no modes.
+        not have pass their share to a neighbour or fall away, and the rest is scaled up; a mode without a
+        published share gets a small one; a kind without a row gets equal shares. Empty when there are no modes.
     Source: the ``source`` of the row, see mode_source.
 
     >>> shares = mode_shares("resistor", "LED resistor", ["open", "high"])
@@ -72,7 +74,13 @@ def mode_shares(kind: str, role: str, modes: Iterable[str]) -> dict[str, float]:
     {'open': 0.62, 'high': 0.38}
     """
     row = mode_row(kind, role)
-    weights = {mode: row.modes.get(mode, UNLISTED) if row else 1.0 for mode in modes}
+    had = list(modes)
+    if row is None:
+        return {mode: 1.0 / len(had) for mode in had}
+    weights = {mode: row.modes.get(mode, UNLISTED) for mode in had}
+    for lacking, taker in row.passes_to.items():
+        if lacking not in weights and taker in weights:
+            weights[taker] += row.modes[lacking]
     total = sum(weights.values())
     return {mode: weight / total for mode, weight in weights.items()}
 
