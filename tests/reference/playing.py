@@ -11,6 +11,7 @@ from dataclasses import dataclass, field, replace
 
 import numpy as np
 
+from tests.reference.policies import Policy, own
 from triage.board.evidence import Reading
 from triage.board.probe import Probe
 from triage.diagnosis.engine import Diagnosis, Entry, Job
@@ -34,12 +35,19 @@ class Play:
     live: int
     minutes: float
     """Of readings, set-up included."""
-    taken: tuple[tuple[str, float], ...] = ()
+    danger: float = 0.0
+    """What the hazard of the readings is worth [min]."""
+    job: Job = field(default_factory=Job)
+    """All that was entered."""
 
     @property
     def right(self) -> bool:
         """The first repair replaces exactly what is needed."""
         return self.repair == self.needed
+
+    def total(self, failed: float = 40.0) -> float:
+        """Minutes of readings with hazard, and of a first repair that fails."""
+        return self.minutes + self.danger + (0.0 if self.cured else failed)
 
     @property
     def cured(self) -> bool:
@@ -76,37 +84,37 @@ def play(
     seed: int,
     meter: Meter | None = None,
     careful: bool = False,
+    policy: Policy | None = None,
     most: int = 60,
 ) -> Play:
     """One job from its first entries to the verdict.
 
     The gate opens when no cold reading is suggested any more while the verdict is still open. Raises
-    AssertionError when a live reading is suggested before that, or a reading twice.
+    AssertionError when a live reading is suggested before that, or a reading twice without being called
+    doubtful.
     """
-    meter = meter or Meter()
+    meter, choose = meter or Meter(), policy or own(careful)
     rng = np.random.default_rng(seed)
-    job, gate_open, minutes = Job(tuple(first)), False, 0.0
+    job, gate_open, minutes, danger = Job(tuple(first)), False, 0.0, 0.0
     taken: list[Probe] = []
-    shown: list[tuple[str, float]] = []
     for _ in range(most):
-        suggestion = diagnosis.suggest(job, lambda probe, open_=gate_open: open_ or not probe.live, careful)
-        if suggestion is None:
+        choice = choose(diagnosis, job, lambda probe, open_=gate_open: open_ or not probe.live)
+        if choice is None:
             if gate_open or diagnosis.verdict(job, careful).status != "open":
                 break
             gate_open = True
             continue
-        probe = suggestion.probe
+        probe = choice.probe
         assert gate_open or not probe.live, f"{name}: live reading {probe} before the cold ones were done"
         assert probe not in job.skipped, f"{name}: {probe} suggested although skipped"
-        assert taken.count(probe) == int(suggestion.again), f"{name}: {probe} suggested too often"
+        assert taken.count(probe) == int(choice.again), f"{name}: {probe} suggested too often"
         value = answer(probe)
         if value is None or np.isnan(value):
             job = replace(job, skipped=job.skipped | {probe})
             continue
-        minutes += suggestion.minutes
+        minutes, danger = minutes + choice.minutes, danger + choice.danger
         taken.append(probe)
-        shown.append((str(probe), meter.show(value, rng)))
-        job = replace(job, entries=(*job.entries, Reading(probe, shown[-1][1])))
+        job = replace(job, entries=(*job.entries, Reading(probe, meter.show(value, rng))))
     verdict = diagnosis.verdict(job, careful)
     live = sum(probe.live for probe in taken)
     return Play(
@@ -118,7 +126,8 @@ def play(
         len(taken),
         live,
         minutes,
-        tuple(shown),
+        danger,
+        job,
     )
 
 
@@ -133,6 +142,7 @@ def summary(plays: Sequence[Play]) -> dict[str, float]:
         "readings": float(np.mean([p.readings for p in plays])),
         "live": float(np.mean([p.live for p in plays])),
         "minutes": float(np.mean([p.minutes for p in plays])),
+        "minutes to cure": float(np.mean([p.total() for p in plays])),
         "good parts replaced": float(np.mean([len(p.repair - p.needed) for p in plays])),
         "does not fit": float(np.mean([p.status == "does not fit" for p in plays])),
     }
