@@ -4,17 +4,37 @@ import csv
 import math
 from pathlib import Path
 
+from triage.board.circuit import NOMINAL, Draw, output_ground
 from triage.board.fault import Fault
+from triage.board.kinds import leak_resistance
 from triage.board.part import Board
 from triage.board.probe import Probe
-from triage.board.circuit import output_ground
+from triage.physics.network import HAND_METER, Meter
 
 DATA = Path(__file__).parent / "data"
-PROFILES = {"rcc-zener": "harbour-handset-charger"}
+PROFILES = {"rcc-zener": "harbour-handset-charger", "rcc-opto": "weather-display-adapter", "pwm-opto": "tide-gauge-brick",
+            "linear-reg": "choir-keyboard-supply"}
 """Reference circuit -> the shipped profile that has its values."""
 MODES = {"low_c": "low_capacitance", "low_vz": "low_voltage"}
 FUNCTIONS = {"cap": "capacitance"}
+BY_CURRENT = Meter(ohms_currents=(1e-3, 1e-4, 1e-5, 1e-6, 1e-7, 1.5e-8), diode_limit=3.0, bridge_series=True)
+"""The meter of the circuits pwm-opto and linear-reg: their ohms test current steps down, their bridge shows series values."""
+LEAK = 4700.0
+"""Resistance of a leaky part in those two circuits [ohm]; the other two use the program's own."""
 SOURCE = "reference circuits, simulated with ngspice 39"
+
+
+def meter_of(circuit: str) -> Meter:
+    """The meter a circuit's cold readings were taken with."""
+    return HAND_METER if circuit.startswith("rcc") else BY_CURRENT
+
+
+def draw_of(circuit: str, board: Board) -> Draw:
+    """The size of the faults a circuit was simulated with, where it is not the program's own."""
+    if circuit.startswith("rcc"):
+        return NOMINAL
+    return Draw({}, {(part.ref, "leaky"): LEAK / leak_resistance(part) for part in board.parts
+                     if part.kind in ("diode", "electrolytic")})
 
 
 def fault_of(text: str) -> tuple[Fault, ...]:
@@ -28,11 +48,12 @@ def fault_of(text: str) -> tuple[Fault, ...]:
     return tuple(faults)
 
 
-def number(text: str) -> float:
-    """A reading: OL is infinite, an empty field or nan is not known."""
+def number(text: str, function: str = "") -> float:
+    """A reading: OL is infinite, an empty field or nan is not known; a capacitance beyond any bridge is OL."""
     if text == "OL":
         return math.inf
-    return float(text) if text and text != "nan" else math.nan
+    value = float(text) if text and text != "nan" else math.nan
+    return math.inf if function == "cap" and value > HAND_METER.capacitance_most else value
 
 
 def _lines(circuit: str, table: str) -> list[list[str]]:
@@ -46,7 +67,7 @@ def cold_table(circuit: str) -> dict[str, dict[Probe, float]]:
     table: dict[str, dict[Probe, float]] = {"healthy": sound}
     for fault, plus, minus, function, value in _lines(circuit, "cold")[1:]:
         probe = Probe(FUNCTIONS.get(function, function), plus, minus)
-        table.setdefault(fault, {})[probe] = number(value)
+        table.setdefault(fault, {})[probe] = number(value, function)
     return {fault: {**sound, **rows} for fault, rows in table.items()}
 
 

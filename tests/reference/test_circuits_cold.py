@@ -8,7 +8,7 @@ import math
 
 import pytest
 
-from tests.reference.reference_circuits import PROFILES, SOURCE, cold_table, fault_of
+from tests.reference.reference_circuits import PROFILES, SOURCE, cold_table, draw_of, fault_of, meter_of
 from triage.board.probe import Probe
 from triage.board.profile import load_profile
 from triage.families.cold import read_cold
@@ -38,7 +38,7 @@ def test_cold_readings_agree_with_the_simulated_circuit(circuit, outside_check):
     misses = []
     for fault, rows in cold_table(circuit).items():
         probes = [probe for probe, want in rows.items() if not math.isnan(want)]
-        got = read_cold(board, fault_of(fault), probes)[:, 0]
+        got = read_cold(board, fault_of(fault), probes, (draw_of(circuit, board),), meter_of(circuit))[:, 0]
         for probe, value in zip(probes, got, strict=True):
             total[probe.function] = total.get(probe.function, 0) + 1
             if within(probe, float(value), rows[probe]):

@@ -13,8 +13,6 @@ from triage.board.kinds import State, kinds
 from triage.board.part import Board, Part
 from triage.physics.netlist import PORT_NONE, PORT_SOURCE, Netlist
 
-ISOLATION_RESISTANCE = 20e6
-"""Leak across the barrier that keeps the floating side defined [ohm]."""
 LINE, NEUTRAL, OUTPUT = "mains_l", "mains_n", "out"
 
 
@@ -63,7 +61,7 @@ def circuit(board: Board, faults: Sequence[Fault] = (), *, draw: Draw = NOMINAL,
         kinds()[part.kind].place(net, specimen(part, draw), State(present, severity, cold))
     ground = output_ground(board)
     if ground != net.reference:
-        net.resistor("isolation", ground, net.reference, ISOLATION_RESISTANCE)
+        net.resistor("isolation", ground, net.reference, board.isolation_resistance)
     if not cold:
         _feed(net, board, mains or board.mains.nominal, load or board.full_load)
     return net

@@ -89,6 +89,8 @@ class Board:
     drawing: str = ""
     """The board drawn as text; refs stand in it as words."""
     note: str = ""
+    isolation_resistance: float = 100e6
+    """Stray resistance across the barrier that defines the floating side [ohm]."""
 
     def part(self, ref: str) -> Part:
         """The part with this reference designator. Raises KeyError when there is none."""

@@ -71,6 +71,7 @@ def board_from_dict(content: Mapping[str, Any], where: str) -> Board:
         parts=tuple(_part(check, row, number) for number, row in enumerate(parts, 1)),
         sides=_sides(check, content), ground=dict(check.table(content, "ground")),
         drawing=check.text(content, "drawing", default=""), note=check.text(content, "note", default=""),
+        isolation_resistance=check.quantity(content, "isolation_resistance", "ohm", default=100e6),
     )
     _cross_checks(check, board)
     check.finish()
@@ -87,6 +88,7 @@ def board_to_dict(board: Board) -> dict[str, Any]:
     m = board.mains
     return {
         "id": board.id, "title": board.title, "family": board.family, "note": board.note, "drawing": board.drawing,
+        "isolation_resistance": board.isolation_resistance,
         "label": label,
         "mains": {"frequency": m.frequency, "low": m.low, "nominal": m.nominal, "high": m.high,
                   "source_resistance": m.source_resistance},

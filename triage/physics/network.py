@@ -36,15 +36,25 @@ class Meter:
     """Highest diode reading before OL [V]."""
     input_resistance: float = 1e9
     """Resistance of the input itself [ohm]."""
+    ohms_currents: tuple[float, ...] = ()
+    """Test currents of the ohms ranges [A], lowest range first, for a meter that tests with a current; empty otherwise."""
+    range_voltage: float = 0.3
+    """Voltage above which such a meter steps to the next range [V]."""
     bridge_esr_frequency: float = 100e3
     """Test frequency of the series-resistance reading [Hz]."""
     bridge_capacitance_frequency: float = 100.0
     """Test frequency of the capacitance reading [Hz]."""
 
+    capacitance_most: float = 0.1
+    """Highest capacitance before OL [F]."""
+    bridge_series: bool = False
+    """True for a bridge that shows the series capacitance, False for one that shows the parallel capacitance."""
+
     def numbers(self) -> np.ndarray:
         """The values in the order the compiled solver takes them."""
         return np.array([self.ohms_voltage, self.ohms_low, self.ohms_high, self.ohms_change, self.ohms_most,
-                         self.diode_current, self.diode_limit, self.diode_most, self.input_resistance])
+                         self.diode_current, self.diode_limit, self.diode_most, self.input_resistance,
+                         self.range_voltage])
 
 
 HAND_METER = Meter()
@@ -59,8 +69,9 @@ def read_network(compiled: Compiled, probes: Sequence[tuple[str, str, str]], met
 
     table = np.array([[compiled.index(a), compiled.index(b), f == "diode"] for f, a, b in probes], dtype=np.int64)
     slots = np.array([_slots(compiled, row[0], row[1]) for row in table], dtype=np.int64)
-    result: np.ndarray = read_all(compiled.nonzeros, compiled.program, compiled.resistor, compiled.winding, compiled.diode,
-                                  compiled.bipolar, table, slots, meter.numbers())
+    result: np.ndarray = read_all(compiled.nonzeros, compiled.program, compiled.resistor, compiled.winding, compiled.transfer,
+                                  compiled.diode, compiled.bipolar, table, slots, meter.numbers(),
+                                  np.array(meter.ohms_currents, dtype=float))
     return result
 
 
@@ -108,12 +119,21 @@ def read_bridge(compiled: Compiled, probes: Sequence[tuple[str, str, str]], mete
         v = np.linalg.solve(matrix, drive)
         for column, (k, (i, j)) in enumerate(zip(rows, ends, strict=True)):
             z = (v[i, column] if i >= 0 else 0.0) - (v[j, column] if j >= 0 else 0.0)
-            y = 1.0 / z
             if function == "esr":
                 out[k] = z.real
             else:
-                out[k] = y.imag / omega if abs(y) < 10.0 else 0.0
+                out[k] = _capacitance(z, omega, meter)
     return out
+
+
+def _capacitance(impedance: complex, omega: float, meter: Meter) -> float:
+    """Capacitance that the bridge shows for an impedance [ohm] at ``omega`` [rad/s]; 0 for a short [F]."""
+    if meter.bridge_series:
+        value = -1.0 / (omega * impedance.imag) if impedance.imag < 0.0 else math.inf
+    else:
+        admittance = 1.0 / impedance
+        value = admittance.imag / omega if abs(admittance) < 10.0 else 0.0
+    return math.inf if value > meter.capacitance_most else value
 
 
 def _admittance(compiled: Compiled, omega: float) -> np.ndarray:

@@ -18,6 +18,7 @@ from triage.physics.transient_devices import (
     base_conductances,
     factor_and_solve,
     inject,
+    limit_junction,
     stamp,
     stamp_bipolars,
     stamp_diodes,
@@ -27,12 +28,21 @@ from triage.physics.transient_devices import (
 GMIN = 1e-14
 SHUNT = 1e-11
 WINDING_LEAST = 1e-3
+CLAMP_SATURATION = 1e-12
+"""Saturation current of the junction that limits the diode test [A]."""
+CLAMP_CRITICAL = VT * math.log(VT / (math.sqrt(2.0) * CLAMP_SATURATION))
+FLOATING_NOISE = 5e-5
+"""Change of a node that counts as none [V]: floating nodes carry the rounding of the elimination. The probes are held closer."""
+DAMPED_FROM = 60
+"""Iterations after which only half of each step is taken."""
 
 
 @njit(**OPTIONS)
-def copper_network(nonzeros, program, resistor, winding):
-    """Conductance matrix of resistors and windings at direct current."""
+def copper_network(nonzeros, program, resistor, winding, transfer):
+    """Conductance matrix of resistors, windings and transfers at direct current."""
     base = base_conductances(nonzeros, program, resistor, SHUNT)
+    for t in range(transfer[1].shape[0]):
+        stamp(base, transfer[0][t], transfer[1][t])
     resistance, stamps = winding[3], winding[4]
     for w in range(resistance.shape[0]):
         stamp(base, stamps[w, w], 1.0 / max(resistance[w], WINDING_LEAST))
@@ -57,6 +67,7 @@ def meter_voltage(base, program, diode, bipolar, plus, minus, slots, conductance
         vq[k, 0] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 2]))
         vq[k, 1] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 0]))
     across = voltage(v, plus) - voltage(v, minus)
+    want = across
     pivot = program[0]
     for iteration in range(300):
         a[:] = base
@@ -65,7 +76,7 @@ def meter_voltage(base, program, diode, bipolar, plus, minus, slots, conductance
             rhs[k] = 0.0
         g, i = conductance, current
         if clamp > 0.0:
-            e = 1e-12 * math.exp(min((across - clamp) / VT, 60.0))
+            e = CLAMP_SATURATION * math.exp(min((across - clamp) / VT, 60.0))
             g += e / VT
             i += e / VT * across - e
         stamp(a, slots, g)
@@ -81,15 +92,18 @@ def meter_voltage(base, program, diode, bipolar, plus, minus, slots, conductance
         for k in range(v.shape[0]):
             if not math.isfinite(rhs[k]):
                 return math.nan
-            if abs(rhs[k] - v[k]) > 1e-5 * max(abs(rhs[k]), abs(v[k])) + 1e-8:
+            if abs(rhs[k] - v[k]) > 1e-5 * max(abs(rhs[k]), abs(v[k])) + FLOATING_NOISE:
                 moved = True
-            v[k] = rhs[k]
+            v[k] = rhs[k] if iteration < DAMPED_FROM else 0.5 * (rhs[k] + v[k])
+        before = want
         want = voltage(v, plus) - voltage(v, minus)
-        step = want - across
-        if clamp > 0.0 and abs(step) > 0.1:
-            step = math.copysign(0.1, step)
+        if abs(want - before) > 1e-5 * abs(want) + 1e-9:
             moved = True
-        across += step
+        if clamp > 0.0:
+            next_ = clamp + limit_junction(want - clamp, across - clamp, VT, CLAMP_CRITICAL)
+            if abs(next_ - across) > 1e-6:
+                moved = True
+            across = next_
         if not moved and not limited and iteration > 0:
             return want
     return math.nan
@@ -112,13 +126,28 @@ def settled(base, program, diode, bipolar, plus, minus, slots, conductance, curr
 
 
 @njit(**OPTIONS)
-def read_all(nonzeros, program, resistor, winding, diode, bipolar, probes, slots, meter):
+def by_current(base, program, diode, bipolar, plus, minus, slots, meter, ranges):
+    """Ohms of a meter that steps its test current down until the voltage is low enough; inf is OL."""
+    leak = 1.0 / meter[8]
+    for r in range(ranges.shape[0]):
+        v = settled(base, program, diode, bipolar, plus, minus, slots, leak, ranges[r], meter[6])
+        if not math.isfinite(v):
+            return math.nan
+        if abs(v) <= meter[9]:
+            ohm = max(v / ranges[r], 0.0)
+            return math.inf if ohm > meter[4] else ohm
+    return math.inf
+
+
+@njit(**OPTIONS)
+def read_all(nonzeros, program, resistor, winding, transfer, diode, bipolar, probes, slots, meter, ranges):
     """Readings of a list of probes: ohms [ohm] for probes[:, 2] = 0, diode test [V] for 1; inf is OL, nan no solution.
 
     ``meter`` = (ohms source voltage [V], its low and high resistance [ohm], change of range [ohm], highest reading [ohm],
-    diode-test current [A], its limit [V], highest diode reading [V], input resistance [ohm]).
+    diode-test current [A], its limit [V], highest diode reading [V], input resistance [ohm], highest voltage of a range [V]).
+    ``ranges`` = test currents [A] from the lowest range up; empty for a meter that tests with a voltage.
     """
-    base = copper_network(nonzeros, program, resistor, winding)
+    base = copper_network(nonzeros, program, resistor, winding, transfer)
     out = np.empty(probes.shape[0])
     leak = 1.0 / meter[8]
     for k in range(probes.shape[0]):
@@ -126,6 +155,9 @@ def read_all(nonzeros, program, resistor, winding, diode, bipolar, probes, slots
         if probes[k, 2] == 1:
             v = settled(base, program, diode, bipolar, plus, minus, slots[k], leak, meter[5], meter[6])
             out[k] = math.inf if v > meter[7] else (max(v, 0.0) if math.isfinite(v) else math.nan)
+            continue
+        if ranges.shape[0] > 0:
+            out[k] = by_current(base, program, diode, bipolar, plus, minus, slots[k], meter, ranges)
             continue
         ohm = math.nan
         for high in range(2):
@@ -140,9 +172,9 @@ def read_all(nonzeros, program, resistor, winding, diode, bipolar, probes, slots
 
 
 @njit(**OPTIONS)
-def rest_point(nonzeros, program, resistor, winding, diode, bipolar, source):
+def rest_point(nonzeros, program, resistor, winding, transfer, diode, bipolar, source):
     """(found, node voltages [V], winding currents [A]) at direct current with every source at its value at time zero."""
-    base = copper_network(nonzeros, program, resistor, winding)
+    base = copper_network(nonzeros, program, resistor, winding, transfer)
     drive = np.zeros(program[0].shape[0])
     for s in range(source[0].shape[0]):
         par = source[2][s]

@@ -99,7 +99,7 @@ def rest_state(compiled: Compiled) -> State:
     from triage.physics.network_solver import rest_point
 
     found, nodes, windings = rest_point(compiled.nonzeros, compiled.program, compiled.resistor, compiled.winding,
-                                        compiled.diode, compiled.bipolar, compiled.source)
+                                        compiled.transfer, compiled.diode, compiled.bipolar, compiled.source)
     if not found:
         raise NoConvergence(0.0)
     ends = compiled.capacitor[0]

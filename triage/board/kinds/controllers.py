@@ -6,7 +6,7 @@ from triage.physics.netlist import PORT_NONE, Netlist
 
 _CONTROLLER = 4
 _SHORT, _LEAK = 2.0, 4700.0
-_SUBSTRATE = {"saturation_current": 1e-13, "emission": 1.0, "series_resistance": 3.0}
+_SUBSTRATE = {"saturation_current": 1e-13, "emission": 1.1, "series_resistance": 3.0}
 _SUPPLY_ZENER = {"saturation_current": 1e-14, "emission": 1.0, "series_resistance": 5.0, "breakdown_voltage": 34.0,
                  "zero_bias_capacitance": 20e-12}
 _STANDBY = 120e3
