@@ -1,5 +1,7 @@
 """One job from the complaint to the closed file, on the stand-in for the computing rooms."""
 
+import subprocess
+import sys
 from pathlib import Path
 
 import pytest
@@ -227,6 +229,26 @@ def test_a_second_session_sees_the_job_but_cannot_enter(bench: Bench) -> None:
     bench.release()
     third = Bench.open(bench.path, StandIn(), Clock())
     assert third.read_only == ""
+
+
+CUT_OFF = """
+import os, pathlib, sys
+from tests.job.stand_in import PROFILE, StandIn
+from triage.job.bench import Bench
+bench = Bench.create(PROFILE, pathlib.Path(sys.argv[1]), StandIn())
+bench.note("the last thing accepted")
+os.kill(os.getpid(), 9)
+"""
+
+
+def test_after_a_session_was_cut_off_the_job_says_so_and_goes_on(tmp_path: Path) -> None:
+    path = tmp_path / "cube.toml"
+    root = Path(__file__).parents[2]
+    done = subprocess.run([sys.executable, "-c", CUT_OFF, str(path)], cwd=root, timeout=60)
+    assert done.returncode == -9
+    view = Bench.open(path, StandIn(), Clock()).view()
+    assert view.read_only == "" and "was cut off" in view.message
+    assert view.entries[-1].text == "note: the last thing accepted"
 
 
 def test_a_session_that_is_put_away_gives_the_job_free(tmp_path: Path) -> None:

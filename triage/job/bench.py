@@ -145,6 +145,12 @@ class Bench:
             return f"in use by {self._lock.holder}"
         return f"the folder cannot be written: {self._lock.problem or 'no lock'}"
 
+    @property
+    def last_session(self) -> str:
+        """Who left this job without closing it, when a session was cut off; empty otherwise."""
+        left = self._lock.left_behind if self._lock is not None else None
+        return str(left) if left is not None else ""
+
     def prepare(self) -> None:
         """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
         first time."""

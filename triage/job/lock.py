@@ -48,6 +48,8 @@ class Lock:
         self.path = job_path.with_name(job_path.name + ".lock")
         self.held = False
         self.holder: Holder | None = None
+        self.left_behind: Holder | None = None
+        """Whose lock was cleared out of the way: a session that ended without giving the job free."""
         self.problem = ""
         """Why no lock could be written at all (read-only folder), or empty."""
 
@@ -67,6 +69,7 @@ class Lock:
             self.holder = read_holder(self.path)
             if not self._is_stale():
                 return False
+            self.left_behind = self.holder
             self._clear_stale()
         return False
 

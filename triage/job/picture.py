@@ -176,6 +176,8 @@ def _standing_message(bench: "Bench", facts: GateFacts, suggestion: SuggestionVi
         return f"a sync program left other versions of this job: {names}; compare them before going on"
     if bench.read_only:
         return f"read-only: {bench.read_only}"
+    if bench.last_session and bench.answers is None:
+        return f"the last session was cut off ({bench.last_session}); every entry it had accepted is here"
     if bench.answers is not None and suggestion is None and not facts.repaired and not facts.found:
         missing = waits_for(facts)
         return f"live readings wait: first {missing[0]}" if missing else ""
