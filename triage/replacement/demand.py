@@ -14,21 +14,9 @@ from triage.board.stress import QUANTITIES, Stress
 from triage.errors import EntryError
 from triage.replacement.catalog import Catalog
 from triage.replacement.catalog_part import CatalogPart
+from triage.replacement.original import KIND_CLASSES, original_part
 from triage.replacement.positions import Need, Position, plain_role, position_of
-
-KIND_CLASSES = {
-    "bipolar_transistor": "bipolar_transistor", "mosfet": "mosfet", "optocoupler": "optocoupler", "bridge": "bridge",
-    "shunt_reference": "shunt_reference", "regulator": "linear_regulator", "zener": "zener", "fuse": "fuse", "ntc": "ntc",
-    "varistor": "varistor", "resistor": "resistor", "fusible_resistor": "fusible_resistor", "led": "led",
-    "electrolytic": "electrolytic", "tvs": "tvs",
-}
-"""Part kind of a board -> the catalog class it is ordered from, where there is one alone."""
-
-UNITS = {
-    "V": "V", "A": "A", "W": "W", "ohm": "ohm", "F": "F", "C": "C", "s": "s", "Hz": "Hz", "J": "J", "K": "K", "h": "h",
-    "degC": "degC", "percent": "%", "mm": "mm", "Vac": "V", "Vdc": "V", "Vrms": "V",
-}
-"""Unit at the end of a catalog key -> unit as shown."""
+from triage.replacement.wording import figure, unit_of, words_of
 
 _HALF_WAVE = 8.3e-3
 """Duration of the surge that a rectifier's IFSM is given for [s]."""
@@ -65,7 +53,10 @@ class Requirement:
     rule: str = ""
     """Name of a rule with a shape of its own: ``gain near`` a known gain, or ``gain band`` of the old type."""
     undecided: bool = False
-    """Neither the stress nor the dead part's rating is known, so that nothing can be promised for this figure."""
+    """The place itself is not known well enough, so that nothing can be promised: neither the stress nor the dead part's
+    rating, nor what must equal the dead part's."""
+    readable: bool = False
+    """Undecided, but a look at the dead part's body or sheet would tell."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,7 +104,7 @@ def demand(board: Board, ref: str, stresses: Sequence[Stress], catalog: Catalog)
         part = board.part(ref)
     except KeyError:
         raise EntryError(f"part {ref!r}", "not on this board", "one of " + ", ".join(p.ref for p in board.parts)) from None
-    original = catalog.find(part.type) if part.type else None
+    original = original_part(part, catalog)
     dead_class = original.part_class if original else KIND_CLASSES.get(part.kind, "")
     position = position_of(board, part, dead_class) or position_of(board, part)
     if position is None:
@@ -124,7 +115,7 @@ def demand(board: Board, ref: str, stresses: Sequence[Stress], catalog: Catalog)
     if original and original.part_class not in position.classes + position.was:
         original = None
     own = tuple(stress for stress in stresses if stress.ref == ref)
-    figures = _Figures(board, part, own, original)
+    figures = _Figures(board, part, own, original, position.safety)
     requirements = tuple(found for need in position.needs if (found := figures.requirement(need)))
     return Demand(
         ref=ref, role=plain_role(part.role), kind=part.kind, classes=position.classes, requirements=requirements,
@@ -140,54 +131,6 @@ def _notes(position: Position, part: Part) -> str:
     return "; ".join(words)
 
 
-def unit_of(key: str) -> str:
-    """The unit at the end of a catalog key, empty when there is none."""
-    words = key.split("_")
-    if words[-1] == "W" and "K" in words and "per" in words:
-        return "K/W"
-    return UNITS.get(words[-1], "")
-
-
-def figure(value: float, unit: str) -> str:
-    """A figure of a demand as read aloud, four digits at most: ``0.15 A``, ``4.7 uF``, ``75 ns``."""
-    if unit in ("F", "s", "C") and value != 0:
-        for scale, letter in ((1.0, ""), (1e-3, "m"), (1e-6, "u"), (1e-9, "n"), (1e-12, "p")):
-            if abs(value) >= scale * 0.9999999:
-                return f"{value / scale:.4g} {letter}{unit}"
-    if unit == "ohm" and abs(value) >= 1e3:
-        return f"{value / 1e6:.4g} Mohm" if abs(value) >= 1e6 else f"{value / 1e3:.4g} kohm"
-    return f"{value:.4g} {unit}".strip()
-
-
-def _words_of(key: str) -> str:
-    return WORDS.get(key, key.rpartition("_")[0].replace("_", " ") or key)
-
-
-WORDS = {
-    "vrrm_V": "repetitive reverse voltage", "vr_dc_V": "reverse voltage", "if_av_A": "average forward current",
-    "ifsm_A": "surge current", "trr_max_s": "recovery time", "tj_max_degC": "junction temperature limit",
-    "vf_max_V": "forward voltage", "vcbo_V": "collector-base voltage", "vceo_V": "collector-emitter voltage",
-    "ic_A": "collector current", "ptot_W": "power", "hfe_min": "current gain band", "ts_max_s": "storage time",
-    "vdss_V": "drain-source voltage", "id_A": "drain current", "rds_on_max_ohm": "on resistance", "qg_max_C": "gate charge",
-    "vgs_max_V": "gate-source voltage", "vgs_th_max_V": "gate threshold", "c_F": "capacitance", "vr_Vdc": "rated voltage",
-    "vr_Vac": "rated ac voltage", "ripple_120Hz_A": "ripple current at 120 Hz", "ripple_100kHz_A": "ripple current at 100 kHz",
-    "z_100kHz_20C_ohm": "impedance at 100 kHz", "t_max_degC": "temperature rating", "r_ohm": "resistance",
-    "v_lim_V": "voltage limit", "p_W": "power", "kind": "kind of element", "vz_V": "zener voltage",
-    "izt_A": "test current", "tol_percent": "tolerance", "ctr_min_percent": "transfer ratio, lowest",
-    "ctr_max_percent": "transfer ratio, highest", "viso_Vrms": "isolation voltage", "if_max_A": "LED current",
-    "vref_V": "reference voltage", "vka_max_V": "cathode voltage", "ika_max_A": "cathode current",
-    "ika_min_A": "least cathode current", "in_A": "rated current", "breaking_A": "breaking capacity",
-    "r25_ohm": "resistance at 25 degC",
-    "disc_mm": "disc diameter", "imax_A": "continuous current", "v1mA_V": "voltage at 1 mA", "vac_max_V": "ac voltage",
-    "energy_J": "pulse energy", "vout_V": "output voltage", "vin_max_V": "input voltage", "iout_A": "output current",
-    "dropout_typ_V": "dropout", "vbr_min_V": "breakdown voltage, lowest", "vbr_max_V": "breakdown voltage, highest",
-    "ppp_W": "pulse power", "p_steady_W": "steady power", "vr_max_V": "reverse voltage", "safety_class": "safety class",
-    "lead_pitch_mm": "lead pitch", "speed": "speed", "case": "body", "standard": "standard", "grade": "grade",
-    "polarity": "polarity", "channel": "channel",
-}
-"""Catalog field -> the words for it on screen and in reports."""
-
-
 @dataclass(frozen=True, slots=True)
 class _Figures:
     """Turns the needs of a position into requirements for one part of one board."""
@@ -196,6 +139,7 @@ class _Figures:
     part: Part
     stresses: tuple[Stress, ...]
     original: CatalogPart | None
+    safety: bool
 
     def requirement(self, need: Need) -> Requirement | None:
         """The requirement of one need, or None where nothing is known that it could ask."""
@@ -217,12 +161,12 @@ class _Figures:
                 words, reason = (had,), f"the old part: {had}"
             else:
                 return Requirement(
-                    need.key, _words_of(need.key), "", "the old part's is not known: read it off the body", need.source,
-                    words=words, undecided=True,
+                    need.key, words_of(need.key), "", "the old part's is not known: read it off the body", need.source,
+                    words=words, undecided=True, readable=True,
                 )
         if not words:
             return None
-        return Requirement(need.key, _words_of(need.key), "", reason, need.source, words=words, offered=had or None)
+        return Requirement(need.key, words_of(need.key), "", reason, need.source, words=words, offered=had or None)
 
     def _gain(self, need: Need) -> Requirement | None:
         """The gain may lie 30 % off the old one; where only the old type is known, the bands must lie alike."""
@@ -237,7 +181,7 @@ class _Figures:
         else:
             return None
         return Requirement(
-            need.key, _words_of(need.key), "", reason, need.source, minimum=low, maximum=high, rule=rule, offered=gain or low,
+            need.key, words_of(need.key), "", reason, need.source, minimum=low, maximum=high, rule=rule, offered=gain or low,
         )
 
     def _window(self, need: Need) -> Requirement | None:
@@ -247,7 +191,7 @@ class _Figures:
             if value is None:
                 return None
             return Requirement(
-                need.key, _words_of(need.key), unit, f"old part {figure(value, unit)} x {need.share:g}", need.source,
+                need.key, words_of(need.key), unit, f"old part {figure(value, unit)} x {need.share:g}", need.source,
                 maximum=value * need.share, offered=value,
             )
         value = next((self.part.value[key] for key in need.value if key in self.part.value), None)
@@ -255,13 +199,13 @@ class _Figures:
             value = self.original.number(need.key)
         if value is None:
             return Requirement(
-                need.key, _words_of(need.key), unit, "the old value is not known: read or measure it", need.source,
+                need.key, words_of(need.key), unit, "the old value is not known: read or measure it", need.source,
                 undecided=True,
             )
         ends = (value * (1 - need.low), value * (1 + need.high))
         slack = 1e-9 * abs(value)
         return Requirement(
-            need.key, _words_of(need.key), unit, f"{figure(value, unit)}, -{need.low:.0%} to +{need.high:.0%}", need.source,
+            need.key, words_of(need.key), unit, f"{figure(value, unit)}, -{need.low:.0%} to +{need.high:.0%}", need.source,
             minimum=min(ends) - slack, maximum=max(ends) + slack, offered=value,
         )
 
@@ -272,11 +216,11 @@ class _Figures:
             value = self.original.number(need.key)
         if value is None:
             return Requirement(
-                need.key, _words_of(need.key), unit, "the old rating is not known: read it off the body", need.source,
+                need.key, words_of(need.key), unit, "the old rating is not known: read it off the body", need.source,
                 undecided=True,
             )
         return Requirement(
-            need.key, _words_of(need.key), unit, f"equal to the old part, {figure(value, unit)}", need.source,
+            need.key, words_of(need.key), unit, f"equal to the old part, {figure(value, unit)}", need.source,
             minimum=value * 0.999, maximum=value * 1.001, offered=value,
         )
 
@@ -304,16 +248,28 @@ class _Figures:
         low = max(((value, text) for value, text in lows if value is not None), default=(None, ""), key=lambda low: low[0])
         high = self._highest(need, highs)
         if low[0] is None and high[0] is None:
-            asks = bool(need.stress or need.of) and not need.as_
-            return Requirement(
-                need.key, _words_of(need.key), unit, "neither its stress nor the old rating is known", need.source,
-                alternatives=need.alternatives, undecided=True,
-            ) if asks and not (need.if_known or need.rating == "") else None
+            return self._undecided(need, unit)
         return Requirement(
-            need.key, _words_of(need.key), unit, "; ".join(text for text in (low[1], high[1]) if text), need.source,
+            need.key, words_of(need.key), unit, "; ".join(text for text in (low[1], high[1]) if text), need.source,
             minimum=low[0], maximum=high[0], stressed=stressed, alternatives=need.alternatives, offered=offered,
             mistake=self._mistake(need, stressed, offered), if_known=need.if_known,
         )
+
+    def _undecided(self, need: Need, unit: str) -> Requirement | None:
+        """What to say where neither bound is known: nothing, unless the place would be left open by that."""
+        if need.if_known:
+            return None
+        if need.rating and (need.stress or need.of):
+            return Requirement(
+                need.key, words_of(need.key), unit, "neither its stress nor the old rating is known", need.source,
+                alternatives=need.alternatives, undecided=True,
+            )
+        if self.safety and need.like:
+            return Requirement(
+                need.key, words_of(need.key), unit, "the old part's is not known: read it off the body or its sheet",
+                need.source, undecided=True, readable=True,
+            )
+        return None
 
     def _highest(self, need: Need, highs: list[tuple[float | None, str]]) -> tuple[float | None, str]:
         known = [(value, text) for value, text in highs if value is not None]
@@ -323,14 +279,21 @@ class _Figures:
 
     def _ceiling(self, need: Need, had: float | None) -> tuple[float | None, str]:
         if need.ceiling_stress:
-            worst = self._worst(need.ceiling_stress)
-            if worst is not None:
-                unit = unit_of(need.key)
-                return worst.value * need.times, f"{need.times:g} x {figure(worst.value, unit)} flowing there"
-            return None, ""
+            flowing = self._flowing(need)
+            if flowing is None:
+                return None, ""
+            return flowing * need.times, f"{need.times:g} x {figure(flowing, unit_of(need.key))} flowing there"
         if had is not None and need.like == "at_most":
             return None, ""
         return need.ceiling, "limit of the position" if need.ceiling is not None else ""
+
+    def _flowing(self, need: Need) -> float | None:
+        """The stress that sets a ceiling; a current also from the power at the part's voltage."""
+        worst = self._worst(need.ceiling_stress)
+        if worst is not None:
+            return abs(worst.value)
+        power, voltage = self._worst(("power",)), self.part.value.get(need.power_over)
+        return abs(power.value) / voltage if power is not None and voltage else None
 
     def _worst(self, quantities: Sequence[str]) -> Stress | None:
         known = [s for s in self.stresses if s.quantity in quantities and math.isfinite(s.value) and s.value]

@@ -38,6 +38,7 @@ class Need:
     ceiling: float | None = None
     ceiling_stress: tuple[str, ...] = ()
     times: float = 1.0
+    power_over: str = ""
     value: tuple[str, ...] = ()
     low: float = 0.0
     high: float = 0.0

@@ -12,9 +12,10 @@ from triage.errors import CatalogError
 from triage.replacement.bodies import PinFit, body_fit, group_of, pin_fit
 from triage.replacement.catalog import Catalog, plain_number
 from triage.replacement.catalog_part import CatalogPart
-from triage.replacement.demand import Demand, figure
+from triage.replacement.demand import Demand
 from triage.replacement.drawers import Drawers, StockItem
-from triage.replacement.rules import FROM_MEMORY, Refusal, check, value_of
+from triage.replacement.rules import READING_SETTLES, Refusal, check, value_of
+from triage.replacement.wording import figure
 
 ENOUGH = 1.5
 """A rating this many times the demand has all the margin that counts."""
@@ -57,8 +58,8 @@ class Candidate:
 
     @property
     def to_confirm(self) -> bool:
-        """Whether only values from memory stand against it, which the sheet or the print on the body would settle."""
-        return bool(self.refusals) and all(refusal.rule == FROM_MEMORY for refusal in self.refusals)
+        """Whether a look at the sheet, or at the print on either body, would settle all that stands against it."""
+        return bool(self.refusals) and all(refusal.rule in READING_SETTLES for refusal in self.refusals)
 
 
 def candidates(
@@ -105,7 +106,7 @@ def judge(part: CatalogPart, demand: Demand, drawers: Drawers | None = None) -> 
         part = drawers.as_read(part)
     refusals = check(part, demand)
     pins = pin_fit(part, demand.original)
-    settled = all(refusal.rule == FROM_MEMORY for refusal in refusals)
+    settled = all(refusal.rule in READING_SETTLES for refusal in refusals)
     score, notes = _score(part, demand, pins, stock) if settled else (0.0, [])
     return Candidate(
         part, score, tuple(_margins(part, demand)), tuple(notes), refusals,

@@ -12,10 +12,15 @@ from dataclasses import dataclass
 from triage.replacement.bodies import body_fit, pin_fit
 from triage.replacement.catalog import plain_number
 from triage.replacement.catalog_part import CatalogPart
-from triage.replacement.demand import Demand, Requirement, figure
+from triage.replacement.demand import Demand, Requirement
+from triage.replacement.wording import figure
 
 FROM_MEMORY = "from memory"
-"""Name of the rule that a reading of the sheet or of the body satisfies."""
+"""Name of the rule against values from memory: reading the sheet or the body settles it."""
+OLD_PART = "old part"
+"""Name of the rule where the dead part's own figure counts and is not known: reading its body or sheet settles it."""
+READING_SETTLES = frozenset({FROM_MEMORY, OLD_PART})
+"""Rules that a look at the sheet or at a body settles, as against ratings that are too low."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -23,7 +28,7 @@ class Refusal:
     """One rule a candidate fails."""
 
     rule: str
-    """``class``, ``rating``, ``value``, ``word``, ``unknown``, ``body``, ``pins``, ``gain`` or ``from memory``."""
+    """``class``, ``rating``, ``value``, ``word``, ``unknown``, ``body``, ``pins``, ``gain``, ``from memory`` or ``old part``."""
     key: str
     """Catalog field, empty where the rule is about the whole part."""
     text: str
@@ -75,7 +80,8 @@ def _undecided_rule(candidate: CatalogPart, demand: Demand, original: CatalogPar
     """What the place itself demands must be known before anything can be promised."""
     for requirement in demand.requirements:
         if requirement.undecided:
-            yield Refusal("unknown", requirement.key, f"{requirement.text} of the place: {requirement.reason}")
+            rule = OLD_PART if requirement.readable else "unknown"
+            yield Refusal(rule, requirement.key, f"{requirement.text} of the place: {requirement.reason}")
 
 
 def _figure_rule(candidate: CatalogPart, demand: Demand, original: CatalogPart | None) -> Iterator[Refusal]:
