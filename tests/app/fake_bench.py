@@ -368,9 +368,7 @@ class FakeBench:
             id=BOARD.id,
             title=BOARD.title,
             stage=self._stage() if self.ready else "cautions",
-            safe_to_touch="yes: bulk read below 60 V, unplugged"
-            if read
-            else "no: C1 may hold 325 V (0.25 J); it bleeds below 60 V in 31 s after unplugging",
+            safe_to_touch="safe to touch while unplugged" if read else "NOT safe to touch: unplug and read the bulk voltage",
             entries=tuple(self.said),
             message=self.message,
             drawing=DRAWING,

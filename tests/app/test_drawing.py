@@ -1,10 +1,11 @@
 """Marks on the drawing: beside the words, without changing its shape."""
 
+import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
 from tests.app.fake_bench import DRAWING
-from triage.app.drawing import Marks, marked, pin_list, rows_of
+from triage.app.drawing import Marks, marked, pin_list, rows_of, squeezed
 from triage.app.lines import plain
 
 MARKS = Marks(suspects=("Q1", "RF1"), over=frozenset({"Q1", "R2"}), red="bulk", black="pgnd")
@@ -54,3 +55,33 @@ def test_a_board_without_a_drawing_gets_its_pins_listed():
     text = pin_list({"bulk": ("D1 cathode", "C1 plus", "R1 a"), "pgnd": ("C1 minus",)}, 40)
     assert all(len(row) <= 40 for row in text.splitlines())
     assert all(place in text for place in ("D1 cathode", "C1 plus", "R1 a", "C1 minus"))
+
+
+WIDE = """\
+ mains_l       rect          bulk                |  sec           out
+   o---[RF1]----+----D1->|----+------+           |   +---D5->|---+--o +5 V
+                              |      |           |   |           |
+                             C1     [R1]         |   T1          C5
+                              |      |           |   |           |
+ pgnd ------------------------+------+           |   +-----------+--o sgnd"""
+
+
+@pytest.mark.parametrize("columns", [56, 58, 60, 66, 200])
+@pytest.mark.parametrize("rows", [4, 5, 6, 20])
+def test_a_squeezed_drawing_keeps_every_word_and_every_row_of_parts(columns, rows):
+    words = [row.split() for row in WIDE.replace("-", " ").replace("|", " ").splitlines() if row.strip("| ")]
+    got = squeezed(WIDE, columns, rows)
+    kept = [row.split() for row in got.replace("-", " ").replace("|", " ").splitlines() if row.strip("| ")]
+    assert kept == words
+    assert max(map(len, got.splitlines())) <= columns
+    assert len(got.splitlines()) == min(6, max(rows, 4))
+
+
+def test_a_squeezed_drawing_keeps_its_joints_in_line():
+    got = squeezed(WIDE, 55, 4).splitlines()
+    at = got[1].index("+----+")
+    assert got[2][at - 1 : at + 1] == "C1" and got[3][at] == "+" and "bulk"[1] == got[0][at]
+
+
+def test_a_drawing_that_fits_is_left_alone():
+    assert squeezed(WIDE, 200, 50) == WIDE

@@ -59,7 +59,7 @@ def test_a_whole_job_by_keyboard_at_80x24(tmp_path, name):
     keys = LINUX_F if name == "linux" else F
     term = app_on_stand_in(tmp_path, environ=TERMS[name])
     to_bench(term)
-    say(term, "12 V" + ENTER, "touch: yes")
+    say(term, "12 V" + ENTER, "ok safe to touch")
     say(term, "*" + ENTER, "+coll+")
     say(term, "0.8" + ENTER, "found  Q1 ce short + RF1 open")
     say(term, keys["f3"], "over rating")

@@ -56,7 +56,7 @@ def test_no_reading_is_asked_for_while_a_caution_is_open(tmp_path):
 def test_readings_narrow_the_suspects_to_a_verdict(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await type_in(pilot, "12 V")
-        assert "touch: yes" in text_of(pilot.app)
+        assert "ok safe to touch" in text_of(pilot.app)
         await type_in(pilot, "*")
         await type_in(pilot, "0.8")
         text = text_of(pilot.app)

@@ -93,13 +93,14 @@ class Desk:
 
         self._slow.ask("prepare", bench.prepare, ready, self._deliver)
 
-    def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None) -> bool:
+    def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None, queue: bool = False) -> bool:
         """Give the bench an entry; False when there is no job, or the entry before is still being worked on.
 
-        ``accepted`` is called before the screens are told, when the bench has taken the entry.
+        ``accepted`` is called before the screens are told, when the bench has taken the entry. ``queue``: wait behind the
+        entry before instead of being refused; of entries that wait only the last calls its ``accepted``.
         """
         bench = self.bench
-        if bench is None or self.pending:
+        if bench is None or (self.pending and not queue):
             self._say("still working on the entry before" if bench else "no job is open", refused=True)
             return False
         self.pending = True

@@ -12,6 +12,10 @@ from dataclasses import dataclass, field
 from triage.app.lines import Line, Span, plain
 
 _WORD = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
+_ALONG = " -─━═"
+"""Characters that carry a wire, or nothing, on to the right."""
+_DOWN = frozenset(" |│┃║")
+"""Characters that carry a wire, or nothing, down."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,6 +73,25 @@ def _marked_row(row: str, marks: Marks) -> Line:
         at = end
     spans.append(Span("".join(chars[at:])))
     return tuple(span for span in spans if span.text)
+
+
+def squeezed(drawing: str, columns: int, rows: int) -> str:
+    """The drawing made to fit, as far as it can be without losing a word or a joint.
+
+    Columns that only carry wires on are left out until ``columns`` is met, and rows that only carry wires
+    down until ``rows`` is met; a drawing that fits is left alone.
+    """
+    lines = [row.rstrip() for row in drawing.expandtabs(4).strip("\n").splitlines()]
+    bars = [number for number, row in enumerate(lines) if row and set(row) <= _DOWN]
+    for number in reversed(bars[: max(len(lines) - rows, 0)]):
+        del lines[number]
+    width = max(map(len, lines), default=0)
+    full = [row.ljust(width) for row in lines]
+    idle = [at for at in range(1, width) if all(row[at] == row[at - 1] and row[at] in _ALONG for row in full)]
+    excess = max(width - columns, 0)
+    step = max(len(idle) / excess, 1.0) if excess else 1.0
+    gone = {idle[int(number * step)] for number in range(min(excess, len(idle)))}
+    return "\n".join("".join(char for at, char in enumerate(row) if at not in gone).rstrip() for row in full)
 
 
 def rows_of(drawing: Sequence[Line], word: str) -> tuple[int, ...]:

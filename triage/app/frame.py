@@ -13,7 +13,8 @@ from triage.app.desk import Desk
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, clip, line, wrapped
 from triage.app.text.frame import standard_keys, status_lines
-from triage.app.widgets.panel import Panel
+from triage.app.widgets.field import Field
+from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import JobView
 
 if TYPE_CHECKING:
@@ -127,7 +128,12 @@ class Frame(Screen[None]):
         panel.show((clip(line(lead, Span(text, "bad" if refused else "near")), self.wide),))
 
     def action_back(self) -> None:
-        """Back to the screen before; from a screen of the job to the bench, from the bench nowhere."""
+        """From a field to the list of the screen; else to the screen before, or to the bench; from there
+        nowhere."""
+        lists = self.query(ListPanel)
+        if isinstance(self.focused, Field) and lists:
+            lists.first().focus()
+            return
         if len(self.triage.screen_stack) > 3:
             self.triage.pop_screen()
         elif self.PLACE != "bench":

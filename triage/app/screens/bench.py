@@ -5,10 +5,10 @@ from typing import ClassVar
 from textual.app import ComposeResult
 from textual.containers import Container, Horizontal
 
-from triage.app.drawing import Marks, marked, pin_list, rows_of
+from triage.app.drawing import Marks, marked, pin_list, rows_of, squeezed
 from triage.app.frame import Frame
 from triage.app.lines import Line, Span, line, width_of, wrapped
-from triage.app.text.bench import log_lines, rooms, suggestion_lines, suspect_lines, verdict_lines
+from triage.app.text.bench import log_lines, rooms, suggestion_lines, suspect_lines, verdict_lines, waiting_lines
 from triage.app.typed import Typed, understand
 from triage.app.widgets.field import Field
 from triage.app.widgets.panel import Panel
@@ -52,7 +52,9 @@ class BenchScreen(Frame):
         """Write every panel anew; what did not change is not painted."""
         if view is None:
             return
-        rows = self._drawing(view)
+        drawing = view.drawing or pin_list(self.desk.pins, self.wide - 2)
+        least = rooms(self.app.size.height - _FIXED, len(drawing.splitlines()), beside=False).board
+        rows = self._marked(view, squeezed(drawing, self.wide - 2, least))
         self._arrange(rows)
         board, suspects, log = self.panel("board"), self.panel("suspects"), self.panel("log")
         board.show(rows)
@@ -65,7 +67,8 @@ class BenchScreen(Frame):
             log.show(log_lines(view.entries, self.wide, self._rooms.log))
         self._show_next(view)
 
-    def _drawing(self, view: JobView) -> tuple[Line, ...]:
+    @staticmethod
+    def _marked(view: JobView, drawing: str) -> tuple[Line, ...]:
         found = view.suggestion
         marks = Marks(
             suspects=[ref for one in view.suspects[:4] for ref in one.ref.split("+") if ref],
@@ -73,7 +76,7 @@ class BenchScreen(Frame):
             red=found.plus if found else "",
             black=found.minus if found else "",
         )
-        return marked(view.drawing or pin_list(self.desk.pins, self.wide - 2), marks)
+        return marked(drawing, marks)
 
     def _arrange(self, drawing: tuple[Line, ...]) -> None:
         """Give each panel its rows and columns."""
@@ -103,6 +106,8 @@ class BenchScreen(Frame):
         lines = verdict_lines(view.verdict, self.wide, rows)
         if view.suggestion is not None and len(lines) < rows:
             lines = (*lines, *suggestion_lines(view.suggestion, self.desk.pins, self.wide, rows - len(lines)))
+        if not lines and view.waits_for and not view.computing and view.stage != "closed":
+            lines = waiting_lines(view.waits_for, self.wide, rows)
         if not lines:
             text = (
                 "computing what each fault would show; signs (F8) can be entered meanwhile"

@@ -17,6 +17,11 @@ class CautionsScreen(Frame):
     NAME: ClassVar[str] = "cautions"
     CSS_PATH = "cautions.tcss"
 
+    def __init__(self) -> None:
+        super().__init__()
+        self._held = False
+        """True while the cautions keep the job from the first look at the board."""
+
     def body(self) -> ComposeResult:
         """List and full text."""
         yield ListPanel(id="list")
@@ -57,12 +62,16 @@ class CautionsScreen(Frame):
         if all(one.acknowledged for one in self._cautions()):
             self.triage.action_go(self.triage.place_of_stage())
         elif not next(one.acknowledged for one in self._cautions() if one.key == event.key):
+            self._held = self.desk.view is not None and self.desk.view.stage == "cautions"
             self.desk.enter(lambda bench: bench.acknowledge(event.key), self._accepted)
         else:
             self._to_next()
 
     def _accepted(self) -> None:
-        if any(not one.acknowledged for one in self._cautions()):
+        view = self.desk.view
+        if view is not None and self._held and view.stage != "cautions":
+            self.triage.action_go(self.triage.place_of_stage())
+        elif any(not one.acknowledged for one in self._cautions()):
             self._to_next()
         else:
             self.triage.action_go(self.triage.place_of_stage())

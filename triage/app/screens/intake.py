@@ -49,8 +49,12 @@ class IntakeScreen(Frame):
     def refresh_body(self, view: JobView | None) -> None:
         """The list and the labels."""
         self.panel("ask").show((line(Span("What is wrong with it? ", "strong"), "Enter on the line that fits best."),))
+        states = self.query_one("#states", ListPanel)
         rows = [(state, line(Span(state.ljust(26), "strong"), _MEANS.get(state, ""))) for state in STATES]
-        self.query_one("#states", ListPanel).fill(rows)
+        first = not states.key
+        states.fill(rows)
+        if first:
+            states.go_to("dead")
         self.panel("load-label").show((line("seen under load: "),))
         self.panel("load-hint").show((line(Span(f"  {', '.join(CONDITIONS[1:])} (up and down change it)", "quiet")),))
         self.panel("words-label").show((line("in the owner's words (may stay empty): "),))

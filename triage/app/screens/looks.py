@@ -24,9 +24,13 @@ class LooksScreen(Frame):
     AUTO_FOCUS = "#list"
     CSS_PATH = "looks.tcss"
 
+    BINDINGS = [("s,space", "sound", "sound")]  # noqa: RUF012 (Textual's own way)
+
     def __init__(self) -> None:
         super().__init__()
         self._answer = ""
+        self._sent: set[str] = set()
+        """Questions answered on their way to the bench."""
 
     def body(self) -> ComposeResult:
         """Questions, the question in full, answers, part."""
@@ -50,7 +54,11 @@ class LooksScreen(Frame):
         """Answered ones carry ``ok``, those still needed ``!``, the later ones a dot."""
         looks = self._looks()
         left = sum(one.needed and not one.said for one in looks)
-        text = f"to look at: {left} before the readings, Enter on each" if left else "looked at; F2 goes on to the readings"
+        text = (
+            f"to look at: {left} before the readings; s: sound, Enter: other answers"
+            if left
+            else "looked at; F2 goes on to the readings"
+        )
         rows: list[tuple[str, Line]] = [(one.key, self._row(one)) for one in looks]
         rows.append((_REST, line("   ", Span("everything not answered was looked at and is sound", "key"))))
         self.query_one("#list", ListPanel).fill(rows, line(Span(text.ljust(self.wide), "head")))
@@ -107,6 +115,12 @@ class LooksScreen(Frame):
             self._answer = event.key
             self.query_one("#ref").focus()
 
+    def action_sound(self) -> None:
+        """The question under the cursor: looked at, nothing found."""
+        here = self._here()
+        if here is not None and "sound" in here.answers:
+            self._enter("sound", "")
+
     def on_input_submitted(self, event: Input.Submitted) -> None:
         """The part, or the number."""
         here = self._here()
@@ -119,15 +133,22 @@ class LooksScreen(Frame):
 
     def _enter(self, answer: str, ref: str) -> None:
         here = self._here()
-        if here is not None:
-            self.desk.enter(lambda bench: bench.look(here.key, answer, ref), self._accepted)
+        if here is not None and self.desk.enter(lambda bench: bench.look(here.key, answer, ref), self._accepted, queue=True):
+            self._sent.add(here.key)
+            self._to_next()
+
+    def _to_next(self) -> None:
+        left = [one.key for one in self._looks() if one.needed and not one.said and one.key not in self._sent]
+        panel = self.query_one("#list", ListPanel)
+        panel.focus()
+        if left:
+            panel.go_to(left[0])
 
     def _accepted(self) -> None:
         self._answer = ""
+        self._sent.clear()
         self.query_one("#ref", Field).value = ""
-        left = [one.key for one in self._looks() if one.needed and not one.said]
-        if not left:
+        if any(one.needed and not one.said for one in self._looks()):
+            self._to_next()
+        else:
             self.triage.action_go("bench")
-            return
-        self.query_one("#list", ListPanel).focus()
-        self.query_one("#list", ListPanel).go_to(left[0])

@@ -97,6 +97,10 @@ class RetestScreen(Frame):
 
     def _accepted(self) -> None:
         self.query_one("#read", Field).value = ""
-        panel = self.query_one("#list", ListPanel)
-        panel.focus()
-        panel.action_move(1)
+        panel, view = self.query_one("#list", ListPanel), self.desk.view
+        after = [one.key for one in view.retest if not one.result] if view else []
+        if after:
+            panel.go_to(after[0])
+        else:
+            panel.focus()
+            panel.action_move(1)

@@ -13,13 +13,10 @@ from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import JobView
 
 _FIRST = (
-    line(
-        Span("First: ", "strong"),
-        "pull the plug, and treat the big capacitor as charged until it has been read.",
-    ),
-    line("Choose a job to go on with, or a profile to begin a new one; Enter takes the line."),
-    line("Then say what is wrong, read the cautions, and take the readings as they are suggested."),
-    line(Span("Work on mains parts only if your local code and your training allow it.", "quiet")),
+    line(Span("First: ", "strong"), "pull the plug. The big capacitor counts as charged until it is read."),
+    line("Choose a job to go on with, or a profile to begin one; Enter takes the line."),
+    line("Then: complaint, cautions, a look at the board, and readings as suggested."),
+    line(Span("Work on mains parts only as your local code and your training allow.", "quiet")),
 )
 
 
@@ -60,18 +57,10 @@ class StartScreen(Frame):
         rows: list[tuple[str, Line]] = []
         for number, item in enumerate(found):
             word = "go on " if item.kind == "job" else "begin "
-            rows.append(
-                (
-                    str(number),
-                    columns(
-                        [
-                            (Span(word, "key"), 6),
-                            (item.title, max(self.wide - 32, 20)),
-                            (Span(item.path.stem, "quiet"), 22),
-                        ]
-                    ),
-                )
-            )
+            cells: list[tuple[str | Span, int]] = [(Span(word, "key"), 6), (item.title, self.wide - 7)]
+            if self.wide >= 110:
+                cells = [cells[0], (item.title, self.wide - 38), (Span(item.path.stem, "quiet"), 30)]
+            rows.append((str(number), columns(cells)))
         head = line(Span("jobs and profiles".ljust(self.wide), "head"))
         if not rows:
             self.show_message("no jobs and no profiles found: install triage again, or name a profile when starting")

@@ -150,7 +150,7 @@ def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: 
         Span(f" {found.minutes:.1f} min", "quiet"),
     )
     for count in (3, 2, 1, 0):
-        places = {node: ", ".join(pins.get(node, ())[:count]) for node in (found.plus, found.minus)}
+        places = {node: ", ".join(sorted(pins.get(node, ()), key=len)[:count]) for node in (found.plus, found.minus)}
         left = line(
             Span("next ", "head"),
             " ",
@@ -200,6 +200,21 @@ def verdict_lines(found: VerdictView, width: int, rows: int) -> tuple[Line, ...]
         out += wrapped(found.why, width, first="why: ", rest="     ")
     if found.evidence:
         out += wrapped("; ".join(found.evidence), width, "quiet", first="decided by ", rest="  ")
+    return tuple(out[:rows])
+
+
+_WHERE = {"acknowledge": "F10", "look at": "F8", "put right": "F8", "retest": "F6", "not passed": "F6", "record the repair": "F5"}
+"""First words of what must be done -> key of the screen where it is done."""
+
+
+def waiting_lines(waits: Sequence[str], width: int, rows: int) -> tuple[Line, ...]:
+    """What must be done before the adapter may be powered, in order, each with the key of its screen."""
+    out = [line(Span("next ", "head"), Span(" before any reading with mains:", "strong"))]
+    for wait in waits:
+        key = next((key for words, key in _WHERE.items() if wait.startswith(words)), "")
+        out += [
+            line(Span(f"{key:4}" if number == 0 else "    ", "key"), *row) for number, row in enumerate(wrapped(wait, width - 4))
+        ]
     return tuple(out[:rows])
 
 

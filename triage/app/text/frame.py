@@ -20,14 +20,11 @@ def stage_words(stage: str) -> str:
 def status_lines(view: JobView, place: str, width: int) -> tuple[Line, ...]:
     """Two rows: the job and its stage; whether the board is safe to touch, with ``computing`` while it
     lasts."""
-    live = view.stage == "live"
     right = line(Span(f" {stage_words(view.stage)} ", "head"))
     first = apart(line(Span(f" {place} ", "head"), " ", Span(view.title, "strong")), right, width)
     note = Span(" computing... ", "near") if view.computing else Span(view.read_only, "bad")
-    touch = line(
-        Span("LIVE: hands off! " if live else "touch: ", "bad" if live else "strong"),
-        Span(view.safe_to_touch),
-    )
+    danger = view.safe_to_touch.startswith("NOT")
+    touch = line(Span("! " if danger else "ok ", "bad" if danger else "good"), Span(view.safe_to_touch, "bad" if danger else ""))
     return first, apart(touch, line(note), width) if note.text else clip(touch, width)
 
 
