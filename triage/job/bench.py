@@ -146,6 +146,11 @@ class Bench:
         return f"the folder cannot be written: {self._lock.problem or 'no lock'}"
 
     @property
+    def only_looks(self) -> bool:
+        """True for a session that never wanted to write."""
+        return self._lock is None
+
+    @property
     def last_session(self) -> str:
         """Who left this job without closing it, when a session was cut off; empty otherwise."""
         left = self._lock.left_behind if self._lock is not None else None

@@ -9,6 +9,8 @@ import io
 import json
 import os
 import tempfile
+import zipfile
+import zlib
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Protocol
 
@@ -105,11 +107,12 @@ class Cache:
         """The array that was kept under the key, or None."""
         import numpy as np
 
-        path = self.folder / f"{key}.npy"
-        with contextlib.suppress(OSError, ValueError, EOFError):
+        path = self.folder / f"{key}.npz"
+        with contextlib.suppress(OSError, ValueError, EOFError, KeyError, zipfile.BadZipFile, zlib.error):
             if path.stat().st_size <= LARGEST:
-                found: NDArray[Any] = np.load(path, allow_pickle=False)
-                return found
+                with np.load(path, allow_pickle=False) as file:
+                    found: NDArray[Any] = file["answer"]
+                    return found
         return None
 
     def put_array(self, key: str, answer: "NDArray[Any]") -> None:
@@ -117,8 +120,8 @@ class Cache:
         import numpy as np
 
         content = io.BytesIO()
-        np.save(content, answer, allow_pickle=False)
-        self._write(f"{key}.npy", content.getvalue())
+        np.savez_compressed(content, answer=answer)
+        self._write(f"{key}.npz", content.getvalue())
 
     def _write(self, name: str, content: bytes) -> None:
         with contextlib.suppress(OSError):

@@ -127,22 +127,37 @@ def _is_hot(board: Board, point: Point) -> bool:
 def _cold(
     board: Board, hypotheses: Sequence[Hypothesis], probes: tuple[Probe, ...], kept: Kept, progress: Progress | None
 ) -> NDArray[np.float32]:
-    """Cold readings, from the cache where they were computed before."""
-    key = f"cold-{_key(board, hypotheses)}"
-    shape = (len(hypotheses), len(probes), DRAWS)
-    known = kept.get_array(key)
-    if known is not None and known.shape == shape and known.dtype == np.float32:
-        return known
-    found = cold_samples(board, hypotheses, probes, specimens(board, DRAWS, SEED), progress)
-    kept.put_array(key, found)
-    return found
+    """Cold readings: those of hypotheses met before are kept by their faults, the others are computed and
+    added."""
+    key = f"cold-{_key(board, probes)}"
+    names, rows = _kept_rows(kept, key, len(probes))
+    place = {name: row for row, name in enumerate(names)}
+    missing = [one for one in dict.fromkeys(hypotheses) if str(one) not in place]
+    if missing:
+        found = cold_samples(board, missing, probes, specimens(board, DRAWS, SEED), progress)
+        rows = np.concatenate([rows, found])
+        names += [str(one) for one in missing]
+        kept.put_array(key, rows)
+        kept.put(key, names)
+        place = {name: row for row, name in enumerate(names)}
+    return rows[[place[str(one)] for one in hypotheses]]
 
 
-def _key(board: Board, hypotheses: Sequence[Hypothesis]) -> str:
+def _kept_rows(kept: Kept, key: str, probes: int) -> tuple[list[str], NDArray[np.float32]]:
+    """Names of the hypotheses kept and their readings, shape (names, probes, DRAWS)."""
+    names, rows = kept.get(key), kept.get_array(key)
+    if not isinstance(names, list) or rows is None or rows.shape != (len(names), probes, DRAWS):
+        names, rows = [], None
+    if rows is not None and rows.dtype == np.float32 and all(isinstance(name, str) for name in names):
+        return list(names), rows
+    return [], np.empty((0, probes, DRAWS), dtype=np.float32)
+
+
+def _key(board: Board, probes: tuple[Probe, ...]) -> str:
     """Text that changes with anything that cold readings depend on."""
     content: dict[str, Any] = board_to_dict(board)
     for name in ("id", "title", "note", "drawing", "label", "mains"):
         content.pop(name)
-    content["hypotheses"] = [str(hypothesis) for hypothesis in hypotheses]
+    content["probes"] = [str(probe) for probe in probes]
     content["solution"] = [SOLUTION, DRAWS, SEED]
-    return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:24]
+    return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:20]

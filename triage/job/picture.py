@@ -4,13 +4,14 @@ for."""
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from triage.board.evidence import Reading
 from triage.board.fault import Fault
-from triage.board.probe import Probe
+from triage.board.probe import LIVE_FUNCTIONS, Probe
 from triage.diagnosis.after_repair import Fitted
 from triage.diagnosis.engine import Diagnosis, Job
 from triage.job import shown
 from triage.job.display import plain
-from triage.job.entries import Replay, replay
+from triage.job.entries import Replay, Told, replay
 from triage.job.gates import bulk_open, live_open, open_check, waits_for
 from triage.job.proof import shown as shown_lines
 from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
@@ -36,8 +37,14 @@ class Answers:
 
 def asked(state: Replay) -> Job:
     """The log as the diagnosis takes it."""
-    entries = tuple(Fitted(told) if isinstance(told, frozenset) else told for told in state.told)
+    entries = tuple(Fitted(told) if isinstance(told, frozenset) else told for told in state.told if not _is_leftover(told))
     return Job(entries, frozenset(state.hunches), frozenset(state.skips))
+
+
+def _is_leftover(told: Told) -> bool:
+    """True for volts read on the unpowered board: what a capacitor still held, which tells nothing of a
+    fault."""
+    return isinstance(told, Reading) and not told.probe.live and told.probe.function in LIVE_FUNCTIONS
 
 
 def fault_chances(bench: "Bench") -> dict[Fault, float]:
@@ -174,7 +181,7 @@ def _standing_message(bench: "Bench", facts: GateFacts, suggestion: SuggestionVi
     if bench.job.conflicts:
         names = ", ".join(path.name for path in bench.job.conflicts)
         return f"a sync program left other versions of this job: {names}; compare them before going on"
-    if bench.read_only:
+    if bench.read_only and not bench.only_looks:
         return f"read-only: {bench.read_only}"
     if bench.last_session and bench.answers is None:
         return f"the last session was cut off ({bench.last_session}); every entry it had accepted is here"

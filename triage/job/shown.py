@@ -35,6 +35,9 @@ from triage.safety.gate import SAFE_VOLTAGE
 MOST_EVIDENCE = 6
 """Entries named with a verdict: what fits a screen beside it."""
 
+LEAST_WEIGHT = 0.1
+"""Natural logarithm of a likelihood ratio below which an entry decided nothing [-]."""
+
 _PRESSING = ("over rating", "over derated limit")
 
 
@@ -167,7 +170,7 @@ def verdict_view(verdict: Verdict, board: Board, stresses: Sequence[StressView],
         tuple(plain(one) for one in verdict.repair),
         verdict.probability,
         _why(ref, board, stresses),
-        tuple(plain(one.text) for one in strongest[:MOST_EVIDENCE])
+        tuple(plain(one.text) for one in strongest[:MOST_EVIDENCE] if abs(math.log(max(one.ratio, 1e-300))) > LEAST_WEIGHT)
         + tuple(plain(f"does not fit, measure again: {text}") for text in verdict.odd),
     )
 
@@ -178,7 +181,7 @@ def _why(ref: str, board: Board, stresses: Sequence[StressView]) -> str:
     worst = worst_stress(stresses, ref)
     if worst is None:
         return f"no rating of {plain(ref)} is known, so that no stress can be held against it"
-    where = f" at {worst.condition}" if worst.condition else ""
+    where = f" ({worst.condition})" if worst.condition else ""
     told = f"{worst.ref} ({worst.role}): {stress_text(worst)}{where}"
     if worst.verdict in _PRESSING:
         return told
