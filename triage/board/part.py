@@ -36,6 +36,9 @@ class Part:
     """How the values are known: one of ORIGINS."""
     fault_modes: tuple[str, ...] = ()
     """Fault modes to be considered; empty: all modes of the kind."""
+    spread: Mapping[str, float] = field(default_factory=dict)
+    """Factor, above 1, of a value that is only estimated: with a chance of 90 % the true one lies between the value divided by
+    it and the value times it. Such a value has no tolerance."""
 
 
 @dataclass(frozen=True, slots=True)

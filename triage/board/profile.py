@@ -2,27 +2,27 @@
 
 A profile holds the label, the mains, the sides with the nodes a probe can reach, the parts with their values, tolerances,
 ratings and pins, and the drawing. Values are strings with a unit (``"4.7 uF"``) or plain numbers in SI; tolerances are
-fractions; temperatures degC. The same content, embedded in a job file, makes a job open anywhere.
+fractions, the spreads of estimated values factors; temperatures degC. The same content, embedded in a job file, makes a job
+open anywhere.
 """
 
-import math
 import tomllib
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from pathlib import Path
 from typing import Any
 
+from triage.board.check import Check
 from triage.board.kinds import PartKind, kinds
 from triage.board.part import ORIGINS, Board, Label, Mains, Part
 from triage.data import data_folder
-from triage.errors import ProfileError, QuantityError
-from triage.quantities import parse
+from triage.errors import ProfileError
 
 RATING_UNITS = {
     "voltage": "V", "current": "A", "power": "W", "ripple_current": "A", "temperature": "degC", "i2t": "A2s",
     "collector_emitter_voltage": "V", "isolation_voltage": "V", "ac_voltage": "V", "surge_current": "A",
     "saturation_current": "A", "breaking_current": "A", "life": "h",
 }
-MAX_PARTS, MAX_NODES, MAX_TEXT, MAX_BYTES = 200, 120, 4000, 1_000_000
+MAX_PARTS, MAX_NODES, MAX_BYTES = 200, 120, 1_000_000
 
 
 def profile_path(name: str) -> Path:
@@ -56,7 +56,9 @@ def board_from_dict(content: Mapping[str, Any], where: str) -> Board:
 
     Raises ProfileError that lists each fault with its key, what was found and what was expected; ``where`` names the file.
     """
-    check = _Check(where)
+    if content.get("template") is True:
+        raise ProfileError(where, "is a template without values", "a profile", "make one with: triage profile estimate")
+    check = Check(where)
     label, mains = check.table(content, "label"), check.table(content, "mains")
     parts = check.rows(content, "part", MAX_PARTS)
     board = Board(
@@ -103,74 +105,14 @@ def _part_to_dict(part: Part) -> dict[str, Any]:
         row["type"] = part.type
     row |= {"origin": part.origin, "pins": dict(part.pins), "value": dict(part.value),
             "tolerance": dict(part.tolerance), "ratings": dict(part.ratings)}
+    if part.spread:
+        row["spread"] = dict(part.spread)
     if part.fault_modes:
         row["fault_modes"] = list(part.fault_modes)
     return row
 
 
-class _Check:
-    """Reads keys and collects what is wrong with them, so that one run shows all faults of a file."""
-
-    def __init__(self, where: str) -> None:
-        self.where = where
-        self.faults: list[str] = []
-
-    def fault(self, key: str, found: object, expected: str) -> None:
-        """Note one fault."""
-        shown = "".join(c if c.isprintable() else "?" for c in repr(found)[:60])
-        self.faults.append(f"{key}: found {shown}, expected {expected}")
-
-    def finish(self) -> None:
-        """Raise everything that was noted."""
-        if self.faults:
-            more = f" (and {len(self.faults) - 8} more)" if len(self.faults) > 8 else ""
-            raise ProfileError(self.where, "; ".join(self.faults[:8]) + more)
-
-    def table(self, content: Mapping[str, Any], key: str, at: str = "") -> Mapping[str, Any]:
-        """A table, empty when it is missing or something else."""
-        value = content.get(key)
-        if isinstance(value, Mapping):
-            return value
-        self.fault(f"{at} {key}".strip(), value, "a table")
-        return {}
-
-    def rows(self, content: Mapping[str, Any], key: str, most: int) -> Sequence[Mapping[str, Any]]:
-        """A list of tables of limited length."""
-        value = content.get(key)
-        if not isinstance(value, list) or not value or not all(isinstance(row, Mapping) for row in value):
-            self.fault(key, type(value).__name__, f"one or more [[{key}]] tables")
-            return []
-        if len(value) > most:
-            self.fault(key, f"{len(value)} entries", f"at most {most}")
-        return value[:most]
-
-    def text(self, content: Mapping[str, Any], key: str, at: str = "", default: str | None = None) -> str:
-        """A text of sensible length."""
-        value = content.get(key, default)
-        if isinstance(value, str) and len(value) <= MAX_TEXT and (value or default is not None):
-            return value
-        self.fault(f"{at} {key}".strip(), value, f"a text of 1 to {MAX_TEXT} characters")
-        return ""
-
-    def quantity(self, content: Mapping[str, Any], key: str, unit: str, at: str = "",
-                 default: float | None = None, lowest: float = 0.0) -> float:
-        """A finite number in SI, above ``lowest``; strings are read with their unit."""
-        value = content.get(key, default)
-        number = math.nan
-        if isinstance(value, str):
-            try:
-                number = parse(value, unit)
-            except QuantityError:
-                number = math.nan
-        elif isinstance(value, int | float) and not isinstance(value, bool):
-            number = float(value)
-        if not math.isfinite(number) or number <= lowest:
-            self.fault(f"{at} {key}".strip(), value, f"a positive value in {unit or 'plain numbers'}")
-            return 1.0
-        return number
-
-
-def _part(check: _Check, row: Mapping[str, Any], number: int) -> Part:
+def _part(check: Check, row: Mapping[str, Any], number: int) -> Part:
     """One part of the profile; ``number`` stands for it where it has no ref."""
     ref = check.text(row, "ref", at=f"part {number}")
     at = f"part {ref or number}"
@@ -196,10 +138,11 @@ def _part(check: _Check, row: Mapping[str, Any], number: int) -> Part:
          (check.table(row, "tolerance", at) if "tolerance" in row else {})},
         _numbers(check, check.table(row, "ratings", at) if "ratings" in row else {}, RATING_UNITS, f"{at} ratings"),
         check.text(row, "type", at=at, default=""), str(origin), _modes(check, row, kind, at),
+        _spread(check, row, kind, at),
     )
 
 
-def _numbers(check: _Check, table: Mapping[str, Any], units: Mapping[str, str], at: str) -> dict[str, float]:
+def _numbers(check: Check, table: Mapping[str, Any], units: Mapping[str, str], at: str) -> dict[str, float]:
     result = {}
     for key in table:
         if key not in units:
@@ -210,7 +153,16 @@ def _numbers(check: _Check, table: Mapping[str, Any], units: Mapping[str, str], 
     return result
 
 
-def _modes(check: _Check, row: Mapping[str, Any], kind: PartKind, at: str) -> tuple[str, ...]:
+def _spread(check: Check, row: Mapping[str, Any], kind: PartKind, at: str) -> dict[str, float]:
+    """Factors of the estimated values: each above 1, each of a value that the kind has."""
+    table = check.table(row, "spread", at) if "spread" in row else {}
+    for key in table:
+        if key not in kind.values:
+            check.fault(f"{at} spread {key}", key, "one of " + ", ".join(kind.values))
+    return {str(key): check.quantity(table, key, "", f"{at} spread", lowest=1.0) for key in table}
+
+
+def _modes(check: Check, row: Mapping[str, Any], kind: PartKind, at: str) -> tuple[str, ...]:
     modes = row.get("fault_modes", [])
     if not isinstance(modes, list) or any(mode not in kind.fault_modes for mode in modes):
         check.fault(f"{at} fault_modes", modes, "a list out of " + ", ".join(kind.fault_modes))
@@ -218,7 +170,7 @@ def _modes(check: _Check, row: Mapping[str, Any], kind: PartKind, at: str) -> tu
     return tuple(modes)
 
 
-def _sides(check: _Check, content: Mapping[str, Any]) -> dict[str, tuple[str, ...]]:
+def _sides(check: Check, content: Mapping[str, Any]) -> dict[str, tuple[str, ...]]:
     sides = check.table(content, "sides")
     result = {}
     for side, nodes in sides.items():
@@ -229,7 +181,7 @@ def _sides(check: _Check, content: Mapping[str, Any]) -> dict[str, tuple[str, ..
     return result
 
 
-def _cross_checks(check: _Check, board: Board) -> None:
+def _cross_checks(check: Check, board: Board) -> None:
     """Faults that show only between the parts of a profile."""
     refs = [part.ref for part in board.parts]
     for ref in sorted({ref for ref in refs if refs.count(ref) > 1}):

@@ -23,6 +23,8 @@ from triage.physics.network import HAND_METER, Meter, read_bridge, read_network
 SEVERITY_SPREAD = {"leaky": 0.8, "high": 0.6, "high_esr": 0.5, "low_capacitance": 0.35, "low_gain": 0.35, "low_voltage": 0.08,
                    "shorted_turns": 0.3}
 """Standard deviation of the natural logarithm of a fault's size about its nominal departure [-]; common practice, no source."""
+NORMAL_90 = 1.645
+"""Half-width of the middle 90 % of a normal distribution [standard deviations]."""
 
 
 def cold_probes(board: Board) -> tuple[Probe, ...]:
@@ -41,18 +43,28 @@ def cold_probes(board: Board) -> tuple[Probe, ...]:
 
 
 def specimens(board: Board, count: int, seed: int = 1) -> tuple[Draw, ...]:
-    """``count`` specimens: values uniform within their tolerance, fault sizes log-normal. The same for the same seed."""
+    """``count`` specimens: values uniform within their tolerance, estimated ones and fault sizes log-normal. The same for the
+    same seed."""
     rng = np.random.default_rng(seed)
     columns = [(part, key) for part in board.parts for key in part.tolerance if key in part.value]
     shares = rng.uniform(-1.0, 1.0, (count, len(columns)))
     faults = [(part.ref, mode) for part in board.parts for mode in (part.fault_modes or kinds()[part.kind].fault_modes)
               if mode in SEVERITY_SPREAD]
     sizes = np.exp(rng.standard_normal((count, len(faults))) * [SEVERITY_SPREAD[mode] for _, mode in faults])
+    guesses = [(part, key) for part in board.parts for key in part.spread if key in part.value]
+    factors = _spread_factors(rng, count, [part.spread[key] for part, key in guesses])
     return tuple(
         Draw({(part.ref, key): part.value[key] * (1.0 + part.tolerance[key] * shares[d, c])
-              for c, (part, key) in enumerate(columns)},
+              for c, (part, key) in enumerate(columns)}
+             | {(part.ref, key): part.value[key] * float(factors[d, g]) for g, (part, key) in enumerate(guesses)},
              {fault: float(sizes[d, f]) for f, fault in enumerate(faults)})
         for d in range(count))
+
+
+def _spread_factors(rng: np.random.Generator, count: int, spreads: Sequence[float]) -> NDArray[np.float64]:
+    """Factors on estimated values, 90 % of them between 1/spread and spread, none beyond the square of it."""
+    departures = np.clip(rng.standard_normal((count, len(spreads))) / NORMAL_90, -2.0, 2.0)
+    return np.asarray(spreads, float) ** departures
 
 
 def read_cold(board: Board, faults: Sequence[Fault], probes: Sequence[Probe], draws: Sequence[Draw] = (NOMINAL,),

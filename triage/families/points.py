@@ -47,7 +47,7 @@ def fingerprint(board: Board) -> str:
     content["load"] = board.full_load
     content["solution"] = SOLUTION
     for part in content["part"]:
-        for key in ("origin", "tolerance", "fault_modes"):
+        for key in ("origin", "tolerance", "spread", "fault_modes"):
             part.pop(key, None)
     return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:16]
 
