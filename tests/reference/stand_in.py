@@ -140,3 +140,40 @@ def complaint(tables: Tables, fault: str) -> Symptom:
         if tables.state[fault][condition]:
             return Symptom(tables.state[fault][condition] or "", condition)
     return Symptom("normal", "full")
+
+
+@dataclass(frozen=True)
+class Unit:
+    """One whole unit to be repaired: what it shows, and what is really wrong with it."""
+
+    name: str
+    needed: frozenset[str]
+    """Parts that have to be replaced."""
+    symptom: Symptom
+    readings: dict[Probe, float]
+
+
+def fault_units(tables: Tables, with_collateral: bool = True) -> list[Unit]:
+    """Every single fault of the tables on a board of nominal values.
+
+    with_collateral: faults that take others along too, although the cold table shows the root alone.
+    """
+    faults = [f for f in tables.cold if f != "healthy" and (with_collateral or f not in tables.collateral)]
+    return [Unit(f, hypothesis(f).repair, complaint(tables, f), {**tables.cold[f], **tables.live[f]}) for f in faults]
+
+
+def blind_units(tables: Tables, folder: Path) -> list[Unit]:
+    """The whole units of cases.toml: parts drawn within tolerance, hidden faults with their collateral."""
+    units = []
+    for case in tomllib.loads((folder / "cases.toml").read_text())["case"]:
+        rows: dict[str, dict[str, float]] = {}
+        for condition, name, value, _ in case["readings"]:
+            rows.setdefault(condition, {})[name] = float(value)
+        readings = _live(tables.bom, rows)
+        for plus, minus, mode, value, _ in case["cold"]:
+            shown = float("inf") if value == "OL" else max(float(value), 0.0)
+            readings[Probe(FUNCTION[mode], plus, minus)] = shown
+        truth = case["truth"]
+        refs = frozenset(fault.split(".")[0] for fault in (truth["fault"], *truth["collateral"]))
+        units.append(Unit(case["id"], refs, Symptom(case["complaint_class"], case["load"]), readings))
+    return units

@@ -1,0 +1,167 @@
+"""What a step of the diagnosis costs beside a general Bayesian-network library, and what its choices are
+worth beside a checklist.
+
+    python -m tests.bench.bench_diagnosis            # both tables
+    python -m tests.bench.bench_diagnosis steps      # only the time of a step
+
+The plays need the reference data beside the checkout. Their expectations come from the same simulated tables
+as the answers, spread by
+hand: they compare ways of choosing, not physics. Times are ratios; milliseconds are this machine's.
+"""
+
+import importlib.util
+import itertools
+import os
+import statistics
+import sys
+import time
+from collections.abc import Callable, Sequence
+from pathlib import Path
+
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+
+import numpy as np
+
+from tests.reference import stand_in
+from tests.reference.playing import Meter, Play, play, reliability, summary
+from tests.reference.policies import Policy, checklist, entropy_per_minute, own, usual_checklist
+from triage.board.evidence import Reading, Sign, Symptom
+from triage.board.fault import Fault, Hypothesis
+from triage.board.probe import Probe
+from triage.diagnosis.engine import Diagnosis, Job
+from triage.diagnosis.expectations import Expectations
+from triage.diagnosis.priors import Prior, Weight, prior_of
+
+SIZES = ((300, 150, 30), (3_000, 150, 30), (30_000, 67, 6))
+"""Hypotheses, probes, draws."""
+
+
+def made_up(count: int, probes: int, draws: int) -> tuple[Expectations, Prior]:
+    """Random expectations of a board of 100 parts with three modes each, singles before pairs."""
+    rng = np.random.default_rng(0)
+    modes = [Fault(f"P{i // 3}", f"m{i % 3}") for i in range(300)]
+    singles = [Hypothesis(()), *(Hypothesis((fault,)) for fault in modes)]
+    doubles = (Hypothesis(pair) for pair in itertools.combinations(modes, 2) if pair[0].ref != pair[1].ref)
+    hypotheses = tuple(itertools.islice(itertools.chain(singles, doubles), count))
+    value = np.repeat(10 ** rng.uniform(1, 6, size=(1, probes)), count, axis=0)
+    moved = rng.random((count, probes)) < 0.12
+    value[moved] = 10 ** rng.uniform(0, 7.5, size=int(moved.sum()))
+    value[rng.random((count, probes)) < 0.03] = np.inf
+    samples = value[:, :, None] * np.exp(0.05 * rng.normal(size=(1, probes, draws)))
+    states = rng.integers(0, 9, size=(count, 3, 1))
+    names = tuple(Probe("ohms", f"a{k}", f"b{k}") for k in range(probes))
+    return Expectations(hypotheses, names, samples, states), Prior(hypotheses, rng.dirichlet(np.ones(count)), {})
+
+
+def milliseconds(action: Callable[[int], object], times: int = 7) -> float:
+    """Median time of an action that is told its number."""
+    found = []
+    for number in range(times):
+        begin = time.perf_counter()
+        action(number)
+        found.append(1e3 * (time.perf_counter() - begin))
+    return statistics.median(found)
+
+
+def library_step(diagnosis: Diagnosis, columns: Sequence[int]) -> float:
+    """Milliseconds of the posterior and the information of all readings in pyAgrum, scaled up from these
+    readings.
+    """
+    import pyagrum
+
+    model = diagnosis.model
+    network = pyagrum.BayesNet()
+    cause = network.add(pyagrum.LabelizedVariable("cause", "", len(diagnosis.prior)))
+    network.cpt(cause)[:] = diagnosis.prior
+    for column in columns:
+        rows = model.bins[model.owner == column].T.astype(float)
+        child = network.add(pyagrum.LabelizedVariable(f"t{column}", "", rows.shape[1]))
+        network.addArc(cause, child)
+        network.cpt(child)[:] = np.ascontiguousarray(rows / rows.sum(axis=1, keepdims=True))
+    inference = pyagrum.LazyPropagation(network)
+    begin = time.perf_counter()
+    inference.setEvidence({f"t{columns[0]}": 0})
+    inference.posterior("cause")
+    one = time.perf_counter() - begin
+    begin = time.perf_counter()
+    for column in columns[1:]:
+        pyagrum.InformationTheory(inference, ["cause"], [f"t{column}"]).mutualInformationXY()
+    rest = (time.perf_counter() - begin) / (len(columns) - 1)
+    return 1e3 * (one + rest * len(model.axes))
+
+
+def steps() -> None:
+    """Belief and next reading with all hypotheses alive, by number of hypotheses."""
+    print("one entry to new belief and suggestion, all hypotheses alive, one BLAS thread")
+    before: tuple[int, float] | None = None
+    for count, probes, draws in SIZES:
+        expected, prior = made_up(count, probes, draws)
+        diagnosis = Diagnosis(expected, prior, {}, {})
+
+        def step(number: int, diagnosis: Diagnosis = diagnosis) -> None:
+            job = Job((Symptom("dead", "full"), Reading(diagnosis.expectations.probes[number], 1e3)))
+            diagnosis.suggest(job, lambda probe: True)
+
+        ours = milliseconds(step)
+        line = f"{count:6d} hypotheses, {probes} readings: {ours:7.1f} ms"
+        if before:
+            line += f"; {ours / before[1]:.1f} times the time for {count / before[0]:.0f} times the hypotheses"
+        before = (count, ours)
+        if importlib.util.find_spec("pyagrum") and count <= 3_000:
+            theirs = library_step(diagnosis, range(6))
+            line += f"; general library {theirs / ours:.0f} times as long"
+        print(line)
+
+
+def compare(diagnosis: Diagnosis, units: Sequence[stand_in.Unit], order: Sequence[Probe], seed: int) -> list[Play]:
+    """Plays all units with each way of choosing, prints a row each, and returns the program's own plays."""
+    ways: tuple[tuple[str, Policy, bool], ...] = (
+        ("own", own(), False),
+        ("own, careful", own(True), True),
+        ("entropy per minute", entropy_per_minute(), False),
+        ("checklist", checklist(order), False),
+    )
+    mine: list[Play] = []
+    for meter, words in ((Meter(), "clean"), (Meter(gross=0.05), "5 % gross")):
+        for name, policy, careful in ways:
+            plays = [
+                play(diagnosis, u.name, u.needed, (u.symptom, Sign("sound")), u.readings.get, seed + i, meter, careful, policy)
+                for i, u in enumerate(units)
+            ]
+            got = summary(plays)
+            print(f"  {words:10s} {name:20s} " + "  ".join(f"{key} {value:.3g}" for key, value in got.items()))
+            mine += plays if name == "own" else []
+    return mine
+
+
+def plays() -> None:
+    """First-time-right, minutes and readings of each way of choosing."""
+    folder = Path(__file__).resolve().parents[3] / "shared/reference/circuits/rcc-zener"
+    if not folder.is_dir():
+        print("the reference data do not lie beside this checkout; no plays")
+        return
+    tables = stand_in.load(folder)
+    expected = stand_in.expectations(tables)
+    faults = [h.root[0] for h in expected.hypotheses if h.root]
+    order = usual_checklist(
+        expected.probes, [(tables.kinds[p["ref"]], p["role"], tuple(p["pins"].values())) for p in tables.bom["part"]]
+    )
+    rng = np.random.default_rng(8)
+    off = {ref: 3.0 ** rng.choice([-1, 1]) for ref in sorted({f.ref for f in faults})}
+    mine: list[Play] = []
+    for words, weights in (
+        ("even priors", dict.fromkeys(faults, Weight(1.0))),
+        ("priors off by 3x either way", {f: Weight(off[f.ref]) for f in faults}),
+    ):
+        print(f"rcc-zener, 63 single faults, {words}")
+        diagnosis = Diagnosis(expected, prior_of(weights, {}, pair_share=0.0), tables.kinds, tables.sides, pins=tables.pins)
+        mine += compare(diagnosis, stand_in.fault_units(tables), order, 1000)
+    print("believed and real success, by tenth of what was believed (at least 30 plays)")
+    for believed, real, count in reliability(mine):
+        print(f"  {believed:.3f} {real:.3f} ({count})")
+
+
+if __name__ == "__main__":
+    steps()
+    if "steps" not in sys.argv[1:]:
+        plays()
