@@ -18,6 +18,8 @@ import numpy as np
 
 THERMAL_VOLTAGE = 0.0258649
 """kT/q at 27 degC [V]."""
+TURN_ON = 3.0
+"""Junctions are limited from this many thermal voltages below the critical voltage of the source on [-]."""
 
 DIODE_PARAMETERS = ("saturation_current", "emission", "zero_bias_capacitance", "junction_potential", "grading",
                     "transit_time", "breakdown_voltage", "breakdown_current", "breakdown_emission")
@@ -204,10 +206,9 @@ def with_values(compiled: Compiled, net: Netlist) -> Compiled:
                    np.array([r for *_, r, _ in net.capacitors]), compiled.capacitor[4]),
         winding=(ends, starts, matrix, np.array([w[5] for w in net.windings]), stamps),
         diode=(*compiled.diode[:2], _diode_rows(net)),
+        bipolar=(*compiled.bipolar[:2], _bipolar_rows(net), compiled.bipolar[3]),
         transfer=(compiled.transfer[0], np.array([t[5] for t in net.transfers], dtype=float)),
         behaviour=(*compiled.behaviour[:3], *_behaviour_arrays(net, compiled.nodes, {}, 0)[3:]),
-        bipolar=(*compiled.bipolar[:2], _floats([[m[key] for key in BIPOLAR_PARAMETERS] for *_, m, _ in net.bipolars],
-                                                len(BIPOLAR_PARAMETERS)), compiled.bipolar[3]),
     )
 
 
@@ -303,7 +304,7 @@ def _factor_program(nodes: Mapping[str, int], pairs: Sequence[tuple[str, str]]
         lower_start.append(len(lower_row))
         upper_start.append(len(upper_col))
     program = (pivot, lower_start, lower_row, lower_slot, upper_start, upper_col, upper_slot, update_start, update)
-    return slots, tuple(np.array(x, dtype=np.int64) for x in program)
+    return slots, tuple(np.array(x, dtype=np.uint32) for x in program)
 
 
 def _diode_rows(net: Netlist) -> np.ndarray:
@@ -315,9 +316,16 @@ def _diode_rows(net: Netlist) -> np.ndarray:
     rows = _floats([[m[key] for key in DIODE_PARAMETERS] for *_, m in net.diodes], len(DIODE_PARAMETERS))
     forward = rows[:, 1] * THERMAL_VOLTAGE
     breakdown = np.where(rows[:, 8] > 0.0, rows[:, 8], rows[:, 1]) * THERMAL_VOLTAGE
-    critical = forward * np.log(forward / (np.sqrt(2.0) * rows[:, 0]))
-    critical_breakdown = breakdown * np.log(breakdown / (np.sqrt(2.0) * rows[:, 7]))
+    critical = forward * (np.log(forward / (np.sqrt(2.0) * rows[:, 0])) - TURN_ON)
+    critical_breakdown = breakdown * (np.log(breakdown / (np.sqrt(2.0) * rows[:, 7])) - TURN_ON)
     return np.column_stack([rows, forward, breakdown, critical, critical_breakdown])
+
+
+def _bipolar_rows(net: Netlist) -> np.ndarray:
+    """Parameters of the transistors in the order of BIPOLAR_PARAMETERS, then the voltage above which a step is limited."""
+    rows = _floats([[m[key] for key in BIPOLAR_PARAMETERS] for *_, m, _ in net.bipolars], len(BIPOLAR_PARAMETERS))
+    critical = THERMAL_VOLTAGE * (np.log(THERMAL_VOLTAGE / (np.sqrt(2.0) * rows[:, 0])) - TURN_ON)
+    return np.column_stack([rows, critical])
 
 
 def _winding_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple[int, int], int], width: int
@@ -349,8 +357,7 @@ def _bipolar_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple
     for q, three in enumerate(ends):
         for s, (i, j) in enumerate((i, j) for i in three for j in three):
             stamps[q, s] = slots.get((i, j), width) if i >= 0 and j >= 0 else width
-    values = _floats([[m[key] for key in BIPOLAR_PARAMETERS] for *_, m, _ in net.bipolars], len(BIPOLAR_PARAMETERS))
-    return ends, stamps, values, np.array([e[5] for e in net.bipolars], dtype=float)
+    return ends, stamps, _bipolar_rows(net), np.array([e[5] for e in net.bipolars], dtype=float)
 
 
 def _transfer_arrays(net: Netlist, nodes: Mapping[str, int], slots: Mapping[tuple[int, int], int], width: int

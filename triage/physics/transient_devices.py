@@ -1,3 +1,4 @@
+# mypy: disable-error-code="no-untyped-def,call-overload"
 """Compiled device equations and the sparse solution, shared by the time-domain and the unpowered solver.
 
 Everything here works on the arrays of :class:`triage.physics.netlist.Compiled`. Currents flow into the first node.
@@ -11,11 +12,15 @@ import math
 import numpy as np
 from numba import njit
 
-VT = 0.0258649
+from triage.physics.netlist import THERMAL_VOLTAGE as VT
+
+LIVE = 6.0
+"""Junctions count as conducting from this many thermal voltages below the level of limiting on: some microamperes."""
 OPTIONS = {"cache": True, "nogil": True, "error_model": "numpy"}
+INNER = {**OPTIONS, "no_cpython_wrapper": True, "no_cfunc_wrapper": True}
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def exponential(v, saturation, nvt):
     """Current [A] and conductance [S] of an ideal junction at ``v`` [V] with ``nvt`` = emission x kT/q [V]."""
     if v > -3.0 * nvt:
@@ -26,13 +31,17 @@ def exponential(v, saturation, nvt):
     return -saturation * (1.0 + arg), saturation * 3.0 * arg / v
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def depletion(v, cj, potential, grading):
     """Charge [C] and capacitance [F] of a depletion layer at ``v`` [V]; linear above half the potential."""
     edge = 0.5 * potential
     if v < edge:
-        s = math.exp(-grading * math.log(1.0 - v / potential))
-        return potential * cj * (1.0 - (1.0 - v / potential) * s) / (1.0 - grading), cj * s
+        u = 1.0 - v / potential
+        if grading == 0.5:
+            root = math.sqrt(u)
+            return 2.0 * potential * cj * (1.0 - root), cj / root
+        s = math.exp(-grading * math.log(u))
+        return potential * cj * (1.0 - u * s) / (1.0 - grading), cj * s
     f1 = potential * (1.0 - math.exp((1.0 - grading) * math.log(0.5))) / (1.0 - grading)
     f2 = math.exp((1.0 + grading) * math.log(0.5))
     f3 = 1.0 - 0.5 * (1.0 + grading)
@@ -40,7 +49,7 @@ def depletion(v, cj, potential, grading):
     return charge, cj * (f3 + grading * v / potential) / f2
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def diode_state(v, p):
     """(current, conductance, charge, capacitance) of a diode with breakdown at ``v`` [V]; ``p`` in DIODE_PARAMETERS order."""
     i, g = exponential(v, p[0], p[9])
@@ -54,18 +63,22 @@ def diode_state(v, p):
     return i, g, q + p[5] * i, c + p[5] * g
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def limit_junction(new, old, nvt, critical):
-    """Limit the step of a junction voltage so that the exponential stays within reach of Newton's method."""
+    """Limit the step of a junction voltage so that the exponential stays within reach of Newton's method.
+
+    A junction that turns on stops at ``critical`` [V] first: the logarithm of the next step then meets the current exactly,
+    while a start from too large a current comes down by only one ``nvt`` per iteration.
+    """
     if new > critical and abs(new - old) > 2.0 * nvt:
-        if old > 0.0:
-            arg = 1.0 + (new - old) / nvt
-            return (old + nvt * math.log(arg)) if arg > 0.0 else critical
-        return nvt * math.log(new / nvt) if new > 0.0 else critical
+        if old < critical:
+            return critical
+        if new > old:
+            return old + nvt * math.log(1.0 + (new - old) / nvt)
     return new
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def limit_diode(new, old, p):
     """Limited junction voltage of a diode, in forward direction and in breakdown."""
     if p[6] > 0.0 and new < min(0.0, -p[6] + 10.0 * p[9]):
@@ -73,13 +86,13 @@ def limit_diode(new, old, p):
     return limit_junction(new, old, p[9], p[11])
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def voltage(v, node):
     """Voltage of a node; the reference (-1) is at zero."""
     return v[node] if node >= 0 else 0.0
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def stamp(a, slots, g):
     """Add a conductance ``g`` [S] in its four matrix slots."""
     a[slots[0]] += g
@@ -88,7 +101,7 @@ def stamp(a, slots, g):
     a[slots[3]] -= g
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def inject(rhs, plus, minus, i):
     """Let the current ``i`` [A] flow out of ``plus`` into ``minus`` through an element."""
     if plus >= 0:
@@ -97,33 +110,34 @@ def inject(rhs, plus, minus, i):
         rhs[minus] += i
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def stamp_diodes(a, rhs, v, vd, diode, a0, history, charge, gmin):
     """Linearise all diodes about ``v``; returns True when a junction voltage had to be limited.
 
     ``vd`` holds the junction voltages of the last iteration and is updated; ``a0`` is the leading coefficient of the
-    integration formula (0: no charge), ``history`` the remainder of the derivative of each charge.
+    integration formula (0: no charge), ``history`` the remainder of the derivative of each charge. ``charge`` receives the
+    charges [C] and after them the capacitances [F], unless ``a0`` is zero.
     """
     ends, slots, p = diode
-    limited = False
-    for d in range(ends.shape[0]):
+    count, limited = ends.shape[0], False
+    for d in range(count):
         want = voltage(v, ends[d, 0]) - voltage(v, ends[d, 1])
         x = limit_diode(want, vd[d], p[d])
         if abs(x - want) > 1e-3 * abs(want) + 1e-4:
             limited = True
         vd[d] = x
         i, g, q, c = diode_state(x, p[d])
-        charge[d] = q
         g = g + a0 * c + gmin
         i = i + gmin * x
         if a0 > 0.0:
+            charge[d], charge[count + d] = q, c
             i = i + a0 * q + history[d]
         stamp(a, slots[d], g)
         inject(rhs, ends[d, 0], ends[d, 1], i - g * x)
     return limited
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def bipolar_state(vbe, vbc, p):
     """Currents and charges of a transistor: (ic, ib, dic/dvbe, dic/dvbc, dib/dvbe, dib/dvbc, qbe, qbc, cbe, cbc, dqbe/dvbc)."""
     saturation = p[0]
@@ -153,30 +167,33 @@ def bipolar_state(vbe, vbc, p):
     return ic, ib, gm_be, gm_bc - gbc / p[2], gbe / p[1] + gln, gbc / p[2], qe, qc, ce, cc, cross
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def stamp_bipolars(a, rhs, v, vq, bipolar, a0, history, charge, gmin):
-    """Linearise all transistors about ``v``; ``vq``, ``history``, ``charge`` have columns base-emitter and base-collector."""
+    """Linearise all transistors about ``v``; ``vq`` and ``history`` have columns base-emitter and base-collector.
+
+    A row of ``charge`` receives, unless ``a0`` is zero, both charges [C], their capacitances [F] and the derivative of the
+    first charge by the second voltage [F].
+    """
     ends, slots, params, polarity = bipolar
     limited = False
     for k in range(ends.shape[0]):
         p, sign = params[k], polarity[k]
         c, b, e = ends[k, 0], ends[k, 1], ends[k, 2]
-        critical = VT * math.log(VT / (math.sqrt(2.0) * p[0]))
         want_be = sign * (voltage(v, b) - voltage(v, e))
         want_bc = sign * (voltage(v, b) - voltage(v, c))
-        x = limit_junction(want_be, vq[k, 0], VT, critical)
-        y = limit_junction(want_bc, vq[k, 1], VT, critical)
+        x = limit_junction(want_be, vq[k, 0], VT, p[15])
+        y = limit_junction(want_bc, vq[k, 1], VT, p[15])
         if abs(x - want_be) > 1e-3 * abs(want_be) + 1e-4 or abs(y - want_bc) > 1e-3 * abs(want_bc) + 1e-4:
             limited = True
         vq[k, 0], vq[k, 1] = x, y
         ic, ib, c_be, c_bc, b_be, b_bc, qe, qc, ce, cc, cross = bipolar_state(x, y, p)
-        charge[k, 0], charge[k, 1] = qe, qc
         ib += gmin * (x + y)
         ic -= gmin * y
         b_be += gmin
         b_bc += gmin
         c_bc -= gmin
         if a0 > 0.0:
+            charge[k, 0], charge[k, 1], charge[k, 2], charge[k, 3], charge[k, 4] = qe, qc, ce, cc, cross
             i_e, i_c = a0 * qe + history[k, 0], a0 * qc + history[k, 1]
             ib += i_e + i_c
             ic -= i_c
@@ -205,7 +222,57 @@ def stamp_bipolars(a, rhs, v, vq, bipolar, a0, history, charge, gmin):
     return limited
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
+def junction_voltages(v, diode, vd, bipolar, vq):
+    """Write the junction voltages that belong to the node voltages ``v`` into ``vd`` and ``vq``."""
+    ends = diode[0]
+    for d in range(ends.shape[0]):
+        vd[d] = voltage(v, ends[d, 0]) - voltage(v, ends[d, 1])
+    ends, polarity = bipolar[0], bipolar[3]
+    for k in range(ends.shape[0]):
+        base = voltage(v, ends[k, 1])
+        vq[k, 0] = polarity[k] * (base - voltage(v, ends[k, 2]))
+        vq[k, 1] = polarity[k] * (base - voltage(v, ends[k, 0]))
+
+
+@njit(**INNER)
+def junction_close(new, old, critical, nvt, potential, share, error):
+    """Whether the linearisation of a junction about ``old`` still holds at ``new`` [V].
+
+    Newton's next move of a conducting junction is about (new - old)^2 / (2 nvt); it must stay below ``error`` [V]. Without
+    current only the depletion charge bends, by the square of the move over the distance to the potential.
+    """
+    move, high = abs(new - old), max(new, old)
+    if high > critical - LIVE * nvt:
+        return move * move < 2.0 * nvt * error
+    return move < share * max(potential - high, 0.25 * potential)
+
+
+@njit(**INNER)
+def junctions_close(v, diode, vd, bipolar, vq, share, error):
+    """Whether the linearisation of every junction about ``vd`` and ``vq`` still holds at the node voltages ``v``."""
+    ends, _, p = diode
+    for d in range(ends.shape[0]):
+        x = voltage(v, ends[d, 0]) - voltage(v, ends[d, 1])
+        if not junction_close(x, vd[d], p[d, 11], p[d, 9], p[d, 3], share, error):
+            return False
+        if p[d, 6] > 0.0 and -min(x, vd[d]) - p[d, 6] > p[d, 12] - LIVE * p[d, 10]:
+            move = x - vd[d]
+            if move * move > 2.0 * p[d, 10] * error:
+                return False
+    ends, _, p, polarity = bipolar
+    for k in range(ends.shape[0]):
+        base = voltage(v, ends[k, 1])
+        x = polarity[k] * (base - voltage(v, ends[k, 2]))
+        y = polarity[k] * (base - voltage(v, ends[k, 0]))
+        if not junction_close(x, vq[k, 0], p[k, 15], VT, p[k, 8], share, error):
+            return False
+        if not junction_close(y, vq[k, 1], p[k, 15], VT, p[k, 11], share, error):
+            return False
+    return True
+
+
+@njit(**INNER)
 def factor_and_solve(a, b, program):
     """Solve in place by the factorisation program; ``a`` is destroyed, ``b`` becomes the solution. False: singular."""
     pivot, lower_start, lower_row, lower_slot, upper_start, upper_col, upper_slot, update_start, update = program
@@ -233,14 +300,24 @@ def factor_and_solve(a, b, program):
     return True
 
 
-@njit(**OPTIONS)
-def clear(x):
-    """Set an array to zero in place."""
-    for i in range(x.shape[0]):
-        x[i] = 0.0
+@njit(**INNER)
+def resolve(a, b, program):
+    """Solve for another right-hand side ``b`` in place with the factors that factor_and_solve left in ``a``."""
+    pivot, lower_start, lower_row, lower_slot, upper_start, upper_col, upper_slot, _, _ = program
+    n = pivot.shape[0]
+    for k in range(n):
+        x = b[k] * a[pivot[k]]
+        if x != 0.0:
+            for m in range(lower_start[k], lower_start[k + 1]):
+                b[lower_row[m]] -= a[lower_slot[m]] * x
+    for k in range(n - 1, -1, -1):
+        s = b[k]
+        for u in range(upper_start[k], upper_start[k + 1]):
+            s -= a[upper_slot[u]] * b[upper_col[u]]
+        b[k] = s * a[pivot[k]]
 
 
-@njit(**OPTIONS)
+@njit(**INNER)
 def base_conductances(nonzeros, program, resistor, shunt):
     """Matrix of the resistors, and of a shunt [S] from every node to the reference."""
     a = np.zeros(nonzeros + 1)

@@ -1,326 +1,371 @@
-"""Compiled time-domain solution: variable-step second-order backward differences over the arrays of a netlist.
+# mypy: disable-error-code="no-untyped-def,call-overload"
+"""Compiled time-domain solution: steps of two implicit stages over the arrays of a netlist.
 
-A step is accepted when the solution agrees with its extrapolation from the three points before within the tolerance on every
-stored charge and winding current. Statistics of every port are summed on the way, so no waveform has to be kept.
+A step from t to t + h has two stages with the same leading coefficient: the trapezoidal rule to t + GAMMA h, and the second
+backward difference over both points to t + h. The method is L-stable, needs nothing from earlier steps, and sums derivatives
+with the weights STAGE_WEIGHT, STAGE_WEIGHT, END_WEIGHT; the statistics of the ports use the same weights, so that summed
+currents are the change of the stored charges exactly. For the same reason the charge of a junction is the linearised one
+that the last Newton iteration balanced, never one evaluated afterwards: over an abrupt change the difference would be lost.
 
-Source: C. Gear, Simultaneous numerical solution of differential-algebraic equations, IEEE Transactions on Circuit Theory 18,
-1971 (backward differences); truncation error from divided differences.
+The truncation error is passed through the factorised circuit, which takes out what a stiff part of it cannot follow anyway.
+
+Sources: R. Bank et al., Transient simulation of silicon devices and circuits, IEEE Transactions on Computer-Aided Design 4,
+1985 (the two stages); M. Hosea and L. Shampine, Analysis and implementation of TR-BDF2, Applied Numerical Mathematics 20, 1996
+(size of the second stage, truncation error and its filtering).
 """
 
 import math
+from typing import NamedTuple
 
 import numpy as np
 from numba import njit
 
 from triage.physics.transient_devices import (
+    INNER,
     OPTIONS,
     base_conductances,
-    bipolar_state,
-    clear,
-    diode_state,
     factor_and_solve,
     inject,
+    junction_voltages,
+    junctions_close,
+    resolve,
     stamp,
     stamp_bipolars,
     stamp_diodes,
     voltage,
+)
+from triage.physics.transient_storage import (
+    add_charges,
+    charge_moves,
+    charges_at_rest,
+    inject_charges,
+    inject_storage,
+    stamp_storage,
+    storage_states,
 )
 
 GMIN = 1e-12
 SHUNT = 1e-12
 PEAK_MEMORY = 50e-6
 """Time constant with which the remembered size of a state fades [s]: a few switching periods."""
+GAMMA = 2.0 - math.sqrt(2.0)
+"""Share of the first stage in a step: both stages then have the leading coefficient LEAD / h."""
+LEAD = 2.0 / GAMMA
+BACK_STAGE = -1.0 / (GAMMA * (1.0 - GAMMA))
+BACK_START = (1.0 - GAMMA) / GAMMA
+STAGE_WEIGHT = math.sqrt(2.0) / 4.0
+END_WEIGHT = GAMMA / 2.0
+TRUNCATION = (3.0 * GAMMA * GAMMA - 4.0 * GAMMA + 2.0) / (6.0 * (2.0 - GAMMA))
+EULER_STEPS = 3
+"""Steps of the implicit Euler rule at the start, until the derivatives are those of the circuit."""
+EULER_START = 10.0
+"""First step as a multiple of the smallest."""
+SAFETY, GROW_MOST, SHRINK_MOST, NEWTON_SHRINK = 0.8, 2.5, 0.15, 0.2
+"""Share of the step size that the truncation error allows, and limits of its change [-]."""
 V_MIN, V_MAX, V_SUM, V_SQUARE, I_MIN, I_MAX, I_SUM, I_SQUARE, VI_SUM = range(9)
 
 
-@njit(**OPTIONS)
-def coefficients(h, h_old, first):
-    """(a0, a1, a2) of the derivative at the new point from the new, the last and the last but one value."""
-    if first:
-        return 1.0 / h, -1.0 / h, 0.0
-    w = h / h_old
-    return (1.0 + 2.0 * w) / (h * (1.0 + w)), -(1.0 + w) / h, w * w / (h * (1.0 + w))
+class Memory(NamedTuple):
+    """Arrays of a run: nodes v, states y with derivatives f, matrices, junctions, ports."""
+
+    v: np.ndarray
+    v_start: np.ndarray
+    v_stage: np.ndarray
+    slope: np.ndarray
+    y_start: np.ndarray
+    f_start: np.ndarray
+    y_stage: np.ndarray
+    f_stage: np.ndarray
+    y: np.ndarray
+    f: np.ndarray
+    history: np.ndarray
+    history_d: np.ndarray
+    history_q: np.ndarray
+    error: np.ndarray
+    peak: np.ndarray
+    floor: np.ndarray
+    base: np.ndarray
+    linear: np.ndarray
+    matrix: np.ndarray
+    drive: np.ndarray
+    rhs: np.ndarray
+    inverse: np.ndarray
+    flux: np.ndarray
+    emf: np.ndarray
+    vd: np.ndarray
+    vq: np.ndarray
+    lin_d: np.ndarray
+    lin_q: np.ndarray
+    no_d: np.ndarray
+    no_q: np.ndarray
+    port_start: np.ndarray
+    port_stage: np.ndarray
+    port_end: np.ndarray
+    stats: np.ndarray
 
 
-@njit(**OPTIONS)
-def invert_group(matrix, resistance, start, stop, a0, out):
-    """Inverse of a0 x inductances + series resistances of one core, written into ``out``."""
-    n = stop - start
-    work = np.zeros((n, 2 * n))
-    for p in range(n):
-        for q in range(n):
-            work[p, q] = matrix[start + p, start + q] * a0
-        work[p, p] += resistance[start + p]
-        work[p, n + p] = 1.0
-    for k in range(n):
-        d = work[k, k]
-        for q in range(2 * n):
-            work[k, q] /= d
-        for p in range(n):
-            if p != k and work[p, k] != 0.0:
-                f = work[p, k]
-                for q in range(2 * n):
-                    work[p, q] -= f * work[k, q]
-    for p in range(n):
-        for q in range(n):
-            out[start + p, start + q] = work[p, n + q]
+def memory(compiled, nodes, floor):
+    """Arrays for a run over a compiled netlist; ``nodes`` is moved by the run, ``floor`` has one entry per state."""
+    n, width, states, ports = len(nodes), compiled.nonzeros + 1, len(floor), len(compiled.port[1])
+    nw, nd, nq = (len(compiled.names[kind]) for kind in ("winding", "diode", "bipolar"))
+    first = states - nd - 2 * nq
+    history = np.zeros(states)
+    stats = np.zeros((9, ports))
+    stats[[V_MIN, I_MIN]], stats[[V_MAX, I_MAX]] = 1e30, -1e30
+    return Memory(
+        nodes, nodes.copy(), nodes.copy(), np.zeros(n), *(np.zeros(states) for _ in range(6)),
+        history, history[first:first + nd], history[first + nd:].reshape(nq, 2), np.zeros(states), np.zeros(states), floor,
+        np.zeros(width), np.zeros(width), np.zeros(width), np.zeros(n), np.zeros(n),
+        np.zeros((nw, nw)), np.zeros(nw), np.zeros(len(compiled.names["source"])),
+        np.zeros(nd), np.zeros((nq, 2)), np.zeros(2 * nd), np.zeros((nq, 5)), np.zeros(nd), np.zeros((nq, 2)),
+        *(np.zeros((2, ports)) for _ in range(3)), stats)
 
 
-@njit(**OPTIONS)
-def stamp_storage(a, rhs, a0, capacitor, hist_c, winding, hist_w, inverse):
-    """Companion conductances and sources of the capacitors and windings at a step."""
-    ends, slots, farad, esr, _ = capacitor
-    for c in range(farad.shape[0]):
-        g = 1.0 / (esr[c] + 1.0 / (a0 * farad[c]))
-        stamp(a, slots[c], g)
-        inject(rhs, ends[c, 0], ends[c, 1], g * hist_c[c] / a0)
-    ends, starts, matrix, resistance, stamps = winding
-    for group in range(starts.shape[0] - 1):
-        lo, hi = starts[group], starts[group + 1]
-        invert_group(matrix, resistance, lo, hi, a0, inverse)
-        for p in range(lo, hi):
-            back = 0.0
-            for q in range(lo, hi):
-                stamp(a, stamps[p, q], inverse[p, q])
-                flux = 0.0
-                for r in range(lo, hi):
-                    flux += matrix[q, r] * hist_w[r]
-                back += inverse[p, q] * flux
-            inject(rhs, ends[p, 0], ends[p, 1], -back)
+@njit(**INNER)
+def copy(target, origin):
+    """Overwrite a one-dimensional array."""
+    for k in range(target.shape[0]):
+        target[k] = origin[k]
 
 
-@njit(**OPTIONS)
-def update_storage(v, a0, capacitor, hist_c, vc, ic, winding, hist_w, inverse, iw):
-    """Capacitor voltages and currents and winding currents that belong to the node voltages ``v``."""
-    ends, _, farad, esr, _ = capacitor
-    for c in range(farad.shape[0]):
-        x = voltage(v, ends[c, 0]) - voltage(v, ends[c, 1])
-        g = 1.0 / (esr[c] + 1.0 / (a0 * farad[c]))
-        ic[c] = g * (x + hist_c[c] / a0)
-        vc[c] = x - esr[c] * ic[c]
-    ends, starts, matrix, _, _ = winding
-    for group in range(starts.shape[0] - 1):
-        lo, hi = starts[group], starts[group + 1]
-        for p in range(lo, hi):
-            s = 0.0
-            for q in range(lo, hi):
-                drive = voltage(v, ends[q, 0]) - voltage(v, ends[q, 1])
-                for r in range(lo, hi):
-                    drive -= matrix[q, r] * hist_w[r]
-                s += inverse[p, q] * drive
-            iw[p] = s
+@njit(**INNER)
+def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, bipolar, history_q, lin_q, program, share,
+                error, most):
+    """Newton's method at one time; ``v`` holds the guess and becomes the solution. Returns whether it settled."""
+    for _ in range(most):
+        copy(a, linear)
+        copy(rhs, drive)
+        limited = stamp_diodes(a, rhs, v, vd, diode, a0, history_d, lin_d, GMIN)
+        limited = stamp_bipolars(a, rhs, v, vq, bipolar, a0, history_q, lin_q, GMIN) or limited
+        if not factor_and_solve(a, rhs, program):
+            return False
+        total = 0.0
+        for k in range(v.shape[0]):
+            v[k] = rhs[k]
+            total += abs(rhs[k])
+        if not math.isfinite(total):
+            return False
+        if not limited and junctions_close(v, diode, vd, bipolar, vq, share, error):
+            return True
+    return False
 
 
-@njit(**OPTIONS)
-def deviation(new, y1, y2, y3, h, h1, h2, floor, scale, peak):
-    """Largest ratio of (solution - quadratic extrapolation) to the allowed deviation over the entries of a state.
+@njit(**INNER)
+def source_drive(t, source, emf, drive):
+    """Open-circuit voltages of the sources at the time ``t``, and the currents they drive into the nodes."""
+    ends, _, p = source
+    for k in range(drive.shape[0]):
+        drive[k] = 0.0
+    for s in range(emf.shape[0]):
+        emf[s] = p[s, 0] * math.sin(2.0 * math.pi * p[s, 1] * t + p[s, 2])
+        inject(drive, ends[s, 0], ends[s, 1], -p[s, 3] * emf[s])
 
-    Allowed is ``scale`` times the largest size the entry had lately (``peak``) plus ``floor``.
+
+@njit(**INNER)
+def solve_states(m, program, capacitor, winding, diode, bipolar, a0, share, error, most):
+    """Node voltages and states at one time from the history in ``m``; returns whether Newton's method settled."""
+    inject_storage(m.drive, a0, m.history, capacitor, winding, m.inverse, m.flux)
+    if not solve_point(m.linear, m.drive, m.matrix, m.rhs, m.v, m.vd, m.vq, a0, diode, m.history_d, m.lin_d, bipolar,
+                       m.history_q, m.lin_q, program, share, error, most):
+        return False
+    first = capacitor[2].shape[0] + winding[3].shape[0]
+    storage_states(m.v, a0, m.history, capacitor, winding, m.inverse, m.flux, m.y)
+    charge_moves(m.v, first, diode, m.vd, m.lin_d, bipolar, m.vq, m.lin_q, m.y)
+    add_charges(first, m.lin_d, m.lin_q, m.y)
+    for k in range(m.y.shape[0]):
+        m.f[k] = a0 * m.y[k] + m.history[k]
+    return True
+
+
+@njit(**INNER)
+def prepare_stage(m, stage, h):
+    """History of the states and guess of the node voltages: stage 0 Euler, 1 trapezoidal, 2 backward difference."""
+    if stage == 0:
+        for k in range(m.y.shape[0]):
+            m.history[k] = -m.y_start[k] / h
+        return
+    if stage == 1:
+        for k in range(m.y.shape[0]):
+            m.history[k] = -LEAD / h * m.y_start[k] - m.f_start[k]
+        for k in range(m.v.shape[0]):
+            m.v[k] = m.v_start[k] + m.slope[k] * (GAMMA * h)
+        return
+    for k in range(m.y.shape[0]):
+        m.history[k] = (BACK_STAGE * m.y_stage[k] + BACK_START * m.y_start[k]) / h
+    for k in range(m.v.shape[0]):
+        m.v[k] = m.v_stage[k] + (m.v_stage[k] - m.v_start[k]) * ((1.0 - GAMMA) / GAMMA)
+
+
+@njit(**INNER)
+def truncation(m, program, capacitor, winding, diode, bipolar, a0, scale):
+    """Largest ratio of the truncation error of a step to what is allowed, over the states.
+
+    Allowed is ``scale`` times the largest size the state had lately plus its floor.
     """
+    for k in range(m.y.shape[0]):
+        bend = m.f_start[k] / GAMMA - m.f_stage[k] / (GAMMA * (1.0 - GAMMA)) + m.f[k] / (1.0 - GAMMA)
+        m.history[k] = -LEAD * TRUNCATION * bend
+    for k in range(m.rhs.shape[0]):
+        m.rhs[k] = 0.0
+    first = capacitor[2].shape[0] + winding[3].shape[0]
+    inject_storage(m.rhs, a0, m.history, capacitor, winding, m.inverse, m.flux)
+    inject_charges(m.rhs, first, m.history, diode, bipolar)
+    resolve(m.matrix, m.rhs, program)
+    storage_states(m.rhs, a0, m.history, capacitor, winding, m.inverse, m.flux, m.error)
+    charge_moves(m.rhs, first, diode, m.no_d, m.lin_d, bipolar, m.no_q, m.lin_q, m.error)
     worst = 0.0
-    for k in range(new.shape[0]):
-        d1 = (y1[k] - y2[k]) / h1
-        d2 = ((y1[k] - y2[k]) / h1 - (y2[k] - y3[k]) / h2) / (h1 + h2)
-        predicted = y1[k] + d1 * h + d2 * h * (h + h1)
-        size = max(abs(new[k]), peak[k])
-        worst = max(worst, abs(new[k] - predicted) / (scale * size + floor[k]))
+    for k in range(m.y.shape[0]):
+        worst = max(worst, abs(m.error[k]) / (scale * max(abs(m.y[k]), m.peak[k]) + m.floor[k]))
     return worst
 
 
-@njit(**OPTIONS)
-def remember(new, peak, fade):
-    """Let the remembered size of each entry fade, or follow the entry when it is larger."""
-    for k in range(new.shape[0]):
-        peak[k] = max(abs(new[k]), peak[k] * fade)
-
-
-@njit(**OPTIONS)
-def port_values(v, port, resistor, ic, iw, source, t, out):
-    """Voltage and current of every port, written into ``out`` (ports x 2)."""
+@njit(**INNER)
+def port_values(v, y, f, emf, port, resistor, capacitor, source, out):
+    """Voltage and current of every port, written into the two rows of ``out``."""
     ends, kinds, index = port
     for p in range(kinds.shape[0]):
-        out[p, 0] = voltage(v, ends[p, 0]) - voltage(v, ends[p, 1])
-        k = index[p]
-        if kinds[p] == 0:
-            out[p, 1] = resistor[2][k] * (voltage(v, resistor[0][k, 0]) - voltage(v, resistor[0][k, 1]))
-        elif kinds[p] == 1:
-            out[p, 1] = ic[k]
-        elif kinds[p] == 2:
-            out[p, 1] = iw[k]
-        elif kinds[p] == 3:
-            s = source[2][k]
-            emf = s[0] * math.sin(2.0 * math.pi * s[1] * t + s[2])
-            x = voltage(v, source[0][k, 0]) - voltage(v, source[0][k, 1])
-            out[p, 1] = s[3] * (emf - x)
-        else:
-            out[p, 1] = 0.0
+        out[0, p] = voltage(v, ends[p, 0]) - voltage(v, ends[p, 1])
+        k, kind, i = index[p], kinds[p], 0.0
+        if kind == 0:
+            i = resistor[2][k] * (voltage(v, resistor[0][k, 0]) - voltage(v, resistor[0][k, 1]))
+        elif kind == 1:
+            i = capacitor[2][k] * f[k]
+        elif kind == 2:
+            i = y[capacitor[2].shape[0] + k]
+        elif kind == 3:
+            i = source[2][k, 3] * (emf[k] - voltage(v, source[0][k, 0]) + voltage(v, source[0][k, 1]))
+        out[1, p] = i
 
 
-@njit(**OPTIONS)
-def accumulate(stats, old, new, h):
-    """Add one step of length ``h`` to extremes and trapezoidal integrals of every port."""
-    for p in range(new.shape[0]):
-        v, i, v0, i0 = new[p, 0], new[p, 1], old[p, 0], old[p, 1]
-        s = stats[p]
-        s[V_MIN] = min(s[V_MIN], v)
-        s[V_MAX] = max(s[V_MAX], v)
-        s[V_SUM] += 0.5 * h * (v + v0)
-        s[V_SQUARE] += 0.5 * h * (v * v + v0 * v0)
-        s[I_MIN] = min(s[I_MIN], i)
-        s[I_MAX] = max(s[I_MAX], i)
-        s[I_SUM] += 0.5 * h * (i + i0)
-        s[I_SQUARE] += 0.5 * h * (i * i + i0 * i0)
-        s[VI_SUM] += 0.5 * h * (v * i + v0 * i0)
+@njit(**INNER)
+def accumulate(stats, start, stage, end, h):
+    """Add one step of length ``h`` to extremes and integrals of every port."""
+    w, w1 = h * STAGE_WEIGHT, h * END_WEIGHT
+    for p in range(end.shape[1]):
+        v0, vs, v1 = start[0, p], stage[0, p], end[0, p]
+        i0, js, i1 = start[1, p], stage[1, p], end[1, p]
+        stats[V_MIN, p] = min(stats[V_MIN, p], vs, v1)
+        stats[V_MAX, p] = max(stats[V_MAX, p], vs, v1)
+        stats[V_SUM, p] += w * (v0 + vs) + w1 * v1
+        stats[V_SQUARE, p] += w * (v0 * v0 + vs * vs) + w1 * v1 * v1
+        stats[I_MIN, p] = min(stats[I_MIN, p], js, i1)
+        stats[I_MAX, p] = max(stats[I_MAX, p], js, i1)
+        stats[I_SUM, p] += w * (i0 + js) + w1 * i1
+        stats[I_SQUARE, p] += w * (i0 * i0 + js * js) + w1 * i1 * i1
+        stats[VI_SUM, p] += w * (v0 * i0 + vs * js) + w1 * v1 * i1
 
 
-@njit(**OPTIONS)
-def solve_point(a_lin, r_lin, v, vd, vq, a0, diode, hist_d, q_d, bipolar, hist_q, q_q, program, relative, absolute, most):
-    """Newton's method at one time; ``v`` holds the guess and becomes the solution. Returns the iterations, 0 when it failed."""
-    a, rhs = np.empty_like(a_lin), np.empty_like(r_lin)
-    for iteration in range(most):
-        a[:] = a_lin
-        rhs[:] = r_lin
-        limited = stamp_diodes(a, rhs, v, vd, diode, a0, hist_d, q_d, GMIN)
-        limited = stamp_bipolars(a, rhs, v, vq, bipolar, a0, hist_q, q_q, GMIN) or limited
-        if not factor_and_solve(a, rhs, program):
-            return 0
-        moved = False
-        for k in range(v.shape[0]):
-            x = rhs[k]
-            if not math.isfinite(x):
-                return 0
-            if abs(x - v[k]) > relative * max(abs(x), abs(v[k])) + absolute:
-                moved = True
-            v[k] = x
-        if not moved and not limited and iteration > 0:
-            return iteration + 1
-    return 0
+@njit(**INNER)
+def keep(m, h, euler):
+    """Make the end of a step the start of the next."""
+    fade = math.exp(-h / PEAK_MEMORY)
+    for k in range(m.y.shape[0]):
+        m.peak[k] = max(abs(m.y[k]), m.peak[k] * fade)
+        m.y_start[k], m.f_start[k] = m.y[k], m.f[k]
+    for k in range(m.v.shape[0]):
+        m.slope[k] = 0.0 if euler else (m.v[k] - m.v_stage[k]) / ((1.0 - GAMMA) * h)
+        m.v_start[k] = m.v[k]
+    for p in range(m.port_end.shape[1]):
+        m.port_start[0, p], m.port_start[1, p] = m.port_end[0, p], m.port_end[1, p]
 
 
-@njit(**OPTIONS)
-def run(program, nonzeros, resistor, capacitor, winding, diode, bipolar, source, port, state, times, tolerances, swing,
-        trace):
-    """Integrate from times[0] to times[1]; returns (status, steps, time reached, statistics, swings, trace rows used).
+@njit(**INNER)
+def excursion(v, swing, up):
+    """(swing state, 1 at the end of an excursion) of the watched switch: 1 after it was above 1.03 of the bulk voltage.
 
-    ``state`` = (v, vc, iw) is read and left at the end point. ``times`` = (start, stop, start of statistics, largest step,
-    smallest step, step below which the deviation is not asked). ``tolerances`` = (relative of Newton, absolute of Newton [V],
-    relative of a step, floor per capacitor, per winding, per diode, per transistor). ``swing`` = (switch node, its
-    reference, bulk node, its reference) counts excursions of the switch above 1.03 and below 0.78 of the bulk voltage. ``trace`` = (start, interval, nodes, rows).
+    ``swing`` = (switch node, its reference, bulk node, its reference); an excursion ends below 0.78 of the bulk voltage.
     """
-    v, vc, iw = state
+    if swing[0] < 0:
+        return up, 0
+    level = voltage(v, swing[0]) - voltage(v, swing[1])
+    bulk = voltage(v, swing[2]) - voltage(v, swing[3])
+    if bulk > 15.0 and level > 1.03 * bulk:
+        return 1, 0
+    if level < 0.78 * bulk:
+        return -1, 1 if up == 1 else 0
+    return up, 0
+
+
+@njit(**INNER)
+def begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, iw):
+    """States and the constant part of the matrix at the start of a run."""
+    copy(m.base, base_conductances(nonzeros, program, resistor, SHUNT))
+    for s in range(m.emf.shape[0]):
+        stamp(m.base, source[1][s], source[2][s, 3])
+    for k in range(transfer[1].shape[0]):
+        stamp(m.base, transfer[0][k], transfer[1][k])
+    junction_voltages(m.v, diode, m.vd, bipolar, m.vq)
+    nc, nw = vc.shape[0], iw.shape[0]
+    for c in range(nc):
+        m.y[c] = vc[c]
+    for w in range(nw):
+        m.y[nc + w] = iw[w]
+    charges_at_rest(nc + nw, diode, m.vd, bipolar, m.vq, m.y)
+    for k in range(m.y.shape[0]):
+        m.y_start[k], m.peak[k] = m.y[k], abs(m.y[k])
+
+
+@njit(**OPTIONS)
+def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bipolar, source, port, vc, iw, times, tolerances,
+        swing, trace):
+    """Integrate from times[0] to times[1]; returns (status, steps, time reached, excursions, trace rows used).
+
+    ``vc``, ``iw`` and the nodes in ``m`` are read and left at the end point. ``times`` = (start, stop, start of statistics,
+    largest step, smallest step, step below which the error is not asked). ``tolerances`` = (move of a blocked junction [-],
+    error of a conducting junction [V], error of a step [-]). ``trace`` = (start, interval, nodes, rows).
+    """
     stop, stats_from, h_max, h_min, h_trust = times[1], times[2], times[3], times[4], times[5]
-    n, nc, nw, nd, nq = v.shape[0], vc.shape[0], iw.shape[0], diode[0].shape[0], bipolar[0].shape[0]
-    base = base_conductances(nonzeros, program, resistor, SHUNT)
-    for s in range(source[0].shape[0]):
-        stamp(base, source[1][s], source[2][s, 3])
-    inverse = np.zeros((nw, nw))
-    ic, vc_new, iw_new = np.zeros(nc), vc.copy(), iw.copy()
-    vd, vq, q_d, q_q = np.zeros(nd), np.zeros((nq, 2)), np.zeros(nd), np.zeros((nq, 2))
-    for d in range(nd):
-        vd[d] = voltage(v, diode[0][d, 0]) - voltage(v, diode[0][d, 1])
-        q_d[d] = diode_state(min(vd[d], 1.5), diode[2][d])[2]
-    for k in range(nq):
-        sign = bipolar[3][k]
-        vq[k, 0] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 2]))
-        vq[k, 1] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 0]))
-        b = bipolar_state(min(vq[k, 0], 1.0), min(vq[k, 1], 1.0), bipolar[2][k])
-        q_q[k, 0], q_q[k, 1] = b[6], b[7]
-    c1, c2, c3 = vc.copy(), vc.copy(), vc.copy()
-    w1, w2, w3 = iw.copy(), iw.copy(), iw.copy()
-    d1, d2, d3 = q_d.copy(), q_d.copy(), q_d.copy()
-    b1, b2, b3 = q_q.copy(), q_q.copy(), q_q.copy()
-    c_peak, w_peak, d_peak, b_peak = np.abs(vc), np.abs(iw), np.abs(q_d), np.abs(q_q)
-    v1, v2 = v.copy(), v.copy()
-    a_lin, r_lin = base.copy(), np.zeros(n)
-    ports = port[1].shape[0]
-    stats = np.zeros((ports, 9))
-    stats[:, V_MIN], stats[:, V_MAX], stats[:, I_MIN], stats[:, I_MAX] = 1e30, -1e30, 1e30, -1e30
-    old, new = np.zeros((ports, 2)), np.zeros((ports, 2))
-    t, h, h1, h2, points, steps, failures, swung, swings = times[0], h_min * 10.0, h_min, h_min, 0, 0, 0, 0, 0
-    used, next_trace, blunt = 0, trace[0], False
+    share, error, scale = tolerances
+    begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, iw)
+    t, h, steps, up, swings, used, next_trace = times[0], h_min * EULER_START, 0, 0, 0, 0, trace[0]
     while t < stop * (1.0 - 1e-12):
         h = min(h, stop - t)
-        first = points < 1 or blunt
-        a0, a1, a2 = coefficients(h, h1, first)
-        hist_c, hist_w, hist_d = a1 * c1 + a2 * c2, a1 * w1 + a2 * w2, a1 * d1 + a2 * d2
-        hist_q = a1 * b1 + a2 * b2
-        a_lin[:] = base
-        clear(r_lin)
-        for s in range(source[0].shape[0]):
-            par = source[2][s]
-            emf = par[0] * math.sin(2.0 * math.pi * par[1] * (t + h) + par[2])
-            inject(r_lin, source[0][s, 0], source[0][s, 1], -par[3] * emf)
-        stamp_storage(a_lin, r_lin, a0, capacitor, hist_c, winding, hist_w, inverse)
-        for k in range(n):
-            v[k] = v1[k] + (v1[k] - v2[k]) * (h / h1) if points > 1 else v1[k]
-        count = solve_point(a_lin, r_lin, v, vd, vq, a0, diode, hist_d, q_d, bipolar, hist_q, q_q, program,
-                            tolerances[0], tolerances[1], 12 if h > 2.0 * h_min else 200)
-        if count == 0:
-            failures += 1
-            h *= 0.125
-            if h < h_min or failures > 100000:
-                return 1, steps, t, stats, swings, used
-            v[:] = v1
-            for d in range(nd):
-                vd[d] = voltage(v, diode[0][d, 0]) - voltage(v, diode[0][d, 1])
-            for k in range(nq):
-                sign = bipolar[3][k]
-                vq[k, 0] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 2]))
-                vq[k, 1] = sign * (voltage(v, bipolar[0][k, 1]) - voltage(v, bipolar[0][k, 0]))
-            continue
-        update_storage(v, a0, capacitor, hist_c, vc_new, ic, winding, hist_w, inverse, iw_new)
+        euler = steps < EULER_STEPS
+        a0 = 1.0 / h if euler else LEAD / h
+        copy(m.linear, m.base)
+        stamp_storage(m.linear, a0, capacitor, winding, m.inverse)
+        settled = False
+        for stage in range(0 if euler else 1, 1 if euler else 3):
+            prepare_stage(m, stage, h)
+            source_drive(t + (GAMMA * h if stage == 1 else h), source, m.emf, m.drive)
+            settled = solve_states(m, program, capacitor, winding, diode, bipolar, a0, share, error,
+                                   10 if h > 2.0 * h_min and not euler else 200)
+            if not settled:
+                break
+            if stage == 1:
+                copy(m.v_stage, m.v)
+                copy(m.y_stage, m.y)
+                copy(m.f_stage, m.f)
+                port_values(m.v, m.y, m.f, m.emf, port, resistor, capacitor, source, m.port_stage)
         worst = 0.0
-        if points > 2 and not blunt:
-            worst = deviation(vc_new, c1, c2, c3, h, h1, h2, tolerances[3], tolerances[2], c_peak)
-            worst = max(worst, deviation(iw_new, w1, w2, w3, h, h1, h2, tolerances[4], tolerances[2], w_peak))
-            worst = max(worst, deviation(q_d, d1, d2, d3, h, h1, h2, tolerances[5], tolerances[2], d_peak))
-            for j in range(2):
-                worst = max(worst, deviation(q_q[:, j], b1[:, j], b2[:, j], b3[:, j], h, h1, h2, tolerances[6][:, j],
-                                             tolerances[2], b_peak[:, j]))
-            if worst > 1.0 and h > 1.001 * h_trust:
-                h = max(h * max(0.9 * worst ** (-1.0 / 3.0), 0.2), h_trust)
-                continue
-            if worst > 1.0:
-                blunt = True
-                v[:] = v1
-                continue
-        if blunt:
-            points, worst, blunt = 0, 0.5, False
-        port_values(v, port, resistor, ic, iw_new, source, t + h, new)
+        if settled and not euler:
+            worst = truncation(m, program, capacitor, winding, diode, bipolar, a0, scale)
+        if not settled or (worst > 1.0 and h > 1.001 * h_trust):
+            h = max(h * max(SAFETY * worst ** (-1.0 / 3.0), SHRINK_MOST), h_trust) if settled else h * NEWTON_SHRINK
+            if h < h_min:
+                return 1, steps, t, swings, used
+            copy(m.v, m.v_start)
+            junction_voltages(m.v, diode, m.vd, bipolar, m.vq)
+            continue
+        port_values(m.v, m.y, m.f, m.emf, port, resistor, capacitor, source, m.port_end)
         if t >= stats_from:
-            accumulate(stats, old, new, h)
+            accumulate(m.stats, m.port_start, m.port_stage, m.port_end, h)
         t += h
         steps += 1
-        points += 1
-        fade = math.exp(-h / PEAK_MEMORY)
-        remember(vc_new, c_peak, fade)
-        remember(iw_new, w_peak, fade)
-        remember(q_d, d_peak, fade)
-        for j in range(2):
-            remember(q_q[:, j], b_peak[:, j], fade)
-        c3[:], c2[:], c1[:] = c2, c1, vc_new
-        w3[:], w2[:], w1[:] = w2, w1, iw_new
-        d3[:], d2[:], d1[:] = d2, d1, q_d
-        b3[:], b2[:], b1[:] = b2, b1, q_q
-        v2[:], v1[:] = v1, v
-        old[:] = new
-        if swing[0] >= 0:
-            level = voltage(v, swing[0]) - voltage(v, swing[1])
-            bulk = voltage(v, swing[2]) - voltage(v, swing[3])
-            if bulk > 15.0 and level > 1.03 * bulk:
-                swung = 1
-            elif level < 0.78 * bulk:
-                if swung == 1 and t >= stats_from:
-                    swings += 1
-                swung = -1
+        keep(m, h, euler)
+        up, ended = excursion(m.v, swing, up)
+        if t >= stats_from:
+            swings += ended
         if t >= next_trace and used < trace[3].shape[0]:
             trace[3][used, 0] = t
             for j in range(trace[2].shape[0]):
-                trace[3][used, j + 1] = voltage(v, trace[2][j])
+                trace[3][used, j + 1] = voltage(m.v, trace[2][j])
             used += 1
             next_trace += trace[1]
-        h2, h1 = h1, h
-        grow = 2.0 if worst <= 0.0 else min(0.9 * worst ** (-1.0 / 3.0), 2.0)
-        h = min(max(h * max(grow, 0.3), min(h_trust, 2.0 * h)), h_max)
-    vc[:], iw[:] = c1, w1
-    return 0, steps, t, stats, swings, used
+        h *= min(max(SAFETY * max(worst, 1e-6) ** (-1.0 / 3.0), SHRINK_MOST), GROW_MOST)
+        h = min(max(h, h_trust), h_max)
+    for c in range(vc.shape[0]):
+        vc[c] = m.y[c]
+    for w in range(iw.shape[0]):
+        iw[w] = m.y[vc.shape[0] + w]
+    return 0, steps, t, swings, used
