@@ -1,0 +1,174 @@
+"""The demand of a position: figures by hand, the dead part's mistake, and what stays open where too little is known."""
+
+import math
+
+import pytest
+
+from tests.replacement.boards import SECOND, board, part, stress
+from triage.board.stress import Stress
+from triage.errors import EntryError
+from triage.replacement.catalog import Catalog
+from triage.replacement.demand import Demand, Requirement, demand
+from triage.replacement.positions import Position, plain_role, position_of, positions
+from triage.replacement.ranking import candidates, to_confirm
+from triage.replacement.wording import WORDS, figure, unit_of
+
+CATALOG = Catalog()
+
+
+def _need(asked: Demand, key: str) -> Requirement:
+    return next(requirement for requirement in asked.requirements if requirement.key == key)
+
+
+def test_minimum_is_stress_over_factor_with_its_reason() -> None:
+    """By hand: 439 V / 0.8 = 548.75 V."""
+    dead = part("D2", "diode", "clamp diode")
+    asked = demand(board(dead), "D2", stress("D2", reverse_voltage=439.0), CATALOG)
+    need = _need(asked, "vrrm_V")
+    assert need.minimum == pytest.approx(548.75)
+    assert need.reason == "439 V at 253 V, full load / 0.8"
+    assert "MIL-HDBK-338B" in need.source
+    assert need.unit == "V" and need.text == "repetitive reverse voltage"
+
+
+def test_the_old_rating_counts_too() -> None:
+    """Both must hold: the stress asks for 549 V, the old part offered 1000 V."""
+    dead = part("D2", "diode", "clamp diode", "FR107")
+    need = _need(demand(board(dead), "D2", stress("D2", reverse_voltage=439.0), CATALOG), "vrrm_V")
+    assert (need.minimum, need.offered, need.stressed) == (1000.0, 1000.0, pytest.approx(548.75))
+    assert need.mistake == ""
+
+
+def test_a_dead_part_below_the_demand_is_told_as_the_mistake() -> None:
+    """The issue's example: carried 0.6 A average against a rating of 0.2 A."""
+    dead = part("D5", "diode", "auxiliary rectifier", "1N4148", rated_current=0.2)
+    asked = demand(board(dead), "D5", stress("D5", average_current=0.6), CATALOG)
+    assert asked.mistakes == ("carried 0.6 A average current against a rating of 0.2 A: it was past its rating",)
+    assert _need(asked, "if_av_A").minimum == pytest.approx(1.2)
+    thin = demand(board(dead), "D5", stress("D5", average_current=0.15), CATALOG)
+    assert thin.mistakes == ("carried 0.15 A average current against a rating of 0.2 A, of which 0.5 is the recommended share",)
+
+
+def test_mains_floors_follow_the_mains_and_the_side() -> None:
+    """1000 V at 230 V mains, 400 V at 120 V, none behind the transformer (reference: replacement rules)."""
+    dead = part("D1", "diode", "mains rectifier")
+    behind = part("D1", "diode", "bridge diode", pins=SECOND)
+    low = stress("D1", reverse_voltage=20.0)
+    assert _need(demand(board(dead), "D1", low, CATALOG), "vrrm_V").minimum == 1000.0
+    assert _need(demand(board(dead, high=132.0), "D1", low, CATALOG), "vrrm_V").minimum == 400.0
+    assert _need(demand(board(behind), "D1", low, CATALOG), "vrrm_V").minimum == pytest.approx(40.0)
+
+
+def test_a_melting_integral_becomes_a_surge_of_one_half_wave() -> None:
+    """By hand: I2t of a half sine is I² t / 2, so 0.5 A²s in 8.3 ms is sqrt(2 x 0.5 / 0.0083) = 10.98 A, / 0.8 = 13.7 A."""
+    dead = part("D1", "diode", "mains rectifier")
+    need = _need(demand(board(dead), "D1", stress("D1", i2t=0.5), CATALOG), "ifsm_A")
+    assert need.minimum == pytest.approx(math.sqrt(1.0 / 8.3e-3) / 0.8)
+
+
+def test_zener_current_from_power_where_no_current_is_known() -> None:
+    """By hand: 10.4 mW / 6.2 V = 1.68 mA, five times that 8.39 mA."""
+    dead = part("DZ1", "zener", "regulation zener", zener_voltage=6.2, rated_power=0.5)
+    need = _need(demand(board(dead), "DZ1", stress("DZ1", power=0.0104), CATALOG), "izt_A")
+    assert need.maximum == pytest.approx(5 * 0.0104 / 6.2)
+
+
+def test_an_unknown_place_promises_nothing() -> None:
+    """Neither stress nor rating nor type: every candidate is refused, and told why."""
+    dead = part("D5", "diode", "output rectifier", pins=SECOND)
+    asked = demand(board(dead), "D5", (), CATALOG)
+    assert _need(asked, "vrrm_V").undecided
+    assert candidates(CATALOG, asked) == ()
+    zener = demand(board(part("DZ1", "zener", "regulation zener")), "DZ1", (), CATALOG)
+    assert _need(zener, "vz_V").undecided and candidates(CATALOG, zener) == ()
+
+
+def test_what_the_print_on_the_old_part_says_is_used() -> None:
+    """T1.6A gives current and speed; size and standard are to be read, and F fuses are refused for good."""
+    asked = demand(board(part("F1", "fuse", "mains fuse", "T1.6A")), "F1", (), CATALOG)
+    assert _need(asked, "speed").words == ("T",)
+    assert _need(asked, "case").undecided and _need(asked, "case").readable
+    offered = to_confirm(CATALOG, asked)
+    assert offered and all(one.part.type.startswith("T 1.6A") for one in offered)
+    assert candidates(CATALOG, asked) == ()
+
+
+def test_a_missing_part_is_an_entry_error() -> None:
+    """The board has no such part."""
+    with pytest.raises(EntryError, match="not on this board"):
+        demand(board(part("D1", "diode", "mains rectifier")), "D9", (), CATALOG)
+
+
+def test_stresses_of_other_parts_and_without_value_are_passed_over() -> None:
+    """NaN and infinity decide nothing."""
+    dead = part("D2", "diode", "clamp diode", "FR107")
+    odd = (
+        Stress("D2", "reverse_voltage", math.nan),
+        Stress("D2", "average_current", math.inf),
+        Stress("Q1", "reverse_voltage", 5e3),
+    )
+    need = _need(demand(board(dead), "D2", odd, CATALOG), "vrrm_V")
+    assert need.minimum == 1000.0
+
+
+def test_every_role_of_the_shipped_profiles_has_its_position() -> None:
+    """No role of an adapter is left to the fallback of its kind (needs the profile loader)."""
+    from triage.board.profile import load_profile
+    from triage.data import data_folder
+
+    missing = []
+    for path in sorted(data_folder("profiles").glob("*.toml")):
+        adapter = load_profile(path)
+        for one in adapter.parts:
+            position = position_of(adapter, one)
+            if position is None or plain_role(one.role) not in position.roles:
+                missing.append(f"{path.name}: {one.ref} {one.role}")
+    assert missing == []
+
+
+def test_the_position_table_names_only_what_exists() -> None:
+    """Every class is a file of the catalog, every field is known there, every key has its words."""
+    fields = {name: set(CATALOG.file(name).parts[0].numbers) if CATALOG.file(name).parts else set() for name in CATALOG.classes}
+    for name in CATALOG.classes:
+        file = CATALOG.file(name)
+        for known in (*file.parts, *(size.template for size in file.sizes)):
+            fields[name] |= known.numbers.keys() | known.texts.keys()
+        fields[name] |= {file.value_key}
+    for position in positions():
+        assert isinstance(position, Position)
+        assert set(position.classes) <= set(CATALOG.classes), position.roles
+        for need in position.needs:
+            assert need.key in WORDS
+            assert any({need.key, *need.alternatives} & fields[name] for name in position.classes), (position.roles, need.key)
+
+
+@pytest.mark.parametrize(
+    ("role", "plain"),
+    [
+        ("mains fuse, slow", "mains fuse"),
+        ("regulation zener (auxiliary rail to base)", "regulation zener"),
+        ("clamp diode", "clamp diode"),
+    ],
+)
+def test_remarks_are_no_part_of_a_role(role: str, plain: str) -> None:
+    """The role is what stands before a bracket or comma."""
+    assert plain_role(role) == plain
+
+
+@pytest.mark.parametrize(
+    ("key", "unit", "value", "text"),
+    [
+        ("vrrm_V", "V", 1000.0, "1000 V"),
+        ("c_F", "F", 4.7e-6, "4.7 uF"),
+        ("trr_max_s", "s", 75e-9, "75 ns"),
+        ("r_ohm", "ohm", 330e3, "330 kohm"),
+        ("r_ohm", "ohm", 1e6, "1 Mohm"),
+        ("rth_ja_K_per_W", "K/W", 50.0, "50 K/W"),
+        ("tol_percent", "%", 5.0, "5 %"),
+        ("hfe_min", "", 25.0, "25"),
+    ],
+)
+def test_units_and_figures(key: str, unit: str, value: float, text: str) -> None:
+    """The unit is the end of the key; figures carry four digits at most."""
+    assert unit_of(key) == unit
+    assert figure(value, unit) == text
