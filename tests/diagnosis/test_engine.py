@@ -219,3 +219,45 @@ def test_the_careful_way_also_ends_right() -> None:
 def test_expected_values_name_the_leading_suspects() -> None:
     shown = {e.suspect: e.value for e in D.expected(job(DEAD, Reading(sb.OHMS_C1, 0.1)), sb.DIODE_D1)}
     assert shown["C1 short"] == pytest.approx(0.6, rel=0.05)
+
+
+def test_repairs_that_no_reading_separates_are_named_as_rivals() -> None:
+    every = frozenset(sb.PROBES)
+    verdict = D.verdict(job(DEAD, skipped=every))
+    assert verdict.exhausted and verdict.rivals
+    chances = [chance for _, chance in verdict.rivals]
+    assert chances == sorted(chances, reverse=True) and all(0.05 <= c <= verdict.probability for c in chances)
+    assert verdict.repair not in [refs for refs, _ in verdict.rivals]
+
+
+def test_the_repair_plan_goes_by_chance_per_minute() -> None:
+    plan = D.repair_plan(job(DEAD))
+    worth = [step.probability / step.minutes for step in plan]
+    assert worth == sorted(worth, reverse=True) and all(step.minutes > 0 for step in plan)
+
+
+def test_what_is_left_meets_every_odd_reading() -> None:
+    left = D.what_is_left(job(Reading(sb.OHMS_R1, 9e3), Reading(sb.OHMS_C1, 40.0)))
+    assert left and all({"R1", "C1"} & parts for parts in left)
+    assert D.what_is_left(job(Reading(sb.OHMS_R1, 1e3))) == []
+
+
+def test_the_suspect_is_confirmed_at_the_part_itself() -> None:
+    """With the pins known, a verdict waits for one reading across the part."""
+    pins = {"R1": frozenset("ab"), "C1": frozenset("bg"), "D1": frozenset("bc")}
+    careful = sb.diagnosis(pins=pins)
+    entries = (DEAD, Reading(sb.VOLTS, 0.0), Reading(sb.OHMS_R1, 1e3), Reading(sb.DIODE_D1, 0.6))
+    step = careful.suggest(job(*entries), everything)
+    assert step is not None and {step.probe.plus, step.probe.minus} == {"b", "g"}
+    assert careful.verdict(job(*entries)).status == "open"
+    assert careful.verdict(job(*entries, Reading(step.probe, 0.0))).repair == ("C1",)
+
+
+def test_a_confirmation_is_asked_for_once_and_can_be_skipped() -> None:
+    pins = {"R1": frozenset("ab"), "C1": frozenset("bg"), "D1": frozenset("bc")}
+    hunch = frozenset({"D1"})
+    sure = sb.diagnosis(pins=pins, settings=replace(Settings.load(), stop_target=0.3, hunch_factor=50.0))
+    step = sure.suggest(job(DEAD, hunches=hunch), everything)
+    assert step is not None and step.probe == sb.DIODE_D1 and step.reason.startswith("Confirm D1 short")
+    skipped = job(DEAD, hunches=hunch, skipped=frozenset({sb.DIODE_D1}))
+    assert sure.suggest(skipped, everything) is None and sure.verdict(skipped).status == "found"

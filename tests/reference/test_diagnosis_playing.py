@@ -6,12 +6,14 @@ plays judge the way of deciding, not the physics; plays with the program's own e
 
 from pathlib import Path
 
+import numpy as np
 import pytest
 
 from tests.reference import stand_in
 from tests.reference.playing import Meter, Play, play, summary
 from triage.board.evidence import Sign
 from triage.diagnosis.engine import Diagnosis
+from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.priors import Weight, prior_of
 
 
@@ -29,13 +31,11 @@ def diagnosis(tables: stand_in.Tables) -> Diagnosis:
 
 def play_all(diagnosis: Diagnosis, tables: stand_in.Tables, meter: Meter, looked: bool) -> list[Play]:
     """Every single fault once; ``looked``: cord, plug and joints were found sound first."""
-    plays = []
-    for number, fault in enumerate(f for f in tables.cold if f != "healthy"):
-        truth = {**tables.cold[fault], **tables.live[fault]}
-        first = [stand_in.complaint(tables, fault), *([Sign("sound")] if looked else [])]
-        needed = stand_in.hypothesis(fault).repair
-        plays.append(play(diagnosis, fault, needed, first, truth.get, 100 + number, meter))
-    return plays
+    signs = [Sign("sound")] if looked else []
+    return [
+        play(diagnosis, unit.name, unit.needed, [unit.symptom, *signs], unit.readings.get, 100 + number, meter)
+        for number, unit in enumerate(stand_in.fault_units(tables))
+    ]
 
 
 @pytest.mark.parametrize("looked", [True, False], ids=["cord looked at", "complaint only"])
@@ -58,3 +58,32 @@ def test_slipped_probes_cost_readings_not_repairs(diagnosis: Diagnosis, tables: 
     print({key: round(value, 3) for key, value in got.items()})
     assert got["right"] >= 0.93
     assert got["does not fit"] <= 0.03
+
+
+@pytest.mark.long
+def test_faults_that_are_not_listed_do_not_fit(tables: stand_in.Tables) -> None:
+    """A tenth of the faults left out of the list and played, for each tenth: at least half are flagged.
+
+    The rest of the plays end in a repair of the same part in another mode, or in the finding that the board
+    looks sound.
+    """
+    expected = stand_in.expectations(tables)
+    units = stand_in.fault_units(tables)
+    mixed = np.random.default_rng(4).permutation(len(units))
+    plays = []
+    for tenth in range(10):
+        out = [units[i] for i in mixed[tenth::10]]
+        gone = {stand_in.hypothesis(unit.name) for unit in out}
+        keep = [i for i, h in enumerate(expected.hypotheses) if h not in gone]
+        fewer = Expectations(
+            tuple(expected.hypotheses[i] for i in keep), expected.probes, expected.samples[keep], expected.states[keep]
+        )
+        weights = {h.root[0]: Weight(1.0) for h in fewer.hypotheses if h.root}
+        blind = Diagnosis(fewer, prior_of(weights, {}, pair_share=0), tables.kinds, tables.sides, pins=tables.pins)
+        plays += [
+            play(blind, u.name, u.needed, [u.symptom, Sign("sound")], u.readings.get, 10 * tenth + k) for k, u in enumerate(out)
+        ]
+    got = summary(plays)
+    print({key: round(value, 3) for key, value in got.items()})
+    assert got["does not fit"] >= 0.5
+    assert sum(p.status == "found" and not p.cured for p in plays) <= 0.25 * len(plays)

@@ -25,7 +25,7 @@ from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.explain import Suggestion
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
-from triage.diagnosis.next_reading import Candidate, candidates, cold_first
+from triage.diagnosis.next_reading import Candidate, Scorer, candidates, cold_first
 from triage.diagnosis.priors import Prior
 from triage.diagnosis.second_look import nothing_fits, odd_readings, reading_at_part
 from triage.diagnosis.settings import Settings
@@ -83,6 +83,7 @@ class Diagnosis:
         self.actions = Actions.of_hypotheses(expectations.hypotheses)
         self.model = ReadingModel(expectations, self.settings)
         self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings)
+        self._scorer = Scorer(self.model, self.actions, self.settings.scored_mass)
         self._last: tuple[Job, Standing] | None = None
 
     @classmethod
@@ -243,7 +244,7 @@ class Diagnosis:
             start, since = carry_over(belief, self.expectations.hypotheses, entry.refs, self.settings), []
         belief = posterior(start, self._likelihoods.log(since))
         taken = [entry.probe for entry in since if isinstance(entry, Reading)]
-        ranked = candidates(self.model, belief, self.actions, self.settings.scored_mass, self.costs, self.sides, taken)
+        ranked = candidates(self._scorer, belief, self.costs, self.sides, taken)
         return Standing(belief, start, tuple(since), ranked)
 
     def _ranked(self, job: Job, standing: "Standing", gate: Callable[[Probe], bool]) -> tuple[Candidate, ...]:

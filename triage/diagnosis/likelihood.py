@@ -13,11 +13,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from triage.diagnosis.axis import Axis, draw_width, to_axis
+from triage.diagnosis.bins import bin_edges, merged_bins
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.settings import Settings, instruments
-
-BINS = 16
-"""Outcomes a probe is scored with, besides OL; 12 to 24 cost and gain the same on the prototype."""
 
 
 class ReadingModel:
@@ -45,6 +43,7 @@ class ReadingModel:
             self._cells.append(cells)
             self._widths.append(draw_width(to_axis(samples[first], instrument)))
             self._row.append(row)
+        self._known = [bool((cells >= 0).any()) for cells in self._cells]
         self._build_bins()
 
     @property
@@ -54,7 +53,7 @@ class ReadingModel:
 
     def known(self, column: int) -> bool:
         """True when the probe can be taken under at least one hypothesis."""
-        return bool((self._cells[column] >= 0).any())
+        return self._known[column]
 
     def _fit(self, column: int, first: int, last: int) -> NDArray[np.float64]:
         """Chance of a sound reading in cells ``first`` to ``last`` - 1, for each draw; shape (H, D), nan
@@ -130,18 +129,26 @@ class ReadingModel:
         return (1 - self.gross) * _mean_known(self._fit(column, first, last), slip) + self.gross * slip
 
     def _build_bins(self) -> None:
-        edges, rows, owner = [], [], []
+        edges, rows, owner, few, few_owner = [], [], [], [], []
         for column, axis in enumerate(self.axes):
-            cuts = _bin_edges(self._cells[column], axis.cells)
+            cuts = bin_edges(self._cells[column], axis.cells)
             edges.append(cuts)
-            owner += [column] * (len(cuts) - 1)
-            rows += [row[self._row[column]] for row in self._bin_rows(column, cuts)]
+            table = np.stack(self._bin_rows(column, cuts)).astype(np.float32)
+            rows.append(table[:, self._row[column]])
+            owner += [column] * len(table)
+            merged = np.add.reduceat(table, merged_bins(table), axis=0)
+            few.append(merged[:, self._row[column]])
+            few_owner += [column] * len(merged)
         self.edges = edges
         """For each probe the cells at which its bins begin, and the end; the last bin is OL."""
-        self.bins = np.stack(rows).astype(np.float32) if rows else np.zeros((0, len(self.expectations.hypotheses)), np.float32)
+        self.bins = np.concatenate(rows)
         """p(bin | hypothesis), gross errors included, shape (all bins of all probes, H)."""
         self.owner = np.asarray(owner, dtype=np.int64)
         """Probe of each row of ``bins``."""
+        self.few_bins = np.concatenate(few)
+        """The same with neighbouring bins merged, for scoring when very many hypotheses are in question."""
+        self.few_owner = np.asarray(few_owner, dtype=np.int64)
+        """Probe of each row of ``few_bins``."""
 
     def _bin_rows(self, column: int, cuts: list[int]) -> list[NDArray[np.float64]]:
         axis, cell = self.axes[column], self._cells[column]
@@ -172,27 +179,3 @@ def _mean_known(values: NDArray[np.float64], otherwise: float) -> NDArray[np.flo
     count = known.sum(axis=1)
     total = np.where(known, values, 0.0).sum(axis=1)
     return np.where(count > 0, total / np.maximum(count, 1), otherwise)
-
-
-def _bin_edges(cells: NDArray[np.int32], count: int) -> list[int]:
-    """Cells at which the bins of a probe begin, ending with ``count`` (OL) and ``count`` + 1.
-
-    Quantiles of the largest density that any hypothesis has in a cell, so that every group of hypotheses that
-    reads apart gets its own bin however few they are; each edge then moves to the emptiest cell nearby.
-    """
-    draws = cells.shape[1]
-    envelope = np.zeros(count)
-    for row in cells[:4000]:
-        finite = row[(row >= 0) & (row < count)]
-        if finite.size:
-            np.maximum(envelope, np.bincount(finite, minlength=count) / draws, out=envelope)
-    taps = np.exp(-0.5 * (np.arange(-6, 7) / 2.0) ** 2)
-    smooth = np.convolve(envelope, taps / taps.sum(), mode="same") if count > taps.size else envelope + 1e-9
-    share = np.cumsum(smooth) / max(smooth.sum(), 1e-300)
-    raw = np.searchsorted(share, np.arange(1, BINS) / BINS)
-    cuts = sorted({int(cut) for cut in raw if 0 < cut < count})
-    moved = set()
-    for left, cut, right in zip([0, *cuts], cuts, [*cuts[1:], count], strict=False):
-        low, high = (left + cut + 1) // 2, (cut + right) // 2 + 1
-        moved.add(low + int(np.argmin(smooth[low:high])) if high > low else cut)
-    return [0, *sorted(cut for cut in moved if 0 < cut < count), count, count + 1]

@@ -18,6 +18,9 @@ from triage.diagnosis.costs import Costs
 from triage.diagnosis.information import gini_gain, joint_table
 from triage.diagnosis.likelihood import ReadingModel
 
+FEW = 600
+"""Up to so many hypotheses in question are scored with fine outcomes."""
+
 
 @dataclass(frozen=True, slots=True)
 class Candidate:
@@ -45,49 +48,49 @@ def alive(belief: NDArray[np.float64], mass: float) -> NDArray[np.int64]:
     return np.sort(order[:reach])
 
 
-def rank(
-    model: ReadingModel,
-    belief: NDArray[np.float64],
-    actions: Actions,
-    mass: float,
-    columns: NDArray[np.int64],
-) -> NDArray[np.float64]:
-    """Gain of each of these probes under the belief, shape (len(columns),) [-]; ``columns`` in rising order.
+class Scorer:
+    """Scores readings by what they tell about the repair; holds the outcome tables in the order of the
+    repairs.
     """
-    if not len(columns):
-        return np.zeros(0)
-    keep = alive(belief, mass)
-    keep = keep[np.argsort(actions.of[keep], kind="stable")]
-    weight = (belief[keep] / belief[keep].sum()).astype(np.float32)
-    wanted = np.zeros(len(model.axes), dtype=bool)
-    wanted[columns] = True
-    rows = np.flatnonzero(wanted[model.owner])
-    joint = joint_table(model.bins[np.ix_(rows, keep)], weight, actions.of[keep])
-    return gini_gain(joint, np.searchsorted(columns, model.owner[rows]))
+
+    def __init__(self, model: ReadingModel, actions: Actions, mass: float) -> None:
+        """mass: hypotheses that together hold less than 1 - mass are left out when readings are scored [-].
+        """
+        self.model = model
+        self._actions = actions
+        self._mass = mass
+        self._order = np.argsort(actions.of, kind="stable")
+        self._few_bins = np.ascontiguousarray(model.few_bins[:, self._order])
+
+    def gains(self, belief: NDArray[np.float64]) -> NDArray[np.float64]:
+        """Expected fall of the impurity of the repair for every probe, shape (P,) [-].
+
+        With few hypotheses in question the outcomes are fine, so that near ones are told apart; with many
+        they are coarse.
+        """
+        keep = alive(belief, self._mass)
+        if len(keep) > FEW:
+            weight = belief[self._order].astype(np.float32)
+            joint = joint_table(self._few_bins, weight, self._actions.of[self._order])
+            return gini_gain(joint, self.model.few_owner)
+        keep = keep[np.argsort(self._actions.of[keep], kind="stable")]
+        weight = (belief[keep] / belief[keep].sum()).astype(np.float32)
+        return gini_gain(joint_table(self.model.bins[:, keep], weight, self._actions.of[keep]), self.model.owner)
 
 
 def candidates(
-    model: ReadingModel,
-    belief: NDArray[np.float64],
-    actions: Actions,
-    mass: float,
-    costs: Costs,
-    sides: Mapping[str, str],
-    taken: Sequence[Probe],
+    scorer: Scorer, belief: NDArray[np.float64], costs: Costs, sides: Mapping[str, str], taken: Sequence[Probe]
 ) -> tuple[Candidate, ...]:
     """The readings not taken yet that the shop can take, most gain per minute first; no gate is asked.
 
     taken: readings in the order they were taken.
     """
-    probes = model.expectations.probes
-    columns = np.array(
-        [c for c, p in enumerate(probes) if p not in taken and costs.can_take(p) and model.known(c)], dtype=np.int64
-    )
-    gains = rank(model, belief, actions, mass, columns)
-    found = [
-        Candidate(int(c), probes[c], costs.minutes(probes[c], taken), costs.danger(probes[c], sides), float(gain))
-        for c, gain in zip(columns, gains, strict=True)
-    ]
+    seen, gains = set(taken), scorer.gains(belief)
+    found = []
+    for column, probe in enumerate(scorer.model.expectations.probes):
+        if probe not in seen and costs.can_take(probe) and scorer.model.known(column):
+            minutes, danger = costs.minutes(probe, taken), costs.danger(probe, sides)
+            found.append(Candidate(column, probe, minutes, danger, float(gains[column])))
     return tuple(sorted(found, key=lambda c: (-c.worth, c.column)))
 
 

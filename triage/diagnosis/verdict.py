@@ -17,6 +17,9 @@ from triage.diagnosis.misfit import Fit
 from triage.diagnosis.settings import Settings
 from triage.diagnosis.words import NO_PART_FAULT
 
+RIVAL = 0.05
+"""A repair with at least this chance is named beside the best one [-]."""
+
 
 @dataclass(frozen=True, slots=True)
 class Suspect:
@@ -55,6 +58,10 @@ class Verdict:
     """Chance that this repair cures [-]."""
     exhausted: bool
     """True when no reading that may still be taken is worth its minutes."""
+    rivals: tuple[tuple[tuple[str, ...], float], ...] = ()
+    """Other repairs with at least RIVAL chance each, likeliest first: lift one leg of a part to tell it from
+    these.
+    """
     odd: tuple[str, ...] = ()
     """Readings that do not fit this repair, as texts of their probes, worst first."""
 
@@ -125,4 +132,10 @@ def conclude(
         status = "does not fit"
     else:
         status = "found" if lead.root else NO_PART_FAULT
-    return Verdict(status, lead, tuple(sorted(actions.repairs[action])), cure, exhausted, odd)
+    chances = actions.chances(belief)
+    rivals = tuple(
+        (tuple(sorted(actions.repairs[a])), float(chances[a]))
+        for a in np.argsort(-chances, kind="stable")
+        if a != action and chances[a] >= RIVAL
+    )
+    return Verdict(status, lead, tuple(sorted(actions.repairs[action])), cure, exhausted, rivals, odd)
