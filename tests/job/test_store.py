@@ -14,7 +14,7 @@ import pytest
 from tests.job.samples import BOARD, TIME, log, reading
 from triage.errors import JobError
 from triage.job import store
-from triage.job.entries import replay
+from triage.job.entries import entry_to_dict, make_entry, replay
 
 
 def new_job(folder: Path, name: str = "job.toml") -> store.Job:
@@ -56,6 +56,79 @@ def test_unknown_keys_of_every_level_survive_a_new_entry(tmp_path: Path) -> None
     assert document["customer"] == {"name": "n/a"}
     assert document["entry"][0]["probe_tips"] == "needle"
     assert len(document["entry"]) == 2
+
+
+HAND_WRITTEN = {
+    "log last": "# mine\n[job]\nformat = 1\n[board]\n[[entry]]  # first\ntime = 'x'\nkind = 'note'\nnote = 'a'\n",
+    "log in the middle": "[job]\nformat = 1\n[[entry]]\ntime = 'x'\nkind = 'note'\nnote = 'a'\n[board]\n",
+    "log in one line": "entry = [{time = 'x', kind = 'note', note = 'a'}]\n[job]\nformat = 1\n[board]\n",
+    "a table in the entry": "[job]\nformat = 1\n[board]\n[[entry]]\ntime = 'x'\nkind = 'note'\nnote = 'a'\n[entry.more]\nb = 1\n",
+    "a header in a text": "[job]\nformat = 1\n[board]\nnote = '''\n[[entry]]\n'''\n",
+    "no line end": "[job]\nformat = 1\n[board]",
+    "windows": "[job]\r\nformat = 1\r\n[board]\r\n",
+}
+
+
+@pytest.mark.parametrize("name", HAND_WRITTEN)
+def test_a_file_written_by_hand_takes_entries_wherever_its_log_stands(tmp_path: Path, name: str) -> None:
+    path = tmp_path / "job.toml"
+    path.write_text(HAND_WRITTEN[name], newline="")
+    job = store.load(path)
+    before = len(job.entries)
+    for value in (1.0, 2.0, 3.0):
+        job.append(reading(value, typed="x"))
+    again = store.load(path)
+    assert again.entries == job.entries and len(again.entries) == before + 3
+    assert again.document == job.document
+    if name == "log last":
+        assert path.read_text().startswith("# mine\n") and "# first" in path.read_text()
+
+
+NASTY = [
+    '"""',
+    "'''",
+    "\\",
+    "[[entry]]\nkind = 1",
+    "# no",
+    "\x1b\x00\x7f",
+    "\r\n",
+    "\t",
+    "\u2028",
+    "a" * 2000,
+    "\ud7ff",
+    '" \\"""',
+]
+
+
+def test_any_words_of_a_technician_come_back_as_they_were(tmp_path: Path) -> None:
+    job = new_job(tmp_path)
+    for words in NASTY:
+        job.append(make_entry("note", TIME, note=words))
+    assert [entry.said["note"] for entry in store.load(job.path).entries] == [words.replace("\r\n", "\n") for words in NASTY]
+
+
+def test_what_stands_in_a_file_keeps_its_carriage_returns_through_a_rewrite(tmp_path: Path) -> None:
+    path = tmp_path / "job.toml"
+    path.write_text('entry = []\n[job]\nformat = 1\n[board]\nnote = "a\\r\\nb\\nc"\n')
+    store.load(path).append(reading(1.0))
+    assert store.load(path).board["note"] == "a\r\nb\nc"
+
+
+def test_a_job_ends_somewhere(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    job = new_job(tmp_path)
+    monkeypatch.setattr(store, "MOST_ENTRIES", 2)
+    job.append(reading(1.0))
+    job.append(reading(2.0))
+    with pytest.raises(JobError, match=r"2 entries.*open a new one"):
+        job.append(reading(3.0))
+
+
+def test_the_longest_job_can_be_opened_again(tmp_path: Path) -> None:
+    entry = entry_to_dict(reading(4700.123456, typed="4k7", instrument="hand multimeter, 3.5 digits"))
+    document = {"job": {"format": 1}, "board": BOARD, "entry": [entry] * store.MOST_ENTRIES}
+    path = tmp_path / "job.toml"
+    store.write_content(path, store._as_toml(document), b"")
+    assert len(store.load(path).entries) == store.MOST_ENTRIES
 
 
 def test_a_file_of_a_later_version_is_refused_not_misread(tmp_path: Path) -> None:
@@ -111,7 +184,7 @@ def test_a_full_disk_leaves_the_old_file_and_the_session_intact(tmp_path: Path, 
 @pytest.mark.parametrize("device", ["/dev/full", "/dev/zero"])
 def test_a_device_in_place_of_a_job_is_refused_at_once(device: str) -> None:
     with pytest.raises(JobError, match="not a regular file"):
-        store.write_document(Path(device), {"job": {"format": 1}}, b"")
+        store.write_content(Path(device), b"x = 1", b"")
     with pytest.raises(JobError, match="not a regular file"):
         store.load(Path(device))
 

@@ -125,7 +125,10 @@ def entry_to_dict(entry: Entry) -> dict[str, Any]:
 
 
 def make_entry(kind: str, time: str, **said: Any) -> Entry:
-    """A new entry, checked as one read from a file. Raises EntryError naming the key and what it may be."""
+    """A new entry, checked as one read from a file; line ends become those of the file. Raises EntryError
+    naming the key and what it may be.
+    """
+    said = {key: value.replace("\r\n", "\n") if isinstance(value, str) else value for key, value in said.items()}
     try:
         return entry_from_dict({"kind": kind, "time": time, **said}, "entry")
     except JobError as error:

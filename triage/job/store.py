@@ -10,7 +10,6 @@ never overwritten.
 import contextlib
 import copy
 import glob
-import hashlib
 import os
 import tempfile
 from collections.abc import Mapping
@@ -28,6 +27,10 @@ FORMAT = 1
 """Version of the job file; a file of a higher version is refused rather than misread."""
 
 
+MOST_ENTRIES = 4000
+"""A log of more is no job any more; so many entries keep a file well within what can be opened again."""
+
+
 @dataclass(slots=True)
 class Job:
     """One job as it stands in its file."""
@@ -35,11 +38,13 @@ class Job:
     path: Path
     document: dict[str, Any]
     """The whole file as tables, unknown keys included."""
+    content: bytes
+    """The file as last read or written here."""
     entries: tuple[Entry, ...] = ()
-    digest: bytes = b""
-    """Digest of the file as last read or written here; empty before the first write."""
     conflicts: tuple[Path, ...] = field(default=())
     """Copies beside it that a sync program left after two benches wrote the same job."""
+    _ends_with_log: bool = False
+    """True once it has been proved that an entry can be put behind the text of the file as it is."""
 
     @property
     def id(self) -> str:
@@ -55,10 +60,25 @@ class Job:
     def append(self, entry: Entry) -> None:
         """Add the entry, on disk before this returns. Raises JobError and leaves job and file as they
         were."""
+        if len(self.entries) >= MOST_ENTRIES:
+            raise JobError(str(self.path), f"has {MOST_ENTRIES:,} entries", advice="close this job and open a new one")
         document = {**self.document, "entry": [*self.document.get("entry", ()), entry_to_dict(entry)]}
-        self.digest = write_document(self.path, document, self.digest)
-        self.document = document
-        self.entries = (*self.entries, entry)
+        content = self._with_entry(entry, document)
+        write_content(self.path, content, self.content)
+        self.content, self.document, self.entries = content, document, (*self.entries, entry)
+
+    def _with_entry(self, entry: Entry, document: dict[str, Any]) -> bytes:
+        """The text of the file with the entry behind it, or written anew where its log does not stand last.
+
+        The first entry of a session proves, by reading the text again, which of the two is right; text behind
+        that stays right. Comments and layout of a file that somebody wrote by hand are kept that way.
+        """
+        longer = self.content.rstrip() + b"\n\n" + _entry_text(entry_to_dict(entry))
+        if self._ends_with_log:
+            return longer
+        with contextlib.suppress(JobError):
+            self._ends_with_log = parse_toml(longer, str(self.path)) == document
+        return longer if self._ends_with_log else _proved(document, self.path)
 
 
 def create(path: Path, board: Mapping[str, Any], opened: str, profile: str, more: Mapping[str, Any] | None = None) -> Job:
@@ -72,7 +92,9 @@ def create(path: Path, board: Mapping[str, Any], opened: str, profile: str, more
         raise JobError(str(path), "a file of that name is there already", advice="open it, or choose another name")
     head = {"format": FORMAT, "opened": opened, "profile": profile, **(more or {})}
     document: dict[str, Any] = {"job": head, "board": copy.deepcopy(dict(board))}
-    return Job(path, document, (), write_document(path, document, b""))
+    content = _proved(document, path)
+    write_content(path, content, b"")
+    return Job(path, document, content)
 
 
 def load(path: Path) -> Job:
@@ -86,7 +108,7 @@ def load(path: Path) -> Job:
     if not isinstance(found, list):
         raise JobError(f"{where}, entry", f"found {type(found).__name__}", "tables [[entry]]")
     entries = tuple(entry_from_dict(item, f"{where}, entry {n}") for n, item in enumerate(found, 1))
-    return Job(path, document, entries, hashlib.sha256(content).digest(), conflict_copies(path))
+    return Job(path, document, content, entries, conflict_copies(path))
 
 
 def _check_head(document: Mapping[str, Any], where: str) -> None:
@@ -124,15 +146,46 @@ def conflict_copies(path: Path) -> tuple[Path, ...]:
     )
 
 
-def write_document(path: Path, document: Mapping[str, Any], expected: bytes) -> bytes:
-    """Write the tables to the file in one step and return the digest of its bytes.
+def _as_toml(document: Mapping[str, Any], multiline: bool = True) -> bytes:
+    """The document as text, the log last and each entry under a heading of its own, so that the next can be
+    put behind."""
+    entries = document.get("entry", [])
+    if not all(isinstance(entry, dict) and _is_flat(entry) for entry in entries):
+        return tomli_w.dumps(document, multiline_strings=multiline).encode()
+    head = {key: value for key, value in document.items() if key != "entry"}
+    parts = [tomli_w.dumps(head, multiline_strings=multiline).encode()]
+    return b"\n".join(parts + [_entry_text(entry, multiline) for entry in entries])
 
-    expected: digest of the file that may be replaced; empty for a file that must not exist yet.
-    Raises JobError when the disk is full, the folder read-only or the file changed by somebody else; the old
-    file is then untouched.
+
+def _entry_text(entry: Mapping[str, Any], multiline: bool = True) -> bytes:
+    return b"[[entry]]\n" + tomli_w.dumps(entry, multiline_strings=multiline).encode()
+
+
+def _is_flat(entry: Mapping[str, Any]) -> bool:
+    """True for an entry without tables in it, which would need headings under the entry's own."""
+    return not any(isinstance(value, dict | list) for value in entry.values())
+
+
+def _proved(document: Mapping[str, Any], path: Path) -> bytes:
+    """The tables as text that reads back as the same tables within the limits: a file that does not would be
+    a loss.
+
+    Texts stand on lines of their own where that keeps them as they are (a carriage return does not).
     """
-    content = tomli_w.dumps(document, multiline_strings=True).encode()
-    # A file that could not be opened again would be a loss: the same limits hold on the way out.
+    content = _as_toml(document)
+    if parse_toml(content, str(path)) != document:
+        content = _as_toml(document, multiline=False)
+        parse_toml(content, str(path))
+    return content
+
+
+def write_content(path: Path, content: bytes, expected: bytes) -> None:
+    """Put the content into the file in one step.
+
+    expected: content of the file that may be replaced; empty for a file that must not exist yet. Raises
+    JobError when the disk is full, the folder read-only or the file changed by somebody else; the old file is
+    then untouched.
+    """
     if len(content) > LARGEST_FILE:
         raise JobError(
             str(path),
@@ -140,7 +193,6 @@ def write_document(path: Path, document: Mapping[str, Any], expected: bytes) -> 
             f"at most {LARGEST_FILE:,} bytes",
             "close this job and open a new one",
         )
-    parse_toml(content, str(path))
     try:
         _check_unchanged(path, expected)
         _replace(path, content)
@@ -151,12 +203,11 @@ def write_document(path: Path, document: Mapping[str, Any], expected: bytes) -> 
             f"cannot be written: {reason}",
             advice=("nothing already entered is lost; free some space or use another folder, then enter it again"),
         ) from None
-    return hashlib.sha256(content).digest()
 
 
 def _check_unchanged(path: Path, expected: bytes) -> None:
     try:
-        on_disk = hashlib.sha256(read_regular(path, LARGEST_FILE)).digest()
+        on_disk = read_regular(path, LARGEST_FILE + 1)
     except FileNotFoundError:
         on_disk = b""
     if on_disk == expected:
