@@ -14,7 +14,17 @@ from triage.board.fault import Fault
 from triage.board.part import Board, Part
 from triage.families.family import Family
 from triage.physics.netlist import Compiled, Netlist, compile_netlist
-from triage.physics.transient import V_MAX, Quality, State, Stretch, Watch, initial_state, rest_state, run_stretch
+from triage.physics.transient import (
+    SWITCHING_START,
+    V_MAX,
+    Quality,
+    State,
+    Stretch,
+    Watch,
+    initial_state,
+    rest_state,
+    run_stretch,
+)
 
 MOST_PERIODS = 8
 SETTLED_OUTPUT = 0.012
@@ -79,10 +89,15 @@ class _Run:
     """Ref -> index among the capacitors."""
     zeroed: int = 0
     unfed_done: bool = False
+    restarted: bool = True
+    """True when the state was changed by hand: the next period begins at the crest and leaves out the restart."""
 
     def period(self) -> Stretch:
-        """The next mains period, begun at the crest."""
-        return run_stretch(self.compiled, self.state, 0.0, 1.0 / self.board.mains.frequency, self.watch, self.quality)
+        """The next mains period. Its statistics cover a whole period, a tenth of a millisecond after the crest to the next."""
+        begin, period = SWITCHING_START, 1.0 / self.board.mains.frequency
+        start, skip = (0.0, begin) if self.restarted else (begin, 0.0)
+        self.restarted = False
+        return run_stretch(self.compiled, self.state, start, begin + period, self.watch, self.quality, skip)
 
 
 def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
@@ -153,6 +168,7 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
         stretch = run.period()
         change, output = _output(run) - output, _output(run)
         if _empty_unfed(run, stretch, rows, before):
+            run.restarted = True
             last, output = None, _resting_output(run)
             continue
         drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
@@ -213,6 +229,7 @@ def _follow_drift(run: _Run, change: float, last: float | None) -> float | None:
         ratio = change / last
         for part in parts:
             k = run.electrolytics[part.ref]
+            run.restarted = True
             run.state.capacitors[k] = max(run.state.capacitors[k] + 0.9 * change * ratio / (1.0 - ratio), 0.0)
         return None
     return change

@@ -39,6 +39,10 @@ BIPOLAR_DEFAULTS = {"saturation_current": 1e-14, "gain": 100.0, "reverse_gain": 
 
 TERMINALS = 5
 """Most terminals of a part that is more than a junction."""
+MOSFET, SHUNT_REFERENCE, REGULATOR, CONTROLLER = 1, 2, 3, 4
+"""Kinds of parts that are more than a junction."""
+CLOCK = 3
+"""Place of the start of the running period [s] in the state of a controller."""
 PORT_RESISTOR, PORT_CAPACITOR, PORT_WINDING, PORT_SOURCE, PORT_NONE = range(5)
 
 

@@ -1,3 +1,4 @@
+# mypy: disable-error-code="no-untyped-def,call-overload"
 """Compiled solution of the unpowered network with a meter on two of its nodes.
 
 Capacitors are open, windings are their copper. The meter is part of the circuit: a voltage behind a resistance for ohms, a

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from triage.physics.netlist import Compiled
+from triage.physics.netlist import CLOCK, CONTROLLER, Compiled
 
 V_MIN, V_MAX, V_MEAN, V_RMS, I_MIN, I_MAX, I_MEAN, I_RMS, POWER = range(9)
 """Columns of the statistics: extremes, means and rms of voltage [V] and current [A], mean of their product [W]."""
@@ -110,8 +110,11 @@ def rest_state(compiled: Compiled) -> State:
 
 
 def run_stretch(compiled: Compiled, state: State, start: float, stop: float, watch: Watch | None = None,
-                quality: Quality = FINE) -> Stretch:
+                quality: Quality = FINE, skip: float | None = None) -> Stretch:
     """Integrate from ``start`` to ``stop`` [s]; ``state`` is moved to the end point.
+
+    The statistics leave out the first ``skip`` [s], the restart of a stretch that does not go on from another; by default
+    SWITCHING_START or a tenth of the stretch.
 
     Raises NoConvergence when no step small enough is found.
     """
@@ -120,15 +123,16 @@ def run_stretch(compiled: Compiled, state: State, start: float, stop: float, wat
     watch = watch or Watch()
     work = memory(compiled, state.nodes, _floors(compiled, quality.floors))
     trace = np.zeros((watch.rows, 1 + len(watch.nodes)))
-    skip = min(SWITCHING_START, 0.1 * (stop - start))
+    skip = min(SWITCHING_START, 0.1 * (stop - start)) if skip is None else skip
     status, steps, reached, swings, used = run(
         work, compiled.nonzeros, compiled.program, compiled.resistor, compiled.transfer, compiled.capacitor, compiled.winding,
-        compiled.diode, compiled.bipolar, compiled.source, compiled.port, state.capacitors, state.windings,
+        compiled.diode, compiled.bipolar, compiled.behaviour, compiled.source, compiled.port, state.capacitors, state.windings,
         np.array([start, stop, start + skip, quality.largest_step, SMALLEST_STEP, quality.trusted_step]),
         (quality.newton_share, quality.newton_absolute, quality.step_relative), np.array(watch.switch, dtype=np.int64),
         (watch.start, watch.interval, np.array(watch.nodes, dtype=np.int64), trace))
     if status != 0:
         raise NoConvergence(reached)
+    compiled.behaviour[4][:, CLOCK] -= (stop - start) * (compiled.behaviour[2] == CONTROLLER)
     span = stop - start - skip
     stats = np.ascontiguousarray(work.stats.T)
     stats[:, [V_MEAN, I_MEAN, POWER]] /= span

@@ -1,3 +1,4 @@
+# mypy: disable-error-code="no-untyped-def,call-overload"
 """Compiled behaviour of parts that are more than a junction: field-effect transistors, shunt references, three-terminal
 regulators, current-mode controllers.
 
@@ -15,14 +16,15 @@ import math
 import numpy as np
 from numba import njit
 
-from triage.physics.netlist import TERMINALS
+from triage.physics.netlist import CONTROLLER, MOSFET, REGULATOR, SHUNT_REFERENCE, TERMINALS
 from triage.physics.transient_devices import OPTIONS, voltage
 
-MOSFET, SHUNT_REFERENCE, REGULATOR, CONTROLLER = 1, 2, 3, 4
 DIFFERENCE = 1e-6
 """Step of the slopes [V]."""
 EVENT_WINDOW = 4e-9
 """A comparator's trip is located within this time [s]."""
+LINEAR_VOLTS, LINEAR_SHARE = 2e-3, 5e-4
+"""Move of a terminal over which a linearisation holds [V], [-]."""
 
 
 @njit(**OPTIONS)
@@ -81,11 +83,12 @@ def currents(kind, u, p, s, out):
 
 
 @njit(**OPTIONS)
-def stamp_behaviours(a, rhs, v, behaviour):
-    """Linearise every behaviour about ``v``."""
+def stamp_behaviours(a, rhs, v, behaviour, at):
+    """Linearise every behaviour about ``v``; ``at`` keeps the voltages of the terminals."""
     nodes, slots, kinds, params, states = behaviour
-    u, base, moved = np.empty(TERMINALS), np.empty(TERMINALS), np.empty(TERMINALS)
+    base, moved = np.empty(TERMINALS), np.empty(TERMINALS)
     for b in range(kinds.shape[0]):
+        u = at[b]
         for k in range(TERMINALS):
             u[k] = voltage(v, nodes[b, k])
         currents(kinds[b], u, params[b], states[b], base)
@@ -103,6 +106,18 @@ def stamp_behaviours(a, rhs, v, behaviour):
                     a[slots[b, k * TERMINALS + j]] += g
                     if nodes[b, k] >= 0:
                         rhs[nodes[b, k]] += g * kept
+
+
+@njit(**OPTIONS)
+def behaviours_close(v, behaviour, at):
+    """True when no terminal has moved further from where it was linearised than the linearisation holds."""
+    nodes, kinds = behaviour[0], behaviour[2]
+    for b in range(kinds.shape[0]):
+        for k in range(TERMINALS):
+            x = voltage(v, nodes[b, k])
+            if abs(x - at[b, k]) > LINEAR_VOLTS + LINEAR_SHARE * abs(x):
+                return False
+    return True
 
 
 @njit(**OPTIONS)

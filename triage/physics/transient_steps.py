@@ -20,6 +20,15 @@ from typing import NamedTuple
 import numpy as np
 from numba import njit
 
+from triage.physics.netlist import TERMINALS
+from triage.physics.transient_behaviour import (
+    EVENT_WINDOW,
+    advance,
+    behaviours_close,
+    margin,
+    next_event,
+    stamp_behaviours,
+)
 from triage.physics.transient_devices import (
     INNER,
     OPTIONS,
@@ -60,6 +69,8 @@ EULER_STEPS = 3
 """Steps of the implicit Euler rule at the start, until the derivatives are those of the circuit."""
 EULER_START = 10.0
 """First step as a multiple of the smallest."""
+AFTER_JUMP = 1e-10
+"""Step after the drive of a controller has jumped [s]."""
 SAFETY, GROW_MOST, SHRINK_MOST, NEWTON_SHRINK = 0.8, 2.5, 0.15, 0.2
 """Share of the step size that the truncation error allows, and limits of its change [-]."""
 V_MIN, V_MAX, V_SUM, V_SQUARE, I_MIN, I_MAX, I_SUM, I_SQUARE, VI_SUM = range(9)
@@ -96,6 +107,7 @@ class Memory(NamedTuple):
     vq: np.ndarray
     lin_d: np.ndarray
     lin_q: np.ndarray
+    lin_b: np.ndarray
     no_d: np.ndarray
     no_q: np.ndarray
     port_start: np.ndarray
@@ -117,7 +129,8 @@ def memory(compiled, nodes, floor):
         history, history[first:first + nd], history[first + nd:].reshape(nq, 2), np.zeros(states), np.zeros(states), floor,
         np.zeros(width), np.zeros(width), np.zeros(width), np.zeros(n), np.zeros(n),
         np.zeros((nw, nw)), np.zeros(nw), np.zeros(len(compiled.names["source"])),
-        np.zeros(nd), np.zeros((nq, 2)), np.zeros(2 * nd), np.zeros((nq, 5)), np.zeros(nd), np.zeros((nq, 2)),
+        np.zeros(nd), np.zeros((nq, 2)), np.zeros(2 * nd), np.zeros((nq, 5)),
+        np.zeros((len(compiled.behaviour[2]), TERMINALS)), np.zeros(nd), np.zeros((nq, 2)),
         *(np.zeros((2, ports)) for _ in range(3)), stats)
 
 
@@ -129,14 +142,15 @@ def copy(target, origin):
 
 
 @njit(**INNER)
-def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, bipolar, history_q, lin_q, program, share,
-                error, most):
+def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, bipolar, history_q, lin_q, behaviour, lin_b,
+                program, share, error, most):
     """Newton's method at one time; ``v`` holds the guess and becomes the solution. Returns whether it settled."""
     for _ in range(most):
         copy(a, linear)
         copy(rhs, drive)
         limited = stamp_diodes(a, rhs, v, vd, diode, a0, history_d, lin_d, GMIN)
         limited = stamp_bipolars(a, rhs, v, vq, bipolar, a0, history_q, lin_q, GMIN) or limited
+        stamp_behaviours(a, rhs, v, behaviour, lin_b)
         if not factor_and_solve(a, rhs, program):
             return False
         total = 0.0
@@ -145,7 +159,8 @@ def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, b
             total += abs(rhs[k])
         if not math.isfinite(total):
             return False
-        if not limited and junctions_close(v, diode, vd, bipolar, vq, share, error):
+        if (not limited and junctions_close(v, diode, vd, bipolar, vq, share, error)
+                and behaviours_close(v, behaviour, lin_b)):
             return True
     return False
 
@@ -162,11 +177,11 @@ def source_drive(t, source, emf, drive):
 
 
 @njit(**INNER)
-def solve_states(m, program, capacitor, winding, diode, bipolar, a0, share, error, most):
+def solve_states(m, program, capacitor, winding, diode, bipolar, behaviour, a0, share, error, most):
     """Node voltages and states at one time from the history in ``m``; returns whether Newton's method settled."""
     inject_storage(m.drive, a0, m.history, capacitor, winding, m.inverse, m.flux)
     if not solve_point(m.linear, m.drive, m.matrix, m.rhs, m.v, m.vd, m.vq, a0, diode, m.history_d, m.lin_d, bipolar,
-                       m.history_q, m.lin_q, program, share, error, most):
+                       m.history_q, m.lin_q, behaviour, m.lin_b, program, share, error, most):
         return False
     first = capacitor[2].shape[0] + winding[3].shape[0]
     storage_states(m.v, a0, m.history, capacitor, winding, m.inverse, m.flux, m.y)
@@ -256,6 +271,15 @@ def accumulate(stats, start, stage, end, h):
 
 
 @njit(**INNER)
+def hold_ports(m):
+    """Let the ports of an Euler step have their end values throughout, as its derivatives do."""
+    for p in range(m.port_end.shape[1]):
+        for k in range(2):
+            m.port_start[k, p] = m.port_end[k, p]
+            m.port_stage[k, p] = m.port_end[k, p]
+
+
+@njit(**INNER)
 def keep(m, h, euler):
     """Make the end of a step the start of the next."""
     fade = math.exp(-h / PEAK_MEMORY)
@@ -306,8 +330,8 @@ def begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, 
 
 
 @njit(**OPTIONS)
-def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bipolar, source, port, vc, iw, times, tolerances,
-        swing, trace):
+def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bipolar, behaviour, source, port, vc, iw, times,
+        tolerances, swing, trace):
     """Integrate from times[0] to times[1]; returns (status, steps, time reached, excursions, trace rows used).
 
     ``vc``, ``iw`` and the nodes in ``m`` are read and left at the end point. ``times`` = (start, stop, start of statistics,
@@ -318,9 +342,10 @@ def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bip
     share, error, scale = tolerances
     begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, iw)
     t, h, steps, up, swings, used, next_trace = times[0], h_min * EULER_START, 0, 0, 0, 0, trace[0]
+    since, overshoot = 0, -1.0
     while t < stop * (1.0 - 1e-12):
-        h = min(h, stop - t)
-        euler = steps < EULER_STEPS
+        h = min(h, stop - t, next_event(behaviour, t) - t)
+        euler = since < EULER_STEPS
         a0 = 1.0 / h if euler else LEAD / h
         copy(m.linear, m.base)
         stamp_storage(m.linear, a0, capacitor, winding, m.inverse)
@@ -328,7 +353,7 @@ def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bip
         for stage in range(0 if euler else 1, 1 if euler else 3):
             prepare_stage(m, stage, h)
             source_drive(t + (GAMMA * h if stage == 1 else h), source, m.emf, m.drive)
-            settled = solve_states(m, program, capacitor, winding, diode, bipolar, a0, share, error,
+            settled = solve_states(m, program, capacitor, winding, diode, bipolar, behaviour, a0, share, error,
                                    10 if h > 2.0 * h_min and not euler else 200)
             if not settled:
                 break
@@ -347,12 +372,25 @@ def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bip
             copy(m.v, m.v_start)
             junction_voltages(m.v, diode, m.vd, bipolar, m.vq)
             continue
+        past = margin(m.v, behaviour, t + h)
+        if past > 0.0 and overshoot < 0.0 and h > EVENT_WINDOW:
+            # Cut the step at the instant the comparator trips, by the straight line between its two ends.
+            h = max(h * min(overshoot / (overshoot - past), 0.9), 0.5 * EVENT_WINDOW)
+            copy(m.v, m.v_start)
+            junction_voltages(m.v, diode, m.vd, bipolar, m.vq)
+            continue
         port_values(m.v, m.y, m.f, m.emf, port, resistor, capacitor, source, m.port_end)
+        if euler:
+            hold_ports(m)
         if t >= stats_from:
             accumulate(m.stats, m.port_start, m.port_stage, m.port_end, h)
         t += h
         steps += 1
+        since += 1
         keep(m, h, euler)
+        if advance(m.v, behaviour, t, h):
+            since, worst, h = 0, 1.0, AFTER_JUMP
+        overshoot = margin(m.v, behaviour, t)
         up, ended = excursion(m.v, swing, up)
         if t >= stats_from:
             swings += ended

@@ -2,9 +2,8 @@
 
 from triage.board.kinds import PartKind, State
 from triage.board.part import Part
-from triage.physics.netlist import PORT_NONE, Netlist
+from triage.physics.netlist import CONTROLLER, PORT_NONE, Netlist
 
-_CONTROLLER = 4
 _SHORT, _LEAK = 2.0, 4700.0
 _SUBSTRATE = {"saturation_current": 1e-13, "emission": 1.1, "series_resistance": 3.0}
 _SUPPLY_ZENER = {"saturation_current": 1e-14, "emission": 1.0, "series_resistance": 5.0, "breakdown_voltage": 34.0,
@@ -35,7 +34,7 @@ def _place(net: Netlist, part: Part, state: State) -> None:
         net.resistor(f"{ref}:feedback", feedback, ground, 1e6)
     else:
         net.diode(f"{ref}:zener", ground, supply, _SUPPLY_ZENER)
-        net.behaviour(ref, _CONTROLLER, (supply, drive, feedback, sense, ground), (
+        net.behaviour(ref, CONTROLLER, (supply, drive, feedback, sense, ground), (
             value["start_voltage"], value["stop_voltage"], value.get("latch_voltage", 27.0),
             value.get("feedback_offset", 1.2), value["sense_voltage"], value.get("slope_voltage", 0.15),
             1.0 / value["frequency"], value.get("feedback_resistance", 4700.0), value.get("supply_current", 1.5e-3) - 1e-4,

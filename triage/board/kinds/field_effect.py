@@ -2,9 +2,8 @@
 
 from triage.board.kinds import OPEN, PartKind, State, cut
 from triage.board.part import Part
-from triage.physics.netlist import PORT_RESISTOR, Netlist
+from triage.physics.netlist import MOSFET, PORT_RESISTOR, Netlist
 
-_MOSFET = 1
 _SHORT, _GATE_SHORT, _LEAK, _FLOATING_GATE = 0.05, 1.0, 10e3, 1e7
 _MODULATION = 0.002
 """Channel-length modulation [1/V]."""
@@ -28,7 +27,7 @@ def _place(net: Netlist, part: Part, state: State) -> None:
         net.resistor(f"{ref}:leak", drain, source, state.size("leaky", _LEAK))
     net.resistor(f"{ref}:d", drain, f"{ref}:di", value.get("on_resistance", 1.0))
     if not state.cold:
-        net.behaviour(ref, _MOSFET, (f"{ref}:di", gate, source),
+        net.behaviour(ref, MOSFET, (f"{ref}:di", gate, source),
                       (value.get("transconductance", 6.0), value.get("threshold_voltage", 3.6), _MODULATION))
     net.capacitor(f"{ref}:cgs", gate, source, value.get("gate_source_capacitance", 8e-10), 1e-3)
     net.capacitor(f"{ref}:cgd", drain, gate, value.get("gate_drain_capacitance", 1.2e-11), 1e-3)

@@ -2,9 +2,8 @@
 
 from triage.board.kinds import OPEN, PartKind, State, cut
 from triage.board.part import Part
-from triage.physics.netlist import PORT_NONE, PORT_RESISTOR, Netlist
+from triage.physics.netlist import PORT_NONE, PORT_RESISTOR, REGULATOR, SHUNT_REFERENCE, Netlist
 
-_SHUNT_REFERENCE, _REGULATOR = 2, 3
 _SHUNT_SHORT, _SHUNT_LEAK, _REFERENCE_INPUT = 2.0, 4700.0, 1.2e6
 _SUBSTRATE = {"saturation_current": 1e-13, "emission": 1.1}
 _GAIN, _MOST, _BIAS, _KNEE, _KNEE_WIDTH = 2.0, 0.12, 0.25e-3, 2.0, 0.2
@@ -27,7 +26,7 @@ def _place_reference(net: Netlist, part: Part, state: State) -> None:
         net.resistor(f"{ref}:leak", cathode, anode, state.size("leaky", _SHUNT_LEAK))
     if not state.cold:
         level = value["reference_voltage"] * (1.1 if "vref_high" in state.modes else 1.0)
-        net.behaviour(ref, _SHUNT_REFERENCE, (cathode, anode, sense), (level, _GAIN, _MOST, _BIAS, _KNEE, _KNEE_WIDTH))
+        net.behaviour(ref, SHUNT_REFERENCE, (cathode, anode, sense), (level, _GAIN, _MOST, _BIAS, _KNEE, _KNEE_WIDTH))
     net.port(ref, "", part.pins["cathode"], anode, PORT_NONE)
 
 
@@ -48,7 +47,7 @@ def _place_regulator(net: Netlist, part: Part, state: State) -> None:
         net.diode(f"{ref}:pass", entry, output, _COLD_PASS)
         net.resistor(f"{ref}:bias", entry, ground, _COLD_BIAS)
     elif "open" not in state.modes:
-        net.behaviour(ref, _REGULATOR, (entry, output, ground), (
+        net.behaviour(ref, REGULATOR, (entry, output, ground), (
             value["output_voltage"], 10.0, value.get("current_limit", 1.5), value.get("dropout_voltage", 1.9), 0.005, 150.0,
             value.get("thermal_resistance", 14.0), _TIME), (25.0,))
     net.resistor(f"{ref}:divider", output, ground, value.get("divider_resistance", 8100.0))
