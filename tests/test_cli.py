@@ -159,6 +159,8 @@ def test_the_answers_for_a_person_are_lines(job: str, run: Terminal) -> None:
     explained = run("suspects", job, "--explain")
     assert "of the single faults" in explained and "complaint" in explained
     assert "no verdict yet" in run("verdict", job)
+    assert "replace" in run("worth", job, "--new-price", "12.50")
+    assert run.json("worth", job)["options"][0]["cost"] is None, "nothing found to mend yet"
     assert "358 V of 250 V rated" in run("stress", job)
     assert "at least 447 V" in run("demand", job, "R1")
     assert "high-voltage film 500 V" in run("candidates", job, "R1")

@@ -39,6 +39,13 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
     ),
     "next": ("the next reading to take, or the verdict", ((("job",), {}),)),
     "verdict": ("what the job has come to", ((("job",), {}),)),
+    "worth": (
+        "repair, replace or scrap, with what each costs",
+        (
+            (("job",), {}),
+            (("--new-price",), {"metavar": "MONEY", "help": "price of a new adapter (default: usual for its power)"}),
+        ),
+    ),
     "show": ("the whole job: stage, log, cautions, looks, retest", ((("job",), {}),)),
     "stress": ("stress of each part against its rating", ((("profile",), {"help": "profile, or a job file"}),)),
     "expect": (
@@ -63,8 +70,12 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
             (("-o", "--output"), {"metavar": "FILE", "help": "write there instead of to the terminal"}),
         ),
     ),
+    "profile": (
+        "make a profile of a board nobody has drawn: propose, estimate, set, turns, strike, add, move, roles, save",
+        ((("words",), {"nargs": argparse.REMAINDER, "metavar": "ACTION ...", "help": "one of these, and -h for its arguments"}),),
+    ),
     "check": (
-        "check files: profiles, part catalogs, jobs (all shipped ones when none is named)",
+        "check files: profiles, templates, part catalogs, jobs (all shipped ones when none is named)",
         ((("files",), {"nargs": "*"}),),
     ),
     "deck": (
@@ -92,6 +103,12 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
     "demo": ("open a job on the shipped demo adapter in the app", ()),
 }
 """Sub-command -> (help, its arguments)."""
+
+PLACES = {
+    **dict.fromkeys(("new", "add", "check", "jobs"), "triage.commands.working"),
+    "profile": "triage.commands.profile",
+}
+"""Sub-command -> module that carries it out, where that is not the one for asking."""
 
 WITHOUT_JSON = ("report", "deck", "solve", "open", "demo")
 
@@ -136,7 +153,7 @@ def _run(asked: argparse.Namespace) -> int:
         if asked.command == "open":
             return app(Path(asked.job), None, jobs)
         return app(None, "harbour-handset-charger" if asked.command else None, jobs)
-    place = "triage.commands.working" if asked.command in ("new", "add", "check", "jobs") else "triage.commands.asking"
+    place = PLACES.get(asked.command, "triage.commands.asking")
     command: Callable[[argparse.Namespace], int] = getattr(importlib.import_module(place), f"run_{asked.command}")
     return command(asked)
 

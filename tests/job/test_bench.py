@@ -323,6 +323,21 @@ def test_the_report_tells_the_job(bench: Bench) -> None:
         assert expected in text, expected
 
 
+def test_the_repair_is_weighed_against_a_new_adapter_and_a_veto_bars_it(bench: Bench) -> None:
+    bench.complain("Does nothing", "dead", "full")
+    through_cautions(bench)
+    answer(bench, bench.view(), {"ohms mains_l rect": "OL"})
+    design = bench.worth(new_price=500.0)
+    assert any("R1 peak voltage" in text for text in design.upgrades)
+    assert design.choice == "replace", "a repair that leaves R1 over its rating seldom holds"
+    bench.fit("R1", "high-voltage film 500 V")
+    assert bench.worth(new_price=500.0).choice == "repair"
+    assert bench.worth(new_price=0.5).choice != "repair"
+    bench.look("board", "charred across barrier")
+    barred = bench.worth(new_price=500.0)
+    assert barred.choice == "replace" and barred.vetoes
+
+
 def test_hostile_words_are_shown_as_text(bench: Bench) -> None:
     view = bench.note("\x1b[2J\u202eevil {0.__class__}")
     assert view.entries[-1].text == "note: <U+001B>[2J<U+202E>evil {0.__class__}"

@@ -66,6 +66,19 @@ def run_verdict(asked: argparse.Namespace) -> int:
     return 0
 
 
+def run_worth(asked: argparse.Namespace) -> int:
+    """Whether the repair is worth while."""
+    from triage.quantities import parse
+
+    price = parse(asked.new_price, "1") if asked.new_price else None
+    worth = _prepared(asked.job).worth(price)
+    if asked.json:
+        print_json(worth)
+    else:
+        print_lines(words.worth_lines(worth))
+    return 0
+
+
 def run_show(asked: argparse.Namespace) -> int:
     """The whole job."""
     view = _prepared(asked.job).view()

@@ -1,5 +1,6 @@
 """Answers as lines of text for a person at a terminal."""
 
+import math
 from collections.abc import Sequence
 
 from triage.commands.output import columns, percent
@@ -13,6 +14,7 @@ from triage.job.views import (
     ReadingExpected,
     StressView,
     SuspectView,
+    WorthView,
 )
 from triage.quantities import engineering
 from triage.units import UNITS
@@ -46,7 +48,18 @@ def verdict_lines(view: JobView) -> list[str]:
         lines.append("replace: " + ", ".join(verdict.repair))
     if verdict.why:
         lines.append("why: " + verdict.why)
+    if verdict.rivals:
+        lines.append("not ruled out: " + ", ".join(verdict.rivals))
+    if verdict.left:
+        lines.append("the odd readings could come from: " + ", ".join(verdict.left))
     return lines + [f"  {text}" for text in verdict.evidence]
+
+
+def worth_lines(worth: WorthView) -> list[str]:
+    """Whether the repair is worth while."""
+    lines = [worth.reason]
+    rows = [(one.choice, "barred" if math.isinf(one.cost) else f"{one.cost:.2f}", one.text) for one in worth.options]
+    return lines + columns(("way out", "cost", "how it comes about"), rows) + [f"design: {text}" for text in worth.upgrades]
 
 
 def next_lines(view: JobView) -> list[str]:

@@ -64,7 +64,9 @@ def _checked(files: list[Path]) -> Iterator[tuple[str, str, list[str]]]:
     from triage.job.display import plain
     from triage.job.toml_guard import read_toml
 
-    shipped = sorted(data_folder("profiles").glob("*.toml")) + sorted(data_folder("part_catalog").glob("*.toml"))
+    profiles = data_folder("profiles")
+    shipped = [*sorted(profiles.glob("*.toml")), *sorted((profiles / "templates").glob("*.toml"))]
+    shipped += sorted(data_folder("part_catalog").glob("*.toml"))
     for path in files or shipped:
         kind = "file"
         try:
@@ -79,6 +81,8 @@ def _checked(files: list[Path]) -> Iterator[tuple[str, str, list[str]]]:
 def _kind_of(document: dict[str, Any]) -> str:
     if "job" in document:
         return "job"
+    if document.get("template") is True:
+        return "template"
     if "family" in document or "mains" in document:
         return "profile"
     return "catalog" if "class" in document else "table"
@@ -97,6 +101,11 @@ def _faults(path: Path, document: dict[str, Any], kind: str) -> list[str]:
         from triage.board.profile import board_from_dict
 
         board_from_dict(document, str(path))
+    if kind == "template":
+        from triage.board.estimate.template import template_from_dict
+        from triage.families import family_of
+
+        family_of(template_from_dict(document, str(path)).family)
     if kind == "catalog":
         from triage.replacement.catalog_file import read_catalog_file
 

@@ -33,7 +33,8 @@ from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import entry_text, stress_view
-from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView, WorthView
+from triage.job.worth import worth_of
 from triage.quantities import parse, parse_reading
 from triage.safety.inspection import items, judge
 from triage.safety.retest import gate_keys
@@ -312,6 +313,13 @@ class Bench:
     def returned(self, reason: str) -> JobView:
         """The adapter came back after the repair; the job is open again."""
         return self._enter("returned", reason=reason)
+
+    def worth(self, new_price: float | None = None) -> WorthView:
+        """Repair, replace or scrap, each with its expected cost; after ``prepare``.
+
+        new_price: of a new adapter of the same rating [money of the shop]; None: the house estimate by power.
+        """
+        return worth_of(self, new_price)
 
     def why(self) -> dict[tuple[str, str], str]:
         """(ref, mode) -> where the chance of that fault comes from before anything was seen; after

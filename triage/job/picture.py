@@ -74,7 +74,8 @@ def view(bench: "Bench", message: str) -> JobView:
         facts = bench.facts(fault_chances(bench), found.status != "open")
         stresses = bench.answers.stresses
         suspects = tuple(shown.suspect_view(one, bench.board, stresses) for one in diagnosis.suspects(job))
-        verdict = shown.verdict_view(found, bench.board, stresses, diagnosis.evidence(job))
+        left = diagnosis.what_is_left(job) if found.status == "does not fit" else ()
+        verdict = shown.verdict_view(found, bench.board, stresses, diagnosis.evidence(job), left)
         suggestion = None
         if found.status == "open" and not facts.closed and not facts.repaired:
             suggestion = _next(bench, facts, state, job)

@@ -20,6 +20,7 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
         bench.prepare()
     shown = view(bench, "")
     state = replay(bench.job.entries)
+    worth = bench.worth() if shown.verdict.status == "found" else None
     head = bench.job.document["job"]
     retest = tuple(RetestLine(one.text, one.limit, one.source, RESULTS[one.result]) for one in shown.retest)
     return sections(
@@ -33,6 +34,7 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
             before=bench.stresses_before(),
             after=bench.stresses() if state.fitted else (),
             retest=retest,
+            worth=(worth.reason, *worth.upgrades) if worth else (),
             not_done=(
                 *(f"retest: {one.text}" for one in shown.retest if not one.result),
                 *(f"not looked at: {one.text}" for one in shown.looks if not one.said),

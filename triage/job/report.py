@@ -57,6 +57,8 @@ class ReportContent:
     """Stresses with the fitted parts; empty when nothing was fitted."""
     retest: tuple[RetestLine, ...] = ()
     not_done: tuple[str, ...] = ()
+    worth: tuple[str, ...] = ()
+    """Repair, replace or scrap, in words."""
     cautions: tuple[CautionView, ...] = ()
 
 
@@ -69,6 +71,7 @@ def sections(content: ReportContent) -> tuple[Section, ...]:
         Section("Inspection", _inspection(standing), nothing="nothing recorded"),
         Section("Readings", table=_readings(standing), nothing="none taken"),
         Section("Verdict", _verdict(content.verdict)),
+        Section("Worth repairing", content.worth, nothing="not weighed"),
         Section("Stress before", table=_stresses(content.before), nothing="not computed"),
         Section("Parts fitted", _fitted(standing), nothing="none"),
         Section("Stress after", table=_stresses(content.after), nothing="no part was fitted"),
@@ -158,6 +161,8 @@ def _verdict(verdict: VerdictView) -> tuple[str, ...]:
         lines.append("To be replaced: " + ", ".join(verdict.repair))
     if verdict.why:
         lines.append("Why it failed: " + verdict.why)
+    if verdict.rivals:
+        lines.append("Not ruled out: " + ", ".join(verdict.rivals))
     lines += [f"Evidence: {text}" for text in verdict.evidence]
     return tuple(lines)
 

@@ -157,21 +157,34 @@ def check_suggestion(check: ShortCheck, minutes: float) -> SuggestionView:
     )
 
 
-def verdict_view(verdict: Verdict, board: Board, stresses: Sequence[StressView], weighed: Sequence[Weighed]) -> VerdictView:
-    """The verdict with the stress that explains it and the entries that decided it, strongest first."""
+def verdict_view(
+    verdict: Verdict,
+    board: Board,
+    stresses: Sequence[StressView],
+    weighed: Sequence[Weighed],
+    left: Sequence[frozenset[str]] = (),
+) -> VerdictView:
+    """The verdict with the stress that explains it and the entries that decided it, strongest first.
+
+    left: sets of parts that could explain readings which fit no fault of the list.
+    """
     suspect = verdict.suspect
     ref = suspect.ref if suspect else ""
-    strongest = sorted(weighed, key=lambda one: -abs(math.log(max(one.ratio, 1e-300))))
+    weights = sorted(((abs(math.log(max(one.ratio, 1e-300))), one.text) for one in weighed), reverse=True)
+    decided = [text for weight, text in weights[:MOST_EVIDENCE] if weight > LEAST_WEIGHT]
+    odd = [f"does not fit, measure again: {text}" for text in verdict.odd]
+    rivals = [f"{'+'.join(refs) or NO_PART_FAULT} {100 * chance:.0f} %" for refs, chance in verdict.rivals]
     return VerdictView(
-        verdict.status,
-        plain(ref),
-        suspect.mode if suspect and suspect.root else "",
-        tuple(str(fault) for fault in suspect.collateral) if suspect else (),
-        tuple(plain(one) for one in verdict.repair),
-        verdict.probability,
-        _why(ref, board, stresses),
-        tuple(plain(one.text) for one in strongest[:MOST_EVIDENCE] if abs(math.log(max(one.ratio, 1e-300))) > LEAST_WEIGHT)
-        + tuple(plain(f"does not fit, measure again: {text}") for text in verdict.odd),
+        status=verdict.status,
+        ref=plain(ref),
+        mode=suspect.mode if suspect and suspect.root else "",
+        collateral=tuple(str(fault) for fault in suspect.collateral) if suspect else (),
+        repair=tuple(map(plain, verdict.repair)),
+        probability=verdict.probability,
+        why=_why(ref, board, stresses),
+        evidence=tuple(map(plain, (*decided, *odd))),
+        rivals=tuple(map(plain, rivals)),
+        left=tuple(plain("+".join(sorted(refs))) for refs in left),
     )
 
 

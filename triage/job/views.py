@@ -90,6 +90,37 @@ class VerdictView:
     """The stress that explains the failure."""
     evidence: tuple[str, ...] = ()
     """The entries that decided it, strongest first."""
+    rivals: tuple[str, ...] = ()
+    """Other repairs that are not ruled out, likeliest first: ``R1+C2 7 %``."""
+    left: tuple[str, ...] = ()
+    """When nothing fits: the smallest sets of parts that could explain the odd readings, ``D1``,
+    ``R1+C2``."""
+
+
+@dataclass(frozen=True, slots=True)
+class OptionView:
+    """One way out for the adapter."""
+
+    choice: str
+    """``repair``, ``replace`` or ``scrap``."""
+    cost: float
+    """Expected cost [money of the shop]; ``inf`` when it is barred."""
+    text: str
+    """How the cost comes about, or what bars it."""
+
+
+@dataclass(frozen=True, slots=True)
+class WorthView:
+    """Whether the repair is worth while."""
+
+    choice: str
+    """The cheapest way out that is allowed."""
+    reason: str
+    options: tuple[OptionView, ...]
+    vetoes: tuple[str, ...] = ()
+    """Why it must not be repaired."""
+    upgrades: tuple[str, ...] = ()
+    """Parts that the design over-stresses, and what would cure it."""
 
 
 @dataclass(frozen=True, slots=True)

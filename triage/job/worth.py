@@ -1,0 +1,35 @@
+"""Whether a repair is worth while, as the safety room weighs it, for an open job."""
+
+from typing import TYPE_CHECKING
+
+from triage.job.display import plain
+from triage.job.entries import replay
+from triage.job.picture import view
+from triage.job.views import OptionView, WorthView
+from triage.safety.decision import Shop, board_case, decide, upgrades
+
+if TYPE_CHECKING:
+    from triage.job.bench import Bench
+
+
+def worth_of(bench: "Bench", new_price: float | None) -> WorthView:
+    """Repair, replace or scrap, each with its expected cost.
+
+    new_price: of a new adapter of the same rating [money of the shop]; None: the house estimate by power.
+    """
+    shop = Shop()
+    shown = view(bench, "")
+    vetoes = tuple(f"the look at {item}" for item, look in sorted(bench.facts().looks) if look == "veto")
+    over = upgrades(bench.board, bench.workings.stresses(bench.board), shop)
+    fitted = [ref for ref, _ in replay(bench.job.entries).fitted]
+    case = board_case(
+        bench.board, shown.verdict.repair, shown.verdict.probability, over, fitted, vetoes=vetoes, new_price=new_price
+    )
+    found = decide(case, shop, over)
+    return WorthView(
+        found.choice,
+        plain(found.reason, 1000),
+        tuple(OptionView(one.choice, one.cost, plain(one.text, 1000)) for one in found.options),
+        found.vetoes,
+        tuple(plain(one.text, 1000) for one in found.upgrades),
+    )
