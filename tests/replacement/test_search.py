@@ -9,7 +9,7 @@ from rapidfuzz.distance import Levenshtein
 
 from tests.replacement.damage import damaged_queries
 from tests.replacement.numbers import type_numbers
-from triage.replacement.alignment import cost, folded_marking, most_distance, plain_marking, score
+from triage.replacement.alignment import WEIGHTS, cost, folded_marking, plain_marking, score, within
 from triage.replacement.catalog import Catalog
 from triage.replacement.marking_index import INDEX_FROM, MarkingIndex
 from triage.replacement.search import BANDS, READ_AS_CODE, MarkingList, search
@@ -88,10 +88,9 @@ _CATALOG = Catalog()
 @settings(deadline=None)
 @given(st.text("01AN478?", min_size=1, max_size=9), st.text("01AN478", min_size=1, max_size=9))
 def test_the_distance_bound_never_drops_a_price_that_would_be_shown(read: str, printed: str) -> None:
-    """What most_distance cuts off is dearer than the bound (reasoned in its docstring)."""
+    """What the weighted edit distance cuts off is dearer than the bound (reasoned in the docstring of ``within``)."""
     bound = (1.0 - BANDS[-1][0]) * len(read) + 1e-9
-    distance = Levenshtein.distance(read, printed)
-    if distance > most_distance(bound, len(printed) - len(read), read.count("?")):
+    if Levenshtein.distance(read, printed, weights=WEIGHTS) > within(bound, read.count("?")):
         assert cost(read, printed) > bound
 
 

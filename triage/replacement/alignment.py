@@ -66,19 +66,12 @@ def score(read: str, printed: str) -> float:
     return 1.0 - cost(read, printed) / len(read) if read else 0.0
 
 
-def cost(read: str, printed: str, distance: int | None = None) -> float:
-    """Price of turning the printed folded marking into the one read; ``distance`` is their Levenshtein distance if known."""
-    end = len(read)
-    longer = len(printed) - end
-    if distance is None:
-        distance = Levenshtein.distance(read, printed)
-    if distance == longer:
-        if printed.startswith(read):
-            return COST_TAIL * longer
-        if printed.endswith(read):
-            return COST_LEAD * longer
-    elif distance == 1 and longer == 0 and UNREADABLE not in read:
-        return COST_WRONG
+def cost(read: str, printed: str) -> float:
+    """Price of turning the printed folded marking into the one read."""
+    if printed.startswith(read):
+        return COST_TAIL * (len(printed) - len(read))
+    if printed.endswith(read):
+        return COST_LEAD * (len(printed) - len(read))
     return _aligned(read, printed)
 
 
@@ -107,23 +100,18 @@ def _aligned(read: str, printed: str) -> float:
     return price
 
 
-def most_distance(price: float, longer: int, unreadable: int) -> int:
-    """The edit distance above which ``cost`` is surely more than ``price``; -1 when any distance is too much.
+WEIGHTS = (round(100 * COST_TAIL), round(100 * COST_WRONG), round(100 * COST_WRONG))
+"""Hundredths of a character for one added, lost or exchanged: an edit distance that runs in C++ and bounds the price."""
 
-    ``longer`` is how many characters the printed marking is longer (negative when shorter), ``unreadable`` how many of
-    those read are unreadable. With a added, d lost and s wrong characters the Levenshtein distance is a + d + s and
-    ``longer`` is a - d, so that distance - longer = 2 d + s. Each unit of that costs at least what a covered unreadable
-    character costs, and beyond those half of a lost character (with one more added where the printed marking is longer).
-    A swap, two units for ``COST_SWAPPED``, stays inside for every price that would show it.
+
+def within(price: float, unreadable: int) -> int:
+    """The weighted edit distance above which ``cost`` is surely more than ``price``.
+
+    Every edit is priced at least as in WEIGHTS, except that each of the ``unreadable`` characters may cost as little as
+    COST_UNREADABLE where the distance counts a whole one. (A swap, priced below its two edits, lies inside for every
+    price that would show it: that takes four characters, and 0.3 of four is more than its weighted distance.)
     """
-    left = price - COST_TAIL * longer if longer > 0 else price
-    if left < 0:
-        return -1
-    covered = COST_UNREADABLE * unreadable
-    if left < covered:
-        return longer + int(left / COST_UNREADABLE)
-    unit = COST_NO_CHARACTER - COST_UNREADABLE if longer < 0 else (COST_WRONG + COST_TAIL) / 2
-    return longer + unreadable + int((left - covered) / unit)
+    return int(100 * price + 1e-6) + round(100 * (COST_WRONG - COST_UNREADABLE)) * unreadable
 
 
 def _backward(read: str, printed: str) -> float:

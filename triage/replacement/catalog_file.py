@@ -65,6 +65,8 @@ class CatalogFile:
     kinds: tuple[str, ...]
     """Part kinds of a board that this class can stand for."""
     parts: tuple[CatalogPart, ...]
+    needed: tuple[str, ...] = ()
+    """Fields that every part has, the chief ratings first."""
     sizes: tuple[GenericSize, ...] = ()
     value_key: str = ""
     """Rating key of the value chosen for a size: ``r_ohm``, ``c_F``."""
@@ -120,7 +122,7 @@ def read_catalog_file(path: Path) -> CatalogFile:
         raise CatalogFaults(path.name, faults)
     return CatalogFile(
         part_class=schema.part_class, title=data["title"], kinds=tuple(data.get("kinds", ())), parts=tuple(parts),
-        sizes=sizes, value_key=schema.value_key, decade=tuple(generic.get("decade", ())),
+        needed=schema.needed, sizes=sizes, value_key=schema.value_key, decade=tuple(generic.get("decade", ())),
     )
 
 

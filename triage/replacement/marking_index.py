@@ -26,7 +26,7 @@ _SYMBOLS = "^$0123456789ACEFHJKMNPRTUVWXY"
 """What a folded marking can hold, with the marks for its start and end."""
 
 
-_COUNTS = ((1_500, 28), (3_000, 40), (30_000, 100), (float("inf"), 300))
+_COUNTS = ((1_500, 28), (3_000, 40), (30_000, 100), (float("inf"), 400))
 
 
 def wanted_count(size: int) -> int:

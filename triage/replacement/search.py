@@ -14,9 +14,11 @@ from dataclasses import dataclass
 from rapidfuzz import process
 from rapidfuzz.distance import Levenshtein
 
-from triage.replacement.alignment import UNREADABLE, cost, folded_marking, most_distance, plain_marking
+from triage.replacement.alignment import UNREADABLE, WEIGHTS, cost, folded_marking, plain_marking, within
 from triage.replacement.catalog import Catalog
+from triage.replacement.catalog_part import CatalogPart
 from triage.replacement.marking_index import INDEX_FROM, MarkingIndex, wanted_count
+from triage.replacement.wording import figure, unit_of
 
 BANDS = ((0.90, "probably"), (0.80, "possible"), (0.70, "weak: compare case and circuit"))
 """Least score of each band and what it means; below the last one a match is not shown."""
@@ -27,8 +29,10 @@ _LEAST = BANDS[-1][0]
 _PREFIX = re.compile(r"(?:[12]N|2S[A-D]?|MJE|BZX|BZY|LM|UA|KA|MC|L)(?=[0-9A-Z]{3,})")
 """Registration and maker's prefixes that small bodies drop."""
 _LONGEST_QUERY = 40
+_RATINGS_TOLD = 4
 _LEAST_READABLE = 2
 _SAME = 1e-9
+_WEIGHTED = {"weights": WEIGHTS}
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,7 +47,7 @@ class Match:
     band: str
     """What the score is worth: ``probably``, ``possible``, ``weak ...`` or ``read as a code``."""
     text: str
-    """What else to know: which print agrees, how many tie."""
+    """What else to know: how many tie, the chief ratings, other prints."""
     alike: int = 1
     """How many parts found agree equally well: more than one is a tie, told apart by measuring."""
 
@@ -98,23 +102,22 @@ class MarkingList:
     def _priced(self, folded: str, places: Sequence[int], limit: int) -> dict[int, tuple[float, int]]:
         """Entries that agree well enough to be shown: number -> (price, key that agrees best).
 
-        Keys come nearest first; once ``limit`` entries are found, only what is no dearer than the last of them is priced.
+        Keys come in the order of a bound on their price; once ``limit`` entries are found, only what may be no dearer than
+        the last of them is priced.
         """
         keys, owners = self.keys, self._owners
         chosen = keys if len(places) == len(keys) else [keys[place] for place in places]
-        length, unreadable = len(folded), folded.count(UNREADABLE)
-        most = (1.0 - _LEAST) * length + _SAME
+        unreadable = folded.count(UNREADABLE)
+        most = (1.0 - _LEAST) * len(folded) + _SAME
+        farthest = within(most, unreadable)
         best: dict[int, tuple[float, int]] = {}
-        farthest: dict[int, int] = {}
         for key, distance, at in process.extract(
-            folded, chosen, scorer=Levenshtein.distance, processor=None, limit=len(chosen)
+            folded, chosen, scorer=Levenshtein.distance, scorer_kwargs=_WEIGHTED, processor=None, limit=len(chosen),
+            score_cutoff=farthest,
         ):
-            size = len(key)
-            if size not in farthest:
-                farthest[size] = most_distance(most, size - length, unreadable)
-            if distance > farthest[size]:
-                continue
-            price = cost(folded, key, distance)
+            if distance > farthest:
+                break
+            price = cost(folded, key)
             if price <= most:
                 place = places[at]
                 for number in owners[place]:
@@ -124,7 +127,7 @@ class MarkingList:
                     bar = sorted([price for price, _ in best.values()])[limit - 1] + _SAME
                     if bar < most:
                         most = bar
-                        farthest.clear()
+                        farthest = within(most, unreadable)
         return best
 
     def _ranked(
@@ -156,7 +159,7 @@ def search(catalog: Catalog, marking: str, part_class: str | None = None, limit:
     for number, agreement, alike in listed.nearest(marking, limit):
         part = parts[number]
         matches.append(
-            Match(part.type, part.part_class, agreement, band_of(agreement), _told(part.markings, alike), alike)
+            Match(part.type, part.part_class, agreement, band_of(agreement), _told(catalog, part, alike), alike)
         )
     codes = _decoded(marking, part_class)
     if matches and matches[0].score >= BANDS[0][0]:
@@ -190,12 +193,18 @@ def _plain_keys(markings: Sequence[str]) -> list[str]:
     return keys
 
 
-def _told(markings: Sequence[str], alike: int) -> str:
+def _told(catalog: Catalog, part: CatalogPart, alike: int) -> str:
+    """Ties first, then the chief ratings and the body, then other prints."""
     words = []
     if alike > 1:
         words.append(f"one of {alike} that agree equally: tell them apart by measuring")
-    if markings:
-        words.append("printed " + ", ".join(markings[:3]))
+    ratings = [
+        figure(part.numbers[key], unit_of(key)) if key in part.numbers else part.text(key)
+        for key in catalog.file(part.part_class).needed[:_RATINGS_TOLD]
+    ]
+    words.append(", ".join(word for word in (*ratings, part.text("case")) if word))
+    if part.markings:
+        words.append("printed " + ", ".join(part.markings[:3]))
     return "; ".join(words)
 
 
