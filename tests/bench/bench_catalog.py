@@ -15,7 +15,7 @@ WORK = {
     "load one class (zener)": "c = Catalog(); c.parts('zener')",
     "load all classes": "c = Catalog(); c.parts()",
     "load all, find a type number": "c = Catalog(); c.find('1N4007')",
-    "load all, build the search list, first search": "from triage.replacement.search import search\nc = Catalog(); search(c, '13003')",
+    "load all, first search": "from triage.replacement.search import search\nc = Catalog(); search(c, '13003')",
 }
 """What is done -> how."""
 

@@ -74,6 +74,13 @@ def test_a_value_code_is_a_reading_not_a_verdict(catalog: Catalog) -> None:
     assert any(match.band != READ_AS_CODE for match in found)
 
 
+@pytest.mark.parametrize(("code", "candidate"), [("M7", "M7"), ("T4", "1N4148W"), ("431", "TL431")])
+def test_a_short_code_is_a_candidate_never_a_verdict(catalog: Catalog, code: str, candidate: str) -> None:
+    """Marks of two or three characters repeat between makers (marking codes of the reference data)."""
+    found = [match for match in search(catalog, code) if match.type == candidate]
+    assert found and found[0].band == "possible" and "not a verdict" in found[0].text
+
+
 @settings(deadline=None)
 @given(st.text(max_size=200))
 def test_no_text_breaks_the_search(text: str) -> None:

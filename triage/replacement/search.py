@@ -30,6 +30,11 @@ _PREFIX = re.compile(r"(?:[12]N|2S[A-D]?|MJE|BZX|BZY|LM|UA|KA|MC|L)(?=[0-9A-Z]{3
 """Registration and maker's prefixes that small bodies drop."""
 _LONGEST_QUERY = 40
 _RATINGS_TOLD = 4
+_SHORT_CODE = 3
+"""Marks of so few characters repeat between makers, on chips above all: a candidate, never a verdict."""
+_MOST_OF_A_CODE = 0.89
+"""Score of a short or decoded code at best: it stays below the first band."""
+_CODES_REPEAT = "short codes repeat between makers: a candidate, not a verdict"
 _LEAST_READABLE = 2
 _SAME = 1e-9
 _WEIGHTED = {"weights": WEIGHTS}
@@ -155,14 +160,15 @@ def search(catalog: Catalog, marking: str, part_class: str | None = None, limit:
     """
     listed = _listed(catalog, part_class)
     parts = catalog.parts(part_class)
+    is_short = len(plain_marking(marking)) <= _SHORT_CODE
     matches = []
     for number, agreement, alike in listed.nearest(marking, limit):
-        part = parts[number]
-        matches.append(
-            Match(part.type, part.part_class, agreement, band_of(agreement), _told(catalog, part, alike), alike)
-        )
+        part, told = parts[number], _told(catalog, parts[number], alike)
+        if is_short:
+            agreement, told = min(agreement, _MOST_OF_A_CODE), f"{_CODES_REPEAT}; {told}"
+        matches.append(Match(part.type, part.part_class, agreement, band_of(agreement), told, alike))
     codes = _decoded(marking, part_class)
-    if matches and matches[0].score >= BANDS[0][0]:
+    if matches and matches[0].score >= _MOST_OF_A_CODE:
         return (matches + codes)[: max(limit, len(matches))]
     return (codes + matches)[:limit]
 
@@ -212,7 +218,7 @@ def _decoded(marking: str, part_class: str | None) -> list[Match]:
     from triage.replacement.marking_codes import decode
 
     return [
-        Match(reading.text, reading.part_class, max(0.0, 1.0 - reading.doubt), READ_AS_CODE, reading.text)
+        Match(reading.text, reading.part_class, _MOST_OF_A_CODE / (1 + reading.doubt), READ_AS_CODE, reading.note or reading.text)
         for reading in decode(marking)
         if part_class is None or reading.part_class == part_class
     ]
