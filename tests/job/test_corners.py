@@ -14,7 +14,7 @@ from triage.families.steady import Settled
 from triage.families.stresses import Condition
 from triage.job import corners
 from triage.job.cache import Cache
-from triage.physics.transient import Stretch
+from triage.physics.transient import NoConvergence, Stretch
 
 BOARD = load_profile("harbour-handset-charger")
 
@@ -75,6 +75,21 @@ def test_nine_corners_are_used_once_they_are_kept(tmp_path: Path, solved: list[s
     assert len(solved) == 9
     corners.board_stresses(BOARD, kept)
     assert len(solved) == 9
+
+
+def test_a_corner_that_cannot_be_solved_is_left_out(tmp_path: Path, solved: list[str], monkeypatch: pytest.MonkeyPatch) -> None:
+    good = corners.settle_corners
+
+    def sometimes(board: Board, wanted: list[Condition]) -> dict[Condition, Settled]:
+        if any("no load" in corner.name for corner in wanted):
+            raise NoConvergence(0.001)
+        return good(board, wanted)
+
+    monkeypatch.setattr(corners, "settle_corners", sometimes)
+    found = corners.board_stresses(BOARD, Cache(tmp_path))
+    assert found and not any("no load" in one.condition for one in found)
+    monkeypatch.setattr(corners, "settle_corners", lambda board, wanted: (_ for _ in ()).throw(NoConvergence(0.0)))
+    assert corners.board_stresses(BOARD, Cache(tmp_path / "empty")) == ()
 
 
 @pytest.mark.parametrize("content", ["{}", "[]", '{"statistics": [[1]], "rows": []}', "7"])

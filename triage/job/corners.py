@@ -29,7 +29,7 @@ from triage.families.stresses import (
 )
 from triage.job.cache import Kept
 from triage.physics.netlist import Netlist
-from triage.physics.transient import Stretch
+from triage.physics.transient import NoConvergence, Stretch
 
 DIGITS = 7
 """Digits kept: more than a solution is good for, fewer than two machines may differ in."""
@@ -39,13 +39,13 @@ def board_stresses(board: Board, kept: Kept) -> tuple[Stress, ...]:
     """Worst stress of every part over the nine corners where they are kept, else over the three that matter
     most.
 
-    Slow for a circuit that was never solved: some seconds a corner.
+    Slow for a circuit that was never solved: some seconds a corner. Empty when no corner of it can be solved.
     """
     wanted = conditions(board)
     if not all(kept.has(_key(board, corner)) for corner in wanted):
         wanted = worst_corners(board)
     settled = settled_corners(board, wanted, kept)
-    return worst_stresses(board, settled, _inrush(board, kept))
+    return worst_stresses(board, settled, _inrush(board, kept)) if settled else ()
 
 
 def solve_all_corners(board: Board, kept: Kept) -> None:
@@ -63,11 +63,26 @@ def settled_corners(board: Board, corners: Iterable[Condition], kept: Kept) -> d
             found[corner] = _read(kept.get(_key(board, corner)))
             continue
         missing.append(corner)
-    for corner, settled in (settle_corners(board, missing) if missing else {}).items():
+    for corner, settled in _solved(board, missing).items():
         content = _write(settled)
         kept.put(_key(board, corner), content)
         found[corner] = _read(content)
     return found
+
+
+def _solved(board: Board, corners: list[Condition]) -> dict[Condition, Settled]:
+    """The corners solved side by side; one whose solution breaks off is left out, so that the others still
+    tell."""
+    if not corners:
+        return {}
+    try:
+        return settle_corners(board, corners)
+    except NoConvergence:
+        found: dict[Condition, Settled] = {}
+        for corner in corners:
+            with contextlib.suppress(NoConvergence):
+                found |= settle_corners(board, [corner])
+        return found
 
 
 def _inrush(board: Board, kept: Kept) -> dict[str, float]:
@@ -75,7 +90,10 @@ def _inrush(board: Board, kept: Kept) -> dict[str, float]:
     key = "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load))
     found = kept.get(key)
     if not isinstance(found, dict):
-        found = {ref: _rounded(value) for ref, value in inrush_i2t(board).items()}
+        try:
+            found = {ref: _rounded(value) for ref, value in inrush_i2t(board).items()}
+        except NoConvergence:
+            return {}
         kept.put(key, found)
     return {str(ref): float(value) for ref, value in found.items()}
 
