@@ -4,7 +4,7 @@ import argparse
 from collections.abc import Callable, Sequence
 from dataclasses import asdict
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from triage.commands.output import columns, percent, print_json, print_lines
 from triage.errors import EntryError
@@ -14,10 +14,13 @@ if TYPE_CHECKING:
     from triage.board.estimate.assemble import Derivation
     from triage.board.part import Board
 
-FILE = (("file",), {"metavar": "FILE", "help": "profile file of your own"})
-SEEN = (("--seen",), {"action": "append", "default": [], "metavar": "WHAT",
+Argument = tuple[tuple[str, ...], dict[str, Any]]
+
+FILE: Argument = (("file",), {"metavar": "FILE", "help": "profile file of your own"})
+REF: Argument = (("ref",), {"metavar": "REF", "help": "part"})
+SEEN: Argument = (("--seen",), {"action": "append", "default": [], "metavar": "WHAT",
                       "help": "optocoupler, 'no Y capacitor', '3 windings' ...; may be given again"})
-ACTIONS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, object]], ...]]] = {
+ACTIONS: dict[str, tuple[str, tuple[Argument, ...]]] = {
     "propose": ("which family a board belongs to", (
         (("--output",), {"metavar": "VOLTS"}), (("--current",), {"metavar": "AMPERES"}), SEEN)),
     "estimate": ("make a profile from the label, every value estimated", (
@@ -27,18 +30,18 @@ ACTIONS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, object]], .
         (("--class",), {"dest": "insulation", "default": "II", "choices": ("I", "II"), "help": "protection class"}), SEEN,
         (("-o", "--save"), {"metavar": "FILE", "help": "profile to make; without it the estimates are only shown"}))),
     "set": ("enter a value, a rating or a marking that was read or measured", (
-        FILE, (("ref",), {}), (("key",), {"help": "'marking', or a value or rating such as resistance, voltage"}), (("value",), {}),
+        FILE, REF, (("key",), {"help": "'marking', or a value or rating such as resistance, voltage"}), (("value",), {}),
         (("--measured",), {"action": "store_true", "help": "measured, not read off the part"}))),
     "turns": ("enter counted turns and check them", (
-        FILE, (("ref",), {}), (("counts",), {"nargs": "*", "metavar": "winding=turns"}),
+        FILE, REF, (("counts",), {"nargs": "*", "metavar": "winding=turns"}),
         (("--core-area",), {"type": float, "metavar": "MM2", "help": "cross-section of the middle leg in mm2"}))),
     "strike": ("strike out a part the board lacks", (
-        FILE, (("ref",), {}),
+        FILE, REF,
         (("--link",), {"action": argparse.BooleanOptionalAction, "default": None,
                        "help": "join its two nodes (default: where that is usual)"}))),
     "add": ("add a part out of the list of roles", (
         FILE, (("role",), {}), (("pins",), {"nargs": "+", "metavar": "pin=node"}), (("--ref",), {"default": ""}))),
-    "move": ("put one pin of a part on another node", (FILE, (("ref",), {}), (("pin",), {}), (("node",), {}))),
+    "move": ("put one pin of a part on another node", (FILE, REF, (("pin",), {}), (("node",), {}))),
     "roles": ("list the roles a part can be added in", ()),
     "save": ("save the board of a job as a profile", ((("job",), {}), FILE)),
 }
@@ -47,13 +50,14 @@ ACTIONS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, object]], .
 
 def parser() -> argparse.ArgumentParser:
     """The parser of everything behind ``triage profile``."""
-    top = argparse.ArgumentParser(prog="triage profile", description="Boards that nobody has drawn: from the label to a profile file.")
+    about = "Boards that nobody has drawn: from the label to a profile file."
+    top = argparse.ArgumentParser(prog="triage profile", description=about)
     subs = top.add_subparsers(dest="action", metavar="ACTION", required=True)
     for name, (summary, arguments) in ACTIONS.items():
         sub = subs.add_parser(name, help=summary, description=summary)
         sub.add_argument("--json", action="store_true", help="print one JSON document")
         for names, options in arguments:
-            sub.add_argument(*names, **options)  # type: ignore[arg-type]
+            sub.add_argument(*names, **options)
     return top
 
 
@@ -103,8 +107,11 @@ def _derivation_lines(found: "Sequence[Derivation]") -> list[str]:
     def shown(value: float, unit: str) -> str:
         return f"{value:.4g}" if unit == "-" else engineering(value, unit)
 
-    rows = [(one.ref, one.role, one.key.replace("_", " "), shown(one.value, one.unit),
-             f"{shown(one.value / one.spread, one.unit)} to {shown(one.value * one.spread, one.unit)}", one.reason) for one in found]
+    def row(one: "Derivation") -> tuple[str, ...]:
+        ends = f"{shown(one.value / one.spread, one.unit)} to {shown(one.value * one.spread, one.unit)}"
+        return one.ref, one.role, one.key.replace("_", " "), shown(one.value, one.unit), ends, one.reason
+
+    rows = [row(one) for one in found]
     return columns(("part", "role", "value", "estimate", "9 of 10 boards", "because"), rows)
 
 
@@ -177,11 +184,11 @@ def _roles(asked: argparse.Namespace) -> int:
     from triage.board.estimate.roles import roles
     from triage.board.kinds import kinds
 
-    found = [{"role": one.name, "kind": one.kind, "pins": list(kinds()[one.kind].pins)} for one in roles().values()]
+    rows = [(one.name, one.kind, " ".join(kinds()[one.kind].pins)) for one in roles().values()]
     if asked.json:
-        print_json(found)
+        print_json([{"role": name, "kind": kind, "pins": pins.split()} for name, kind, pins in rows])
     else:
-        print_lines(columns(("role", "kind", "pins"), [(str(one["role"]), str(one["kind"]), " ".join(one["pins"])) for one in found]))
+        print_lines(columns(("role", "kind", "pins"), rows))
     return 0
 
 
@@ -202,7 +209,8 @@ def _own(name: str) -> "Board":
     from triage.board.profile import load_profile
 
     if Path(name).suffix != ".toml":
-        raise EntryError("profile", repr(name)[:60], "the path of a .toml file", "shipped profiles are not changed: save a copy first")
+        advice = "shipped profiles are not changed: save a copy first"
+        raise EntryError("profile", repr(name)[:60], "the path of a .toml file", advice)
     return load_profile(name)
 
 
