@@ -10,6 +10,7 @@ from triage.replacement.catalog import Catalog
 from triage.replacement.demand import Demand, demand
 from triage.replacement.drawers import Drawers, StockItem
 from triage.replacement.ranking import ask, candidates, judge, to_confirm
+from triage.replacement.supplier import SupplierLine, SupplierList
 
 CATALOG = Catalog()
 
@@ -127,3 +128,17 @@ def test_a_turned_part_comes_with_its_drawing() -> None:
     assert "printed side" in judged.drawing
     assert any("half a turn" in note for note in judged.notes)
     assert _types(asked).index("2N3904") > _types(asked).index("BC548")
+
+
+def test_a_supplier_tells_the_price_and_nothing_else() -> None:
+    """The cheapest line counts; a type the catalog does not know is not offered for being on a list."""
+    asked = _output(reverse_voltage=24.0, average_current=1.0)
+    plain = {one.part.type for one in candidates(CATALOG, asked, limit=100)}
+    lists = (
+        SupplierList("north.csv", [SupplierLine("SB340", 0.20), SupplierLine("MAGIC9000", 0.01)], 0),
+        SupplierList("south.csv", [SupplierLine("sb-340", 0.15, order="17")], 0),
+    )
+    offered = candidates(CATALOG, asked, limit=100, suppliers=lists)
+    assert {one.part.type for one in offered} == plain
+    first = next(one for one in offered if one.part.type == "SB340")
+    assert first.price == 0.15 and "0.15 in south.csv, order 17" in first.notes

@@ -6,13 +6,13 @@ differ; then every order named is kept and none is taken for granted.
 
 import re
 import tomllib
-from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
 from typing import Any
 
 from triage.replacement.catalog_part import CatalogPart
+from triage.replacement.wording import fit_of
 
 LEAD_SLACK = 0.05
 """A lead may be thicker than the old one by this much and still pass its hole [mm]."""
@@ -80,7 +80,7 @@ def body_fit(candidate: CatalogPart, original: CatalogPart | None) -> BodyFit:
     """Whether the candidate's body goes where the original's was; with either unknown: to be compared by eye."""
     had, case = original.text("case") if original else "", candidate.text("case")
     if not had or not case:
-        size = _size(candidate)
+        size = fit_of(candidate)
         return BodyFit(True, f"compare body and pitch with the board{': ' + size if size else ''}")
     old, new = group_of(had), group_of(case)
     if new.name != old.name:
@@ -150,13 +150,3 @@ def _body(title: str, pins: str) -> list[str]:
     ]
     widest = max(map(len, lines))
     return [line.ljust(widest) for line in lines]
-
-
-def _size(part: CatalogPart) -> str:
-    numbers: Mapping[str, float] = part.numbers
-    words = []
-    if "body_dia_mm" in numbers and "body_len_mm" in numbers:
-        words.append(f"{numbers['body_dia_mm']:g} x {numbers['body_len_mm']:g} mm")
-    if "lead_pitch_mm" in numbers:
-        words.append(f"pitch {numbers['lead_pitch_mm']:g} mm")
-    return ", ".join(words)

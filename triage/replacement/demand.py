@@ -16,7 +16,7 @@ from triage.replacement.catalog import Catalog
 from triage.replacement.catalog_part import CatalogPart
 from triage.replacement.original import KIND_CLASSES, original_part
 from triage.replacement.positions import Need, Position, plain_role, position_of
-from triage.replacement.wording import figure, unit_of, words_of
+from triage.replacement.wording import figure, fit_of, unit_of, words_of
 
 _HALF_WAVE = 8.3e-3
 """Duration of the surge that a rectifier's IFSM is given for [s]."""
@@ -120,12 +120,14 @@ def demand(board: Board, ref: str, stresses: Sequence[Stress], catalog: Catalog)
     return Demand(
         ref=ref, role=plain_role(part.role), kind=part.kind, classes=position.classes, requirements=requirements,
         safety=position.safety, original=original, original_type=part.type, same_pins=position.same_pins,
-        never=position.never, together=position.together, note=_notes(position, part),
+        never=position.never, together=position.together, note=_notes(position, part, original),
     )
 
 
-def _notes(position: Position, part: Part) -> str:
+def _notes(position: Position, part: Part, original: CatalogPart | None) -> str:
     words = [position.note] if position.note else []
+    if original is not None and (fit := fit_of(original)):
+        words.append(f"place: {fit}")
     if part.origin == "estimated" and position.classes:
         words.append("the old value is only estimated: read or measure it before ordering")
     return "; ".join(words)

@@ -5,7 +5,7 @@ over-rating that does harm elsewhere (forward voltage, gate charge, inrush) cost
 """
 
 import math
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from triage.errors import CatalogError
@@ -15,10 +15,13 @@ from triage.replacement.catalog_part import CatalogPart
 from triage.replacement.demand import Demand
 from triage.replacement.drawers import Drawers, StockItem
 from triage.replacement.rules import READING_SETTLES, Refusal, check, value_of
+from triage.replacement.supplier import SupplierList
 from triage.replacement.wording import figure
 
 ENOUGH = 1.5
 """A rating this many times the demand has all the margin that counts."""
+_CHEAP = 0.03
+"""What a part that costs nothing would gain: price decides between equals."""
 PLENTY = 3.0
 """Above this many times the demand a part is bigger and dearer than needed."""
 
@@ -50,6 +53,8 @@ class Candidate:
     """Old and new pin order drawn as text, where they differ."""
     stock: StockItem | None = None
     """Where it lies in the drawers."""
+    price: float | None = None
+    """Price of one, from the drawers or the cheapest supplier's line."""
 
     @property
     def accepted(self) -> bool:
@@ -63,10 +68,13 @@ class Candidate:
 
 
 def candidates(
-    catalog: Catalog, demand: Demand, drawers: Drawers | None = None, limit: int = 20
+    catalog: Catalog, demand: Demand, drawers: Drawers | None = None, limit: int = 20, suppliers: Sequence[SupplierList] = ()
 ) -> tuple[Candidate, ...]:
-    """Parts that pass every rule of the position, best first, at most ``limit``."""
-    judged = (judge(part, demand, drawers) for part in possible_parts(catalog, demand))
+    """Parts that pass every rule of the position, best first, at most ``limit``.
+
+    ``drawers`` move what is in stock up; ``suppliers`` only tell a price: they say nothing on ratings.
+    """
+    judged = (judge(part, demand, drawers, suppliers) for part in possible_parts(catalog, demand))
     return tuple(sorted((c for c in judged if c.accepted), key=_order)[:limit])
 
 
@@ -99,7 +107,9 @@ def possible_parts(catalog: Catalog, demand: Demand) -> Iterator[CatalogPart]:
             yield from catalog.near(name, *window)
 
 
-def judge(part: CatalogPart, demand: Demand, drawers: Drawers | None = None) -> Candidate:
+def judge(
+    part: CatalogPart, demand: Demand, drawers: Drawers | None = None, suppliers: Sequence[SupplierList] = ()
+) -> Candidate:
     """A part with its refusals, margins, notes and score for a position."""
     stock = drawers.item(part.type) if drawers else None
     if drawers:
@@ -108,15 +118,31 @@ def judge(part: CatalogPart, demand: Demand, drawers: Drawers | None = None) -> 
     pins = pin_fit(part, demand.original)
     settled = all(refusal.rule in READING_SETTLES for refusal in refusals)
     score, notes = _score(part, demand, pins, stock) if settled else (0.0, [])
+    price, told = _price(part, stock, suppliers)
+    if settled and price is not None:
+        score = min(1.0, score + _CHEAP / (1.0 + price))
     return Candidate(
-        part, score, tuple(_margins(part, demand)), tuple(notes), refusals,
-        "" if pins.verdict in ("same", "unknown") else pins.drawing, stock,
+        part, score, tuple(_margins(part, demand)), (*notes, *told), refusals,
+        "" if pins.verdict in ("same", "unknown") else pins.drawing, stock, price,
     )
 
 
+def _price(
+    part: CatalogPart, stock: StockItem | None, suppliers: Sequence[SupplierList]
+) -> tuple[float | None, tuple[str, ...]]:
+    """The price of one, out of the drawers before any list, and where it is sold."""
+    if stock is not None and stock.quantity > 0 and stock.price is not None:
+        return stock.price, ()
+    lines = [(line, one.name) for one in suppliers if (line := one.line(part.type)) and line.price is not None]
+    if not lines:
+        return None, ()
+    line, name = min(lines, key=lambda found: found[0].price or 0.0)
+    order = f", order {line.order}" if line.order else ""
+    return line.price, (f"{line.price:g} in {name}{order}",)
+
+
 def _order(candidate: Candidate) -> tuple[float, float, str]:
-    price = candidate.stock.price if candidate.stock and candidate.stock.price is not None else math.inf
-    return -round(candidate.score, 6), price, candidate.part.type
+    return -round(candidate.score, 6), math.inf if candidate.price is None else candidate.price, candidate.part.type
 
 
 def _margins(part: CatalogPart, demand: Demand) -> Iterator[str]:
@@ -146,8 +172,6 @@ def _score(part: CatalogPart, demand: Demand, pins: PinFit, stock: StockItem | N
     if stock is not None and stock.quantity > 0:
         score += 0.15
         notes.append(f"{stock.quantity} in stock{', ' + stock.where if stock.where else ''}")
-        if stock.price is not None:
-            score += 0.03 / (1.0 + stock.price)
     if part.confidence == "memory":
         score -= 0.02
         notes.append("ratings from memory: compare with the sheet")

@@ -1,5 +1,7 @@
 """Catalog fields in words and figures as a person reads them."""
 
+from triage.replacement.catalog_part import CatalogPart
+
 UNITS = {
     "V": "V", "A": "A", "W": "W", "ohm": "ohm", "F": "F", "C": "C", "s": "s", "Hz": "Hz", "J": "J", "K": "K", "h": "h",
     "degC": "degC", "percent": "%", "mm": "mm", "Vac": "V", "Vdc": "V", "Vrms": "V",
@@ -53,3 +55,21 @@ def figure(value: float, unit: str) -> str:
 def words_of(key: str) -> str:
     """The words for a catalog field."""
     return WORDS.get(key, key.rpartition("_")[0].replace("_", " ") or key)
+
+
+def fit_of(part: CatalogPart) -> str:
+    """What a part is to the holes of the board: ``DO-41, 2.7 x 5.2 mm, leads 0.8 mm, pins E C B``; empty when unknown."""
+    numbers, words = part.numbers, [part.text("case")]
+    if "body_dia_mm" in numbers and "body_len_mm" in numbers:
+        words.append(f"{numbers['body_dia_mm']:g} x {numbers['body_len_mm']:g} mm")
+    if "disc_mm" in numbers:
+        words.append(f"disc {numbers['disc_mm']:g} mm")
+    if "lead_dia_mm" in numbers:
+        words.append(f"leads {numbers['lead_dia_mm']:g} mm")
+    if "lead_pitch_mm" in numbers:
+        words.append(f"pitch {numbers['lead_pitch_mm']:g} mm")
+    elif "lead_pitch_min_mm" in numbers:
+        words.append(f"holes at least {numbers['lead_pitch_min_mm']:g} mm apart")
+    if part.text("pins"):
+        words.append(f"pins {part.text('pins')}")
+    return ", ".join(word for word in words if word)
