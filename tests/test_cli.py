@@ -1,6 +1,8 @@
 """The command line: every step without a screen, exit codes, JSON that a script can work with, a quick
 start."""
 
+import csv
+import io
 import json
 import os
 import subprocess
@@ -191,6 +193,10 @@ def test_new_jobs_go_into_the_jobs_folder_and_are_found_there(stand_in: None, ru
     assert [one["id"] for one in run.json("jobs", "buzes")["jobs"]] == [PROFILE]
     assert "buzzes" in run("jobs")
     assert run.json("jobs", "--stage", "closed")["jobs"] == []
+    run("add", first["job"], "undo")
+    run("add", first["job"], "complaint", "=1+1", "--state", "dead")
+    rows = list(csv.DictReader(io.StringIO(run("jobs", "--csv"))))
+    assert [row["complaint"] for row in rows] == ["'=1+1 (dead)"]
 
 
 def test_check_names_every_fault_and_says_so_by_its_status(job: str, run: Terminal, tmp_path: Path) -> None:

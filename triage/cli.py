@@ -96,7 +96,8 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
         "find jobs of the jobs folder",
         (
             (("words",), {"nargs": "*", "help": "adapter, symptom or verdict, half remembered"}),
-            (("--stage",), {"help": "open or closed jobs only"}),
+            (("--stage",), {"help": "open, closed or returned jobs only"}),
+            (("--csv",), {"action": "store_true", "help": "all found jobs as CSV, for a spreadsheet or a data warehouse"}),
         ),
     ),
     "open": ("open a job in the app", ((("job",), {}),)),

@@ -5,12 +5,16 @@ gone through ``plain`` already, and JSON escapes what is not ASCII, so that noth
 coloured by a file.
 """
 
+import csv
 import json
 import math
 import sys
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import asdict, is_dataclass
 from typing import Any
+
+_FORMULA = ("=", "+", "-", "@")
+"""What a spreadsheet takes a cell for a formula by."""
 
 
 def print_json(answer: Any) -> None:
@@ -28,6 +32,16 @@ def _finite(answer: Any) -> Any:
     if isinstance(answer, float) and not math.isfinite(answer):
         return None
     return answer
+
+
+def print_csv(rows: Sequence[Mapping[str, Any]]) -> None:
+    """Write rows as CSV. A cell that a spreadsheet would take for a formula gets an apostrophe in front."""
+    writer = csv.writer(sys.stdout, lineterminator="\n")
+    if rows:
+        writer.writerow(rows[0])
+    for row in rows:
+        cells = [str(value) for value in row.values()]
+        writer.writerow(["'" + cell if cell.lstrip()[:1] in _FORMULA else cell for cell in cells])
 
 
 def print_lines(lines: Iterable[str]) -> None:

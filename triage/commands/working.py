@@ -2,11 +2,17 @@
 
 import argparse
 from collections.abc import Iterator
+from dataclasses import asdict
 from pathlib import Path
 from typing import Any
 
-from triage.commands.output import columns, print_json, print_lines
+from triage.commands.output import columns, print_csv, print_json, print_lines
 from triage.errors import JobError, TriageError
+
+MOST_SHOWN = 50
+"""Jobs listed."""
+MOST_ROWS = 10_000_000
+"""Jobs exported: all of them."""
 
 
 def run_new(asked: argparse.Namespace) -> int:
@@ -120,8 +126,12 @@ def run_jobs(asked: argparse.Namespace) -> int:
 
     with Index.of_folder(jobs_folder(asked.jobs)) as index:
         index.refresh()
-        found = index.find(" ".join(asked.words), stage=asked.stage or "")
+        limit = MOST_ROWS if asked.csv else MOST_SHOWN
+        found = index.find(" ".join(asked.words), stage=asked.stage or "", limit=limit)
         problems = index.problems()
+    if asked.csv:
+        print_csv([asdict(one) for one in found])
+        return 0
     if asked.json:
         print_json({"jobs": found, "problems": problems})
         return 0
