@@ -276,6 +276,7 @@ class FakeBench:
     released: bool = False
     closed: str = ""
     message: str = ""
+    drawing: str = DRAWING
 
     def _log(self, text: str, undo: object = None) -> v.JobView:
         self.said.append(v.EntryView(len(self.said) + 1, f"2026-02-03T02:{len(self.said):02d}:00Z", text))
@@ -371,7 +372,7 @@ class FakeBench:
             safe_to_touch="safe to touch while unplugged" if read else "NOT safe to touch: unplug and read the bulk voltage",
             entries=tuple(self.said),
             message=self.message,
-            drawing=DRAWING,
+            drawing=self.drawing,
             cautions=tuple(v.CautionView(key, text, key in self.acknowledged) for key, text in CAUTIONS),
             **more,  # type: ignore[arg-type]
         )

@@ -17,7 +17,7 @@ Story = Callable[[Pilot[int]], Awaitable[None]]
 
 BEGIN = ("down", "enter")
 """From the start page into a new job."""
-COMPLAIN = ("down", "enter", "enter", "enter")
+COMPLAIN = ("enter", "enter", "enter")
 """The adapter is dead, seen at full load, no words."""
 CAUTIONS = ("enter", "enter", "enter")
 """Three cautions, one by one."""

@@ -1,11 +1,11 @@
-"""Contrast of every text on its background, measured on the drawn screens.
+"""Contrast of every text on its background, measured on the drawn screens, in full colour and in 256 colours.
 
 Published: WCAG 2.1, success criterion 1.4.3 (at least 4.5:1) and the definitions of contrast ratio and
 relative luminance in its glossary; the pair black on white is 21:1 by definition.
 """
 
 import pytest
-from rich.color import Color
+from rich.color import Color, ColorSystem
 from rich.segment import Segment
 
 from tests.app.screens import TO_BENCH, play, press, settle, strips, type_in
@@ -85,9 +85,10 @@ def test_every_text_is_readable(tmp_path, theme):
 
     play(tmp_path, story)
     assert len(found) > 10
-    poor = {
-        pair: (round(contrast(Color.parse(pair[0]), Color.parse(pair[1])), 2), text)
-        for pair, text in found.items()
-        if contrast(Color.parse(pair[0]), Color.parse(pair[1])) < LEAST
-    }
+    poor = {}
+    for (front, back), text in found.items():
+        for system in (ColorSystem.TRUECOLOR, ColorSystem.EIGHT_BIT):
+            ratio = contrast(Color.parse(front).downgrade(system), Color.parse(back).downgrade(system))
+            if ratio < LEAST:
+                poor[front, back, system.name] = (round(ratio, 2), text)
     assert poor == {}

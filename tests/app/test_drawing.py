@@ -17,18 +17,23 @@ def text_of(drawing: str, marks: Marks) -> str:
 
 def test_suspects_and_leads_carry_their_signs():
     text = text_of(DRAWING, MARKS)
-    for sign in ("*Q1!", "?RF1]", "+bulk+", "-pgnd-", "[R2!"):
+    for sign in ("*Q1!", "?RF1]", "{+bulk}", "{-pgnd}", "[R2!"):
         assert sign in text
 
 
 def test_no_colour_is_needed_to_tell_marks_apart():
-    assert len({sign for word in ("Q1", "RF1", "bulk", "pgnd", "R2") for sign in [MARKS.around(word)[:2]]}) == 5
+    assert len({sign for word in ("Q1", "RF1", "bulk", "pgnd", "R2") for sign in [MARKS.around(word)[:3]]}) == 5
 
 
 def test_the_shape_of_the_drawing_stays():
     before = [plain(row) for row in marked(DRAWING, Marks())]
     after = [plain(row) for row in marked(DRAWING, MARKS)]
     assert [len(row) for row in before] == [len(row) for row in after]
+
+
+def test_a_lead_between_wires_is_told_from_them():
+    assert "{-drive}" in text_of("--R3]--drive-C3--", Marks(red="base", black="drive"))
+    assert "{drive}" in text_of("]-drive-C3", Marks(black="drive")) or "{-drive}" in text_of("]-drive-C3", Marks(black="drive"))
 
 
 def test_words_inside_other_words_are_not_marked():
@@ -66,7 +71,7 @@ WIDE = """\
  pgnd ------------------------+------+           |   +-----------+--o sgnd"""
 
 
-@pytest.mark.parametrize("columns", [56, 58, 60, 66, 200])
+@pytest.mark.parametrize("columns", [54, 58, 60, 66, 200])
 @pytest.mark.parametrize("rows", [4, 5, 6, 20])
 def test_a_squeezed_drawing_keeps_every_word_and_every_row_of_parts(columns, rows):
     words = [row.split() for row in WIDE.replace("-", " ").replace("|", " ").splitlines() if row.strip("| ")]
@@ -79,7 +84,7 @@ def test_a_squeezed_drawing_keeps_every_word_and_every_row_of_parts(columns, row
 
 def test_a_squeezed_drawing_keeps_its_joints_in_line():
     got = squeezed(WIDE, 55, 4).splitlines()
-    at = got[1].index("+----+")
+    at = got[1].index("+---+")
     assert got[2][at - 1 : at + 1] == "C1" and got[3][at] == "+" and "bulk"[1] == got[0][at]
 
 

@@ -79,3 +79,10 @@ def test_no_key_has_two_meanings():
 
     keys = [command.key for command in COMMANDS if command.key]
     assert len(keys) == len(set(keys))
+
+
+def test_set_lines_of_help_pages_fit_80_columns():
+    for path in (ROOT / "triage/app/help").glob("*.txt"):
+        for row in path.read_text(encoding="utf-8").splitlines():
+            assert not row.startswith(" ") or len(row) <= 79, (path.name, row)
+            assert row.isascii(), (path.name, row)

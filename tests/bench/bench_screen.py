@@ -96,7 +96,7 @@ class Player:
     def to_bench(self) -> None:
         """From the start page to the first reading."""
         self.term.wait_for("Radio desk cube")
-        self.press(DOWN, ENTER, DOWN, *[ENTER] * 10)
+        self.press(DOWN, *[ENTER] * 7, "s", "s")
         self.term.wait_for("next  volts DC")
 
     def to_close(self) -> None:
@@ -107,7 +107,6 @@ class Player:
         self.press("\x1b[15~", ENTER, DOWN, ENTER)
         self.press("\x1b[17~", ENTER)
         self.value("50M")
-        self.press(ENTER)
         self.value("5.02")
         self.press(DOWN, DOWN, DOWN, ENTER)
         self.term.wait_for("saved after every entry")

@@ -8,8 +8,9 @@ the drawing keeps its shape: ``?Q1`` is suspected, ``*Q1`` most of all, ``Q1!`` 
 import re
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
+from itertools import groupby
 
-from triage.app.lines import Line, Span, plain
+from triage.app.lines import Line, Span, line, plain
 
 _WORD = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
 _ALONG = " -─━═"
@@ -31,17 +32,15 @@ class Marks:
     black: str = ""
     """Node of the black lead."""
 
-    def around(self, word: str) -> tuple[str, str, str]:
-        """The sign left of a word, the sign right of it, and the mark of the word; empty signs where there
-        is none."""
-        if word == self.red:
-            return "+", "+", "red"
-        if word == self.black:
-            return "-", "-", "black"
+    def around(self, word: str) -> tuple[str, str, str, str]:
+        """Signs left and right of a word, the polarity of a lead, and the mark; all empty for a word without
+        one."""
+        if word in (self.red, self.black):
+            return ("{", "}", "+", "red") if word == self.red else ("{", "}", "-", "black")
         right = "!" if word in self.over else ""
         if word in self.suspects:
-            return "*" if word == self.suspects[0] else "?", right, "suspect"
-        return "", right, "over" if right else ""
+            return "*" if word == self.suspects[0] else "?", right, "", "suspect"
+        return "", right, "", "over" if right else ""
 
 
 def marked(drawing: str, marks: Marks) -> tuple[Line, ...]:
@@ -49,30 +48,43 @@ def marked(drawing: str, marks: Marks) -> tuple[Line, ...]:
     marks."""
     rows = [row.rstrip() for row in drawing.expandtabs(4).strip("\n").splitlines()]
     margin = " " if any(row[:1].isalnum() for row in rows) else ""
-    return tuple(_marked_row(f"{margin}{row}{' ' if row[-1:].isalnum() else ''}", marks) for row in rows)
+    return tuple(_marked_row(f"{margin}{row}{'  ' if row[-1:].isalnum() else ''}", marks) for row in rows)
 
 
 def _marked_row(row: str, marks: Marks) -> Line:
     chars = list(row)
     regions: list[tuple[int, int, str]] = []
     for found in _WORD.finditer(row):
-        left, right, mark = marks.around(found.group())
+        left, right, polarity, mark = marks.around(found.group())
         if not mark:
             continue
-        start, end = found.span()
-        if left and not row[start - 1].isalnum():
-            chars[start - 1], start = left, start - 1
-        if right and end < len(row) and not row[end].isalnum():
-            chars[end], end = right, end + 1
+        taken = regions[-1][1] if regions else 0
+        before, after = _room(row, found.start(), taken, -1), _room(row, found.end(), len(row), 1)
+        if polarity and before > 1:
+            left += polarity
+        elif polarity and after > 1:
+            right = polarity + right
+        left, right = left[: before if left else 0], right[:after]
+        start, end = found.start() - len(left), found.end() + len(right)
+        chars[start:end] = left + found.group() + right
         regions.append((start, end, mark))
     spans: list[Span] = []
     at = 0
     for start, end, mark in regions:
-        spans.append(Span("".join(chars[at:start])))
-        spans.append(Span("".join(chars[max(start, at) : end]), mark))
+        spans += [Span("".join(chars[at:start])), Span("".join(chars[start:end]), mark)]
         at = end
-    spans.append(Span("".join(chars[at:])))
-    return tuple(span for span in spans if span.text)
+    return line(*spans, "".join(chars[at:]))
+
+
+def _room(row: str, edge: int, bound: int, step: int) -> int:
+    """How many characters (up to 2) beside a word may carry its signs: neither of another word nor beyond the
+    bound."""
+    count = 0
+    at = edge - 1 if step < 0 else edge
+    while count < 2 and (bound <= at if step < 0 else at < bound) and not (row[at].isalnum() or row[at] == "_"):
+        count += 1
+        at += step
+    return count
 
 
 def squeezed(drawing: str, columns: int, rows: int) -> str:
@@ -87,11 +99,30 @@ def squeezed(drawing: str, columns: int, rows: int) -> str:
         del lines[number]
     width = max(map(len, lines), default=0)
     full = [row.ljust(width) for row in lines]
-    idle = [at for at in range(1, width) if all(row[at] == row[at - 1] and row[at] in _ALONG for row in full)]
-    excess = max(width - columns, 0)
-    step = max(len(idle) / excess, 1.0) if excess else 1.0
-    gone = {idle[int(number * step)] for number in range(min(excess, len(idle)))}
-    return "\n".join("".join(char for at, char in enumerate(row) if at not in gone).rstrip() for row in full)
+    for _ in range(max(width - columns, 0)):
+        at = _idlest_column(full)
+        if at is None:
+            break
+        full = [row[:at] + row[at + 1 :] for row in full]
+    return "\n".join(row.rstrip() for row in full)
+
+
+def _idlest_column(rows: list[str]) -> int | None:
+    """The column that every row can spare, where the shortest run of wire or blank around it is longest; or
+    None."""
+    shortest = [min(lengths) for lengths in zip(*map(_runs, rows), strict=True)]
+    best = max(shortest, default=0)
+    return shortest.index(best) if best > 1 else None
+
+
+def _runs(row: str) -> list[int]:
+    """For each character the length of the run of its like that it stands in; 0 for what is neither wire nor
+    blank."""
+    lengths: list[int] = []
+    for char, run in groupby(row):
+        count = len(list(run))
+        lengths += [count if char in _ALONG else 0] * count
+    return lengths
 
 
 def rows_of(drawing: Sequence[Line], word: str) -> tuple[int, ...]:

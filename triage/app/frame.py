@@ -31,7 +31,7 @@ class Frame(Screen[None]):
     """Name in the key table; also the name of the help page."""
     NAME: ClassVar[str] = ""
     """Name on the status line."""
-    AUTO_FOCUS = "Field, ChoiceField, ListPanel"
+    AUTO_FOCUS = "Field, ListPanel"
     BINDINGS = [("escape", "back", "back")]  # noqa: RUF012 (Textual's own way)
 
     @property

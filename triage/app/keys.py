@@ -24,7 +24,7 @@ class Command(NamedTuple):
 
 
 COMMANDS = (
-    Command("f1", "F1 ?", "help", "help", "what this screen is for and which keys it takes", job=False),
+    Command("f1", "F1 ?", "", "help", "what this screen is for and which keys it takes", job=False),
     Command("f2", "F2", "bench", "go('bench')", "the board, the suspects and the next reading"),
     Command("f3", "F3", "stress", "go('stress')", "how hard each part is driven, against rating and derated limit"),
     Command("f4", "F4", "moves", "go('moves')", "how the suspects moved with each reading; waveforms"),
@@ -32,8 +32,8 @@ COMMANDS = (
     Command("f6", "F6", "retest", "go('retest')", "the result of the repair, the checks after it, closing the job"),
     Command("f7", "F7", "record", "go('record')", "the job as it is saved, and its report"),
     Command("f8", "F8", "look", "go('looks')", "what to look at, and what was seen, heard, smelt or felt"),
-    Command("f10", "F10", "cautions", "go('cautions')", "the cautions, and which are acknowledged"),
     Command("f9", "F9", "undo", "undo", "take the last entry back"),
+    Command("f10", "F10", "cautions", "go('cautions')", "the cautions, and which are acknowledged"),
     Command("", "", "any reading", "form('reading')", "enter a reading of your own choice (+ in the empty field)"),
     Command("", "", "seen", "form('sign')", "enter something seen, heard, smelt or felt at a part"),
     Command("", "", "power on", "power(True)", "say that the adapter was powered up through the current limit"),

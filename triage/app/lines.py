@@ -85,6 +85,19 @@ def clip(row: Line, width: int, more: str = "~") -> Line:
     return line(*kept, Span(more, "quiet"))
 
 
+def drop(row: Line, columns: int) -> Line:
+    """The line without its first columns."""
+    kept: list[Span] = []
+    for span in row:
+        cells = cell_len(span.text)
+        if columns >= cells:
+            columns -= cells
+            continue
+        kept.append(span._replace(text=span.text[columns:]))
+        columns = 0
+    return tuple(kept)
+
+
 def fit(text: str, width: int, more: str = "~") -> str:
     """``text`` in exactly ``width`` columns: padded, or cut with ``more`` at its end."""
     if cell_len(text) <= width:

@@ -10,7 +10,7 @@ from textual.theme import Theme
 _DARK = {
     "ink": "#d8dee4",
     "paper": "#11161b",
-    "quiet": "#9fb0bf",
+    "quiet": "#afafaf",
     "strong": "#ffffff",
     "head": "#ffffff",
     "head-paper": "#26394a",
@@ -26,9 +26,9 @@ _DARK = {
     "black-paper": "#d8dee4",
     "cursor": "#ffffff",
     "cursor-paper": "#2b5c8a",
-    "blurred-paper": "#2a333c",
+    "blurred-paper": "#303030",
     "field": "#ffffff",
-    "field-paper": "#2a333c",
+    "field-paper": "#303030",
     "bad": "#ff9b94",
 }
 _LIGHT = {
@@ -50,9 +50,9 @@ _LIGHT = {
     "black-paper": "#1b2127",
     "cursor": "#ffffff",
     "cursor-paper": "#0b4f8a",
-    "blurred-paper": "#dcdfe0",
+    "blurred-paper": "#dadada",
     "field": "#000000",
-    "field-paper": "#e3e6e6",
+    "field-paper": "#e4e4e4",
     "bad": "#a3150d",
 }
 _OWN = dict.fromkeys(_DARK, "ansi_default") | {

@@ -7,10 +7,10 @@ from textual.containers import Container, Horizontal
 
 from triage.app.drawing import Marks, marked, pin_list, rows_of, squeezed
 from triage.app.frame import Frame
-from triage.app.lines import Line, Span, line, width_of, wrapped
+from triage.app.lines import Line, Span, line, plain, width_of, wrapped
 from triage.app.text.bench import log_lines, rooms, suggestion_lines, suspect_lines, verdict_lines, waiting_lines
 from triage.app.typed import Typed, understand
-from triage.app.widgets.field import Field
+from triage.app.widgets.field import Field, ReadingField
 from triage.app.widgets.panel import Panel
 from triage.job.views import JobView, SuggestionView
 
@@ -45,7 +45,7 @@ class BenchScreen(Frame):
         yield Panel(id="log")
         with Horizontal(classes="row"):
             yield Panel(id="field-label")
-            yield Field(id="field")
+            yield ReadingField(id="field")
             yield Panel(id="field-hint")
 
     def refresh_body(self, view: JobView | None) -> None:
@@ -62,9 +62,11 @@ class BenchScreen(Frame):
         for node in (found.minus, found.plus) if found else ():
             for row in rows_of(rows, node)[:1]:
                 board.scroll_to_row(row)
+                at = plain(rows[row]).index(node)
+                board.pan_to(max(at - 2, 0), at + len(node) + 2)
         suspects.show(suspect_lines(view.suspects, self._beside or self.wide, self._rooms.suspects, self.glyphs))
         if self._rooms.log:
-            log.show(log_lines(view.entries, self.wide, self._rooms.log))
+            log.show(log_lines(view.entries, self.wide, self._rooms.log - 1))
         self._show_next(view)
 
     @staticmethod
@@ -159,6 +161,10 @@ class BenchScreen(Frame):
             self.desk.enter(lambda bench: bench.skip(function, plus, minus, condition, typed.text), accepted)
         else:
             self.desk.enter(lambda bench: bench.read(function, plus, minus, condition, typed.text), accepted)
+
+    def action_pan(self, columns: int) -> None:
+        """Move the drawing sideways."""
+        self.panel("board").pan(columns)
 
     def action_board(self, rows: int) -> None:
         """Scroll the drawing."""

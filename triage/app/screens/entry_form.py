@@ -9,7 +9,7 @@ from textual.containers import Horizontal
 from textual.widgets import Input
 
 from triage.app.frame import Form
-from triage.app.lines import Span, clip, line
+from triage.app.lines import Span, clip, line, wrapped
 from triage.app.widgets.field import ChoiceField, Field
 from triage.app.widgets.panel import Panel
 from triage.job.views import JobView
@@ -55,9 +55,7 @@ class EntryForm(Form):
 
     def refresh_body(self, view: JobView | None) -> None:
         """Labels; choices of the field with the cursor."""
-        self.panel("head").show(
-            (line(Span(self.HEAD, "strong")), line(Span("Enter goes on, Escape puts the form away", "quiet")))
-        )
+        self.panel("head").show(wrapped(self.HEAD, self.wide, "strong"))
         for one in self.asked():
             self.panel(f"label-{one.name}").show((line(one.label.rjust(18) + "  "),))
         self._show_choices()

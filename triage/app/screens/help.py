@@ -44,7 +44,7 @@ class HelpScreen(Form):
                 rows += wrapped(text, self.wide - 2, "strong" if text.endswith(":") else "")
         rows += [line(), line(Span("Keys that do the same on every screen:", "strong"))]
         rows += [
-            columns([(Span(one.shown, "key"), 5), (one.label, 10), (one.help, max(self.wide - 18, 20))])
+            columns([(Span(one.shown, "key"), 5), (one.label or "help", 10), (one.help, max(self.wide - 18, 20))])
             for one in COMMANDS
             if one.shown
         ]

@@ -47,7 +47,7 @@ class MenuScreen(Form):
                 columns(
                     [
                         (Span(one.shown, "key"), 5),
-                        (Span(one.label, "strong"), 12),
+                        (Span(one.label or "help", "strong"), 12),
                         (one.help, max(self.wide - 20, 20)),
                     ]
                 ),

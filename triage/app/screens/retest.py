@@ -91,8 +91,10 @@ class RetestScreen(Frame):
     def on_input_submitted(self, event: Input.Submitted) -> None:
         """The reading of the check under the cursor."""
         here = self._here()
-        if here is not None:
-            text = understand(event.value).text
+        text = understand(event.value).text
+        if not text:
+            self.show_message("type the reading, or yes or no; Escape goes back to the list")
+        elif here is not None:
             self.desk.enter(lambda bench: bench.retest(here.key, text), self._accepted)
 
     def _accepted(self) -> None:

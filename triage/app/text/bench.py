@@ -156,11 +156,11 @@ def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: 
             " ",
             Span(FUNCTION_WORDS.get(found.function, found.function), "strong"),
             "  red ",
-            Span(f"+{found.plus}+", "red"),
+            Span(f"{{+{found.plus}}}", "red"),
             " ",
             Span(places[found.plus]),
             "  black ",
-            Span(f"-{found.minus}-", "black"),
+            Span(f"{{-{found.minus}}}", "black"),
             " ",
             Span(places[found.minus]),
         )

@@ -29,19 +29,18 @@ def status_lines(view: JobView, place: str, width: int) -> tuple[Line, ...]:
 
 
 def key_line(commands: Sequence[Command], width: int, job: bool = True) -> Line:
-    """Keys with their words, as many as fit; each can be clicked."""
+    """Keys with their words, as many as fit, two columns apart where all fit so; each can be clicked."""
+    keyed = [one for one in commands if one.shown and (job or not one.job)]
+    wide = sum(len(one.shown) + len(one.label) + 3 for one in keyed) <= width
     spans: list[Span] = []
-    for command in commands:
-        if not command.shown or (command.job and not job):
-            continue
-        more = [
-            Span(command.shown, "key", command.action),
-            Span(" " + command.label + "  ", "", command.action),
-        ]
-        if width_of(tuple(spans + more)) - 2 > width:
+    for one in keyed:
+        word = f" {one.label}" if one.label else ""
+        more = [Span("  " if wide else " "), Span(one.shown, "key", one.action), Span(word, "", one.action)]
+        longer = [*spans, *more] if spans else more[1:]
+        if width_of(tuple(longer)) > width:
             break
-        spans += more
-    return clip(tuple(spans), width, more="")
+        spans = longer
+    return line(*spans)
 
 
 def standard_keys(width: int, job: bool = True) -> Line:

@@ -1,7 +1,7 @@
 """Fields to type in: narrow, compact, without a blinking cursor; a click or Tab puts the cursor in."""
 
 from collections.abc import Sequence
-from typing import Any
+from typing import Any, ClassVar
 
 from textual import events
 from textual.widgets import Input
@@ -10,18 +10,29 @@ from textual.widgets import Input
 class Field(Input):
     """A field for a value or a word."""
 
+    EMPTY: ClassVar[dict[str, str]] = {"?": "app.help"}
+    """Character -> what it does while the field is empty."""
+
     def __init__(self, value: str = "", placeholder: str = "", **names: Any) -> None:
         super().__init__(value, placeholder, compact=True, select_on_focus=False, **names)
         self.cursor_blink = False
 
     async def _on_key(self, event: events.Key) -> None:
-        """Leave ``?`` to the help page while the field is empty; within words it is a letter."""
-        if event.character == "?" and not self.value:
+        """Leave the keys of ``EMPTY`` to their actions while nothing is typed; within words they are
+        letters."""
+        action = self.EMPTY.get(event.character or "") if not self.value else None
+        if action:
             event.stop()
             event.prevent_default()
-            await self.app.run_action("help")
+            await self.run_action(action)
             return
         await super()._on_key(event)
+
+
+class ReadingField(Field):
+    """The field of the reading loop: ``<`` and ``>`` move the drawing while nothing is typed."""
+
+    EMPTY: ClassVar[dict[str, str]] = {**Field.EMPTY, "<": "screen.pan(-12)", ">": "screen.pan(12)"}
 
 
 class ChoiceField(Field):

@@ -17,7 +17,7 @@ from textual.strip import Strip
 from textual.widget import Widget
 
 from triage.app.glyphs import FULL, Glyphs
-from triage.app.lines import MARKS, Line, Span, clip, merged, width_of
+from triage.app.lines import MARKS, Line, Span, clip, drop, merged, width_of
 
 
 class Panel(Widget):
@@ -29,6 +29,7 @@ class Panel(Widget):
         super().__init__(**names)
         self._lines: tuple[Line, ...] = ()
         self._top = 0
+        self._left = 0
 
     @property
     def lines(self) -> tuple[Line, ...]:
@@ -68,6 +69,21 @@ class Panel(Widget):
         self._top = self._bounded(self._top + rows)
         self._paint_changes(before)
 
+    def pan(self, columns: int) -> None:
+        """Move the view sideways over lines that are wider than the panel."""
+        before = [self._row(y) for y in range(self.size.height)]
+        most = max(map(width_of, self._lines), default=0) - self.size.width
+        self._left = max(0, min(self._left + columns, most))
+        self._paint_changes(before)
+
+    def pan_to(self, start: int, end: int) -> None:
+        """Move the view sideways as little as needed to have these columns in it."""
+        width = self.size.width
+        if start < self._left:
+            self.pan(start - self._left)
+        elif width and end > self._left + width - 1:
+            self.pan(end - self._left - width + 1)
+
     def scroll_to_row(self, row: int) -> None:
         """Move the view as little as needed to have the row in it."""
         height = max(self._body_height, 1)
@@ -94,7 +110,7 @@ class Panel(Widget):
     def _row(self, y: int) -> Line:
         """The line at screen row ``y`` with the scroll arrow, as it is painted."""
         number = y + self._top
-        row = self._lines[number] if 0 <= number < len(self._lines) else ()
+        row = drop(self._lines[number], self._left) if 0 <= number < len(self._lines) else ()
         arrow = ""
         if y == 0 and self._top > 0:
             arrow = self.glyphs.up
