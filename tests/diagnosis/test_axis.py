@@ -16,12 +16,19 @@ def test_the_axis_can_be_walked_back(value: float) -> None:
     assert from_axis(float(to_axis(value, OHMS)), OHMS) == pytest.approx(value, rel=1e-12, abs=1e-12)
 
 
-@pytest.mark.parametrize("value", [0.0, 0.5, 10.0, 1e4, 1e7])
+@pytest.mark.parametrize("value", [0.0, 0.5, 10.0, 1e4, 9e5])
 def test_one_step_on_the_axis_is_one_standard_error(value: float) -> None:
     """du/dx = 1 / sqrt(a^2 + (r x)^2), the definition of a variance-stabilising scale."""
     error = math.hypot(OHMS.absolute, OHMS.relative * value)
     step = float(to_axis(value + 1e-4 * error, OHMS) - to_axis(value, OHMS))
     assert step == pytest.approx(1e-4, rel=1e-3)
+
+
+def test_above_the_knee_the_error_is_a_larger_share() -> None:
+    value = 5.0 * OHMS.knee
+    step = float(to_axis(value * 1.0001, OHMS) - to_axis(value, OHMS))
+    assert step == pytest.approx(1e-4 / OHMS.relative_above_knee, rel=1e-3)
+    assert OHMS.relative_above_knee > 2 * OHMS.relative
 
 
 def test_readings_find_their_cells() -> None:

@@ -261,3 +261,14 @@ def test_a_confirmation_is_asked_for_once_and_can_be_skipped() -> None:
     assert step is not None and step.probe == sb.DIODE_D1 and step.reason.startswith("Confirm D1 short")
     skipped = job(DEAD, hunches=hunch, skipped=frozenset({sb.DIODE_D1}))
     assert sure.suggest(skipped, everything) is None and sure.verdict(skipped).status == "found"
+
+
+def test_a_confirmation_says_what_confirms_and_what_contradicts() -> None:
+    pins = {"R1": frozenset("ab"), "C1": frozenset("bg"), "D1": frozenset("bc")}
+    sure = sb.diagnosis(pins=pins, settings=replace(Settings.load(), stop_target=0.3, hunch_factor=50.0))
+    step = sure.suggest(job(DEAD, hunches=frozenset({"D1"})), everything)
+    assert step is not None
+    low, high = step.outcomes
+    assert low.says == "confirms D1 short" and low.high < 0.6 <= high.high
+    assert high.says.startswith("contradicts D1 short")
+    assert low.probability + high.probability == pytest.approx(1.0, abs=1e-5) and low.probability > high.probability

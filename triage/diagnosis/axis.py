@@ -2,8 +2,9 @@
 
 A reading x with standard error sqrt(a^2 + (r x)^2) is carried to u = asinh(r x / a) / r, on which the error
 is 1 everywhere (a variance-stabilising transformation; Bartlett, The use of transformations, Biometrics 3
-(1947) 39-52): linear near zero, logarithmic far from it. Cells of equal width on u therefore suit 0.02 ohm as
-well as 20 Mohm. Open line is a cell of its own.
+(1947) 39-52): linear near zero, logarithmic far from it, and coarser logarithmic above a knee where other
+things than the meter blur the reading. Cells of equal width on u therefore suit 0.02 ohm as well as 20 Mohm.
+Open line is a cell of its own.
 """
 
 import math
@@ -32,12 +33,19 @@ def to_axis(value: NDArray[np.floating] | float, instrument: Instrument) -> NDAr
     """
     shown = np.asarray(value, dtype=float)
     shown = shown if instrument.signed else np.maximum(shown, 0.0)
-    ratio = shown * (instrument.relative / instrument.absolute)
-    return np.arcsinh(ratio) / instrument.relative
+    below = np.minimum(shown, instrument.knee)
+    position = np.arcsinh(below * (instrument.relative / instrument.absolute)) / instrument.relative
+    if np.isinf(instrument.knee):
+        return position
+    above = np.log(np.maximum(shown, instrument.knee) / instrument.knee) / instrument.relative_above_knee
+    return position + above
 
 
 def from_axis(position: float, instrument: Instrument) -> float:
     """Reading [SI] at a position on the axis; the inverse of ``to_axis``."""
+    knee = float(to_axis(instrument.knee, instrument))
+    if position > knee:
+        return instrument.knee * math.exp((position - knee) * instrument.relative_above_knee)
     return math.sinh(position * instrument.relative) * instrument.absolute / instrument.relative
 
 

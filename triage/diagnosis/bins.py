@@ -1,18 +1,10 @@
 """Into which outcomes the cells of a reading are gathered when readings are scored."""
 
-from itertools import pairwise
-
 import numpy as np
 from numpy.typing import NDArray
 
-BINS = 16
+BINS = 12
 """Outcomes a probe is scored with, besides OL; 12 to 24 cost and gain the same on a prototype."""
-FEW_BINS = 6
-"""Outcomes a probe is scored with while very many hypotheses are in question, OL included."""
-LOSS = 0.02
-"""Share of the information that may be lost by merging even when there are fewer than FEW_BINS. The prototype
-lost 3 % with 5 bins.
-"""
 
 
 def bin_edges(cells: NDArray[np.int32], count: int) -> list[int]:
@@ -37,33 +29,3 @@ def bin_edges(cells: NDArray[np.int32], count: int) -> list[int]:
         low, high = (left + cut + 1) // 2, (cut + right) // 2 + 1
         moved.add(low + int(np.argmin(smooth[low:high])) if high > low else cut)
     return [0, *sorted(cut for cut in moved if 0 < cut < count), count, count + 1]
-
-
-def merged_bins(table: NDArray[np.floating]) -> NDArray[np.int64]:
-    """First bin of each merged outcome: neighbours joined greedily by least loss of information, OL (the last
-    bin) kept apart.
-
-    (Agglomerative information bottleneck; Slonim, Tishby, NIPS 1999.)
-
-    table: p(bin | group) for groups of hypotheses that read alike, shape (bins, groups); all groups count the
-        same.
-    """
-    rows = [row.astype(float) / table.shape[1] for row in table]
-    starts = list(range(len(rows)))
-    whole = sum(map(_content, rows)) - _content(np.sum(rows, axis=0))
-    lost = 0.0
-    while len(rows) > 2:
-        losses = [_content(a) + _content(b) - _content(a + b) for a, b in pairwise(rows[:-1])]
-        place = int(np.argmin(losses))
-        lost += losses[place]
-        if len(rows) <= FEW_BINS and lost > LOSS * whole:
-            break
-        rows[place : place + 2] = [rows[place] + rows[place + 1]]
-        del starts[place + 1]
-    return np.asarray(starts, dtype=np.int64)
-
-
-def _content(row: NDArray[np.float64]) -> float:
-    """sum p log p - P log P of one outcome with P = sum p: its share of the information [nat]."""
-    total = row.sum()
-    return float((row * np.log(np.maximum(row, 1e-300))).sum() - total * np.log(max(total, 1e-300)))

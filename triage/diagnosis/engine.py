@@ -83,7 +83,7 @@ class Diagnosis:
         self.actions = Actions.of_hypotheses(expectations.hypotheses)
         self.model = ReadingModel(expectations, self.settings)
         self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings)
-        self._scorer = Scorer(self.model, self.actions, self.settings.scored_mass)
+        self._scorer = Scorer.of_model(self.model, self.actions)
         self._last: tuple[Job, Standing] | None = None
 
     @classmethod

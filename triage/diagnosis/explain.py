@@ -3,13 +3,14 @@ likelihood ratios.
 """
 
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
+from triage.board.fault import Hypothesis
 from triage.board.probe import Probe
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.costs import PLUG_FUNCTIONS
@@ -90,49 +91,66 @@ def measure_again(model: ReadingModel, belief: NDArray[np.float64], actions: Act
 
 def confirmation(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, choice: Candidate, lead: int) -> Suggestion:
     """A reading at the suspected part itself, before it is unsoldered."""
-    name = suspect_name(model.expectations.hypotheses[lead])
+    hypotheses = model.expectations.hypotheses
+    name = suspect_name(hypotheses[lead])
+    either = np.zeros(len(hypotheses))
+    either[[lead, hypotheses.index(Hypothesis(()))]] = 0.5
+    rows = model.bins[model.owner == choice.column]
+    joint, own = actions.joint(rows, either), actions.of[lead]
+    chances = rows.astype(float) @ belief
+    bands = []
+    for first, last in _bands(joint):
+        confirms = int(np.argmax(joint[first:last].sum(axis=0))) == own
+        says = f"confirms {name}" if confirms else f"contradicts {name}: look further"
+        bands.append(_outcome(model, choice.column, first, last, float(chances[first:last].sum()), says))
     reason = f"Confirm {name} at the part itself before unsoldering it: {probe_words(choice.probe)}."
-    bands = outcomes(model, belief, actions, choice.column)
-    return Suggestion(choice.probe, choice.minutes, reason, bands, hazard_words(choice.probe), choice.gain)
+    return Suggestion(choice.probe, choice.minutes, reason, tuple(bands), hazard_words(choice.probe), choice.gain)
 
 
 def outcomes(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, column: int) -> tuple[Outcome, ...]:
     """At most three bands of a reading; neighbouring ones that lead to the same best repair are one band."""
-    rows = np.flatnonzero(model.owner == column)
-    joint = actions.joint(model.bins[rows], belief)
-    edges = model.edges[column]
-    bands = [[edges[i], edges[i + 1], joint[i]] for i in range(len(rows)) if edges[i] < edges[i + 1]]
-    bands = _joined(bands, lambda a, b: int(np.argmax(a)) == int(np.argmax(b)))
-    while len(bands) > MOST_OUTCOMES:
-        loss = [_purity(a[2]) + _purity(b[2]) - _purity(a[2] + b[2]) for a, b in pairwise(bands)]
-        place = int(np.argmin(loss))
-        bands[place : place + 2] = [[bands[place][0], bands[place + 1][1], bands[place][2] + bands[place + 1][2]]]
-        bands = _joined(bands, lambda a, b: int(np.argmax(a)) == int(np.argmax(b)))
-    return tuple(_outcome(model, actions, column, *band) for band in bands)
+    joint = actions.joint(model.bins[model.owner == column], belief)
+    found = []
+    for first, last in _bands(joint):
+        weights = joint[first:last].sum(axis=0)
+        total, best = float(weights.sum()), int(np.argmax(weights))
+        says = f"{repair_words(sorted(actions.repairs[best]))}, {percent_words(weights[best] / max(total, 1e-30))}"
+        found.append(_outcome(model, column, first, last, total, says))
+    return tuple(found)
 
 
-def _joined(bands: list[list], same: Callable[[NDArray[np.float64], NDArray[np.float64]], bool]) -> list[list]:
-    joined = [list(bands[0])]
-    for low, high, weights in bands[1:]:
-        if same(joined[-1][2], weights):
-            joined[-1][1], joined[-1][2] = high, joined[-1][2] + weights
-        else:
-            joined.append([low, high, weights])
-    return joined
+def _bands(joint: NDArray[np.float64]) -> list[tuple[int, int]]:
+    """(first bin, bin behind the last) of each band, from P(bin and repair).
+
+    Neighbours with the same best repair are joined; while there are too many bands, the two whose joining
+    costs least purity.
+    """
+    bands = [(i, i + 1) for i in range(len(joint))]
+
+    def weights(band: tuple[int, int]) -> NDArray[np.float64]:
+        return np.asarray(joint[band[0] : band[1]].sum(axis=0))
+
+    while len(bands) > 1:
+        rows = [weights(band) for band in bands]
+        same = [i for i, (a, b) in enumerate(pairwise(rows)) if int(np.argmax(a)) == int(np.argmax(b))]
+        if not same and len(bands) <= MOST_OUTCOMES:
+            break
+        loss = [_purity(a) + _purity(b) - _purity(a + b) for a, b in pairwise(rows)]
+        place = same[0] if same else int(np.argmin(loss))
+        bands[place : place + 2] = [(bands[place][0], bands[place + 1][1])]
+    return bands
 
 
 def _purity(weights: NDArray[np.float64]) -> float:
     return float((weights**2).sum() / max(weights.sum(), 1e-30))
 
 
-def _outcome(model: ReadingModel, actions: Actions, column: int, first: int, last: int, weights: NDArray[np.float64]) -> Outcome:
-    axis = model.axes[column]
-    low = axis.edge(first) if first < axis.cells else math.inf
-    high = math.inf if last > axis.cells else axis.edge(last)
-    total = float(weights.sum())
-    best = int(np.argmax(weights))
-    says = f"{repair_words(sorted(actions.repairs[best]))}, {percent_words(weights[best] / max(total, 1e-30))}"
-    return Outcome(_band_words(model.expectations.probes[column], low, high), low, high, total, says)
+def _outcome(model: ReadingModel, column: int, first: int, last: int, probability: float, says: str) -> Outcome:
+    """The band from bin ``first`` to the bin before ``last``."""
+    axis, edges = model.axes[column], model.edges[column]
+    low = math.inf if edges[first] >= axis.cells else axis.edge(edges[first])
+    high = math.inf if edges[last] > axis.cells else axis.edge(edges[last])
+    return Outcome(_band_words(model.expectations.probes[column], low, high), low, high, probability, says)
 
 
 def _band_words(probe: Probe, low: float, high: float) -> str:

@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from triage.diagnosis.axis import Axis, draw_width, to_axis
-from triage.diagnosis.bins import bin_edges, merged_bins
+from triage.diagnosis.bins import bin_edges
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.settings import Settings, instruments
 
@@ -54,6 +54,11 @@ class ReadingModel:
     def known(self, column: int) -> bool:
         """True when the probe can be taken under at least one hypothesis."""
         return self._known[column]
+
+    def commonest(self, column: int, order: NDArray[np.int64]) -> int:
+        """Place in ``order`` of a hypothesis that reads as most of them do."""
+        row = self._row[column][order]
+        return int(np.argmax(row == np.bincount(row).argmax()))
 
     def _fit(self, column: int, first: int, last: int) -> NDArray[np.float64]:
         """Chance of a sound reading in cells ``first`` to ``last`` - 1, for each draw; shape (H, D), nan
@@ -129,26 +134,19 @@ class ReadingModel:
         return (1 - self.gross) * _mean_known(self._fit(column, first, last), slip) + self.gross * slip
 
     def _build_bins(self) -> None:
-        edges, rows, owner, few, few_owner = [], [], [], [], []
+        edges, rows, owner = [], [], []
         for column, axis in enumerate(self.axes):
             cuts = bin_edges(self._cells[column], axis.cells)
             edges.append(cuts)
             table = np.stack(self._bin_rows(column, cuts)).astype(np.float32)
             rows.append(table[:, self._row[column]])
             owner += [column] * len(table)
-            merged = np.add.reduceat(table, merged_bins(table), axis=0)
-            few.append(merged[:, self._row[column]])
-            few_owner += [column] * len(merged)
         self.edges = edges
         """For each probe the cells at which its bins begin, and the end; the last bin is OL."""
         self.bins = np.concatenate(rows)
         """p(bin | hypothesis), gross errors included, shape (all bins of all probes, H)."""
         self.owner = np.asarray(owner, dtype=np.int64)
         """Probe of each row of ``bins``."""
-        self.few_bins = np.concatenate(few)
-        """The same with neighbouring bins merged, for scoring when very many hypotheses are in question."""
-        self.few_owner = np.asarray(few_owner, dtype=np.int64)
-        """Probe of each row of ``few_bins``."""
 
     def _bin_rows(self, column: int, cuts: list[int]) -> list[NDArray[np.float64]]:
         axis, cell = self.axes[column], self._cells[column]

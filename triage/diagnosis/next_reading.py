@@ -15,11 +15,7 @@ from numpy.typing import NDArray
 from triage.board.probe import Probe
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.costs import Costs
-from triage.diagnosis.information import gini_gain, joint_table
 from triage.diagnosis.likelihood import ReadingModel
-
-FEW = 600
-"""Up to so many hypotheses in question are scored with fine outcomes."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,34 +44,82 @@ def alive(belief: NDArray[np.float64], mass: float) -> NDArray[np.int64]:
     return np.sort(order[:reach])
 
 
+@dataclass(frozen=True, slots=True)
 class Scorer:
-    """Scores readings by what they tell about the repair; holds the outcome tables in the order of the
-    repairs.
+    """Scores readings by what they tell about the repair.
+
+    Most faults leave most readings as they are. The outcome table of each probe is therefore kept as its
+    commonest row and, for the hypotheses that read otherwise, the difference to it; thousands of hypotheses
+    then cost what the differences cost.
     """
 
-    def __init__(self, model: ReadingModel, actions: Actions, mass: float) -> None:
-        """mass: hypotheses that together hold less than 1 - mass are left out when readings are scored [-].
-        """
-        self.model = model
-        self._actions = actions
-        self._mass = mass
-        self._order = np.argsort(actions.of, kind="stable")
-        self._few_bins = np.ascontiguousarray(model.few_bins[:, self._order])
+    model: ReadingModel
+    actions: Actions
+    usual: NDArray[np.float64]
+    """p(outcome) of the commonest row, shape (K, P), filled up with zeros."""
+    change: NDArray[np.float64]
+    """Difference to it, shape (K, all moved hypotheses of all probes), by probe and repair."""
+    who: NDArray[np.int64]
+    """Hypothesis of each column of ``change``."""
+    starts: NDArray[np.int64]
+    """Columns of ``change`` at which the next stretch of one probe and one repair begins."""
+    twice: NDArray[np.float64]
+    """2 x usual row of the probe of each stretch, shape (K, stretches)."""
+    action: NDArray[np.int64]
+    """Repair of each stretch."""
+    probes: NDArray[np.int64]
+    """Probes that have stretches."""
+    first: NDArray[np.int64]
+    """First stretch of each of them."""
+
+    @classmethod
+    def of_model(cls, model: ReadingModel, actions: Actions) -> "Scorer":
+        """Tabulate the outcomes of a board."""
+        counts = np.bincount(model.owner, minlength=len(model.axes))
+        width, order = int(counts.max()), np.argsort(actions.of, kind="stable")
+        usual, changes, who, keys = np.zeros((width, len(counts))), [], [], []
+        for column, (end, count) in enumerate(zip(np.cumsum(counts), counts, strict=True)):
+            table = model.bins[end - count : end, order].astype(float)
+            common = table[:, model.commonest(column, order)]
+            moved = np.flatnonzero((table != common[:, None]).any(axis=0))
+            usual[:count, column] = common
+            changes.append(np.pad(table[:, moved] - common[:, None], ((0, width - count), (0, 0))))
+            who.append(order[moved])
+            keys.append(column * len(actions.repairs) + actions.of[order[moved]])
+        key = np.concatenate(keys)
+        starts = np.flatnonzero(np.diff(key, prepend=-1))
+        probe, action = np.divmod(key[starts], len(actions.repairs))
+        first = np.flatnonzero(np.diff(probe, prepend=-1))
+        twice = 2.0 * usual[:, probe]
+        return cls(
+            model,
+            actions,
+            usual,
+            np.concatenate(changes, axis=1),
+            np.concatenate(who),
+            starts,
+            twice,
+            action,
+            probe[first],
+            first,
+        )
 
     def gains(self, belief: NDArray[np.float64]) -> NDArray[np.float64]:
         """Expected fall of the impurity of the repair for every probe, shape (P,) [-].
 
-        With few hypotheses in question the outcomes are fine, so that near ones are told apart; with many
-        they are coarse.
+        Sum over repairs of (usual x chance + change)^2, of which only repairs with a change need a second
+        look.
         """
-        keep = alive(belief, self._mass)
-        if len(keep) > FEW:
-            weight = belief[self._order].astype(np.float32)
-            joint = joint_table(self._few_bins, weight, self._actions.of[self._order])
-            return gini_gain(joint, self.model.few_owner)
-        keep = keep[np.argsort(self._actions.of[keep], kind="stable")]
-        weight = (belief[keep] / belief[keep].sum()).astype(np.float32)
-        return gini_gain(joint_table(self.model.bins[:, keep], weight, self._actions.of[keep]), self.model.owner)
+        chances = self.actions.chances(belief)
+        squares = float((chances**2).sum())
+        total, purity = self.usual.copy(), self.usual**2 * squares
+        if self.starts.size:
+            weighted = self.change * belief[self.who]
+            change = np.add.reduceat(weighted, self.starts, axis=1)
+            more = change * (self.twice * chances[self.action] + change)
+            total[:, self.probes] += np.add.reduceat(change, self.first, axis=1)
+            purity[:, self.probes] += np.add.reduceat(more, self.first, axis=1)
+        return (purity / np.maximum(total, 1e-30)).sum(axis=0) - squares
 
 
 def candidates(

@@ -47,7 +47,6 @@ class Settings:
     bad_repair: float
     fails_again: float
     misfit_tail: float
-    scored_mass: float
 
     @classmethod
     def load(cls, path: Path = HERE / "settings.toml") -> "Settings":
@@ -73,6 +72,10 @@ class Instrument:
     """Smallest difference shown [SI]."""
     signed: bool = False
     """False for a display that never shows less than zero."""
+    knee: float = float("inf")
+    """Above this the reading is uncertain for other reasons than the meter [SI]."""
+    relative_above_knee: float = 0.0
+    """Standard error proportional to the reading above the knee [-]."""
 
 
 @cache
@@ -95,5 +98,7 @@ def instruments(path: Path = HERE / "instruments.toml") -> Mapping[str, Instrume
                 number(where, row, "over", 0.0, 1e12) if "over" in row else float("inf"),
                 number(where, row, "step", 0.0, 1e9),
                 row.get("signed") is True,
+                number(where, row, "knee", 0.0, 1e12) if "knee" in row else float("inf"),
+                number(where, row, "relative_above_knee", 0.0, 1.0) if "knee" in row else 0.0,
             )
     return found
