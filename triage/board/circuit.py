@@ -77,3 +77,7 @@ def _feed(net: Netlist, board: Board, mains: float, load: float) -> None:
         for node in nodes:
             if node != board.ground[side]:
                 net.port(node, "node", node, board.ground[side], PORT_NONE)
+    back = neutral(board)
+    for node in board.sides["primary"]:
+        if node != back:
+            net.port(node, "mains", node, back, PORT_NONE)

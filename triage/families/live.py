@@ -51,7 +51,7 @@ def live_readings(board: Board, settled: Settled, probes: tuple[Probe, ...]) -> 
         elif probe.function == "hertz":
             values[probe] = settled.stretch.frequency
         else:
-            row = settled.row(probe.plus, "node")
+            row = settled.row(probe.plus, "mains" if probe.function == "volts_ac" else "node")
             if probe.function == "volts_dc":
                 values[probe] = float(row[V_MEAN])
             elif probe.function == "volts_pp":

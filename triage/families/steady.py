@@ -5,7 +5,7 @@ starting path are solved from rest as well: when nothing swings there, the adapt
 """
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -27,6 +27,9 @@ from triage.physics.transient import (
 )
 
 MOST_PERIODS = 8
+MOST_SLOW_PERIODS, SLOW_SHARE = 80, 0.1
+"""Periods, and share of the limits below, in a family in which nothing switches: a period costs little there, and the transformer's
+magnetising current takes many to settle."""
 SETTLED_OUTPUT = 0.012
 """Change of the output over a period that counts as none, as a share of its rated value [-]."""
 SETTLED_CHARGE = 0.04
@@ -106,6 +109,8 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
 
     Raises NoConvergence of the time-domain solution when it breaks off.
     """
+    if family.largest_step:
+        quality = replace(quality, largest_step=family.largest_step)
     net = circuit(board, faults, draw=draw, mains=mains, load=load)
     compiled = compile_netlist(net)
     rows = {(port.ref, port.suffix): index for index, port in enumerate(net.ports)}
@@ -161,8 +166,10 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
     nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
     limit = min((part.ratings["voltage"] for part in output_parts(run.board, run.family) if "voltage" in part.ratings),
                 default=1e9)
+    slow = bool(run.family.largest_step)
+    most, close = (MOST_SLOW_PERIODS, SLOW_SHARE) if slow else (MOST_PERIODS, 1.0)
     number = 0
-    while number < MOST_PERIODS:
+    while number < most:
         number += 1
         before = run.state.capacitors.copy()
         stretch = run.period()
@@ -174,7 +181,7 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
         drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
                      for ref, k in run.electrolytics.items()), default=0.0)
         highest = stretch.statistics[rows["out", "node"], V_MAX]
-        if (abs(change) < SETTLED_OUTPUT * nominal and drift < SETTLED_CHARGE) or highest > 1.8 * limit:
+        if (abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE) or highest > 1.8 * limit:
             break
         last = _follow_drift(run, change, last)
     return stretch, number

@@ -11,8 +11,8 @@ Source: L. Nagel, SPICE2, 1975, section 4.2 (Newton's method, conductance steppi
 import math
 
 import numpy as np
-from numba import njit
 
+from triage.physics.compiled_code import njit
 from triage.physics.transient_devices import (
     OPTIONS,
     VT,

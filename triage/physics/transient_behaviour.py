@@ -14,8 +14,8 @@ practice of data sheets of the 384x class, from memory (controller).
 import math
 
 import numpy as np
-from numba import njit
 
+from triage.physics.compiled_code import njit
 from triage.physics.netlist import CONTROLLER, MOSFET, REGULATOR, SHUNT_REFERENCE, TERMINALS
 from triage.physics.transient_devices import OPTIONS, voltage
 

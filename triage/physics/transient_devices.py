@@ -10,8 +10,8 @@ charge control model of bipolar transistors, Bell System Technical Journal 49, 1
 import math
 
 import numpy as np
-from numba import njit
 
+from triage.physics.compiled_code import njit
 from triage.physics.netlist import THERMAL_VOLTAGE as VT
 
 LIVE = 6.0

@@ -18,8 +18,8 @@ import math
 from typing import NamedTuple
 
 import numpy as np
-from numba import njit
 
+from triage.physics.compiled_code import njit
 from triage.physics.netlist import TERMINALS
 from triage.physics.transient_behaviour import (
     EVENT_WINDOW,
@@ -254,17 +254,20 @@ def port_values(v, y, f, emf, port, resistor, capacitor, source, out):
 
 @njit(**INNER)
 def accumulate(stats, start, stage, end, h):
-    """Add one step of length ``h`` to extremes and integrals of every port."""
+    """Add one step of length ``h`` to extremes and integrals of every port.
+
+    Extremes look at the ends of steps only: the inner stage of a step over a stiff part overshoots, and the end takes that back.
+    """
     w, w1 = h * STAGE_WEIGHT, h * END_WEIGHT
     for p in range(end.shape[1]):
         v0, vs, v1 = start[0, p], stage[0, p], end[0, p]
         i0, js, i1 = start[1, p], stage[1, p], end[1, p]
-        stats[V_MIN, p] = min(stats[V_MIN, p], vs, v1)
-        stats[V_MAX, p] = max(stats[V_MAX, p], vs, v1)
+        stats[V_MIN, p] = min(stats[V_MIN, p], v1)
+        stats[V_MAX, p] = max(stats[V_MAX, p], v1)
         stats[V_SUM, p] += w * (v0 + vs) + w1 * v1
         stats[V_SQUARE, p] += w * (v0 * v0 + vs * vs) + w1 * v1 * v1
-        stats[I_MIN, p] = min(stats[I_MIN, p], js, i1)
-        stats[I_MAX, p] = max(stats[I_MAX, p], js, i1)
+        stats[I_MIN, p] = min(stats[I_MIN, p], i1)
+        stats[I_MAX, p] = max(stats[I_MAX, p], i1)
         stats[I_SUM, p] += w * (i0 + js) + w1 * i1
         stats[I_SQUARE, p] += w * (i0 * i0 + js * js) + w1 * i1 * i1
         stats[VI_SUM, p] += w * (v0 * i0 + vs * js) + w1 * v1 * i1

@@ -7,8 +7,7 @@ capacitor voltages [V], winding currents [A], diode charges [C], base-emitter an
 Source: L. Nagel, SPICE2, 1975, section 4.3 (companion models).
 """
 
-from numba import njit
-
+from triage.physics.compiled_code import njit
 from triage.physics.transient_devices import INNER, bipolar_state, diode_state, inject, stamp, voltage
 
 
@@ -128,12 +127,17 @@ def add_charges(first, lin_d, lin_q, y):
         y[first + n + 2 * k + 1] += lin_q[k, 1]
 
 
+START_ROOM = 0.15
+"""A junction is not begun further above its critical voltage than this [V]: its charge would be absurd."""
+
+
 @njit(**INNER)
 def charges_at_rest(first, diode, vd, bipolar, vq, y):
     """Junction charges at the given junction voltages, where no linearisation is known yet."""
     n = vd.shape[0]
     for d in range(n):
-        y[first + d] = diode_state(min(vd[d], 1.5), diode[2][d])[2]
+        most = diode[2][d, 11] + START_ROOM
+        y[first + d] = diode_state(min(vd[d], most), diode[2][d])[2]
     for k in range(vq.shape[0]):
         both = bipolar_state(min(vq[k, 0], 1.0), min(vq[k, 1], 1.0), bipolar[2][k])
         y[first + n + 2 * k], y[first + n + 2 * k + 1] = both[6], both[7]
