@@ -32,10 +32,11 @@ from triage.job.lock import Lock
 from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
-from triage.job.shown import entry_text, stress_view
+from triage.job.shown import SuspectWriter, entry_text, stress_view
 from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView, WorthView
 from triage.job.worth import worth_of
 from triage.quantities import parse, parse_reading
+from triage.safety.cautions import cautions
 from triage.safety.inspection import items, judge
 from triage.safety.retest import gate_keys
 
@@ -66,6 +67,8 @@ class Bench:
         """The lines of the retest."""
         self.experience = experience_from_dict(job.document["job"].get("closed_jobs"), str(job.path))
         """What the bench's closed jobs said when this one was begun."""
+        self.cautions = cautions(self.board)
+        """What is to be known before touching the board, and before powering it."""
         self.rules = Rules.of_board(self.board, gate_keys(self.lines))
         """What the gates of this board ask for."""
         self.answers: picture.Answers | None = None
@@ -161,7 +164,8 @@ class Bench:
         """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
         first time."""
         diagnosis = self.workings.diagnosis(self.board, self.experience)
-        self.answers = picture.Answers(diagnosis, self.stresses_before())
+        stresses = self.stresses_before()
+        self.answers = picture.Answers(diagnosis, stresses, SuspectWriter(self.board, stresses))
 
     def view(self, message: str = "") -> JobView:
         """What there is to show now."""

@@ -15,7 +15,6 @@ from triage.job.entries import Replay, Told, replay
 from triage.job.gates import bulk_open, live_open, open_check, waits_for
 from triage.job.proof import shown as shown_lines
 from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
-from triage.safety.cautions import cautions
 from triage.safety.gate import GateFacts, safe_to_touch, stage
 from triage.safety.inspection import items
 
@@ -33,6 +32,7 @@ class Answers:
     diagnosis: Diagnosis
     stresses: tuple[StressView, ...]
     """Of the board as it came onto the mat."""
+    suspects: shown.SuspectWriter
 
 
 def asked(state: Replay) -> Job:
@@ -73,7 +73,7 @@ def view(bench: "Bench", message: str) -> JobView:
         found = diagnosis.verdict(job)
         facts = bench.facts(fault_chances(bench), found.status != "open")
         stresses = bench.answers.stresses
-        suspects = tuple(shown.suspect_view(one, bench.board, stresses) for one in diagnosis.suspects(job))
+        suspects = tuple(map(bench.answers.suspects.view, diagnosis.suspects(job)))
         left = diagnosis.what_is_left(job) if found.status == "does not fit" else ()
         verdict = shown.verdict_view(found, bench.board, stresses, diagnosis.evidence(job), left)
         suggestion = None
@@ -134,7 +134,7 @@ def lesson(bench: "Bench") -> dict[str, object]:
 def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[CautionView, ...]:
     """The cautions of the board, and which are acknowledged today."""
     known = (facts or bench.facts()).acknowledged
-    return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known) for one in cautions(bench.board))
+    return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known) for one in bench.cautions)
 
 
 def _looks(bench: "Bench", facts: GateFacts) -> tuple[LookView, ...]:

@@ -73,20 +73,29 @@ def _pressure(stress: StressView) -> tuple[int, float]:
     return severity, (1.0 / ratio if ratio > 0 else math.inf) if stress.quantity == "life" else ratio
 
 
-def suspect_view(suspect: Suspect, board: Board, stresses: Sequence[StressView]) -> SuspectView:
-    """A suspect with its role and the stress that presses it."""
-    role_of = {part.ref: part.role for part in board.parts}
-    roles = [role_of.get(fault.ref, "") for fault in suspect.root]
-    worst = worst_stress(stresses, suspect.ref)
-    pressed = worst is not None and worst.verdict in _PRESSING
-    return SuspectView(
-        plain(suspect.ref),
-        suspect.mode or NO_PART_FAULT,
-        suspect.probability,
-        tuple(str(fault) for fault in suspect.collateral),
-        plain(" + ".join(roles)),
-        stress_text(worst) if worst is not None and pressed else "",
-    )
+class SuspectWriter:
+    """Words suspects of one board; what is the same for every view is worked out once."""
+
+    def __init__(self, board: Board, stresses: Sequence[StressView]) -> None:
+        """stresses: of the board as it came onto the mat."""
+        self._role = {part.ref: plain(part.role) for part in board.parts}
+        worst = {part.ref: worst_stress(stresses, part.ref) for part in board.parts}
+        self._pressed = {ref: stress for ref, stress in worst.items() if stress is not None and stress.verdict in _PRESSING}
+        self._words = {ref: stress_text(stress) for ref, stress in self._pressed.items()}
+
+    def view(self, suspect: Suspect) -> SuspectView:
+        """A suspect with its role and the stress that presses it hardest."""
+        refs = [fault.ref for fault in suspect.root]
+        pressed = [ref for ref in refs if ref in self._pressed]
+        worst = max(pressed, key=lambda ref: _pressure(self._pressed[ref]), default="")
+        return SuspectView(
+            plain(suspect.ref),
+            suspect.mode or NO_PART_FAULT,
+            suspect.probability,
+            tuple(str(fault) for fault in suspect.collateral),
+            " + ".join(self._role.get(ref, "") for ref in refs),
+            self._words.get(worst, ""),
+        )
 
 
 def suggestion_view(suggestion: Suggestion) -> SuggestionView:
