@@ -172,3 +172,20 @@ def test_units_and_figures(key: str, unit: str, value: float, text: str) -> None
     """The unit is the end of the key; figures carry four digits at most."""
     assert unit_of(key) == unit
     assert figure(value, unit) == text
+
+
+def test_a_dead_part_of_the_wrong_class_is_the_mistake() -> None:
+    """1N4007 as auxiliary rectifier at the switching frequency (common practice: replace it by a fast one)."""
+    dead = part("D4", "diode", "auxiliary rectifier", "1N4007")
+    asked = demand(board(dead), "D4", stress("D4", reverse_voltage=39.0, average_current=0.01), CATALOG)
+    assert asked.mistakes == ("1N4007 is a rectifier: the place takes small signal diode or fast rectifier or schottky",)
+    assert _need(asked, "vr_dc_V").minimum == pytest.approx(39.0 / 0.7)
+    offered = {one.part.type for one in candidates(CATALOG, asked, limit=300)}
+    assert {"FR104", "UF4002"} <= offered and "1N4007" not in offered
+    assert not any(CATALOG.find(name).text("case") == "SMA" for name in offered)  # type: ignore[union-attr]
+
+
+def test_a_type_of_another_kind_is_not_taken_for_the_dead_part() -> None:
+    """1N60 on a diode is the germanium diode, not the MOSFET of the catalog."""
+    asked = demand(board(part("D9", "diode", "small-signal diode", "1N60")), "D9", stress("D9", reverse_voltage=10.0), CATALOG)
+    assert asked.original is None

@@ -80,11 +80,14 @@ class Demand:
     together: tuple[str, ...] = ()
     """Parts to replace or check with it."""
     note: str = ""
+    misplaced: str = ""
+    """Says that the dead part is of a class that does not belong here; its own figures then ask nothing."""
 
     @property
     def mistakes(self) -> tuple[str, ...]:
-        """Where the dead part was itself below the demand."""
-        return tuple(requirement.mistake for requirement in self.requirements if requirement.mistake)
+        """Where the dead part was itself the mistake: of the wrong class, or rated below the demand."""
+        rated = tuple(requirement.mistake for requirement in self.requirements if requirement.mistake)
+        return (self.misplaced, *rated) if self.misplaced else rated
 
     def window(self, key: str) -> tuple[float, float] | None:
         """Lowest and highest allowed value of a field that has both bounds, or None."""
@@ -112,16 +115,30 @@ def demand(board: Board, ref: str, stresses: Sequence[Stress], catalog: Catalog)
             ref=ref, role=part.role, kind=part.kind, classes=(), requirements=(), safety=False, original=original,
             original_type=part.type, note="no rule for this position: fit the very same type",
         )
-    if original and original.part_class not in position.classes + position.was:
+    if original is not None and not _is_of_kind(original, part, catalog):
         original = None
+    misplaced = original is not None and bool(position.classes) and original.part_class not in position.classes + position.was
     own = tuple(stress for stress in stresses if stress.ref == ref)
-    figures = _Figures(board, part, own, original, position.safety)
+    figures = _Figures(board, part, own, None if misplaced else original, position.safety)
     requirements = tuple(found for need in position.needs if (found := figures.requirement(need)))
     return Demand(
         ref=ref, role=plain_role(part.role), kind=part.kind, classes=position.classes, requirements=requirements,
         safety=position.safety, original=original, original_type=part.type, same_pins=position.same_pins,
         never=position.never, together=position.together, note=_notes(position, part, original),
+        misplaced=_misplaced(original, position) if misplaced and original else "",
     )
+
+
+def _is_of_kind(original: CatalogPart, part: Part, catalog: Catalog) -> bool:
+    """Whether a type read off the dead part is a part of its kind at all: 1N60 is a diode and a MOSFET."""
+    if original.part_class not in catalog.classes:
+        return True
+    return part.kind in catalog.file(original.part_class).kinds or part.kind == original.part_class
+
+
+def _misplaced(original: CatalogPart, position: Position) -> str:
+    allowed = " or ".join(name.replace("_", " ") for name in position.classes)
+    return f"{original.type} is a {original.part_class.replace('_', ' ')}: the place takes {allowed}"
 
 
 def _notes(position: Position, part: Part, original: CatalogPart | None) -> str:
