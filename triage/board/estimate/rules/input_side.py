@@ -7,7 +7,7 @@ import numpy as np
 from triage.board.estimate.design import Design, Draws
 from triage.physics.capacitor_discharge import resistance_for_time
 from triage.physics.fuse_inrush import inrush_resistance
-from triage.physics.rectifier import capacitance_for_valley
+from triage.physics.rectifier_estimates import charge_time
 
 FAMILIES: tuple[str, ...] = ()
 
@@ -58,11 +58,15 @@ def bulk_nominal(design: Design) -> Draws:
 
 
 def bulk_capacitance(design: Design) -> Draws:
-    """Bulk capacitor that keeps the usual valley at the lowest mains. [F]"""
+    """Bulk capacitor that keeps the usual valley at the lowest mains. [F]
+
+    The hand equation that designers use: discharge all the time but the charging, on the safe side by some percent of the valley.
+    """
     crest = design["crest_low"]
     pulses = 1 if "half wave" in design.features else 2
     valley = crest * (1.0 - design["sag"])
-    found: Draws = capacitance_for_valley(crest, design.mains.frequency, design["input_power"], valley, pulses)
+    alone = 1.0 / (pulses * design.mains.frequency) - charge_time(valley, crest, design.mains.frequency)
+    found: Draws = 2.0 * design["input_power"] * alone / (crest**2 - valley**2)
     return found
 
 
