@@ -156,6 +156,25 @@ def test_shunt_reference_divider_gives_the_output_of_the_label():
     assert output == pytest.approx(19.0, rel=1e-9)
 
 
+@pytest.mark.parametrize("volts", [5.0, 9.0, 12.0, 19.0, 24.0])
+def test_middle_values_work_together(volts):
+    """Reasoned: the board made of the middle values regulates to the label, though each value is known only by itself."""
+    board = estimate(template_of("pwm_flyback_opto"), Label(WIDE, volts, 20.0 / volts))
+    upper, lower = (board.by_role(f"{which} feedback resistor").value["resistance"] for which in ("upper", "lower"))
+    assert board.by_role("shunt reference").value["reference_voltage"] * (1.0 + upper / lower) == pytest.approx(volts, rel=0.02)
+    coupled = estimate(template_of("ringing_choke_opto"), Label(SINGLE, volts, 5.0 / volts))
+    zener = coupled.by_role("output voltage reference zener")
+    assert zener.value["zener_voltage"] + 1.15 == pytest.approx(volts, rel=0.06)
+    rail = estimate(template_of("ringing_choke_zener"), Label(SINGLE, volts, 3.0 / volts))
+    turns = rail.part("T1").value
+    winding = (volts + 0.45) * turns["feedback_turns"] / turns["secondary_turns"]
+    assert winding == pytest.approx(rail.by_role("regulation zener").value["zener_voltage"], rel=0.08)
+    iron = estimate(template_of("linear_regulated"), Label("230 V~ 50 Hz", volts, 5.0 / volts))
+    turns = iron.part("T1").value
+    crest = math.sqrt(2.0) * 207.0 * turns["secondary_turns"] / turns["primary_turns"] - 1.8
+    assert crest > volts + 2.0
+
+
 def test_bulk_capacitor_is_rated_above_the_crest():
     for line, rating in ((SINGLE, 400.0), (WIDE, 400.0), ("120 V~ 60 Hz", 200.0)):
         board = estimate(template_of("ringing_choke_opto"), Label(line, 5.0, 1.0))

@@ -15,6 +15,7 @@ from triage.board.profile import board_from_dict, board_to_dict, load_profile
 from triage.errors import EntryError, ProfileError
 from triage.families.cold import specimens
 from triage.physics.netlist import compile_netlist
+from triage.safety.discharge import bulk_store
 
 
 @pytest.fixture
@@ -59,6 +60,13 @@ def test_specimens_of_an_estimate_lie_inside_its_spread_nine_times_in_ten(board)
     assert inside.mean() == pytest.approx(0.9, abs=0.02)
     narrowed = np.array([draw.values["C1", "capacitance"] for draw in draws])
     assert np.all(np.abs(narrowed / 4.7e-6 - 1.0) <= 0.03 + 1e-9)
+
+
+def test_the_stored_charge_is_taken_at_the_upper_end_of_an_estimate(board):
+    """A guessed bulk capacitor may be twice as large: the discharge is reckoned with that, until it is read."""
+    guessed = bulk_store(board)
+    known = bulk_store(with_value(board, "C1", "capacitance", board.part("C1").value["capacitance"], "marking"))
+    assert guessed.energy / known.energy == pytest.approx(board.part("C1").spread["capacitance"] / 1.2, rel=0.01)
 
 
 def test_draws_of_a_known_board_are_what_they_were():

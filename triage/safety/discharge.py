@@ -93,8 +93,8 @@ def _on_mains(part: Part) -> bool:
 
 
 def _largest(part: Part) -> float:
-    """Capacitance at the upper end of its tolerance [F]."""
-    return part.value["capacitance"] * (1.0 + part.tolerance.get("capacitance", 0.2))
+    """Capacitance at the upper end of its tolerance, or of the spread where it is only estimated [F]."""
+    return part.value["capacitance"] * part.spread.get("capacitance", 1.0 + part.tolerance.get("capacitance", 0.2))
 
 
 def _left_with(board: Board, part: Part) -> float:

@@ -82,7 +82,7 @@ def derivations(template: Template, label: Label, seen: Seen = Seen()) -> tuple[
         if place.when and place.when not in design.features:
             continue
         for key, quantity in place.value.items():
-            value, spread = estimate_of(design[quantity], place.kind, key)
+            value, spread = estimate_of(design[quantity], place.kind, key, place.precise)
             unit = kinds()[place.kind].values[key]
             found.append(Derivation(place.ref, place.role, key, value, spread, unit, design.reason(quantity)))
     return tuple(found)
@@ -90,11 +90,11 @@ def derivations(template: Template, label: Label, seen: Seen = Seen()) -> tuple[
 
 def part_in_role(design: Design, role: Role, ref: str, pins: dict[str, str]) -> Part:
     """A part that is usual in a role, estimated like those of a template."""
-    return _part(design, Place(ref, role.name, pins, role.kind, role.value, role.ratings))
+    return _part(design, Place(ref, role.name, pins, role.kind, role.value, role.ratings, precise=role.precise))
 
 
 def _part(design: Design, place: Place) -> Part:
-    estimates = {key: estimate_of(design[quantity], place.kind, key) for key, quantity in place.value.items()}
+    estimates = {key: estimate_of(design[quantity], place.kind, key, place.precise) for key, quantity in place.value.items()}
     ratings = {key: float(figure) if isinstance(figure, int | float) else rating_of(design[figure], place.kind, key)
                for key, figure in place.ratings.items()}
     values = {key: value for key, (value, _) in estimates.items()}

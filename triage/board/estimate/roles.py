@@ -22,6 +22,8 @@ class Role:
     """Rating key -> figure [SI] or quantity, to be rounded up to the next usual rating."""
     link: bool = False
     """True where a wire joins the two nodes of a part that the board lacks."""
+    precise: bool = False
+    """True for a part of one percent, whose value is not rounded to a coarse series: others must match it."""
 
 
 @cache

@@ -40,13 +40,18 @@ def preferred(value: float, steps: int) -> float:
     return min(near, key=lambda one: abs(math.log(one / value)))
 
 
-def estimate_of(draws: Draws, kind: str, key: str) -> tuple[float, float]:
-    """Value and spread factor [-] of a quantity: its median as it would be sold, and how far the middle 90 % lie from that."""
+def estimate_of(draws: Draws, kind: str, key: str, precise: bool = False) -> tuple[float, float]:
+    """Value and spread factor [-] of a quantity: its median as it would be sold, and how far the middle 90 % lie from that.
+
+    precise: keep three digits instead of rounding to the series of the kind.
+    """
     order = sorted(float(value) for value in draws)
     low, median, high = (order[round(share * (len(order) - 1))] for share in (0.05, 0.5, 0.95))
     steps = SERIES.get((kind, key))
     if key.endswith("_turns"):
         value = float(max(round(median), 1))
+    elif precise:
+        value = float(f"{median:.3g}")
     elif steps:
         value = preferred(median, steps)
     else:

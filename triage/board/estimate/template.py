@@ -31,6 +31,7 @@ class Place:
     when: str = ""
     """Feature the part is there with; empty: always."""
     link: bool = False
+    precise: bool = False
     fault_modes: tuple[str, ...] = ()
 
 
@@ -138,7 +139,7 @@ def _place(check: Check, row: Mapping[str, Any], number: int) -> Place:
     if when and when not in FEATURES:
         check.fault(f"{at} when", when, "one of " + ", ".join(FEATURES))
     return Place(ref, name, {str(k): str(v) for k, v in pins.items()}, kind.key, value, ratings, str(when),
-                 bool(row.get("link", role.link if role else False)), modes)
+                 bool(row.get("link", role.link if role else False)), bool(role and role.precise), modes)
 
 
 def _features(check: Check, names: object, at: str) -> frozenset[str]:
