@@ -20,6 +20,10 @@ class Family:
     supply_role: str = ""
     """Role of the capacitor a controller lives on; empty where there is none."""
     largest_step: float = 0.0
-    """Largest time step where nothing switches [s]; 0 leaves it to the solution."""
+    """Largest time step [s]; 0 leaves it to the solution."""
+    slow: bool = False
+    """True where nothing switches: many periods cost little there, and the settling is slow."""
+    swing_low: float = 0.78
+    """Share of the bulk voltage below which a swing of the switch ends [-]; what rings about the bulk voltage must not count."""
     look: tuple[str, ...] = ()
     """What can be seen on a board of this family, for telling it apart."""

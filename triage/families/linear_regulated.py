@@ -14,4 +14,5 @@ FAMILY = Family(
     output_roles=("output capacitor", "reservoir capacitor"),
     look=("a heavy iron transformer", "no high-voltage capacitor", "a three-legged regulator or none"),
     largest_step=1e-4,
+    slow=True,
 )

@@ -13,6 +13,8 @@ FAMILY = Family(
     start_roles=("startup resistor", "controller supply capacitor", "controller supply decoupling", "auxiliary rectifier",
                  "auxiliary series resistor", "current-mode PWM controller", "flyback transformer"),
     output_roles=("first output capacitor", "second output capacitor"),
+    largest_step=4e-6,
+    swing_low=0.1,
     supply_role="controller supply capacitor",
     look=("a controller with six to eight legs", "a field-effect transistor on the primary side", "an optocoupler"),
 )

@@ -147,7 +147,7 @@ def _watch(board: Board, family: Family, compiled: Compiled) -> Watch:
         return Watch()
     drain = compiled.index(switch.pins["collector" if "collector" in switch.pins else "drain"])
     ground = compiled.index(board.ground["primary"])
-    return Watch((drain, ground, compiled.index(bulk.pins["plus"]), ground))
+    return Watch((drain, ground, compiled.index(bulk.pins["plus"]), ground), family.swing_low)
 
 
 def _voltages(run: _Run) -> dict[str, float]:
@@ -166,7 +166,7 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
     nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
     limit = min((part.ratings["voltage"] for part in output_parts(run.board, run.family) if "voltage" in part.ratings),
                 default=1e9)
-    slow = bool(run.family.largest_step)
+    slow = run.family.slow
     most, close = (MOST_SLOW_PERIODS, SLOW_SHARE) if slow else (MOST_PERIODS, 1.0)
     number = 0
     while number < most:
