@@ -127,7 +127,7 @@ def run_stretch(compiled: Compiled, state: State, start: float, stop: float, wat
     trace = np.zeros((watch.rows, 1 + len(watch.nodes)))
     skip = min(SWITCHING_START, 0.1 * (stop - start)) if skip is None else skip
     status, steps, reached, swings, used = run(
-        work, compiled.nonzeros, compiled.program, compiled.resistor, compiled.transfer, compiled.capacitor, compiled.winding,
+        work, compiled.program, compiled.resistor, compiled.transfer, compiled.capacitor, compiled.winding,
         compiled.diode, compiled.bipolar, compiled.behaviour, compiled.source, compiled.port, state.capacitors, state.windings,
         np.array([start, stop, start + skip, quality.largest_step, SMALLEST_STEP, quality.trusted_step]),
         (quality.newton_share, quality.newton_absolute, quality.step_relative, watch.low), np.array(watch.switch, dtype=np.int64),

@@ -16,8 +16,11 @@ from triage.physics.netlist import THERMAL_VOLTAGE as VT
 
 LIVE = 6.0
 """Junctions count as conducting from this many thermal voltages below the level of limiting on: some microamperes."""
-OPTIONS = {"cache": True, "nogil": True, "error_model": "numpy"}
-INNER = {**OPTIONS, "no_cpython_wrapper": True, "no_cfunc_wrapper": True}
+OPTIONS = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": True}
+PLAIN = {**OPTIONS, "_nrt": False}
+"""For functions that allocate nothing: counting no references saves a third of the time and a quarter of the compiling."""
+INNER = {**PLAIN, "no_cpython_wrapper": True, "no_cfunc_wrapper": True}
+"""For functions that only compiled ones call."""
 
 
 @njit(**INNER)
@@ -317,7 +320,7 @@ def resolve(a, b, program):
         b[k] = s * a[pivot[k]]
 
 
-@njit(**INNER)
+@njit(**OPTIONS)
 def base_conductances(nonzeros, program, resistor, shunt):
     """Matrix of the resistors, and of a shunt [S] from every node to the reference."""
     a = np.zeros(nonzeros + 1)

@@ -31,7 +31,7 @@ from triage.physics.transient_behaviour import (
 )
 from triage.physics.transient_devices import (
     INNER,
-    OPTIONS,
+    PLAIN,
     base_conductances,
     factor_and_solve,
     inject,
@@ -124,10 +124,11 @@ def memory(compiled, nodes, floor):
     history = np.zeros(states)
     stats = np.zeros((9, ports))
     stats[[V_MIN, I_MIN]], stats[[V_MAX, I_MAX]] = 1e30, -1e30
+    base = base_conductances(compiled.nonzeros, compiled.program, compiled.resistor, SHUNT)
     return Memory(
         nodes, nodes.copy(), nodes.copy(), np.zeros(n), *(np.zeros(states) for _ in range(6)),
         history, history[first:first + nd], history[first + nd:].reshape(nq, 2), np.zeros(states), np.zeros(states), floor,
-        np.zeros(width), np.zeros(width), np.zeros(width), np.zeros(n), np.zeros(n),
+        base, np.zeros(width), np.zeros(width), np.zeros(n), np.zeros(n),
         np.zeros((nw, nw)), np.zeros(nw), np.zeros(len(compiled.names["source"])),
         np.zeros(nd), np.zeros((nq, 2)), np.zeros(2 * nd), np.zeros((nq, 5)),
         np.zeros((len(compiled.behaviour[2]), TERMINALS)), np.zeros(nd), np.zeros((nq, 2)),
@@ -314,9 +315,8 @@ def excursion(v, swing, low, up):
 
 
 @njit(**INNER)
-def begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, iw):
-    """States and the constant part of the matrix at the start of a run."""
-    copy(m.base, base_conductances(nonzeros, program, resistor, SHUNT))
+def begin(m, transfer, source, diode, bipolar, vc, iw):
+    """States at the start of a run; sources and transfers join the resistors in the constant part of the matrix."""
     for s in range(m.emf.shape[0]):
         stamp(m.base, source[1][s], source[2][s, 3])
     for k in range(transfer[1].shape[0]):
@@ -332,18 +332,19 @@ def begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, 
         m.y_start[k], m.peak[k] = m.y[k], abs(m.y[k])
 
 
-@njit(**OPTIONS)
-def run(m, nonzeros, program, resistor, transfer, capacitor, winding, diode, bipolar, behaviour, source, port, vc, iw, times,
+@njit(**PLAIN)
+def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, behaviour, source, port, vc, iw, times,
         tolerances, swing, trace):
     """Integrate from times[0] to times[1]; returns (status, steps, time reached, excursions, trace rows used).
 
     ``vc``, ``iw`` and the nodes in ``m`` are read and left at the end point. ``times`` = (start, stop, start of statistics,
     largest step, smallest step, step below which the error is not asked). ``tolerances`` = (move of a blocked junction [-],
-    error of a conducting junction [V], error of a step [-], end of an excursion of the switch [-]). ``trace`` = (start, interval, nodes, rows).
+    error of a conducting junction [V], error of a step [-], end of an excursion of the switch [-]). ``trace`` = (start, interval,
+    nodes, rows).
     """
     stop, stats_from, h_max, h_min, h_trust = times[1], times[2], times[3], times[4], times[5]
     share, error, scale, low = tolerances
-    begin(m, nonzeros, program, resistor, transfer, source, diode, bipolar, vc, iw)
+    begin(m, transfer, source, diode, bipolar, vc, iw)
     t, h, steps, up, swings, used, next_trace = times[0], h_min * EULER_START, 0, 0, 0, 0, trace[0]
     since, overshoot = 0, -1.0
     while t < stop * (1.0 - 1e-12):
