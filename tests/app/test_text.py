@@ -18,7 +18,7 @@ from triage.app.text.bench import (
 )
 from triage.app.text.frame import standard_keys, status_lines
 from triage.app.text.moves import move_lines
-from triage.app.text.stress import stress_head, stress_line, with_it
+from triage.app.text.stress import stress_head, stress_line, with_it, worst_first
 from triage.job.views import EntryView, JobView, OutcomeView, SuggestionView, SuspectView, VerdictView
 
 SUGGESTION = SuggestionView(
@@ -144,3 +144,8 @@ def test_taken_back_entries_say_so():
 
 def test_the_stand_in_board_names_nodes_that_the_drawing_has():
     assert all(node in BOARD.drawing for node in ("bulk", "pgnd", "coll", "base"))
+
+
+def test_the_worst_stress_stands_first():
+    assert [one.ref for one in worst_first(STRESSES[::-1])][:2] == ["Q1", "R1"]
+    assert worst_first(STRESSES)[-1].ref == "LED1"

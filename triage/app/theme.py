@@ -27,8 +27,8 @@ _DARK = {
     "cursor": "#ffffff",
     "cursor-paper": "#2b5c8a",
     "blurred-paper": "#303030",
-    "field": "#ffffff",
-    "field-paper": "#303030",
+    "field": "#5fffff",
+    "field-paper": "#00005f",
     "bad": "#ff9b94",
 }
 _LIGHT = {

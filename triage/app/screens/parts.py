@@ -22,6 +22,8 @@ class PartsScreen(Frame):
     NAME: ClassVar[str] = "parts"
     CSS_PATH = "parts.tcss"
 
+    BINDINGS = [("right", "detail(2)", "text down"), ("left", "detail(-2)", "text up")]  # noqa: RUF012
+
     def __init__(self) -> None:
         super().__init__()
         self._ref = ""
@@ -46,7 +48,7 @@ class PartsScreen(Frame):
         super().on_mount()
         self.panel("ref-label").show((line(Span("position ", "strong")),))
         self.panel("marking-label").show((line(Span("  marking ", "strong")),))
-        self.panel("hint").show((line(Span("  Enter on a line of the list fits it", "quiet")),))
+        self.panel("hint").show((line(Span("  Enter on a line fits it; left, right: its text", "quiet")),))
 
     def entered(self) -> None:
         """Offer the positions of the verdict first, else the suspects; keep the one chosen while it is among
@@ -107,7 +109,7 @@ class PartsScreen(Frame):
         key = self.query_one("#list", ListPanel).key
         known = self._candidates.get(key)
         if known is not None:
-            self.panel("detail").show(candidate_detail(known, self.wide))
+            self.panel("detail").show(candidate_detail(known, self.wide), top=0)
             if known.accepted:
                 self._what_if(known)
             return
@@ -122,8 +124,8 @@ class PartsScreen(Frame):
 
         def show(after: tuple[StressView, ...]) -> None:
             if self.query_one("#list", ListPanel).key == known.type:
-                rows = (*candidate_detail(known, self.wide)[:3], *with_it(before, after, ref, self.wide))
-                self.panel("detail").show(rows)
+                rows = (*with_it(before, after, ref, self.wide), *candidate_detail(known, self.wide))
+                self.panel("detail").show(rows, top=0)
 
         self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed)
 
@@ -134,6 +136,10 @@ class PartsScreen(Frame):
 
     def _ask_failed(self, text: str) -> None:
         self.panel("detail").show((line(Span(text, "bad")),))
+
+    def action_detail(self, rows: int) -> None:
+        """Scroll the text on the part under the cursor."""
+        self.panel("detail").scroll_rows(rows)
 
     def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
         """Show the part under the cursor."""

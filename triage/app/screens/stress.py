@@ -1,4 +1,4 @@
-"""Stresses: every part against its derated limit and its rating, the worst first as the bench gives them."""
+"""Stresses: every part against its derated limit and its rating, the worst first."""
 
 from typing import ClassVar
 
@@ -6,7 +6,7 @@ from textual.app import ComposeResult
 
 from triage.app.frame import Frame
 from triage.app.lines import Span, line
-from triage.app.text.stress import stress_detail, stress_head, stress_line
+from triage.app.text.stress import stress_detail, stress_head, stress_line, worst_first
 from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import JobView, StressView
 
@@ -46,8 +46,8 @@ class StressScreen(Frame):
         self.panel("detail").show((line(Span(text, "bad")),))
 
     def _show(self, found: tuple[StressView, ...]) -> None:
-        self._found = found
-        rows = [(str(number), stress_line(one, self.wide, self.glyphs)) for number, one in enumerate(found)]
+        self._found = worst_first(found)
+        rows = [(str(number), stress_line(one, self.wide, self.glyphs)) for number, one in enumerate(self._found)]
         self.query_one("#list", ListPanel).fill(rows, stress_head(self.wide))
         self._show_detail()
 

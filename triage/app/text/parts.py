@@ -1,6 +1,7 @@
 """Replacement in lines: what a position demands, how candidates meet it, why a part is refused."""
 
 from triage.app.lines import Line, Span, clip, columns, line, wrapped
+from triage.app.text.bench import mode_words
 from triage.app.text.stress import amount
 from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
 
@@ -41,26 +42,21 @@ def _bounds(one: RequirementView) -> str:
 
 
 def candidate_line(one: CandidateView, width: int) -> Line:
-    """Type, class, how well it fits, its margins; a refused one says so."""
+    """How well it fits, type, its margins; a refused one says so."""
     word = Span(f"{one.score * 100:3.0f} %", "good") if one.accepted else Span("NO   ", "bad")
     text = "; ".join(one.margins) if one.accepted else "; ".join(one.refusals)
-    return clip(
-        line(word, "  ", Span(one.type.ljust(14), "strong"), Span(one.part_class.ljust(20), "quiet"), text),
-        width,
-    )
+    return clip(columns([(word, 5), (Span(one.type, "strong"), _type_width(width)), (text, max(width, 20))]), width)
+
+
+def _type_width(width: int) -> int:
+    return max(min(width // 3, 40), 14)
 
 
 def match_line(one: MatchView, width: int) -> Line:
-    """Type, class, how sure the marking is read, main ratings."""
-    return clip(
-        line(
-            Span(one.band.ljust(8), "near"),
-            Span(one.type.ljust(14), "strong"),
-            Span(one.part_class.ljust(20), "quiet"),
-            one.text,
-        ),
-        width,
-    )
+    """How sure the marking is read, type, class, main ratings."""
+    kind = mode_words(one.part_class)
+    cells: list[tuple[str | Span, int]] = [(Span(one.band, "near"), 8), (Span(one.type, "strong"), _type_width(width))]
+    return clip(columns([*cells, (Span(kind, "quiet"), 18), (one.text, max(width, 20))]), width)
 
 
 def candidate_detail(one: CandidateView, width: int) -> tuple[Line, ...]:
@@ -70,8 +66,8 @@ def candidate_detail(one: CandidateView, width: int) -> tuple[Line, ...]:
         out += wrapped(refusal, width, "bad", first="refused: ", rest="  ")
     if one.margins:
         out += wrapped("; ".join(one.margins), width, "good" if one.accepted else "", first="margins: ", rest="  ")
-    if one.notes:
-        out += wrapped("; ".join(one.notes), width, first="notes: ", rest="  ")
+    for note in one.notes:
+        out += wrapped(note, width) if len(note) > width else (line(note),)
     source = f"{one.source} ({one.confidence})" if one.confidence else one.source
     if source:
         out.append(clip(line(Span("source: " + source, "quiet")), width))

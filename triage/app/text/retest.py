@@ -1,6 +1,6 @@
 """The retest in lines: each check with its limit and how it came out."""
 
-from triage.app.lines import Line, Span, clip, line, wrapped
+from triage.app.lines import Line, Span, clip, columns, line, wrapped
 from triage.app.text.bench import CONDITION_WORDS, FUNCTION_WORDS
 from triage.job.views import RetestView
 
@@ -8,19 +8,13 @@ _SIGNS = {"pass": ("ok ", "good"), "fail": ("!! ", "over"), "too close to call":
 
 
 def retest_line(one: RetestView, width: int) -> Line:
-    """Sign, when it is due, check, limit, result."""
+    """Sign, when it is due, limit, result, check."""
     sign, mark = _SIGNS.get(one.result, ("!  ", "bad") if one.required else (".  ", "quiet"))
     live = one.condition != "cold"
     due = "unplugged" if not live else f"LIVE {one.condition}"
-    result = f"  {one.result}" if one.result else ""
-    row = line(
-        Span(sign, mark),
-        Span(due.ljust(12), "bad" if live else "quiet"),
-        one.text,
-        Span(f": {one.limit}", "strong"),
-        Span(result, mark),
-    )
-    return clip(row, width)
+    result = f"{one.result}: " if one.result else ""
+    cells = columns([(Span(sign.strip(), mark), 2), (Span(due, "bad" if live else "quiet"), 11), (Span(one.limit, "strong"), 18)])
+    return clip(line(*cells, " ", Span(result, mark), one.text), width)
 
 
 def retest_detail(one: RetestView, width: int) -> tuple[Line, ...]:

@@ -12,6 +12,14 @@ from triage.quantities import engineering
 _SIGNS = {"over rating": ("!!", "over"), "over derated limit": ("! ", "near"), "ok": ("ok", "good")}
 
 
+_ORDER = ("over rating", "over derated limit", "ok", "rating unknown")
+
+
+def worst_first(found: Sequence[StressView]) -> tuple[StressView, ...]:
+    """The stresses by verdict, then by their share of the rating."""
+    return tuple(sorted(found, key=lambda one: (_ORDER.index(one.verdict) if one.verdict in _ORDER else 9, -(one.ratio or 0.0))))
+
+
 def amount(value: float | None, unit: str) -> str:
     """A value in engineering form, or a dash."""
     return "-" if value is None else engineering(value, unit)
