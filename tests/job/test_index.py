@@ -120,6 +120,16 @@ def test_the_short_way_through_a_file_gives_the_same_as_the_long_one(jobs: Path)
         assert read_summary(path) == summary_of(path.stem, read_toml(path)[0])
 
 
+def test_entries_of_wrong_types_are_left_out_of_the_summary(tmp_path: Path) -> None:
+    """The first was found by the fuzzing of job files."""
+    for number, wrong in enumerate(
+        ('kind = "undo"\nentry = []', 'kind = ["undo"]', "kind = 3\nstate = {}\ntime = 1", "verdict = [1]")
+    ):
+        path = tmp_path / f"{number}.toml"
+        path.write_text(f"[job]\nformat = 1\n[[entry]]\n{wrong}\n")
+        assert read_summary(path).entries == 1
+
+
 def test_a_profile_is_no_job(tmp_path: Path) -> None:
     (tmp_path / "x.toml").write_text("id = 'x'\n")
     with pytest.raises(JobError, match=r"no table \[job\]"):

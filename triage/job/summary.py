@@ -69,7 +69,8 @@ def summary_of(name: str, document: dict[str, Any]) -> Summary:
     """The summary of the tables of a job file."""
     head, board = document["job"], _table(document.get("board"))
     entries = [entry for entry in _list(document.get("entry")) if isinstance(entry, dict)]
-    undone = {entry.get("entry") for entry in entries if entry.get("kind") == "undo"}
+    taken_back = [entry.get("entry") for entry in entries if entry.get("kind") == "undo"]
+    undone = {number for number in taken_back if isinstance(number, int)}
     standing = [entry for number, entry in enumerate(entries, 1) if number not in undone]
     closed = _last(standing, "closed")
     back = _place(standing, "returned") > _place(standing, "closed")
