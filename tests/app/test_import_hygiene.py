@@ -5,6 +5,7 @@ Each question is put to a fresh interpreter, which is asked what it has loaded.
 """
 
 import json
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -86,3 +87,11 @@ def test_set_lines_of_help_pages_fit_80_columns():
         for row in path.read_text(encoding="utf-8").splitlines():
             assert not row.startswith(" ") or len(row) <= 79, (path.name, row)
             assert row.isascii(), (path.name, row)
+
+
+def test_the_pictures_of_the_screens_ask_nothing_of_the_net():
+    pictures = sorted((ROOT / "triage/app/help").glob("*.svg"))
+    assert len(pictures) >= 2
+    for path in pictures:
+        addresses = set(re.findall(r"https?://[^\s\"')]+", path.read_text(encoding="utf-8")))
+        assert addresses <= {"http://www.w3.org/2000/svg", "https://www.textualize.io"}, path.name

@@ -65,7 +65,7 @@ def test_a_whole_job_by_keyboard_at_80x24(tmp_path, name):
     say(term, keys["f3"], "over rating")
     say(term, keys["f4"], "suspects over the entries")
     say(term, keys["f5"], "at least 910 V")
-    press(term, ENTER, DOWN)
+    press(term, ENTER, DOWN, ENTER)
     say(term, ENTER, "noted: fitted KSC5027 at Q1")
     term.wait_for("104 % -> 66 %")
     say(term, keys["f6"], "insulation between the sides")

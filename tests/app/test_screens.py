@@ -169,6 +169,8 @@ def test_a_candidate_is_fitted_and_its_stresses_are_shown(tmp_path):
         text = text_of(pilot.app)
         assert "at least 910 V" in text and "MJE13005" in text and "MJE13003" not in text
         await press(pilot, "enter", "down", "enter")
+        assert "Enter again: KSC5027 was fitted at Q1" in text_of(pilot.app)
+        await press(pilot, "enter")
         text = text_of(pilot.app)
         assert "noted: fitted KSC5027 at Q1" in text
         assert "104 % -> 66 %" in text
@@ -186,7 +188,7 @@ def test_a_half_read_marking_finds_parts_while_typing_and_shows_why_one_is_refus
         text = text_of(pilot.app)
         assert "MJE13003" in text and "1N4007" not in text
         assert "refused: MJE13003: collector-emitter 700 V is below" in text
-        await press(pilot, "enter", "enter")
+        await press(pilot, "enter", "enter", "enter")
         assert "is not rated for this place" in text_of(pilot.app)
 
     play(tmp_path, story, at_bench=True)
@@ -195,7 +197,7 @@ def test_a_half_read_marking_finds_parts_while_typing_and_shows_why_one_is_refus
 def test_a_repaired_adapter_is_retested_and_the_job_closed(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await found(pilot)
-        await press(pilot, "f5", "enter", "enter", "f6")
+        await press(pilot, "f5", "enter", "enter", "enter", "f6")
         text = text_of(pilot.app)
         assert "RETEST" in text and "insulation between the sides at 500 V: at least 2 Mohm" in text and "LIVE full" in text
         await press(pilot, "enter")

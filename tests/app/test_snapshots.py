@@ -89,7 +89,7 @@ async def marking(pilot: Pilot[int]) -> None:
 async def retest(pilot: Pilot[int]) -> None:
     """After the fit."""
     await found(pilot)
-    await keys(pilot, "f5", "enter", "enter", "f6")
+    await keys(pilot, "f5", "enter", "enter", "enter", "f6")
 
 
 async def record(pilot: Pilot[int]) -> None:

@@ -104,7 +104,7 @@ class Player:
         for text in ("12", "*", "0.8"):
             self.value(text)
         self.term.wait_for("found  Q1")
-        self.press("\x1b[15~", ENTER, DOWN, ENTER)
+        self.press("\x1b[15~", ENTER, DOWN, ENTER, ENTER)
         self.press("\x1b[17~", ENTER)
         self.value("50M")
         self.value("5.02")

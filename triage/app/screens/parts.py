@@ -30,6 +30,8 @@ class PartsScreen(Frame):
         self._candidates: dict[str, CandidateView] = {}
         self._matches: tuple[MatchView, ...] = ()
         self._before: tuple[StressView, ...] = ()
+        self._sure = ("", "")
+        """Position and type on which Enter was pressed once."""
 
     def body(self) -> ComposeResult:
         """Fields, demand, list, detail."""
@@ -48,7 +50,7 @@ class PartsScreen(Frame):
         super().on_mount()
         self.panel("ref-label").show((line(Span("position ", "strong")),))
         self.panel("marking-label").show((line(Span("  marking ", "strong")),))
-        self.panel("hint").show((line(Span("  Enter on a line fits it; left, right: its text", "quiet")),))
+        self.panel("hint").show((line(Span("  Enter fits a line; left, right: its text", "quiet")),))
 
     def entered(self) -> None:
         """Offer the positions of the verdict first, else the suspects; keep the one chosen while it is among
@@ -167,8 +169,13 @@ class PartsScreen(Frame):
         self.query_one("#list").focus()
 
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
-        """Fit the part under the cursor."""
+        """Fit the part under the cursor, once Enter was pressed twice on it."""
         ref, wanted = self._ref, event.key
+        if self._sure != (ref, wanted):
+            self._sure = (ref, wanted)
+            self.show_message(f"Enter again: {wanted} was fitted at {ref}")
+            return
+        self._sure = ("", "")
         self.desk.enter(lambda bench: bench.fit(ref, wanted), self._fitted)
 
     def _fitted(self) -> None:

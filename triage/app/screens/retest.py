@@ -47,7 +47,9 @@ class RetestScreen(Frame):
         """The checks with their results, then what can be said."""
         if view is None:
             return
-        fault = f"{view.verdict.ref} {mode_words(view.verdict.mode)}".strip() or view.verdict.status
+        named = {"open": "none named yet", "does not fit": "none that fits"}
+        fault = f"{view.verdict.ref} {mode_words(view.verdict.mode)}".strip()
+        fault = named.get(view.verdict.status, fault or view.verdict.status)
         self.panel("found").show((line("fault found: ", Span(fault, "strong")),))
         rows: list[tuple[str, Line]] = [(one.key, retest_line(one, self.wide)) for one in view.retest]
         rows += [(key, line("   ", Span(word.ljust(18), "key"), text)) for key, (word, text) in _SAY.items()]
