@@ -16,6 +16,8 @@ RESISTOR_POWER = 10.0
 SWITCH_VOLTAGE, SWITCH_POWER = 1.5, 6.0
 ZENER_POWER = 4.0
 DIODE_CURRENT, DIODE_VOLTAGE = 4.0, 1.5
+FIELD_EFFECT_VOLTAGE, FIELD_EFFECT_POWER = 1.1, 4.0
+"""A field-effect transistor is lost by its avalanche, soon above its rating."""
 LED_CURRENT = 4.0
 CAPACITOR_VOLTAGE, REVERSE_VOLTS = 1.5, 3.0
 FAST_KINDS = ("fuse", "fusible_resistor")
@@ -41,6 +43,21 @@ def _transistor(part: Part, at: Settled) -> tuple[float, str]:
     rated = part.ratings.get("voltage", 0.0)
     volts = _over(peak, rated, SWITCH_VOLTAGE) if rated >= 250.0 else 0.0
     return max(volts, _over(main[POWER] + base[POWER], part.ratings.get("power"), SWITCH_POWER)), "ce_short"
+
+
+def _field_effect(part: Part, at: Settled) -> tuple[float, str]:
+    row = at.row(part.ref)
+    return max(_over(max(row[V_MAX], 0.0), part.ratings.get("voltage"), FIELD_EFFECT_VOLTAGE),
+               _over(row[POWER], part.ratings.get("power"), FIELD_EFFECT_POWER)), "short_dgs"
+
+
+def _bridge(part: Part, at: Settled) -> tuple[float, str]:
+    legs = [at.row(part.ref, f"_{leg}") for leg in "abcd"]
+    return max(_over(leg[I_MEAN], part.ratings.get("current"), DIODE_CURRENT) for leg in legs), "d_short"
+
+
+def _optocoupler(part: Part, at: Settled) -> tuple[float, str]:
+    return _over(at.row(part.ref, "_led")[I_MEAN], part.ratings.get("current"), LED_CURRENT), "led_open"
 
 
 def _zener(part: Part, at: Settled) -> tuple[float, str]:
@@ -71,7 +88,8 @@ def _capacitor(part: Part, at: Settled) -> tuple[float, str]:
 RULES: Mapping[str, Callable[[Part, Settled], tuple[float, str]]] = {
     "fuse": _fuse, "fusible_resistor": _resistor, "resistor": _resistor, "bipolar_transistor": _transistor,
     "zener": _zener, "diode": _diode, "led": _led, "electrolytic": _electrolytic, "capacitor": _capacitor,
-    "x_capacitor": _capacitor, "y_capacitor": _capacitor,
+    "x_capacitor": _capacitor, "y_capacitor": _capacitor, "mosfet": _field_effect, "bridge": _bridge,
+    "optocoupler": _optocoupler,
 }
 
 

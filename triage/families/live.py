@@ -3,14 +3,15 @@
 import math
 from collections.abc import Mapping
 
-from triage.board.circuit import LINE, neutral, output_ground
+from triage.board.circuit import LINE, live_ground, neutral, output_ground
 from triage.board.part import Board
 from triage.board.probe import Probe
 from triage.families.family import Family
 from triage.families.steady import Settled
 from triage.physics.transient import I_RMS, POWER, V_MAX, V_MEAN, V_MIN, V_RMS
 
-INPUT_ROLES = ("fusible input resistor", "mains fuse", "thermal fuse", "inrush NTC", "mains rectifier", "mains bridge")
+INPUT_ROLES = ("fusible input resistor", "mains fuse", "thermal fuse", "inrush NTC", "mains rectifier", "mains bridge",
+               "mains cord", "common-mode choke")
 
 
 def live_probes(board: Board, family: Family, condition: str) -> tuple[Probe, ...]:
@@ -19,8 +20,8 @@ def live_probes(board: Board, family: Family, condition: str) -> tuple[Probe, ..
     for side, nodes in board.sides.items():
         for node in nodes:
             if node not in (board.ground[side], LINE, neutral(board)):
-                probes += [Probe("volts_dc", node, board.ground[side], condition),
-                           Probe("volts_pp", node, board.ground[side], condition)]
+                ground = live_ground(board, side, node)
+                probes += [Probe("volts_dc", node, ground, condition), Probe("volts_pp", node, ground, condition)]
     probes += [Probe("volts_ac", node, neutral(board), condition) for node in ac_nodes(board)]
     probes += [Probe("watts", LINE, neutral(board), condition), Probe("amps_ac", LINE, neutral(board), condition)]
     switch = board.by_role(family.switch_role)

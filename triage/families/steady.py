@@ -13,7 +13,7 @@ from triage.board.circuit import NOMINAL, Draw, circuit, output_ground
 from triage.board.fault import Fault
 from triage.board.part import Board, Part
 from triage.families.family import Family
-from triage.physics.netlist import Compiled, Netlist, compile_netlist
+from triage.physics.netlist import CONTROLLER, Compiled, Netlist, compile_netlist
 from triage.physics.transient import (
     SWITCHING_START,
     V_MAX,
@@ -28,8 +28,10 @@ from triage.physics.transient import (
 
 MOST_PERIODS = 8
 MOST_SLOW_PERIODS, SLOW_SHARE = 80, 0.1
-"""Periods, and share of the limits below, in a family in which nothing switches: a period costs little there, and the transformer's
-magnetising current takes many to settle."""
+"""Periods, and share of the limits below, in a family in which nothing switches: a period costs little there, and the
+transformer's magnetising current takes many to settle."""
+HICCUP_PERIODS = 25
+"""Mains periods over which a locked-out controller is followed, once to find its rhythm and once for the averages."""
 SETTLED_OUTPUT = 0.012
 """Change of the output over a period that counts as none, as a share of its rated value [-]."""
 SETTLED_CHARGE = 0.04
@@ -41,19 +43,24 @@ QUIET_FREQUENCY = 60.0
 def output_parts(board: Board, family: Family) -> tuple[Part, ...]:
     """The electrolytics that hold the output voltage."""
     return tuple(part for part in board.parts if part.role in family.output_roles and part.kind == "electrolytic"
-                 and part.pins["plus"] in ("out", *_beyond_coil(board)))
+                 and part.pins["plus"] in _output_nodes(board))
 
 
-def _beyond_coil(board: Board) -> tuple[str, ...]:
-    """Nodes that a filter coil joins to the output."""
-    return tuple(node for part in board.parts if part.kind == "inductor" and "out" in part.pins.values()
-                 for node in part.pins.values())
+def _output_nodes(board: Board) -> tuple[str, ...]:
+    """The output and the nodes that a cable and then a filter coil join to it."""
+    nodes = ("out",)
+    for kind, pins in (("cable", ("a_in", "a_out")), ("connector", ("a_in", "a_out")), ("inductor", ("a", "b"))):
+        for part in board.parts:
+            ends = [part.pins[pin] for pin in pins] if part.kind == kind else []
+            if any(node in nodes for node in ends):
+                nodes = (*nodes, *ends)
+    return nodes
 
 
 def rated_start(board: Board, family: Family) -> dict[str, float]:
     """Capacitor voltages to begin a sound board with [V]: outputs at their rated voltage, the supply of a controller awake."""
     start = {part.ref: board.label.output_voltage for part in output_parts(board, family)}
-    supply, controller = board.by_role(family.supply_role), next((p for p in board.parts if p.kind == "pwm_controller"), None)
+    supply, controller = board.by_role(family.supply_role), next((p for p in board.parts if "start_voltage" in p.value), None)
     if supply is not None and controller is not None:
         start[supply.ref] = 0.997 * controller.value["start_voltage"]
     return start
@@ -101,6 +108,13 @@ class _Run:
         start, skip = (0.0, begin) if self.restarted else (begin, 0.0)
         self.restarted = False
         return run_stretch(self.compiled, self.state, start, begin + period, self.watch, self.quality, skip)
+
+    def long_period(self, count: int) -> Stretch:
+        """Several mains periods in one, for what repeats more slowly than the mains."""
+        begin = SWITCHING_START
+        self.restarted = False
+        return run_stretch(self.compiled, self.state, begin, begin + count / self.board.mains.frequency, self.watch,
+                           self.quality, 0.0)
 
 
 def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
@@ -184,7 +198,16 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
         if (abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE) or highest > 1.8 * limit:
             break
         last = _follow_drift(run, change, last)
+    if _asleep(run):
+        run.long_period(HICCUP_PERIODS)
+        return run.long_period(HICCUP_PERIODS), number + 2 * HICCUP_PERIODS
     return stretch, number
+
+
+def _asleep(run: _Run) -> bool:
+    """True when a controller is locked out: it will try again later, or never."""
+    kinds, states = run.compiled.behaviour[2], run.compiled.behaviour[4]
+    return bool(np.any((kinds == CONTROLLER) & (states[:, 0] < 0.5)))
 
 
 def _resting_output(run: _Run) -> float:

@@ -21,7 +21,7 @@ from triage.physics.derating import derating
 from triage.physics.electrolytic_life import life
 from triage.physics.netlist import compile_netlist
 from triage.physics.thermal import package_resistance, resistor_hot_spot, temperature_after
-from triage.physics.transient import FINE, I_MAX, I_MEAN, I_MIN, I_RMS, POWER, V_MAX, V_MIN, Quality, initial_state, run_stretch
+from triage.physics.transient import FINE, I_MAX, I_MEAN, I_MIN, I_RMS, POWER, V_MAX, V_MIN, V_RMS, Quality, initial_state, run_stretch
 
 INSIDE_AIR = 55.0
 """Air inside a closed adapter at full load in a warm room [degC]; common practice, no source."""
@@ -30,7 +30,7 @@ RATED_LIFE = 2000.0
 INRUSH_TIME = 4e-3
 RATING_OF = {
     "peak_voltage": "voltage", "reverse_voltage": "voltage", "power": "power", "ripple_current": "ripple_current",
-    "average_current": "current", "peak_current": "current", "rms_current": "current", "temperature": "temperature",
+    "average_current": "current", "peak_current": "current", "rms_current": "current", "rms_voltage": "ac_voltage", "temperature": "temperature",
     "i2t": "i2t",
 }
 """Stress quantity -> key of the rating it is held against."""
@@ -51,7 +51,8 @@ def conditions(board: Board) -> tuple[Condition, ...]:
     """The nine corners: low, nominal and high mains with no, half and full load."""
     words = {"noload": "no load", "half": "half load", "full": "full load"}
     mains = {board.mains.low: None, board.mains.nominal: None, board.mains.high: None}
-    return tuple(Condition(f"{volts:g} V, {words[load]}", volts, load_resistance(board, load)) for volts in mains for load in LOADS)
+    return tuple(Condition(f"{volts:g} V, {words[load]}", volts, load_resistance(board, load))
+                 for volts in mains for load in LOADS)
 
 
 def worst_corners(board: Board) -> tuple[Condition, ...]:
@@ -86,6 +87,8 @@ def part_stresses(part: Part, at: Settled) -> dict[str, float]:
     if part.kind in ("diode", "led"):
         return {"reverse_voltage": max(-float(row[V_MIN]), 0.0), "average_current": abs(float(row[I_MEAN])),
                 "power": abs(float(row[POWER]))}
+    if part.kind == "varistor":
+        return {"rms_voltage": float(row[V_RMS]), "peak_voltage": peak, "power": abs(float(row[POWER]))}
     if part.kind == "zener":
         return {"power": abs(float(row[POWER]))}
     if part.kind == "bipolar_transistor":
