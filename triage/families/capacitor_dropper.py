@@ -16,4 +16,5 @@ FAMILY = Family(
     look=("a large film capacitor in series with the mains", "no transformer", "a zener and one or two diodes"),
     largest_step=1e-4,
     slow=True,
+    starts_empty=True,
 )

@@ -23,6 +23,8 @@ class Family:
     """Largest time step [s]; 0 leaves it to the solution."""
     slow: bool = False
     """True where nothing switches: many periods cost little there, and the settling is slow."""
+    starts_empty: bool = False
+    """True where every solution begins with empty capacitors: nothing would empty a reservoir that a fault no longer feeds."""
     swing_low: float = 0.78
     """Share of the bulk voltage below which a swing of the switch ends [-]; what rings about the bulk voltage must not count."""
     look: tuple[str, ...] = ()

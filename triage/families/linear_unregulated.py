@@ -16,4 +16,5 @@ FAMILY = Family(
     look=("a heavy iron transformer", "no high-voltage capacitor", "no regulator", "two or four diodes"),
     largest_step=1e-4,
     slow=True,
+    starts_empty=True,
 )

@@ -92,7 +92,8 @@ def _rounded(value: float) -> float:
 
 def _powers(board: Board, settled: Settled) -> dict[str, float]:
     """Mean power of the parts that have a power rating [W]."""
-    return {part.ref: _rounded(float(settled.row(part.ref)[POWER])) for part in board.parts if "power" in part.ratings}
+    return {part.ref: _rounded(float(settled.row(part.ref)[POWER])) for part in board.parts
+            if "power" in part.ratings and (part.ref, "") in settled.rows}
 
 
 class OperatingPoints:

@@ -135,7 +135,7 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
         stretch = run.period()
         if stretch.frequency == 0.0 and _output(run) < 0.1 * board.label.output_voltage:
             return Settled(stretch, rows, _voltages(run), 1, False)
-    run = _begin(board, family, net, compiled, quality, mains, start or {})
+    run = _begin(board, family, net, compiled, quality, mains, {} if family.starts_empty else start or {})
     stretch, periods = _repeat(run, rows)
     return Settled(stretch, rows, _voltages(run), periods, True)
 

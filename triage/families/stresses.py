@@ -21,7 +21,20 @@ from triage.physics.derating import derating
 from triage.physics.electrolytic_life import life
 from triage.physics.netlist import compile_netlist
 from triage.physics.thermal import package_resistance, resistor_hot_spot, temperature_after
-from triage.physics.transient import FINE, I_MAX, I_MEAN, I_MIN, I_RMS, POWER, V_MAX, V_MIN, V_RMS, Quality, initial_state, run_stretch
+from triage.physics.transient import (
+    FINE,
+    I_MAX,
+    I_MEAN,
+    I_MIN,
+    I_RMS,
+    POWER,
+    V_MAX,
+    V_MIN,
+    V_RMS,
+    Quality,
+    initial_state,
+    run_stretch,
+)
 
 INSIDE_AIR = 55.0
 """Air inside a closed adapter at full load in a warm room [degC]; common practice, no source."""
