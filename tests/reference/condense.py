@@ -58,7 +58,8 @@ def live_lines(circuit: str, shared: Path = SHARED) -> list[str]:
 def healthy_lines(circuit: str, shared: Path = SHARED) -> list[str]:
     """Lines of healthy.csv without the unit, which follows from the quantity."""
     return ["condition,ref,quantity,value"] + [
-        ",".join((row["condition"], row["ref"], row["quantity"], row["value"])) for row in _rows(shared / circuit / "healthy.csv")]
+        ",".join((row["condition"], row["ref"], row["quantity"], row["value"]))
+        for row in _rows(shared / circuit / "healthy.csv")]
 
 
 TABLES = {"cold": cold_lines, "live": live_lines, "healthy": healthy_lines}

@@ -108,3 +108,8 @@ def observation(board: Board, name: str, load: str) -> Probe | None:
 def output_probe(board: Board, load: str) -> Probe:
     """The output voltage under a load."""
     return Probe("volts_dc", "out", output_ground(board), load)
+
+
+def healthy_table(circuit: str) -> dict[tuple[str, str, str], float]:
+    """(condition, ref, quantity) -> value of the sound board."""
+    return {(condition, ref, quantity): number(value) for condition, ref, quantity, value in _lines(circuit, "healthy")[1:]}

@@ -1,7 +1,8 @@
 """A board in a given state as a circuit: which parts are at fault, which values they have, how it is fed and loaded.
 
 Conventions of node names: ``mains_l`` and ``mains_n`` are the mains terminals (a board without ``mains_n`` has its neutral on the
-primary ground), ``out`` is the positive output terminal, read against the ground of its side.
+primary ground), ``out`` is the positive output terminal. It is read against ``out_minus``, the negative terminal at the end of
+the output cable, where a board names one, else against the ground of its side.
 """
 
 import math
@@ -13,7 +14,7 @@ from triage.board.kinds import State, kinds
 from triage.board.part import Board, Part
 from triage.physics.netlist import PORT_NONE, PORT_SOURCE, Netlist
 
-LINE, NEUTRAL, OUTPUT = "mains_l", "mains_n", "out"
+LINE, NEUTRAL, OUTPUT, OUTPUT_RETURN = "mains_l", "mains_n", "out", "out_minus"
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,7 +37,14 @@ def neutral(board: Board) -> str:
 
 def output_ground(board: Board) -> str:
     """Node the output voltage is read against."""
+    if any(OUTPUT_RETURN in nodes for nodes in board.sides.values()):
+        return OUTPUT_RETURN
     return board.ground.get(board.side_of(OUTPUT) or "secondary", board.ground["primary"])
+
+
+def live_ground(board: Board, side: str, node: str) -> str:
+    """Node that a live voltage of ``node`` is read against: the output at its terminals, the others on the board."""
+    return output_ground(board) if node == OUTPUT else board.ground[side]
 
 
 def specimen(part: Part, draw: Draw) -> Part:
@@ -76,7 +84,7 @@ def _feed(net: Netlist, board: Board, mains: float, load: float) -> None:
     for side, nodes in board.sides.items():
         for node in nodes:
             if node != board.ground[side]:
-                net.port(node, "node", node, board.ground[side], PORT_NONE)
+                net.port(node, "node", node, live_ground(board, side, node), PORT_NONE)
     back = neutral(board)
     for node in board.sides["primary"]:
         if node != back:

@@ -27,7 +27,7 @@ from triage.physics.transient import (
 )
 
 MOST_PERIODS = 8
-MOST_SLOW_PERIODS, SLOW_SHARE = 80, 0.1
+LEAST_SLOW_PERIODS, MOST_SLOW_PERIODS, SLOW_SHARE = 50, 150, 0.02
 """Periods, and share of the limits below, in a family in which nothing switches: a period costs little there, and the
 transformer's magnetising current takes many to settle."""
 HICCUP_PERIODS = 25
@@ -195,9 +195,10 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
         drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
                      for ref, k in run.electrolytics.items()), default=0.0)
         highest = stretch.statistics[rows["out", "node"], V_MAX]
-        if (abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE) or highest > 1.8 * limit:
+        still = abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE
+        if (still and not (slow and number < LEAST_SLOW_PERIODS)) or highest > 1.8 * limit:
             break
-        last = _follow_drift(run, change, last)
+        last = None if slow else _follow_drift(run, change, last)
     if _asleep(run):
         run.long_period(HICCUP_PERIODS)
         return run.long_period(HICCUP_PERIODS), number + 2 * HICCUP_PERIODS

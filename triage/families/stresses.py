@@ -43,7 +43,8 @@ RATED_LIFE = 2000.0
 INRUSH_TIME = 4e-3
 RATING_OF = {
     "peak_voltage": "voltage", "reverse_voltage": "voltage", "power": "power", "ripple_current": "ripple_current",
-    "average_current": "current", "peak_current": "current", "rms_current": "current", "rms_voltage": "ac_voltage", "temperature": "temperature",
+    "average_current": "current", "peak_current": "current", "rms_current": "current", "rms_voltage": "ac_voltage",
+    "temperature": "temperature",
     "i2t": "i2t",
 }
 """Stress quantity -> key of the rating it is held against."""

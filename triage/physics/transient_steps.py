@@ -67,6 +67,8 @@ END_WEIGHT = GAMMA / 2.0
 TRUNCATION = (3.0 * GAMMA * GAMMA - 4.0 * GAMMA + 2.0) / (6.0 * (2.0 - GAMMA))
 EULER_STEPS = 3
 """Steps of the implicit Euler rule at the start, until the derivatives are those of the circuit."""
+QUIET_STEPS = 16
+"""Steps at the start of a run that are not searched for extremes."""
 EULER_START = 10.0
 """First step as a multiple of the smallest."""
 AFTER_JUMP = 1e-10
@@ -254,21 +256,23 @@ def port_values(v, y, f, emf, port, resistor, capacitor, source, out):
 
 
 @njit(**INNER)
-def accumulate(stats, start, stage, end, h):
+def accumulate(stats, start, stage, end, h, peaks):
     """Add one step of length ``h`` to extremes and integrals of every port.
 
     Extremes look at the ends of steps only: the inner stage of a step over a stiff part overshoots, and the end takes that back.
+    They leave out the first steps of a run (``peaks`` False), some picoseconds in which the junctions take up their charges again.
     """
     w, w1 = h * STAGE_WEIGHT, h * END_WEIGHT
     for p in range(end.shape[1]):
         v0, vs, v1 = start[0, p], stage[0, p], end[0, p]
         i0, js, i1 = start[1, p], stage[1, p], end[1, p]
-        stats[V_MIN, p] = min(stats[V_MIN, p], v1)
-        stats[V_MAX, p] = max(stats[V_MAX, p], v1)
+        if peaks:
+            stats[V_MIN, p] = min(stats[V_MIN, p], v1)
+            stats[V_MAX, p] = max(stats[V_MAX, p], v1)
+            stats[I_MIN, p] = min(stats[I_MIN, p], i1)
+            stats[I_MAX, p] = max(stats[I_MAX, p], i1)
         stats[V_SUM, p] += w * (v0 + vs) + w1 * v1
         stats[V_SQUARE, p] += w * (v0 * v0 + vs * vs) + w1 * v1 * v1
-        stats[I_MIN, p] = min(stats[I_MIN, p], i1)
-        stats[I_MAX, p] = max(stats[I_MAX, p], i1)
         stats[I_SUM, p] += w * (i0 + js) + w1 * i1
         stats[I_SQUARE, p] += w * (i0 * i0 + js * js) + w1 * i1 * i1
         stats[VI_SUM, p] += w * (v0 * i0 + vs * js) + w1 * v1 * i1
@@ -387,7 +391,7 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
         if euler:
             hold_ports(m)
         if t >= stats_from:
-            accumulate(m.stats, m.port_start, m.port_stage, m.port_end, h)
+            accumulate(m.stats, m.port_start, m.port_stage, m.port_end, h, steps >= QUIET_STEPS)
         t += h
         steps += 1
         since += 1
