@@ -24,6 +24,7 @@ HEAVY = (
     "triage.diagnosis",
     "triage.families",
     "triage.job.bench",
+    "triage.job.views",
 )
 
 

@@ -16,7 +16,8 @@ from triage.app.text.bench import (
     suspect_lines,
     verdict_lines,
 )
-from triage.app.text.frame import standard_keys, status_lines
+from triage.app.text.frame import status_lines
+from triage.app.text.key_line import standard_keys
 from triage.app.text.moves import move_lines
 from triage.app.text.stress import stress_head, stress_line, with_it, worst_first
 from triage.job.views import EntryView, JobView, OutcomeView, SuggestionView, SuspectView, VerdictView

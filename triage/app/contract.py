@@ -4,11 +4,14 @@ protocol.
 The tests' stand-in keeps to the same protocol, so that the screens are tested without computing anything.
 """
 
-from pathlib import Path
-from typing import Protocol
+from __future__ import annotations
 
-from triage.board.part import Board
-from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+from pathlib import Path
+from typing import TYPE_CHECKING, Protocol
+
+if TYPE_CHECKING:
+    from triage.board.part import Board
+    from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
 
 
 class OpenJob(Protocol):

@@ -4,13 +4,17 @@ Entries go through ``enter`` one after the other; what only looks goes through `
 calculation runs in a thread of its own, so that cautions and signs can be entered meanwhile.
 """
 
+from __future__ import annotations
+
 from collections.abc import Callable, Mapping
-from typing import TypeVar
+from typing import TYPE_CHECKING, TypeVar
 
 from triage.app.back_room import Answer, BackRoom
 from triage.app.contract import OpenJob
 from triage.errors import TriageError
-from triage.job.views import JobView, SuspectView
+
+if TYPE_CHECKING:
+    from triage.job.views import JobView, SuspectView
 
 T = TypeVar("T")
 Deliver = Callable[[Callable[[], None]], object]
@@ -96,8 +100,9 @@ class Desk:
     def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None, queue: bool = False) -> bool:
         """Give the bench an entry; False when there is no job, or the entry before is still being worked on.
 
-        ``accepted`` is called before the screens are told, when the bench has taken the entry. ``queue``: wait behind the
-        entry before instead of being refused; of entries that wait only the last calls its ``accepted``.
+        ``accepted`` is called before the screens are told, when the bench has taken the entry. ``queue``:
+        wait behind the entry before instead of being refused; of entries that wait only the last calls its
+        ``accepted``.
         """
         bench = self.bench
         if bench is None or (self.pending and not queue):

@@ -1,6 +1,8 @@
 """What all screens have in common: a status line above, a message line and the key line below, lines sized
 to the screen."""
 
+from __future__ import annotations
+
 from collections.abc import Callable
 from typing import TYPE_CHECKING, ClassVar, TypeVar, cast
 
@@ -12,13 +14,12 @@ from triage.app.contract import OpenJob
 from triage.app.desk import Desk
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, clip, line, wrapped
-from triage.app.text.frame import standard_keys, status_lines
-from triage.app.widgets.field import Field
+from triage.app.text.key_line import standard_keys
 from triage.app.widgets.panel import ListPanel, Panel
-from triage.job.views import JobView
 
 if TYPE_CHECKING:
     from triage.app.app import TriageApp
+    from triage.job.views import JobView
 
 T = TypeVar("T")
 U = TypeVar("U")
@@ -35,7 +36,7 @@ class Frame(Screen[None]):
     BINDINGS = [("escape", "back", "back")]  # noqa: RUF012 (Textual's own way)
 
     @property
-    def triage(self) -> "TriageApp":
+    def triage(self) -> TriageApp:
         """The app."""
         return cast("TriageApp", self.app)
 
@@ -99,6 +100,8 @@ class Frame(Screen[None]):
         """The status lines."""
         if view is None:
             return (line(Span(f" {self.NAME} ", "head")),)
+        from triage.app.text.frame import status_lines
+
         return status_lines(view, self.NAME, self.wide)
 
     def refresh_body(self, view: JobView | None) -> None:
@@ -131,7 +134,7 @@ class Frame(Screen[None]):
         """From a field to the list of the screen; else to the screen before, or to the bench; from there
         nowhere."""
         lists = self.query(ListPanel)
-        if isinstance(self.focused, Field) and lists:
+        if lists and self.focused is not None and not isinstance(self.focused, ListPanel):
             lists.first().focus()
             return
         if len(self.triage.screen_stack) > 3:

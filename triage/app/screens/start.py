@@ -1,7 +1,9 @@
 """Start page: open a job, begin one on a profile, and what to do first."""
 
+from __future__ import annotations
+
 from pathlib import Path
-from typing import ClassVar
+from typing import TYPE_CHECKING, ClassVar
 
 from textual import work
 from textual.app import ComposeResult
@@ -10,7 +12,9 @@ from triage.app.frame import Frame
 from triage.app.lines import Line, Span, columns, line
 from triage.app.shelf import Item
 from triage.app.widgets.panel import ListPanel, Panel
-from triage.job.views import JobView
+
+if TYPE_CHECKING:
+    from triage.job.views import JobView
 
 _FIRST = (
     line(Span("First: ", "strong"), "pull the plug. The big capacitor counts as charged until it is read."),
