@@ -113,3 +113,15 @@ def output_probe(board: Board, load: str) -> Probe:
 def healthy_table(circuit: str) -> dict[tuple[str, str, str], float]:
     """(condition, ref, quantity) -> value of the sound board."""
     return {(condition, ref, quantity): number(value) for condition, ref, quantity, value in _lines(circuit, "healthy")[1:]}
+
+
+def collateral_cold_table(circuit: str) -> dict[frozenset[Fault], dict[Probe, float]]:
+    """Cold readings with a fault and all its collateral present, made with the same generator; empty where there is no file."""
+    if not (DATA / f"{circuit.replace('-', '_')}_collateral_cold.csv").is_file():
+        return {}
+    sound = cold_table(circuit)["healthy"]
+    table: dict[frozenset[Fault], dict[Probe, float]] = {}
+    for faults, plus, minus, function, value in _lines(circuit, "collateral_cold")[1:]:
+        rows = table.setdefault(frozenset(fault_of(faults)), dict(sound))
+        rows[Probe(FUNCTIONS.get(function, function), plus, minus)] = number(value, function)
+    return table

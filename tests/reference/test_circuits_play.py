@@ -1,0 +1,85 @@
+"""Whole jobs on simulated faults: the program's own expectations decide, the reference tables answer.
+
+The script knows only what a technician knows: the complaint, and what the meter shows (2 % random error, fixed seeds) between the
+two nodes it is asked to probe. Source of the answers: the reference circuits (ngspice 39).
+"""
+
+from dataclasses import dataclass
+
+import pytest
+
+from tests.reference.playing import Meter, Play, play, summary
+from tests.reference.reference_circuits import (
+    PROFILES,
+    SOURCE,
+    cold_table,
+    collateral_cold_table,
+    fault_of,
+    live_table,
+)
+from tests.reference.test_circuits_live import CIRCUITS
+from triage.board.evidence import Sign, Symptom
+from triage.board.part import Board
+from triage.board.probe import Probe
+from triage.board.profile import load_profile
+from triage.families.live import state_class
+from triage.families.live import summary as live_summary
+from triage.families.points import LOADS
+from triage.job.learning import NONE
+from triage.job.wiring import Wiring
+
+FIRST_TIME_RIGHT = {"rcc-zener": 0.90}
+CLEAN, GROSS = 0.95, 0.93
+
+
+@dataclass(frozen=True)
+class Unit:
+    """One failed adapter: what is really wrong, what the customer says, what instruments show."""
+
+    name: str
+    needed: frozenset[str]
+    symptom: Symptom
+    readings: dict[Probe, float]
+
+
+def units(circuit: str, board: Board) -> list[Unit]:
+    """Every single fault, with its collateral at the load where the customer first noticed something."""
+    live, cold, chains = live_table(circuit, board), cold_table(circuit), collateral_cold_table(circuit)
+    loads = [load for load in LOADS if ("healthy", load) in live]
+    sound = {load: live_summary(board, live["healthy", load][1], load) for load in loads}
+    found = []
+    for fault in cold:
+        if fault == "healthy" or (fault, loads[-1]) not in live:
+            continue
+        after = {load: live.get((fault, load + "_after"), live[fault, load]) for load in loads}
+        states = {load: state_class(board, load, {x: live_summary(board, after[x][1], x) for x in loads}, sound) for load in loads}
+        load = next((x for x in reversed(loads) if states[x] != "normal"), "full")
+        collateral = after[load][0]
+        faults = frozenset((*fault_of(fault), *collateral))
+        readings = dict(chains.get(faults, {}) if collateral else cold[fault])
+        for x in loads:
+            readings |= after[x][1] if after[x][0] == collateral else {}
+        state = "dead" if states[load] == "fuse gone" else states[load]
+        found.append(Unit(fault, frozenset(f.ref for f in faults), Symptom(state, load), readings))
+    return found
+
+
+def play_all(circuit: str, meter: Meter) -> list[Play]:
+    """Every unit once."""
+    board = load_profile(PROFILES[circuit])
+    diagnosis = Wiring().diagnosis(board, NONE)
+    return [play(diagnosis, unit.name, unit.needed, [unit.symptom, Sign("sound")], unit.readings.get, 500 + number, meter)
+            for number, unit in enumerate(units(circuit, board))]
+
+
+@pytest.mark.parametrize("circuit", CIRCUITS)
+@pytest.mark.parametrize("gross", [0.0, 0.05], ids=["clean", "one reading in twenty grossly wrong"])
+def test_every_fault_is_played_from_complaint_to_verdict(circuit, gross, outside_check):
+    """Right at the first repair; no live reading before the cold ones are done is asserted inside ``play``."""
+    plays = play_all(circuit, Meter(gross=gross))
+    got = summary(plays)
+    print(f"\n{circuit} gross {gross}: " + ", ".join(f"{key} {value:.3g}" for key, value in got.items()))
+    print("wrong: " + "; ".join(f"{p.name} ({p.status}: {','.join(sorted(p.repair))} for {','.join(sorted(p.needed))})"
+                               for p in plays if not p.right))
+    bound = GROSS if gross else FIRST_TIME_RIGHT.get(circuit, CLEAN)
+    outside_check.at_least(f"first repair right on {circuit}, {'gross errors' if gross else 'clean'}", SOURCE, got["right"], bound)
