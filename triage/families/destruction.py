@@ -20,7 +20,9 @@ FIELD_EFFECT_VOLTAGE, FIELD_EFFECT_POWER = 1.1, 4.0
 """A field-effect transistor is lost by its avalanche, soon above its rating."""
 LED_CURRENT = 4.0
 CAPACITOR_VOLTAGE, REVERSE_VOLTS = 1.5, 3.0
-FAST_KINDS = ("fuse", "fusible_resistor")
+WINDING_LOSS = 4.0
+"""Loss of a mains transformer's windings over its rated one at which the thermal fuse in it opens."""
+FAST_KINDS = ("fuse", "fusible_resistor", "thermal_fuse")
 """Kinds that open before the heat elsewhere does its work."""
 
 
@@ -93,15 +95,30 @@ RULES: Mapping[str, Callable[[Part, Settled], tuple[float, str]]] = {
 }
 
 
+def _thermal_fuse(board: Board, part: Part, at: Settled) -> tuple[float, str]:
+    """A thermal fuse sits in the transformer: it opens by the heat of the windings, or by its own current."""
+    share = _over(at.row(part.ref)[I_RMS], part.ratings.get("current"), FUSE_CURRENT)
+    for other in board.parts:
+        if other.kind == "transformer":
+            loss = sum(float(at.row(ref, suffix)[I_RMS]) ** 2 * other.value.get(f"{suffix[1:]}_resistance", 0.0)
+                       for ref, suffix in at.rows if ref == other.ref)
+            share = max(share, _over(loss, other.ratings.get("power"), WINDING_LOSS))
+    return share, "open"
+
+
+NEAR_RULES: Mapping[str, Callable[[Board, Part, Settled], tuple[float, str]]] = {"thermal_fuse": _thermal_fuse}
+"""Rules of parts that a neighbour destroys."""
+
+
 def destroyed(board: Board, at: Settled, hurt: Iterable[str]) -> Fault | None:
     """The part that this operating point destroys first, leaving out the refs already at fault; None when all survive."""
     left = set(hurt)
     hits = []
     for part in board.parts:
-        rule = RULES.get(part.kind)
-        if rule is None or part.ref in left:
+        if part.ref in left or part.kind not in {*RULES, *NEAR_RULES}:
             continue
-        share, mode = rule(part, at)
+        near = NEAR_RULES.get(part.kind)
+        share, mode = near(board, part, at) if near else RULES[part.kind](part, at)
         if share > 1.0:
             hits.append((part.kind in FAST_KINDS, share, Fault(part.ref, mode)))
     return max(hits)[2] if hits else None
