@@ -48,7 +48,7 @@ def output_parts(board: Board, family: Family) -> tuple[Part, ...]:
 
 def _output_nodes(board: Board) -> tuple[str, ...]:
     """The output and the nodes that a cable and then a filter coil join to it."""
-    nodes = ("out",)
+    nodes: tuple[str, ...] = ("out",)
     for kind, pins in (("cable", ("a_in", "a_out")), ("connector", ("a_in", "a_out")), ("inductor", ("a", "b"))):
         for part in board.parts:
             ends = [part.pins[pin] for pin in pins] if part.kind == kind else []

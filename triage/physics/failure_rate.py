@@ -353,5 +353,6 @@ def part_rate(kind: str, role: str = "", *, temperature: Values = 60.0, stress: 
         "transformer": lambda: transformer_rate(style, temperature, environment=environment),
         "inductor": lambda: inductor_rate(style, temperature, environment=environment),
         "fuse": lambda: fuse_rate(environment),
+        "stated": lambda: row["rate"],
     }
     return row.get("junctions", 1.0) * models[row["model"]]()

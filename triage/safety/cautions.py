@@ -8,13 +8,16 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from triage.board.part import Board
-from triage.safety.discharge import Bleeder, ResistorKind, Store, bulk_store, propose_bleeder, stores
+from triage.safety.discharge import Bleeder, ResistorKind, Store, across_line, bulk_store, propose_bleeder, stores
+from triage.safety.insulation import is_isolated
 from triage.safety.limits import Source, source_of, table
 from triage.safety.power_up import first_power_up
 
 GATES = ("cold", "live")
 """What a caution stands before: touching the board, powering it."""
 
+FUSES = ("fuse", "fusible_resistor", "thermal_fuse")
+"""Kinds of parts that take an adapter off the mains when it fails."""
 _LONG = 3600.0
 """A time beyond which a number of seconds says less than the word hours [s]."""
 
@@ -78,8 +81,10 @@ def _values(board: Board, resistors: tuple[ResistorKind, ...] | None) -> Mapping
     return {
         **_feed_values(board),
         **_bulk_values(bulk_store(board), resistors),
-        **_line_values(next((store for store in held if "X capacitor" in store.role), None)),
-        "isolated_sides": "primary" in board.sides and "secondary" in board.sides,
+        **_line_values(next((store for store in held if across_line(store.role)), None)),
+        "isolated_sides": is_isolated(board),
+        "not_isolated": not is_isolated(board),
+        "no_fuse": not any(part.kind in FUSES for part in board.parts),
         "primary_nodes": ", ".join(board.sides.get("primary", ())),
         "primary_ground": board.ground.get("primary", "its common line"),
         "secondary_ground": board.ground.get("secondary", "the output minus"),

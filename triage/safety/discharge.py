@@ -17,7 +17,8 @@ from triage.safety.limits import Source, source_of, table
 
 _CAPACITORS = ("capacitor", "electrolytic", "x_capacitor")
 _BULK_ROLES = ("bulk capacitor", "boost capacitor")
-_ACROSS_LINE_ROLES = ("X capacitor",)
+_ACROSS_LINE_ROLES = ("X capacitor", "X1 capacitor", "X2 capacitor", "dropper capacitor")
+"""Roles, or parts of them, of capacitors that keep the plug pins charged; a dropper capacitor does through its rectifier."""
 BOOST_VOLTAGE = 400.0
 """Usual output of a power-factor stage [V]; common practice, no source."""
 
@@ -88,6 +89,11 @@ def bulk_store(board: Board) -> Store | None:
     return next((store for store in stores(board) if any(r in store.role for r in _BULK_ROLES)), None)
 
 
+def across_line(role: str) -> bool:
+    """True for the role of a capacitor whose charge is found at the plug pins."""
+    return any(known in role for known in _ACROSS_LINE_ROLES)
+
+
 def _on_mains(part: Part) -> bool:
     return any(role in part.role for role in (*_BULK_ROLES, *_ACROSS_LINE_ROLES)) and "capacitance" in part.value
 
@@ -109,7 +115,7 @@ def _store(board: Board, part: Part, voltage: float) -> Store:
     capacitance = _largest(part)
     safe = touch_safe_voltage(capacitance)
     # While the bulk capacitor is charged too, no junction helps an X capacitor to empty.
-    through_junctions = not any(role in part.role for role in _ACROSS_LINE_ROLES)
+    through_junctions = not across_line(part.role)
 
     def time_without(ref: str) -> float:
         resistance = discharge_resistance(board, plus, minus, ref, through_junctions)

@@ -103,6 +103,11 @@ class Barrier:
     source: Source
 
 
+def is_isolated(board: Board) -> bool:
+    """True where a barrier parts the output from the mains; an output on the mains side has none."""
+    return "primary" in board.sides and "secondary" in board.sides
+
+
 def rated_voltage(board: Board) -> float:
     """Highest rated mains voltage [V rms]: the upper figure of the label's input line, else the nominal
     mains.

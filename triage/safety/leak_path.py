@@ -31,7 +31,7 @@ _JUNCTIONS = {
 }
 """Part kind -> its junctions as (anode pin, cathode pin); npn and n-channel, the rule in adapters."""
 
-JOINING_KINDS = ("fuse", "thermal_fuse", "inductor", "transformer")
+JOINING_KINDS = ("fuse", "thermal_fuse", "inductor", "transformer", "common_mode_choke", "cable", "connector")
 """Part kinds that a direct current passes almost freely."""
 _RESISTIVE = ("resistor", "fusible_resistor", "ntc")
 _CAPACITIVE = ("capacitor", "electrolytic", "x_capacitor", "y_capacitor")

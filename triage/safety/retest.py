@@ -15,6 +15,7 @@ from triage.board.part import Board
 from triage.errors import TriageError
 from triage.safety import uncertainty
 from triage.safety.instruments import FUNCTIONS, Instruments
+from triage.safety.insulation import is_isolated
 from triage.safety.limits import Source, source_of, table
 from triage.safety.output import guessed_kind
 from triage.safety.retest_limits import LIMITS, Bounds, RetestCase
@@ -83,8 +84,13 @@ def lines(board: Board, instruments: Instruments, today: date, connector: str = 
     """
     case = RetestCase(board, connector or guessed_kind(board), today)
     have = set(instruments.can_read())
-    earthed = board.label.insulation_class == "I"
-    return tuple(_line(row, case, have) for row in table("retest")["line"] if row["required"] != "class I" or earthed)
+    return tuple(_line(row, case, have) for row in table("retest")["line"] if _applies(row, board))
+
+
+def _applies(row: Mapping[str, Any], board: Board) -> bool:
+    """Whether a line is meant for such an adapter: earthed or not, insulated from the mains or not."""
+    barrier = "isolated" if is_isolated(board) else "not isolated"
+    return (row["required"] != "class I" or board.label.insulation_class == "I") and row.get("when", barrier) == barrier
 
 
 def _line(row: Mapping[str, Any], case: RetestCase, have: set[str]) -> RetestLine:

@@ -11,7 +11,9 @@ from triage.board.kinds import OPEN, PartKind, State
 from triage.board.part import Part
 from triage.physics.netlist import PORT_RESISTOR, PORT_WINDING, Netlist
 
-_OPEN_MODE = {"primary": "pri_open", "feedback": "fb_open", "secondary": "sec_open", "auxiliary": "aux_open"}
+_OPEN_MODE = {"primary": "pri_open", "feedback": "fb_open", "secondary": "sec_open", "half": "half_open",
+              "auxiliary": "aux_open"}
+"""Winding -> mode in which it is open; ``half`` is the second half of a tapped secondary."""
 _SHORTED_RESISTANCE = 0.6
 """Resistance of a tenth of the primary turns and of the short that closes them [ohm]; common practice, no source."""
 
@@ -85,12 +87,13 @@ def _shorted(net: Netlist, part: Part, state: State) -> tuple[str, str, str, flo
     return f"{part.ref}:fault", node, net.reference, value["primary_inductance"] * share**2, 0.5 * resistance
 
 
-_VALUES = {"primary_turns": "-", "feedback_turns": "-", "secondary_turns": "-", "auxiliary_turns": "-",
+_VALUES = {"primary_turns": "-", "feedback_turns": "-", "secondary_turns": "-", "half_turns": "-", "auxiliary_turns": "-",
            "primary_inductance": "H", "leakage_inductance": "H", "primary_resistance": "ohm",
-           "feedback_resistance": "ohm", "secondary_resistance": "ohm", "auxiliary_resistance": "ohm",
+           "feedback_resistance": "ohm", "secondary_resistance": "ohm", "half_resistance": "ohm",
+           "auxiliary_resistance": "ohm",
            "damping_resistance": "ohm", "core_resistance": "ohm", "winding_capacitance": "F", "coupling": "-",
            "secondary_auxiliary_coupling": "-", "shorted_share": "-"}
 
 KINDS = (PartKind("transformer", ("primary_start", "primary_end", "secondary_start", "secondary_end"), _VALUES,
                   ("primary_turns", "primary_inductance", "leakage_inductance", "primary_resistance"),
-                  ("pri_open", "fb_open", "sec_open", "aux_open", "shorted_turns"), _place),)
+                  ("pri_open", "fb_open", "sec_open", "half_open", "aux_open", "shorted_turns"), _place),)
