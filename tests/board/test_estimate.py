@@ -200,7 +200,9 @@ def test_derivations_give_value_spread_and_reason():
     (["1 transistor", "no optocoupler", "no controller", "3 windings"], 3.0, "ringing_choke_zener"),
     (["2 transistors", "optocoupler", "no controller"], 5.0, "ringing_choke_opto"),
     (["optocoupler", "no controller"], None, "ringing_choke_opto"),
-    (["iron transformer"], 60.0, "linear_regulated"),
+    (["iron transformer", "regulator"], 60.0, "linear_regulated"),
+    (["iron transformer", "no regulator", "centre tap"], 4.8, "linear_unregulated"),
+    (["dropper capacitor", "0 windings"], 0.3, "capacitor_dropper"),
 ])  # fmt: skip
 def test_proposed_family(words, power, family):
     found = propose_family(parse_seen(words), power)
@@ -211,7 +213,8 @@ def test_proposed_family(words, power, family):
 
 
 def test_without_looking_no_family_is_ruled_out():
-    assert min(one.chance for one in propose_family(Seen(), 6.0)) > 0.01
+    assert min(one.chance for one in propose_family(Seen())) > 0.5 / len(families())
+    assert min(one.chance for one in propose_family(Seen(), 6.0)) > 0.002, "a capacitor dropper of 6 W is hardly ever met"
 
 
 @pytest.mark.parametrize("words", [["half wave", "bridge"], ["fuse", "no fuse"], ["7 dwarfs"], ["\x1b[31m"], ["9999 windings"]])

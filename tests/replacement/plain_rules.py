@@ -217,6 +217,27 @@ def _x_capacitor(place: Place, part: CatalogPart) -> None:
     _safety(place, part, "c_F", "vr_Vac", "safety_class", "lead_pitch_mm")
 
 
+def _dropper_capacitor(place: Place, part: CatalogPart) -> None:
+    _class(place, part, "x_capacitor")
+    _within(place, part, "c_F", place.values.get("capacitance", place.old_number("c_F")), 0.05, 0.1)
+    _at_least(place, part, ("vr_Vac",), MAINS_HIGH)
+    if part.texts.get("safety_class") not in ("X1", "X2"):
+        place.wrong.append("safety class")
+    _safety(place, part, "c_F", "vr_Vac", "safety_class", "lead_pitch_mm")
+
+
+def _low_rectifier(place: Place, part: CatalogPart) -> None:
+    _class(place, part, "rectifier", "fast_rectifier")
+    _at_least(place, part, ("vrrm_V",), _over(place, "reverse_voltage", 0.7), _over(place, "peak_voltage", 0.7), 50.0)
+    _at_least(place, part, ("if_av_A",), _over(place, "average_current", 0.6), _rating(place, "current", "if_av_A"))
+
+
+def _shunt_zener(place: Place, part: CatalogPart) -> None:
+    _class(place, part, "zener")
+    _within(place, part, "vz_V", place.values.get("zener_voltage", place.old_number("vz_V")), 0.03, 0.03)
+    _at_least(place, part, ("ptot_W",), _over(place, "power", 0.5), _rating(place, "power", "ptot_W"))
+
+
 def _y1_capacitor(place: Place, part: CatalogPart) -> None:
     _class(place, part, "y_capacitor")
     _within(place, part, "c_F", place.values.get("capacitance", place.old_number("c_F")), 0.2, 0.0)
@@ -298,6 +319,8 @@ RULES: dict[str, Callable[[Place, CatalogPart], None]] = {
     "main switch": _bipolar_switch, "power switch": _mosfet_switch, "output rectifier": _schottky_output,
     "output rectifier, pn": _pn_output, "auxiliary rectifier": _aux_rectifier, "regulation zener": _zener,
     "optocoupler": _optocoupler, "shunt reference": _reference, "mains fuse": _fuse, "fusible input resistor": _fusible,
+    "dropper capacitor": _dropper_capacitor, "secondary rectifier": _low_rectifier, "shunt zener": _shunt_zener,
+    "bleeder of the dropper capacitor": _discharge, "mains cord": _nothing, "common-mode choke": _nothing,
     "varistor": _varistor, "inrush NTC": _ntc, "X2 capacitor": _x_capacitor, "Y1 capacitor": _y1_capacitor,
     "X discharge resistor": _discharge, "bulk capacitor": _bulk, "output capacitor": _output_capacitor,
     "startup resistor": _startup, "base drive resistor": _resistor(0.05, 0.05), "clamp resistor": _resistor(0.2, 0.2),

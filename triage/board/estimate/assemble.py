@@ -1,5 +1,6 @@
 """Makes a board of a template, the label and what is seen: every value estimated, with the spread that is left."""
 
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
 
 from triage.board.estimate.design import Design
@@ -9,6 +10,7 @@ from triage.board.estimate.rounding import estimate_of, rating_of
 from triage.board.estimate.seen import EXCLUSIVE, Seen
 from triage.board.estimate.template import Place, Template
 from triage.board.kinds import kinds
+from triage.board.kinds.wiring import PINS as CONDUCTORS
 from triage.board.part import Board, Label, Part
 from triage.errors import ProfileError
 
@@ -61,7 +63,8 @@ def estimate(template: Template, label: Label, seen: Seen = Seen(), name: str = 
         design.mains, parts, dict(template.sides), dict(template.ground), template.drawing, NOTE)
     for place in template.places:
         if place not in places and place.link and not _joined(board, place):
-            board = with_link(board, *place.pins.values())
+            for pair in through(place.pins):
+                board = with_link(board, *pair)
     return without_bare_nodes(board)
 
 
@@ -101,6 +104,14 @@ def _part(design: Design, place: Place) -> Part:
     spreads = {key: spread for key, (_, spread) in estimates.items()}
     return Part(place.ref, place.kind, place.role, dict(place.pins), values, ratings=ratings, origin="estimated",
                 fault_modes=place.fault_modes, spread=spreads)
+
+
+def through(pins: Mapping[str, str]) -> tuple[tuple[str, str], ...]:
+    """Pairs of nodes that wires join where a part is missing: its two ends, or both conductors of a cable; empty for others."""
+    if set(CONDUCTORS) == set(pins):
+        return (pins["a_in"], pins["a_out"]), (pins["b_in"], pins["b_out"])
+    ends = tuple(pins.values())
+    return ((ends[0], ends[1]),) if len(ends) == 2 else ()
 
 
 def _joined(board: Board, place: Place) -> bool:

@@ -5,7 +5,7 @@ from collections.abc import Mapping
 from dataclasses import replace
 
 from triage.board.circuit import LINE, OUTPUT
-from triage.board.estimate.assemble import part_in_role, with_link, without_bare_nodes
+from triage.board.estimate.assemble import part_in_role, through, with_link, without_bare_nodes
 from triage.board.estimate.design import Design
 from triage.board.estimate.roles import roles
 from triage.board.kinds import kinds
@@ -21,6 +21,7 @@ MARKED_ELSE, MEASURED = 0.1, 0.03
 """Tolerance of a printed value of another kind, and of one measured out of circuit with a hand meter [-]."""
 LETTERS = {"resistor": "R", "fusible_resistor": "RF", "fuse": "F", "thermal_fuse": "F", "ntc": "RT", "diode": "D", "zener": "DZ",
            "led": "LED", "bridge": "BR", "bipolar_transistor": "Q", "mosfet": "Q", "inductor": "L", "transformer": "T",
+           "varistor": "RV", "cable": "W", "connector": "J", "common_mode_choke": "L",
            "x_capacitor": "CX", "y_capacitor": "CY", "capacitor": "C", "electrolytic": "C"}
 """Kind -> letter of a reference designator; IEC 60617 and usage."""
 _NODE = re.compile(r"[A-Za-z0-9_+-]{1,20}")
@@ -77,11 +78,13 @@ def strike(board: Board, ref: str, link: bool | None = None) -> Board:
     part = part_called(board, ref)
     role = roles().get(part.role)
     joins = bool(role and role.link) if link is None else link
-    nodes = tuple(part.pins.values())
-    if joins and len(nodes) != 2:
-        raise EntryError(f"link across {part.ref}", f"{len(nodes)} pins", "a part with two pins")
+    pairs = through(part.pins) if joins else ()
+    if joins and not pairs:
+        raise EntryError(f"link across {part.ref}", f"{len(part.pins)} pins", "a part with two pins, or with two conductors")
     changed = replace(board, parts=tuple(one for one in board.parts if one is not part))
-    changed = without_bare_nodes(with_link(changed, *nodes) if joins else changed)
+    for pair in pairs:
+        changed = with_link(changed, *pair)
+    changed = without_bare_nodes(changed)
     left = {node for nodes in changed.sides.values() for node in nodes}
     for node in (LINE, OUTPUT, *board.ground.values()):
         if node not in left:

@@ -7,12 +7,13 @@ from triage.errors import EntryError
 
 FEATURES = (
     "controller", "optocoupler", "iron transformer", "regulator", "shunt reference", "field-effect switch", "half wave", "bridge",
-    "fuse", "fusible resistor", "thermal fuse", "inrush limiter", "X capacitor", "Y capacitor", "output coil", "LED",
+    "centre tap", "fuse", "fusible resistor", "thermal fuse", "inrush limiter", "varistor", "X capacitor", "Y capacitor",
+    "common-mode choke", "dropper capacitor", "output coil", "LED", "mains cord", "output cable",
 )
 """Features a technician can tell by eye."""
 COUNTS = ("windings", "transistors")
 """What is counted: windings of the transformer, transistors on the mains side."""
-EXCLUSIVE = (("half wave", "bridge"), ("fuse", "fusible resistor"))
+EXCLUSIVE = (("half wave", "bridge", "centre tap"), ("fuse", "fusible resistor"))
 """Of each group a board shows one at most."""
 MOST_COUNTED = 9
 

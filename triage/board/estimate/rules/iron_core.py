@@ -1,25 +1,27 @@
-"""Iron-core supplies: winding voltage for the lowest mains, core and copper of the handbooks, reservoir for the usual ripple."""
+"""Iron-core supplies: winding for the crest that the output needs, core and copper of the handbooks."""
 
 import math
 
 import numpy as np
 
 from triage.board.estimate.design import Design, Draws
-from triage.physics.linear_regulator import input_needed
 from triage.physics.magnetics import sine_flux_density, turns_for_voltage
-from triage.physics.rectifier_estimates import capacitance_for_ripple, secondary_peak
+from triage.physics.rectifier_estimates import secondary_peak
 
-FAMILIES = ("linear_regulated",)
+FAMILIES = ("linear_regulated", "linear_unregulated")
 
 DIODE_DROP = 0.9
 """Drop of one rectifier diode in its pulse [V]."""
 
 
+def rectifier_drops(design: Design) -> float:
+    """Junctions in a row: two of a bridge, one of a half wave or a tapped winding. [-]"""
+    return 1.0 if design.features & {"half wave", "centre tap"} else 2.0
+
+
 def winding_voltage(design: Design) -> Draws:
-    """Rms voltage of the loaded winding that keeps the regulator fed in the valley at the lowest mains. [V]"""
-    crest = input_needed(design.label.output_voltage, design["dropout_voltage"], design["reservoir_ripple"]) + design["headroom"]
-    nominal = crest * design.mains.nominal / design.mains.low
-    found: Draws = secondary_peak(nominal, DIODE_DROP, 2) / math.sqrt(2.0)
+    """Rms voltage of the loaded winding, or half of a tapped one, that gives the crest behind the rectifier. [V]"""
+    found: Draws = secondary_peak(design["reservoir_crest"], DIODE_DROP, design["rectifier_drops"]) / math.sqrt(2.0)
     return found
 
 
@@ -71,6 +73,16 @@ def primary_resistance(design: Design) -> Draws:
     return design["secondary_resistance"] * (design["primary_turns"] / design["secondary_turns"]) ** 2
 
 
+def half_turns(design: Design) -> Draws:
+    """The second half of a tapped winding is wound like the first. [-]"""
+    return design["secondary_turns"]
+
+
+def half_resistance(design: Design) -> Draws:
+    """The second half of a tapped winding is wound like the first. [ohm]"""
+    return design["secondary_resistance"]
+
+
 def primary_inductance(design: Design) -> Draws:
     """Takes the usual magnetising current. [H]"""
     rated = design["volt_amperes"] / design.mains.nominal
@@ -103,52 +115,11 @@ def bridge_diode_voltage(design: Design) -> Draws:
     return 1.5 * math.sqrt(2.0) * design["open_voltage"] * design.mains.high / design.mains.nominal
 
 
-def reservoir_capacitance(design: Design) -> Draws:
-    """Keeps the usual ripple at full load. [F]"""
-    found: Draws = capacitance_for_ripple(design.label.output_current, design["reservoir_ripple"], design.mains.frequency, 2)
-    return found
-
-
-def reservoir_esr(design: Design) -> Draws:
-    """Series resistance of a general-purpose electrolytic of that size. [ohm]"""
-    return design["reservoir_rc_time"] / design["reservoir_capacitance"]
-
-
-def reservoir_leakage(design: Design) -> Draws:
-    """Leakage that sheets allow an electrolytic of that size. [ohm]"""
-    return design["leakage_time"] / design["reservoir_capacitance"]
+def secondary_rectifier_voltage(design: Design) -> Draws:
+    """Twice the crest of the open winding, or half winding, at the highest mains, and a fifth. [V]"""
+    return 1.2 * 2.0 * math.sqrt(2.0) * design["open_voltage"] * design.mains.high / design.mains.nominal
 
 
 def reservoir_voltage_rating(design: Design) -> Draws:
     """Next usual rating above the crest without load at the highest mains. [V]"""
-    return math.sqrt(2.0) * design["open_voltage"] * design.mains.high / design.mains.nominal - 2.0 * 0.6
-
-
-def reservoir_ripple_rating(design: Design) -> float:
-    """Ripple current of a reservoir: twice the output current and more. [A]"""
-    return 2.5 * design.label.output_current
-
-
-def regulator_output_voltage(design: Design) -> Draws:
-    """The output voltage of the label. [V]"""
-    return design.label.output_voltage * design["regulator_tolerance"]
-
-
-def first_capacitance(design: Design) -> Draws:
-    """Usual size behind a regulator. [F]"""
-    return design["regulator_output_capacitance"]
-
-
-def first_capacitor_esr(design: Design) -> Draws:
-    """Series resistance of a general-purpose electrolytic of that size. [ohm]"""
-    return design["general_rc_time"] / design["first_capacitance"]
-
-
-def first_capacitor_leakage(design: Design) -> Draws:
-    """Leakage that sheets allow an electrolytic of that size. [ohm]"""
-    return design["leakage_time"] / design["first_capacitance"]
-
-
-def output_ripple_rating(design: Design) -> float:
-    """Little ripple is left behind a regulator. [A]"""
-    return 0.2
+    return math.sqrt(2.0) * design["open_voltage"] * design.mains.high / design.mains.nominal - design["rectifier_drops"] * 0.6
