@@ -10,6 +10,7 @@ import pytest
 
 from tests.reference.playing import Meter, Play, play, summary
 from tests.reference.reference_circuits import (
+    METERS_ALIKE,
     PROFILES,
     SOURCE,
     cold_table,
@@ -28,8 +29,9 @@ from triage.families.points import LOADS
 from triage.job.learning import NONE
 from triage.job.wiring import Wiring
 
-FIRST_TIME_RIGHT = {"rcc-zener": 0.90}
 CLEAN, GROSS = 0.95, 0.93
+PLAYED = [circuit for circuit in CIRCUITS if circuit in METERS_ALIKE]
+"""Circuits whose cold tables were taken with the same kind of meter that the expectations are computed for."""
 
 
 @dataclass(frozen=True)
@@ -52,7 +54,8 @@ def units(circuit: str, board: Board) -> list[Unit]:
         if fault == "healthy" or (fault, loads[-1]) not in live:
             continue
         after = {load: live.get((fault, load + "_after"), live[fault, load]) for load in loads}
-        states = {load: state_class(board, load, {x: live_summary(board, after[x][1], x) for x in loads}, sound) for load in loads}
+        seen = {x: live_summary(board, after[x][1], x) for x in loads}
+        states = {load: state_class(board, load, seen, sound) for load in loads}
         load = next((x for x in reversed(loads) if states[x] != "normal"), "full")
         collateral = after[load][0]
         faults = frozenset((*fault_of(fault), *collateral))
@@ -72,7 +75,7 @@ def play_all(circuit: str, meter: Meter) -> list[Play]:
             for number, unit in enumerate(units(circuit, board))]
 
 
-@pytest.mark.parametrize("circuit", CIRCUITS)
+@pytest.mark.parametrize("circuit", PLAYED)
 @pytest.mark.parametrize("gross", [0.0, 0.05], ids=["clean", "one reading in twenty grossly wrong"])
 def test_every_fault_is_played_from_complaint_to_verdict(circuit, gross, outside_check):
     """Right at the first repair; no live reading before the cold ones are done is asserted inside ``play``."""
@@ -81,5 +84,6 @@ def test_every_fault_is_played_from_complaint_to_verdict(circuit, gross, outside
     print(f"\n{circuit} gross {gross}: " + ", ".join(f"{key} {value:.3g}" for key, value in got.items()))
     print("wrong: " + "; ".join(f"{p.name} ({p.status}: {','.join(sorted(p.repair))} for {','.join(sorted(p.needed))})"
                                for p in plays if not p.right))
-    bound = GROSS if gross else FIRST_TIME_RIGHT.get(circuit, CLEAN)
-    outside_check.at_least(f"first repair right on {circuit}, {'gross errors' if gross else 'clean'}", SOURCE, got["right"], bound)
+    bound = GROSS if gross else CLEAN
+    subject = f"first repair right on {circuit}, {'gross errors' if gross else 'clean'}"
+    outside_check.at_least(subject, SOURCE, got["right"], bound)
