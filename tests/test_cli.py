@@ -109,7 +109,7 @@ def test_every_kind_of_entry_can_be_typed(job: str, run: Terminal) -> None:
         ["repaired", "works"],
         ["retest", "visual", "yes"],
         ["power", "off"],
-        ["closed", "repaired, retest at the customer's"],
+        ["closed", "handed on, retest at the customer's"],
         ["returned", "dead again"],
     ):
         run("add", job, *words)
@@ -156,6 +156,8 @@ def test_a_job_in_use_elsewhere_is_refused_for_entries_and_shown(job: str, run: 
 
 def test_the_answers_for_a_person_are_lines(job: str, run: Terminal) -> None:
     run("add", job, "complaint", "dead")
+    assert "first: acknowledge" in run("next", job)
+    run("add", job, "ack", "all")
     assert "volts_dc bulk pgnd cold" in run("next", job)
     assert "RF1" in run("suspects", job)
     explained = run("suspects", job, "--explain")
@@ -168,7 +170,7 @@ def test_the_answers_for_a_person_are_lines(job: str, run: Terminal) -> None:
     assert "high-voltage film 500 V" in run("candidates", job, "R1")
     assert "250 V is below 447 V" in run("candidates", job, "R1", "carbon film")
     assert "1N4007" in run("parts", "1N40")
-    assert "[ ] unplug" in run("show", job)
+    assert "[x] unplug" in run("show", job)
     for format in ("text", "markdown", "html"):
         assert "dead" in run("report", job, "--format", format)
 

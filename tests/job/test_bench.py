@@ -13,6 +13,8 @@ from triage.job.bench import Bench
 from triage.job.views import JobView
 from triage.safety.inspection import InspectionError
 
+RETEST = {"insulation": "200 Mohm", "output no load": "5.1 V", "output half load": "5.0 V", "output full load": "5.0 V"}
+
 
 @pytest.fixture
 def bench(tmp_path: Path) -> Bench:
@@ -45,10 +47,13 @@ def answer(bench: Bench, view: JobView, truth: dict[str, str], limit: int = 20) 
     return view
 
 
-def test_before_anything_is_computed_the_cautions_and_the_bulk_reading_are_there(tmp_path: Path) -> None:
-    view = Bench.create(PROFILE, tmp_path / "cube.toml", StandIn(), Clock()).view()
+def test_before_anything_is_computed_the_cautions_and_then_the_bulk_reading_are_there(tmp_path: Path) -> None:
+    bench = Bench.create(PROFILE, tmp_path / "cube.toml", StandIn(), Clock())
+    view = bench.view()
     assert view.computing and view.stage == "cautions" and view.cautions
-    assert view.suggestion is not None
+    assert view.suggestion is None and view.waits_for[0].startswith("acknowledge")
+    view = bench.acknowledge("all")
+    assert view.computing and view.suggestion is not None
     assert (view.suggestion.function, view.suggestion.condition) == ("volts_dc", "cold")
     assert view.suspects == ()
 
@@ -91,11 +96,15 @@ def test_reopened_it_believes_the_same_to_the_last_digit(bench: Bench) -> None:
 def test_no_live_reading_is_suggested_or_taken_before_everything_that_power_asks_for(bench: Bench) -> None:
     bench.complain("hums", "hum or ripple", "full")
     view = discharge(bench)
+    assert view.suggestion is None, "the cautions are not acknowledged"
+    assert view.waits_for and "acknowledge" in view.waits_for[0]
+    assert bench.view().message.startswith("readings wait: first acknowledge")
+    for key in sorted(bench.rules.start.cautions_cold):
+        view = bench.acknowledge(key)
     while view.suggestion is not None:
         one = view.suggestion
-        assert one.condition == "cold", "the cautions are not acknowledged"
+        assert one.condition == "cold", "the cautions before power are not acknowledged"
         view = bench.skip(one.function, one.plus, one.minus, one.condition, "no clip")
-    assert view.waits_for and "acknowledge" in view.waits_for[0]
     assert "live readings wait" in bench.view().message
     with pytest.raises(GateError, match="acknowledge"):
         bench.read("volts_dc", "out", "sgnd", "noload", "4.6")
@@ -131,12 +140,98 @@ def test_carbon_across_the_barrier_forbids_the_repair(bench: Bench) -> None:
 
 
 def test_a_charged_bulk_capacitor_is_asked_for_again(bench: Bench) -> None:
+    bench.acknowledge("all")
     view = bench.read("volts_dc", "pgnd", "bulk", "cold", "-310")
     assert view.suggestion is not None and view.suggestion.function == "volts_dc"
     assert "discharge" in view.safe_to_touch
     with pytest.raises(GateError, match="cannot be skipped"):
         bench.skip("volts_dc", "bulk", "pgnd", "cold", "in a hurry")
     assert discharge(bench).safe_to_touch.startswith("safe")
+
+
+def test_a_reading_entered_before_its_time_is_recorded_and_the_caution_shown(bench: Bench) -> None:
+    view = bench.read("ohms", "rect", "mains_l", "cold", "10R")
+    assert view.entries[-1].text.startswith("ohms rect to mains_l")
+    assert "CAUTION" in view.message and "acknowledge" in view.message
+    view = bench.read("volts_dc", "bulk", "pgnd", "cold", "0.1")
+    assert "CAUTION" in view.message, "the bulk capacitor too is read with the cautions known"
+    bench.acknowledge("all")
+    assert "CAUTION" not in bench.read("ohms", "rect", "mains_l", "cold", "10R").message
+    bench.read("volts_dc", "bulk", "pgnd", "cold", "310")
+    assert "discharge the bulk" in bench.read("ohms", "rect", "mains_l", "cold", "10R").message
+
+
+POWERING = {
+    "power": lambda bench: bench.power(True),
+    "live reading": lambda bench: bench.read("volts_dc", "out", "sgnd", "noload", "4.6"),
+    "live retest": lambda bench: bench.retest("output no load", "5.1 V"),
+}
+
+
+@pytest.mark.parametrize("entered", POWERING)
+def test_taking_back_what_powered_the_board_does_not_make_it_unpowered(bench: Bench, entered: str) -> None:
+    through_cautions(bench)
+    if entered == "live retest":
+        bench.fit("R1", "high-voltage film 500 V")
+        for key in sorted(bench.rules.start.before_power):
+            bench.retest(key, "yes" if key == "visual" else RETEST[key])
+    for check in bench.rules.checks:
+        bench.read("ohms", check.probe.plus, check.probe.minus, "cold", "1M")
+    assert bench.view().safe_to_touch.startswith("safe")
+    POWERING[entered](bench)
+    view = bench.undo()
+    assert view.entries[-2].undone
+    assert view.safe_to_touch.startswith("NOT safe to touch: unplug and read the bulk voltage")
+    with pytest.raises(GateError, match="bulk voltage"):
+        bench.power(True)
+    view = discharge(bench)
+    assert view.safe_to_touch.startswith("safe")
+    view = bench.undo()
+    assert view.safe_to_touch.startswith("NOT safe"), "without that reading it is unknown again"
+
+
+def test_an_empty_capacitor_read_before_a_charged_one_does_not_count_once_that_is_taken_back(bench: Bench) -> None:
+    through_cautions(bench)
+    bench.read("volts_dc", "bulk", "pgnd", "cold", "310")
+    view = bench.undo()
+    assert view.safe_to_touch.startswith("NOT safe to touch: unplug and read")
+
+
+@pytest.mark.parametrize("verdict", ["repaired", "Repaired, burnt in over night", " REPAIRED ", "works again", "fixed"])
+def test_no_wording_closes_it_as_repaired_without_the_retest(bench: Bench, verdict: str) -> None:
+    through_cautions(bench)
+    bench.fit("R1", "high-voltage film 500 V")
+    with pytest.raises(GateError, match="close as repaired"):
+        bench.close(verdict)
+
+
+def test_a_repair_that_did_not_cure_is_powered_only_after_the_lines_before_power(bench: Bench) -> None:
+    """The first power-up of a board with a new part in it, whatever the repair led to."""
+    through_cautions(bench)
+    bench.fit("R1", "high-voltage film 500 V")
+    bench.repaired("still faulty")
+    for check in bench.rules.checks:
+        bench.read("ohms", check.probe.plus, check.probe.minus, "cold", "1M")
+    with pytest.raises(GateError, match="retest insulation, visual"):
+        bench.power(True)
+    bench.retest("visual", "yes")
+    bench.retest("insulation", "200 Mohm")
+    assert "NOT safe" in bench.power(True).safe_to_touch
+
+
+def test_an_adapter_that_comes_back_is_looked_at_and_measured_anew(bench: Bench) -> None:
+    through_cautions(bench)
+    bench.close("no fault found")
+    view = bench.returned("dead on the same evening")
+    assert view.stage == "cautions" and view.safe_to_touch.startswith("NOT safe")
+    assert not any(look.said for look in view.looks)
+
+
+def test_what_is_measured_at_the_board_waits_for_the_discharge(bench: Bench) -> None:
+    bench.acknowledge("all")
+    touched = next(look for look in bench.view().looks if not look.needed)
+    with pytest.raises(GateError, match="bulk voltage"):
+        bench.look(touched.key, touched.answers[0] if touched.answers else "7 mm" if touched.unit == "m" else "3")
 
 
 def test_acknowledgements_and_discharge_expire_with_the_day(tmp_path: Path) -> None:
@@ -180,9 +275,6 @@ def test_a_repair_that_did_not_cure_turns_the_suspicion_away_from_the_new_part(b
     view = bench.repaired("still faulty")
     now = {one.ref: one.probability for one in view.suspects}
     assert now["R1"] < 0.2 * was["R1"] and view.stage in ("cold", "live")
-
-
-RETEST = {"insulation": "200 Mohm", "output no load": "5.1 V", "output half load": "5.0 V", "output full load": "5.0 V"}
 
 
 def test_a_job_is_closed_as_repaired_only_after_its_retest(bench: Bench) -> None:
@@ -286,7 +378,7 @@ def test_refused_input_leaves_nothing_in_the_file(bench: Bench) -> None:
         bench.complain("x", "kaputt", "full")
     with pytest.raises(EntryError, match="one of visual"):
         bench.retest("smoke", "yes")
-    with pytest.raises(EntryError, match="one of board"):
+    with pytest.raises(EntryError, match="one of cord"):
         bench.look("smell", "sound")
     with pytest.raises(EntryError, match="caution"):
         bench.acknowledge("nothing")

@@ -80,7 +80,7 @@ def run_and_close(path: Path) -> None:
         bench.read("ohms", "mains_l", "rect", "cold", "OL")
         bench.fit("RF1", "10 ohm 500 V")
         bench.repaired("works")
-        bench.close("repaired, insulation tested elsewhere")
+        bench.close("handed on, insulation tested elsewhere")
 
 
 def test_the_next_job_of_the_folder_has_learnt_and_a_running_one_has_not(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

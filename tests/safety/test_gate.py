@@ -50,6 +50,8 @@ ALPHABET = (
     GateEvent("unplug"),
     GateEvent("power taken back"),
     GateEvent("repair"),
+    GateEvent("no cure"),
+    GateEvent("returned"),
     *(
         GateEvent(kind, key, verdict)
         for kind in ("retest cold", "retest live")
@@ -60,6 +62,10 @@ ALPHABET = (
     GateEvent("close", "scrapped"),
     GateEvent("another day"),
 )
+
+
+FROM_OUTSIDE = ("unplug", "power taken back", "no cure", "returned", "another day")
+"""What happens without asking a gate."""
 
 
 @dataclass(frozen=True)
@@ -73,6 +79,7 @@ class History:
     below_60: bool = False
     short: str = "open"
     repaired: bool = False
+    worked_on: bool = False
     lines: tuple[tuple[str, str], ...] = ()
     closed: bool = False
 
@@ -93,7 +100,11 @@ class History:
             case "power taken back":
                 return replace(self, powered=False, below_60=False)
             case "repair":
-                return replace(self, repaired=True, short="open", lines=())
+                return replace(self, repaired=True, worked_on=True, short="open", lines=())
+            case "no cure":
+                return replace(self, repaired=False)
+            case "returned":
+                return History(worked_on=self.worked_on)
             case "retest cold" | "retest live":
                 return replace(self, lines=tuple(sorted({**dict(self.lines), event.key: event.value}.items())))
             case "close" | "close as repaired":
@@ -108,12 +119,12 @@ class History:
             and self.live_acknowledged
             and self.look in ("sound", "doubtful", "skipped")
             and self.short in ("clear", "refused", "ruled out")
-            and (not self.repaired or dict(self.lines).get("r1") == "pass")
+            and (not self.worked_on or dict(self.lines).get("r1") == "pass")
         )
 
     def permits(self, event: GateEvent) -> bool:
         """The safety rule of an event, in words of the bench: see design, safety."""
-        if self.closed and event.kind not in ("unplug", "power taken back", "another day"):
+        if self.closed and event.kind not in FROM_OUTSIDE:
             return False
         looked = self.cold_acknowledged and self.look != ""
         live_line = event.kind.startswith("retest") and event.key == "r2"
@@ -125,7 +136,7 @@ class History:
             case "retest live":
                 return self.may_be_powered() and self.powered and self.repaired
             case "retest cold":
-                return looked and self.below_60 and self.repaired and not live_line
+                return looked and self.below_60 and self.worked_on and not live_line
             case "cold reading" | "cold check":
                 return looked and self.below_60
             case "repair":

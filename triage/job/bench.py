@@ -25,7 +25,7 @@ from triage.board.profile import board_from_dict, board_to_dict, load_profile
 from triage.errors import EntryError, JobError
 from triage.job import picture, store
 from triage.job.engine_room import Workings
-from triage.job.entries import last_standing, make_entry, replay
+from triage.job.entries import last_standing, make_entry, probe_of, replay
 from triage.job.gates import Rules, allow, facts_of
 from triage.job.learning import NONE, experience_from_dict, experience_of
 from triage.job.lock import Lock
@@ -343,11 +343,14 @@ class Bench:
         if self.read_only:
             raise JobError(str(self.path), self.read_only, advice="nothing can be entered in this session")
         entry = make_entry(kind, _stamp(self._clock), **said)
-        allow(self.rules, self._facts_now(), kind, said)
+        facts = self._facts_now()
+        allow(self.rules, facts, kind, said)
         self.job.append(entry)
         if self._lock is not None:
             self._lock.touch()
-        return self.view(entry_text(entry))
+        is_cold_reading = kind == "reading" and said["condition"] == "cold"
+        caution = picture.unready(facts, self.rules, probe_of(said)) if is_cold_reading else ""
+        return self.view("; ".join(filter(None, (entry_text(entry), caution))))
 
     def _facts_now(self) -> Any:
         """The facts with the shorts that the belief rules out, where it has been computed."""

@@ -219,6 +219,7 @@ class _Course:
         if entry.kind == "returned":
             self.returned += 1
             self.closed = ""
+            self.retests.clear()
             self.repaired = "still faulty"
         else:
             self.repaired = entry.said["result"]

@@ -5,6 +5,7 @@ log has happened, so replaying applies it whether or not its gate was open; aski
 before an entry is made (``allow``).
 """
 
+import re
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 
@@ -20,6 +21,9 @@ from triage.safety.inspection import looks_needed
 
 WHOLE_ADAPTER = "sound"
 """Sign that, given for the whole adapter, answers every look of the inspection not yet taken."""
+
+CLAIMS = frozenset({"repaired", "mended", "fixed", "cured", "works", "working", "ok", "good", "passed"})
+"""First words of an outcome that hand the adapter back for use: they ask for the whole retest."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,6 +75,8 @@ def facts_of(
     readings: dict[Probe, float] = {}
     refused: set[Probe] = set()
     for number, entry in enumerate(entries, 1):
+        if entry.kind == "undo":
+            facts = _after_undo(rules, facts, entries, entry.said["entry"], number)
         if entry.kind == "undo" or number in undone:
             continue
         if day and entry.time[:10] != day:
@@ -81,10 +87,7 @@ def facts_of(
         if entry.kind == "retest":
             done = {**dict(facts.retested), entry.said["check"]: entry.said["counts_as"]}
             facts = replace(facts, retested=frozenset(done.items()))
-        if entry.kind == "returned" or entry.said.get("result") == "still faulty":
-            # The search goes on, on a board that counts as not repaired.
-            facts = replace(facts, repaired=False, closed="")
-        if entry.kind == "fitted":
+        if entry.kind in ("fitted", "returned"):
             readings.clear()
             refused.clear()
         elif entry.kind == "reading":
@@ -108,7 +111,7 @@ def allow(rules: Rules, facts: GateFacts, kind: str, said: Mapping[str, object])
     if kind == "power" and said["on"]:
         require(facts, "power up")
     if kind == "reading" and said["condition"] != "cold":
-        require(facts, "power up" if facts.unplugged else "live reading")
+        _require_powered(facts, "live reading")
     if kind == "skip" and rules.is_bulk(probe_of(said)) and not _discharged(facts):
         raise GateError(
             "bulk reading",
@@ -119,12 +122,45 @@ def allow(rules: Rules, facts: GateFacts, kind: str, said: Mapping[str, object])
     if kind == "fitted":
         require(facts, "repair")
     if kind == "retest":
-        live = said["check"] in facts.live_lines
-        require(facts, "retest live" if live and not facts.unplugged else "power up" if live else "retest cold")
+        if said["check"] in facts.live_lines:
+            _require_powered(facts, "retest live")
+        else:
+            require(facts, "retest cold")
     if kind == "closed":
-        require(facts, "close as repaired" if said["verdict"] == "repaired" else "close")
+        require(facts, "close as repaired" if claims_repair(str(said["verdict"])) else "close")
     if kind == "look":
+        # What is not among the looks needed is measured at the board: with hands and a rule.
+        at_the_board = said["item"] not in facts.items and said["look"] != "skipped"
+        require(facts, "measure distance" if at_the_board else "look")
+    if kind == "sign" and said["sign"] == WHOLE_ADAPTER and not said["ref"]:
         require(facts, "look")
+
+
+def _require_powered(facts: GateFacts, action: str) -> None:
+    """Raise GateError unless the adapter may be powered, where it is not yet, and the action then is open."""
+    if facts.unplugged:
+        require(facts, "power up")
+        facts = _change(facts, GateEvent("power up"))
+    require(facts, action)
+
+
+def claims_repair(verdict: str) -> bool:
+    """True for an outcome that says the adapter may be used again after a repair, however it is worded.
+
+    >>> claims_repair("Repaired, burnt in"), claims_repair("scrapped")
+    (True, False)
+    """
+    words = re.findall(r"\w+", verdict.casefold())
+    return bool(words) and words[0] in CLAIMS
+
+
+def cold_waits_for(facts: GateFacts) -> tuple[str, ...]:
+    """What must be done before a cold reading is proposed, in order: the cautions, then the bulk reading.
+
+    The looks come before it as well, but a reading is not kept back for one that was left out.
+    """
+    missing = permit(facts, "bulk voltage").missing
+    return missing if missing or _discharged(facts) else permit(facts, "measure distance").missing
 
 
 def waits_for(facts: GateFacts) -> tuple[str, ...]:
@@ -178,4 +214,35 @@ def _events(rules: Rules, facts: GateFacts, entry: Entry) -> tuple[GateEvent, ..
         return (GateEvent("power up"),) if said["check"] in facts.live_lines and facts.unplugged else ()
     if entry.kind == "closed":
         return (GateEvent("close", said["verdict"]),)
+    if entry.kind == "returned":
+        return (GateEvent("returned"),)
+    if entry.kind == "repaired" and said["result"] == "still faulty":
+        return (GateEvent("no cure"),)
     return ()
+
+
+def _after_undo(rules: Rules, facts: GateFacts, entries: tuple[Entry, ...], number: int, at: int) -> GateFacts:
+    """The facts once entry ``number`` is taken back by entry ``at``.
+
+    The entry itself is passed over in the replay. What cannot be passed over is what may have happened at
+    the board: after an entry that powered it, or one that found it charged, nobody knows what the bulk
+    capacitor holds.
+    """
+    if not 0 < number < at:
+        return facts
+    taken = entries[number - 1]
+    if _may_have_powered(facts, taken):
+        return _change(facts, GateEvent("power taken back"))
+    if taken.kind == "reading" and rules.is_bulk(probe_of(taken.said)) and _discharged(facts):
+        return replace(facts, bulk_voltage=None)
+    return facts
+
+
+def _may_have_powered(facts: GateFacts, entry: Entry) -> bool:
+    """True for an entry that stands for power at the adapter."""
+    said = entry.said
+    if entry.kind == "power":
+        return bool(said["on"])
+    if entry.kind == "reading":
+        return bool(said["condition"] != "cold")
+    return entry.kind == "retest" and said["check"] in facts.live_lines

@@ -12,10 +12,10 @@ from triage.diagnosis.engine import Diagnosis, Job
 from triage.job import shown
 from triage.job.display import plain
 from triage.job.entries import Replay, Told, replay
-from triage.job.gates import bulk_open, live_open, open_check, waits_for
+from triage.job.gates import Rules, bulk_open, cold_waits_for, live_open, open_check, waits_for
 from triage.job.proof import shown as shown_lines
 from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
-from triage.safety.gate import GateFacts, safe_to_touch, stage
+from triage.safety.gate import GateFacts, permit, safe_to_touch, stage
 from triage.safety.inspection import items
 
 if TYPE_CHECKING:
@@ -134,7 +134,7 @@ def lesson(bench: "Bench") -> dict[str, object]:
 def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[CautionView, ...]:
     """The cautions of the board, and which are acknowledged today."""
     known = (facts or bench.facts()).acknowledged
-    return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known) for one in bench.cautions)
+    return tuple(CautionView(one.key, plain(one.text, 1000), one.key in known, one.gate) for one in bench.cautions)
 
 
 def _looks(bench: "Bench", facts: GateFacts) -> tuple[LookView, ...]:
@@ -146,33 +146,35 @@ def _looks(bench: "Bench", facts: GateFacts) -> tuple[LookView, ...]:
 
 
 def _first_of_all(bench: "Bench", facts: GateFacts, state: Replay) -> SuggestionView | None:
-    """The bulk reading, as long as it is due and was not skipped."""
+    """The bulk reading, as long as it is due and was not skipped, once the cautions are acknowledged."""
     probe, store = bench.rules.bulk_probe, bench.rules.bulk
     if store is None or probe is None or probe in state.skips or not bulk_open(bench.rules, facts):
         return None
     minutes = BULK_MINUTES
     if bench.answers is not None:
         minutes = bench.answers.diagnosis.costs.reading["volts_dc"]
-    return shown.bulk_suggestion(store, minutes) if facts.unplugged and not facts.closed else None
+    open_now = facts.unplugged and permit(facts, "bulk voltage").allowed
+    return shown.bulk_suggestion(store, minutes) if open_now else None
 
 
 def _next(bench: "Bench", facts: GateFacts, state: Replay, job: Job) -> SuggestionView | None:
-    """The bulk reading first; then the diagnosis; then the shorts that stand before power."""
+    """The cautions and the bulk reading first; then the diagnosis; then the shorts that stand before
+    power."""
     assert bench.answers is not None
     first = _first_of_all(bench, facts, state)
     if first is not None:
         return first
     diagnosis = bench.answers.diagnosis
-    live = live_open(facts)
+    live, cold = live_open(facts), facts.unplugged and not cold_waits_for(facts)
 
     def gate(probe: Probe) -> bool:
-        return live if probe.live else facts.unplugged
+        return live if probe.live else cold
 
     suggestion = diagnosis.suggest(job, gate)
     if suggestion is not None:
         return shown.suggestion_view(suggestion)
     check = open_check(bench.rules, facts)
-    if live or check is None:
+    if live or not cold or check is None:
         return None
     return shown.check_suggestion(check, diagnosis.costs.minutes(check.probe, ()))
 
@@ -187,6 +189,14 @@ def _standing_message(bench: "Bench", facts: GateFacts, suggestion: SuggestionVi
     if bench.last_session and bench.answers is None:
         return f"the last session was cut off ({bench.last_session}); every entry it had accepted is here"
     if bench.answers is not None and suggestion is None and not facts.repaired and not facts.found:
-        missing = waits_for(facts)
+        cold, missing = cold_waits_for(facts), waits_for(facts)
+        if cold:
+            return f"readings wait: first {cold[0]}"
         return f"live readings wait: first {missing[0]}" if missing else ""
     return ""
+
+
+def unready(facts: GateFacts, rules: Rules, probe: Probe) -> str:
+    """What a cold reading was taken without, as a caution behind it; empty when nothing was missing."""
+    missing = permit(facts, "bulk voltage").missing if rules.is_bulk(probe) else cold_waits_for(facts)
+    return f"CAUTION, entered before its time: first {'; '.join(missing)}" if missing else ""

@@ -220,6 +220,8 @@ class CautionView:
     key: str
     text: str
     acknowledged: bool = False
+    gate: str = "cold"
+    """What it stands before: ``cold``, touching the board; ``live``, powering it."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -54,7 +54,9 @@ class GateFacts:
     found: bool = False
     """True when the diagnosis has come to a verdict."""
     repaired: bool = False
-    """True when a part was fitted or a joint or cord mended."""
+    """True when a part was fitted or a joint or cord mended, and it is not known to be no cure."""
+    worked_on: bool = False
+    """True once a part was fitted, cure or not: the board is another one than came onto the mat."""
     before_power: frozenset[str] = frozenset()
     """Keys of the retest lines that must pass before a repaired adapter is powered."""
     required: frozenset[str] = frozenset()
@@ -174,8 +176,12 @@ def _is_repaired(facts: GateFacts) -> tuple[str, ...]:
     return () if facts.repaired else ("record the repair",)
 
 
+def _is_worked_on(facts: GateFacts) -> tuple[str, ...]:
+    return () if facts.worked_on else ("record the repair",)
+
+
 def _passed_before_power(facts: GateFacts) -> tuple[str, ...]:
-    return _not_passed(facts, facts.before_power) if facts.repaired else ()
+    return _not_passed(facts, facts.before_power) if facts.worked_on else ()
 
 
 def _passed_all(facts: GateFacts) -> tuple[str, ...]:
@@ -210,7 +216,7 @@ REQUIREMENTS: Mapping[str, tuple[Requirement, ...]] = {
     "power up": (*_POWER, _discharged_or_powered),
     "live reading": (*_POWER, _powered),
     "repair": (_is_open, _cold_cautions, _inspected, _no_veto, _discharged),
-    "retest cold": (_is_open, _cold_cautions, _inspected, _is_repaired, _discharged),
+    "retest cold": (_is_open, _cold_cautions, _inspected, _is_worked_on, _discharged),
     "retest live": (*_POWER, _is_repaired, _powered),
     "close as repaired": (
         _is_open,
@@ -319,6 +325,7 @@ def _fit(facts: GateFacts, event: GateEvent) -> GateFacts:
     return replace(
         facts,
         repaired=True,
+        worked_on=True,
         found=False,
         retested=frozenset(),
         checks=frozenset((key, "open") for key, _ in facts.checks),
@@ -333,6 +340,23 @@ def _retest(facts: GateFacts, event: GateEvent) -> GateFacts:
 
 def _close(facts: GateFacts, event: GateEvent) -> GateFacts:
     return replace(facts, closed=event.key)
+
+
+def _no_cure(facts: GateFacts, event: GateEvent) -> GateFacts:
+    """The search goes on, on a board that was worked on and counts as not repaired."""
+    return replace(facts, repaired=False)
+
+
+def _returned(facts: GateFacts, event: GateEvent) -> GateFacts:
+    """Back from its owner: open again, and everything is looked at and measured anew."""
+    return replace(
+        _another_day(facts, event),
+        closed="",
+        repaired=False,
+        looks=frozenset(),
+        retested=frozenset(),
+        checks=frozenset((key, "open") for key, _ in facts.checks),
+    )
 
 
 def _another_day(facts: GateFacts, event: GateEvent) -> GateFacts:
@@ -356,6 +380,8 @@ EVENTS: Mapping[str, tuple[str | None, Callable[[GateFacts, GateEvent], GateFact
     "retest live": ("retest live", _retest),
     "close as repaired": ("close as repaired", _close),
     "close": ("close", _close),
+    "no cure": (None, _no_cure),
+    "returned": (None, _returned),
     "another day": (None, _another_day),
 }
 """Event -> (the action whose gate it passes, what it changes)."""
