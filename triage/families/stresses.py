@@ -5,7 +5,7 @@ start at the crest of the highest mains. Temperatures stand on the air inside th
 likely package; they are estimates and say so in their source.
 """
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 
@@ -95,6 +95,8 @@ def part_stresses(part: Part, at: Settled) -> dict[str, float]:
         loss = sum(float(at.row(part.ref, suffix)[I_RMS]) ** 2 * part.value.get(f"{suffix[1:]}_resistance", 0.0)
                    for ref, suffix in at.rows if ref == part.ref)
         return {"power": loss}
+    if part.kind == "bridge":
+        return _bridge_stresses([at.row(part.ref, suffix) for ref, suffix in at.rows if ref == part.ref])
     row = at.row(part.ref)
     peak = max(abs(float(row[V_MIN])), abs(float(row[V_MAX])))
     alternating = float(np.sqrt(max(row[I_RMS] ** 2 - row[I_MEAN] ** 2, 0.0)))
@@ -115,6 +117,13 @@ def part_stresses(part: Part, at: Settled) -> dict[str, float]:
     if "capacitance" in part.value:
         return {"peak_voltage": peak}
     return {"peak_voltage": peak, "power": abs(float(row[POWER])), "rms_current": float(row[I_RMS])}
+
+
+def _bridge_stresses(legs: Sequence[np.ndarray]) -> dict[str, float]:
+    """Reverse voltage of the worst diode, current out of the bridge (two of the four diodes share it), loss of all four."""
+    return {"reverse_voltage": max(max(-float(leg[V_MIN]), 0.0) for leg in legs),
+            "average_current": sum(abs(float(leg[I_MEAN])) for leg in legs) / 2.0,
+            "power": sum(abs(float(leg[POWER])) for leg in legs)}
 
 
 def thermal_stresses(part: Part, worst: Mapping[str, float]) -> dict[str, float]:
