@@ -7,6 +7,7 @@ import pytest
 
 from tests.diagnosis import small_board as sb
 from triage.board.evidence import SIGNS, STATES, Sign, Symptom
+from triage.diagnosis.belief import Likelihoods
 from triage.diagnosis.expectations import LOADS, Expectations
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.settings import Settings
@@ -80,9 +81,9 @@ def test_what_is_not_known_says_nothing_between_its_equals() -> None:
 
 def test_complaint_rows_add_up_to_one() -> None:
     table = complaint_table()
-    assert table.shape == (len(STATES) + 1, len(STATES))
-    assert table.sum(axis=1) == pytest.approx(np.ones(len(STATES) + 1), abs=1e-12)
-    assert (table[:-1].argmax(axis=1) == np.arange(len(STATES)))[[0, 1, 3, 4, 5, 6, 7]].all()
+    assert table.shape == (len(STATES) + 2, len(STATES))
+    assert table.sum(axis=1) == pytest.approx(np.ones(len(STATES) + 2), abs=1e-12)
+    assert (table[:-2].argmax(axis=1) == np.arange(len(STATES)))[[0, 1, 3, 4, 5, 6, 7]].all()
 
 
 def test_complaints_add_up_to_one_over_what_can_be_said() -> None:
@@ -93,6 +94,33 @@ def test_complaints_add_up_to_one_over_what_can_be_said() -> None:
 def test_a_dead_adapter_points_at_what_kills_it() -> None:
     chance = complaint_likelihood(Symptom("dead", "full"), E, SETTINGS)
     assert chance[1] > chance[2] and chance[0] > chance[2]
+
+
+@pytest.mark.parametrize("state", ["dead", "output low", "pulsing"])
+def test_a_complaint_weighs_board_against_outside_as_the_records_do(state: str) -> None:
+    """Shares of complaints.toml: Open Repair Data, 28 records with a part at fault, 25 with the fault outside."""
+    inside, outside = complaint_table()[-2:, STATES.index(state)]
+    prior = np.array([0.6, 0.1, 0.2, 0.04, 0.03, 0.03])
+    chance = complaint_likelihood(Symptom(state, "full"), E, SETTINGS, prior)
+    chance = chance - SETTINGS.careless_word / len(STATES)
+    of_board = prior[1:] @ chance[1:] / prior[1:].sum()
+    assert chance[0] / of_board == pytest.approx(outside / inside, rel=1e-9)
+
+
+def test_places_found_sound_clear_the_outside_step_by_step_and_once() -> None:
+    places = tuple(sign_table().at_place)
+    clears = [sign_likelihood(Sign("sound", place), E, sb.KINDS) for place in places]
+    assert all(one[0] < one[1] and np.ptp(one[1:]) == 0 for one in clears)
+    likelihoods = Likelihoods(E, MODEL, sb.KINDS, SETTINGS)
+    whole = likelihoods.log([Sign("sound")])
+    assert (likelihoods.log([Sign("sound"), *(Sign("sound", place) for place in places)]) == whole).all()
+
+
+def test_the_looks_together_clear_the_outside_as_a_look_all_over_does() -> None:
+    """Both figures stand for the same work: the steps come out within a factor of two of the whole."""
+    places = [row["outside"] / row["other"] for row in sign_table().at_place.values()]
+    whole = sign_table().on_adapter["sound"]
+    assert 0.5 < np.prod(places) / (whole["outside"] / whole["other"]) < 2.0
 
 
 def test_unknown_states_count_as_the_average_state() -> None:

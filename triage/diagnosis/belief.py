@@ -16,10 +16,12 @@ from triage.board.probe import Probe
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.settings import Settings
-from triage.diagnosis.signs import complaint_likelihood, sign_likelihood
+from triage.diagnosis.signs import complaint_likelihood, sign_likelihood, sign_table
 from triage.errors import EntryError
 
 _SMALLEST = 1e-300
+WHOLE = Sign("sound")
+"""The whole adapter was looked at, and nothing was found."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,6 +33,8 @@ class Likelihoods:
     kinds: Mapping[str, str]
     """ref -> part kind, for signs at a part."""
     settings: Settings
+    prior: NDArray[np.float64] | None = None
+    """Chances of the hypotheses before anything was seen, shape (H,) [-]; see ``complaint_likelihood``."""
 
     def log(self, evidence: Iterable[Evidence]) -> NDArray[np.float64]:
         """log p(evidence | hypothesis), shape (H,), independent of the order of the evidence.
@@ -54,10 +58,13 @@ class Likelihoods:
                 taken.setdefault(entry.probe, []).append(entry.value)
             else:
                 seen.add(entry)
+        if WHOLE in seen:
+            # A look all over has taken the places outside the board in.
+            seen -= {Sign(WHOLE.sign, place) for place in sign_table().at_place}
         found: dict[Symptom | Sign | Probe, NDArray[np.float64]] = {}
         for entry in sorted(seen, key=repr):
             chance = (
-                complaint_likelihood(entry, self.expectations, self.settings)
+                complaint_likelihood(entry, self.expectations, self.settings, self.prior)
                 if isinstance(entry, Symptom)
                 else sign_likelihood(entry, self.expectations, self.kinds)
             )

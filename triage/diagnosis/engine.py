@@ -82,7 +82,7 @@ class Diagnosis:
         self.kinds, self.sides, self.pins = kinds, sides, pins or {}
         self.actions = Actions.of_hypotheses(expectations.hypotheses)
         self.model = ReadingModel(expectations, self.settings)
-        self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings)
+        self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings, self.prior)
         self._scorer = Scorer.of_model(self.model, self.actions)
         self._last: tuple[Job, Standing] | None = None
 

@@ -179,10 +179,10 @@ def _reason(
     order = [int(a) for a in np.argsort(-chances, kind="stable")[:3] if chances[a] >= 0.01]
     names = [("+".join(sorted(actions.repairs[a])) or NO_PART_FAULT) + f" {percent_words(chances[a])}" for a in order]
     if len({band.says.split(",")[0] for band in bands}) > 1:
-        does = "separates them best for its time"
+        does = "tells most for its time"
     else:
-        does = "makes the likeliest one surer or doubtful"
-    return f"The {probe_words(choice.probe)} {does}: now {', '.join(names)}; it takes {choice.minutes:.1f} min."
+        does = "makes the likeliest repair surer or doubtful"
+    return f"The {probe_words(choice.probe)} {does}. Repairs open now: {', '.join(names)}."
 
 
 def hazard_words(probe: Probe) -> str:

@@ -18,8 +18,8 @@ from triage.errors import EntryError
 
 @cache
 def complaint_table(path: Path = HERE / "complaints.toml") -> NDArray[np.float64]:
-    """p(complaint | state), shape (states + 1, states), rows sum to 1; the last row is for a fault outside
-    the board.
+    """p(complaint | state), shape (states + 2, states), rows sum to 1; the last rows are for a fault of the
+    board, whichever, and for one outside it.
 
     Raises EntryError when a state is missing, unknown, or a row adds up to more than 1.
     """
@@ -27,6 +27,7 @@ def complaint_table(path: Path = HERE / "complaints.toml") -> NDArray[np.float64
     rows = []
     for state, row in [
         *((s, file.get("given", {}).get(s)) for s in STATES),
+        ("inside", file.get("inside")),
         ("outside", file.get("outside")),
     ]:
         where = f"{path.name}, {state}"
@@ -50,6 +51,8 @@ class SignTable:
     """Signs that ``sound`` at a part rules out."""
     at_part: Mapping[str, Mapping[str, float]]
     on_adapter: Mapping[str, Mapping[str, float]]
+    at_place: Mapping[str, Mapping[str, float]]
+    """Place outside the board, found sound."""
 
     def at_fault(self, sign: str, kind: str, mode: str) -> float:
         """Chance of a sign at a part of this kind in this fault mode [-]."""
@@ -82,11 +85,19 @@ def sign_table(path: Path = HERE / "signs.toml") -> SignTable:
         tuple(file.get("visible", ())),
         rows("at_part", ("good", "*/*"), part_signs),
         rows("on_adapter", ("outside", "other"), SIGNS),
+        rows("at_place", ("outside", "other"), tuple(file.get("at_place", {}))),
     )
 
 
-def complaint_likelihood(symptom: Symptom, expectations: Expectations, settings: Settings) -> NDArray[np.float64]:
-    """p(complaint | hypothesis), shape (H,) [-]. Raises EntryError for an unknown state or condition."""
+def complaint_likelihood(
+    symptom: Symptom, expectations: Expectations, settings: Settings, prior: NDArray[np.float64] | None = None
+) -> NDArray[np.float64]:
+    """p(complaint | hypothesis), shape (H,) [-]. Raises EntryError for an unknown state or condition.
+
+    prior: chances of the hypotheses. With it a fault outside the board is weighed against those of the board
+    together as public repair records do: failure rates count every fault that happens, records only the
+    adapters that somebody found wanting, and most faults of parts are not noticed.
+    """
     if symptom.state not in STATES:
         raise EntryError("symptom", repr(symptom.state), f"one of {', '.join(STATES)}")
     if symptom.condition not in LOADS:
@@ -95,10 +106,12 @@ def complaint_likelihood(symptom: Symptom, expectations: Expectations, settings:
     codes = expectations.states[:, LOADS.index(symptom.condition), :]
     known = codes >= 0
     count = known.sum(axis=1)
-    chance = np.where(known, said[:-1][np.maximum(codes, 0)], 0.0).sum(axis=1) / np.maximum(count, 1)
-    chance = np.where(count > 0, chance, said[:-1].mean())
+    chance = np.where(known, said[:-2][np.maximum(codes, 0)], 0.0).sum(axis=1) / np.maximum(count, 1)
+    chance = np.where(count > 0, chance, said[:-2].mean())
     outside = np.array([not hypothesis.root for hypothesis in expectations.hypotheses])
-    chance = np.where(outside, said[-1], chance)
+    weight = np.zeros(len(outside)) if prior is None else np.where(outside, 0.0, prior)
+    scale = float(weight @ chance) / (weight.sum() * said[-2]) if weight.sum() > 0 else 1.0
+    chance = np.where(outside, min(said[-1] * scale, 1.0), chance)
     return (1 - settings.careless_word) * chance + settings.careless_word / len(STATES)
 
 
@@ -117,6 +130,9 @@ def sign_likelihood(sign: Sign, expectations: Expectations, kinds: Mapping[str, 
         raise EntryError("sign", repr(sign.sign), f"one of {', '.join(SIGNS)}")
     if not sign.ref:
         return _on_adapter(table.on_adapter[sign.sign], expectations)
+    if sign.sign == "sound" and sign.ref in table.at_place:
+        row = table.at_place[sign.ref]
+        return np.array([row["other"] if hypothesis.root else row["outside"] for hypothesis in expectations.hypotheses])
     if sign.ref not in kinds:
         raise EntryError("sign", f"no part {sign.ref!r}", f"one of {', '.join(sorted(kinds))}")
 

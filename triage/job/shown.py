@@ -121,8 +121,8 @@ def bulk_suggestion(store: Store, minutes: float) -> SuggestionView:
     """The reading that opens the cold stage: what the bulk capacitor still holds."""
     time = f"{store.board_time:.2g} s" if math.isfinite(store.board_time) else "never"
     reason = (
-        f"{store.ref} can hold {store.voltage:.0f} V and {store.energy:.2g} J; a sound board takes it below "
-        f"{SAFE_VOLTAGE:.0f} V in {time}, a faulty one may not: read it before touching anything."
+        f"Before you touch anything: {store.ref} may hold {store.voltage:.0f} V; a sound board bleeds it in "
+        f"{time}, a faulty one may not."
     )
     return SuggestionView(
         "volts_dc",
@@ -245,7 +245,7 @@ _WORDS = {
     "hunch": "hunch: {ref}",
     "acknowledge": "acknowledged: {caution}",
     "fitted": "fitted at {ref}: {type}",
-    "look": "looked at {item}: {answer} ({look})",
+    "look": "looked at {item}: {found}",
     "repaired": "after the repair: {result}",
     "retest": "retest {check}: {result}",
     "closed": "closed: {verdict}",
@@ -260,3 +260,5 @@ class _Shown(dict[str, Any]):
 
     def __init__(self, said: Mapping[str, Any]) -> None:
         super().__init__({key: str(value) for key, value in said.items()})
+        if "look" in said:
+            self["found"] = self["look"] if said["look"] == said["answer"] else f"{said['answer']} ({said['look']})"

@@ -146,8 +146,9 @@ def _seen(board: Board, row: Mapping[str, Any], answer: str | float, ref: str) -
     if found is None:
         raise InspectionError(row["key"], repr(answer), ", ".join(a["key"] for a in row["answers"]))
     signs: tuple[Sign, ...] = ()
-    if found["verdict"] == "sound":
-        signs = tuple(Sign("sound", seen) for seen in ((ref,) if ref else _refs(board, row)))
+    if found["key"] == "sound":
+        places = (row["place"],) if "place" in row else ()
+        signs = tuple(Sign("sound", seen) for seen in ((ref,) if ref else (*_refs(board, row), *places)))
     elif "sign" in found:
         signs = (Sign(found["sign"], ref),)
     text = f"{answer}{f' at {ref}' if ref else ''}: {found['text']}" if "text" in found else str(answer)
