@@ -35,11 +35,13 @@ def _yes(text: str) -> bool:
 
 def _complain(bench: "Bench", said: dict[str, str]) -> "JobView":
     from triage.board.evidence import STATES
+    from triage.job.complaint_words import state_of
 
-    state = said["state"] or said["words"]
+    words = said["words"]
+    state = said["state"] or (words if words in STATES else state_of(words))
     if state not in STATES:
-        raise EntryError("complaint", f"{state!r} is no state", "one of " + ", ".join(STATES),
-                         "give your own words and --state STATE")  # fmt: skip
+        wrong = f"{said['state']!r} is no state" if said["state"] else f"{words!r} tells no state"
+        raise EntryError("complaint", wrong, "one of " + ", ".join(STATES), "give your own words and --state STATE")
     return bench.complain(said["words"], state, said["condition"] or said["load"] or "full")
 
 
