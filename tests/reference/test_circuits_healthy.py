@@ -10,6 +10,7 @@ from collections import Counter
 import pytest
 
 from tests.reference.reference_circuits import PROFILES, SOURCE, healthy_table
+from tests.reference.test_circuits_live import CIRCUITS
 from triage.board.part import Board, Part
 from triage.board.profile import load_profile
 from triage.families.steady import Settled
@@ -84,7 +85,7 @@ def adapter_rows(at: Settled) -> dict[tuple[str, str], float]:
 
 
 @pytest.mark.long
-@pytest.mark.parametrize("circuit", PROFILES)
+@pytest.mark.parametrize("circuit", CIRCUITS)
 def test_stresses_of_the_sound_board_agree_with_the_simulated_circuit(circuit, outside_check):
     """Voltages within 5 %, currents 10 %, powers 15 %, frequency 15 % for at least 95 % of the rows that are not in doubt."""
     board = load_profile(PROFILES[circuit])
