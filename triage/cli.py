@@ -61,6 +61,14 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
         "catalog parts for a position, best first",
         ((("job",), {}), (("ref",), {}), (("type",), {"nargs": "?", "help": "ask about this type only"})),
     ),
+    "combine": (
+        "several parts that together do for a position what one should, those in the drawers first",
+        ((("job",), {}), (("ref",), {})),
+    ),
+    "drawers": (
+        "what lies in the drawers (drawers.toml or drawers.csv in the data folder)",
+        ((("words",), {"nargs": "*", "help": "type, class or drawer, in part"}),),
+    ),
     "parts": ("catalog parts that a marking may mean", ((("marking",), {}),)),
     "report": (
         "the record of a job",
@@ -107,6 +115,7 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
 
 PLACES = {
     **dict.fromkeys(("new", "add", "check", "jobs"), "triage.commands.working"),
+    **dict.fromkeys(("combine", "drawers"), "triage.commands.stock"),
     "profile": "triage.commands.profile",
 }
 """Sub-command -> module that carries it out, where that is not the one for asking."""

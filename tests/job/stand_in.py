@@ -19,7 +19,7 @@ from triage.diagnosis.engine import Diagnosis
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.priors import Weight, prior_of
 from triage.job.learning import Experience
-from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
+from triage.job.views import CandidateView, CombinationView, DemandView, MatchView, RequirementView
 
 PROFILE = "harbour-handset-charger"
 
@@ -91,6 +91,10 @@ class StandIn:
         good = "500 V" in type
         refusals = () if good else ("limiting voltage 250 V is below 447 V",)
         return CandidateView(type, "resistor", 1.0 if good else 0.0, accepted=good, refusals=refusals)
+
+    def combinations(self, board: Board, ref: str) -> tuple[CombinationView, ...]:
+        half = "high-voltage film 250 V"
+        return (CombinationView(f"2 x {half} in series", (half, half), "series", 1.0, ("voltage at most 52.5 %",), True),)
 
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         return (MatchView("1N4007", "rectifier", 90.0, "sure", "1000 V 1 A"),)

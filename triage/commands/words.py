@@ -8,10 +8,12 @@ from triage.job.report import SAYS, stress_text
 from triage.job.views import (
     NO_PART_FAULT,
     CandidateView,
+    CombinationView,
     DemandView,
     JobView,
     MatchView,
     ReadingExpected,
+    StockView,
     StressView,
     SuspectView,
     WorthView,
@@ -111,13 +113,46 @@ def _bounds(low: float | None, high: float | None, unit: str) -> str:
 
 
 def candidate_lines(candidates: Sequence[CandidateView]) -> list[str]:
-    """Catalog parts for a position."""
+    """Catalog parts for a position, what to watch with each behind it: body, pins with their drawing, order number."""
     rows = [
-        (one.type, one.part_class, f"{one.score:.2f}", "; ".join(one.margins if one.accepted else one.refusals),
-         one.confidence)
+        (one.type, one.part_class, f"{one.score:.2f}", _stock(one.stock, one.where), _price(one.price),
+         "; ".join(one.margins if one.accepted else one.refusals), one.confidence)
         for one in candidates
     ]  # fmt: skip
-    return columns(("type", "class", "score", "margins or refusals", "confidence"), rows)
+    head, *lines = columns(("type", "class", "score", "stock", "price", "margins or refusals", "confidence"), rows)
+    return [head, *(text for line, one in zip(lines, candidates, strict=True) for text in (line, *_indented(one.notes)))]
+
+
+def _stock(quantity: int, where: str) -> str:
+    return f"{quantity} in {where}" if quantity and where else str(quantity) if quantity else "-"
+
+
+def _price(price: float | None) -> str:
+    return "-" if price is None else f"{price:.2f}"
+
+
+def _indented(lines: Sequence[str]) -> list[str]:
+    return [f"    {line}" for line in lines]
+
+
+def combination_lines(combinations: Sequence[CombinationView]) -> list[str]:
+    """Combinations, each with its sharing."""
+    if not combinations:
+        return ["no combination: a safety part, or none that passes every rule"]
+    return [
+        text
+        for one in combinations
+        for text in (one.text + (" (in the drawers)" if one.in_stock else ""), *_indented(one.arithmetic))
+    ]
+
+
+def stock_lines(stock: Sequence[StockView]) -> list[str]:
+    """The drawers."""
+    rows = [
+        (one.type, str(one.quantity), one.where or "-", _price(one.price), one.part_class or "not in the catalog", one.read)
+        for one in stock
+    ]
+    return columns(("type", "number", "drawer", "price", "class", "ratings"), rows)
 
 
 def match_lines(matches: Sequence[MatchView]) -> list[str]:

@@ -3,7 +3,7 @@ costs.toml.
 """
 
 from collections.abc import Collection, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from triage.board.probe import COLD_FUNCTIONS, LIVE_FUNCTIONS, Probe
@@ -25,6 +25,8 @@ class Costs:
     setup: Mapping[str, float]
     hazard: Mapping[str, float]
     repair: Mapping[str, float]
+    unread: frozenset[str] = frozenset()
+    """Meter functions that nothing in the shop reads, whichever instruments it owns."""
 
     @classmethod
     def load(cls, path: Path = HERE / "costs.toml") -> "Costs":
@@ -53,7 +55,13 @@ class Costs:
 
     def can_take(self, probe: Probe) -> bool:
         """True when the shop owns the instrument for this reading."""
-        return instruments()[probe.function].meter in self.owned
+        return probe.function not in self.unread and instruments()[probe.function].meter in self.owned
+
+    def for_functions(self, can_read: Collection[str]) -> "Costs":
+        """The costs of a shop whose meters read these functions and no others."""
+        meters = instruments()
+        owned = frozenset(meter.meter for meter in meters.values())
+        return replace(self, owned=owned, unread=frozenset(meters) - frozenset(can_read))
 
     def minutes(self, probe: Probe, taken: Collection[Probe]) -> float:
         """Minutes to take one reading after those already ``taken``, set-up included, hazard left out [min].

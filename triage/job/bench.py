@@ -33,7 +33,7 @@ from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import SuspectWriter, entry_text, stress_view
-from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView, WorthView
+from triage.job.views import CandidateView, CombinationView, DemandView, JobView, MatchView, StressView, WorthView
 from triage.job.worth import worth_of
 from triage.quantities import parse, parse_reading
 from triage.safety.cautions import cautions
@@ -273,6 +273,11 @@ class Bench:
     def ask(self, ref: str, type: str) -> CandidateView:
         """One catalog part held against a position, with what it fails."""
         return self.workings.ask(self.board, self._ref(ref), type)
+
+    def combinations(self, ref: str) -> tuple[CombinationView, ...]:
+        """Several parts that together do for a position what one should, those in the drawers first; none for a
+        safety part."""
+        return self.workings.combinations(self.board, self._ref(ref))
 
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         """Catalog parts that a half-read marking may mean."""

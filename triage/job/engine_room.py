@@ -10,7 +10,7 @@ from triage.board.part import Board
 from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
 from triage.job.learning import Experience
-from triage.job.views import CandidateView, DemandView, MatchView
+from triage.job.views import CandidateView, CombinationView, DemandView, MatchView
 
 
 class Workings(Protocol):
@@ -33,6 +33,9 @@ class Workings(Protocol):
 
     def ask(self, board: Board, ref: str, type: str) -> CandidateView:
         """One catalog part held against the demand, with every rule it fails."""
+
+    def combinations(self, board: Board, ref: str) -> tuple[CombinationView, ...]:
+        """Several parts that together meet the demand, those in the drawers first; none for a safety part."""
 
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         """Catalog parts that a half-read marking may mean, best first."""

@@ -19,9 +19,14 @@ def jobs_folder(chosen: str | Path | None = None) -> Path:
     named = os.environ.get(VARIABLE)
     if named:
         return Path(named).expanduser()
+    return data_directory() / "jobs"
+
+
+def data_directory() -> Path:
+    """The user's data directory of this program, where the settings of the shop lie; it need not exist."""
     data = os.environ.get("XDG_DATA_HOME", "")
     base = Path(data) if os.path.isabs(data) else Path.home() / ".local" / "share"
-    return base / "triage" / "jobs"
+    return base / "triage"
 
 
 def make_folder(folder: Path) -> Path:

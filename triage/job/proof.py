@@ -7,14 +7,13 @@ import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 from datetime import date
-from functools import cache
 
 from triage.board.part import Board
 from triage.errors import EntryError
 from triage.job.display import plain
 from triage.job.views import RetestView
+from triage.job.workshop import shop_instruments
 from triage.quantities import engineering, parse_reading
-from triage.safety.instruments import Instruments, load
 from triage.safety.retest import LOOK, RetestLine, gate_verdict, judge, lines
 from triage.safety.uncertainty import rectangular
 from triage.units import UNITS
@@ -24,12 +23,6 @@ _ANSWERS = {"yes": 1.0, "no": 0.0, "ok": 1.0, "pass": 1.0, "fail": 0.0}
 
 BORROWED_ERROR = 0.05
 """Limit of error taken for an instrument that is not in the shop's list [-]; common practice, no source."""
-
-
-@cache
-def shop_instruments() -> Instruments:
-    """The meters of the shop."""
-    return load()
 
 
 @dataclass(frozen=True, slots=True)

@@ -37,6 +37,15 @@ class SuspectView:
 
 
 @dataclass(frozen=True, slots=True)
+class MoveView:
+    """The suspects as they were after one entry."""
+
+    text: str
+    """The entry in words."""
+    suspects: tuple[SuspectView, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class OutcomeView:
     """One possible outcome of a suggested reading."""
 
@@ -197,6 +206,43 @@ class CandidateView:
     accepted: bool = True
     refusals: tuple[str, ...] = ()
     """Hard rules it fails, each with its figures; empty when accepted."""
+    stock: int = 0
+    """How many lie in the drawers."""
+    where: str = ""
+    """Which drawer."""
+    price: float | None = None
+    """Of one, from the drawers or the cheapest supplier's list [money of the shop]."""
+
+
+@dataclass(frozen=True, slots=True)
+class CombinationView:
+    """Several parts that together do what one should."""
+
+    text: str
+    """``2 x 510k metal film 0.5 W 350 V in series: 1.02 Mohm``."""
+    types: tuple[str, ...]
+    arrangement: str
+    """``series`` or ``parallel``."""
+    value: float
+    """Of the whole [SI]."""
+    arithmetic: tuple[str, ...]
+    """How they share the stress, one line a figure."""
+    in_stock: bool = False
+    """All of it lies in the drawers."""
+
+
+@dataclass(frozen=True, slots=True)
+class StockView:
+    """One kind of part in the drawers."""
+
+    type: str
+    quantity: int
+    where: str
+    price: float | None
+    part_class: str
+    """Class of the catalog; empty for a type it does not know, which is then never offered."""
+    read: str
+    """``own reading`` where the owner has compared ratings with the sheet or the print; else the catalog's word."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -13,17 +13,29 @@ from triage.board.fault import Fault
 from triage.board.part import Board
 from triage.board.stress import Stress
 from triage.data import data_folder
+from triage.diagnosis.costs import Costs
 from triage.diagnosis.engine import Diagnosis
 from triage.errors import CatalogError
+from triage.job import workshop
 from triage.job.cache import Cache, Kept, Shipped
 from triage.job.display import plain
 from triage.job.learning import NONE, Experience, handbook_shares
-from triage.job.views import CandidateView, DemandView, MatchView, ReadingExpected, RequirementView
+from triage.job.views import (
+    CandidateView,
+    CombinationView,
+    DemandView,
+    MatchView,
+    ReadingExpected,
+    RequirementView,
+    StockView,
+)
 
 if TYPE_CHECKING:
     from triage.families.points import OperatingPoints
     from triage.replacement.catalog import Catalog
+    from triage.replacement.catalog_part import CatalogPart
     from triage.replacement.demand import Demand
+    from triage.replacement.drawers import Drawers, StockItem
     from triage.replacement.ranking import Candidate
 
 PAIR_FLOOR = 1e-5
@@ -59,7 +71,8 @@ class Wiring:
         weights = fault_weights(board, self.stresses(board))
         shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
         prior = prior_of(weights, collateral_of(points, tuple(weights)), experience.factors(shares), pair_floor=PAIR_FLOOR)
-        return Diagnosis.of_board(board, expectations(board, prior.hypotheses, points, self._kept), prior)
+        expected = expectations(board, prior.hypotheses, points, self._kept)
+        return Diagnosis.of_board(board, expected, prior, costs=_costs_of_shop())
 
     def points(self, board: Board) -> "OperatingPoints":
         """The operating points of a board as far as they have been solved: shipped with its profile, or kept
@@ -127,15 +140,37 @@ class Wiring:
         against."""
         from triage.replacement.ranking import candidates, to_confirm
 
-        demand = self._demand(board, ref)
-        found = (*candidates(self.catalog, demand), *to_confirm(self.catalog, demand))
+        demand, drawers, lists = self._demand(board, ref), workshop.own_drawers(), workshop.own_suppliers()
+        found = (
+            *candidates(self.catalog, demand, drawers, suppliers=lists),
+            *to_confirm(self.catalog, demand, drawers, suppliers=lists),
+        )
         return tuple(_candidate_view(one) for one in found)
 
     def ask(self, board: Board, ref: str, type: str) -> CandidateView:
         """One catalog part held against the demand, with every rule it fails."""
         from triage.replacement.ranking import ask
 
-        return _candidate_view(ask(self.catalog, self._demand(board, ref), type))
+        demand, drawers, lists = self._demand(board, ref), workshop.own_drawers(), workshop.own_suppliers()
+        return _candidate_view(ask(self.catalog, demand, type, drawers, lists))
+
+    def combinations(self, board: Board, ref: str) -> tuple[CombinationView, ...]:
+        """Several parts that together meet the demand, those in the drawers first; none for a safety part."""
+        from triage.replacement.combinations import combinations
+
+        found = combinations(self.catalog, self._demand(board, ref), workshop.own_drawers())
+        return tuple(
+            CombinationView(
+                plain(one.text), tuple(plain(part.type) for part in one.parts), one.arrangement, one.value,
+                tuple(map(plain, one.arithmetic)), one.in_stock,
+            )
+            for one in found
+        )  # fmt: skip
+
+    def stock(self) -> tuple[StockView, ...]:
+        """What lies in the drawers, with what the catalog knows of it."""
+        drawers = workshop.own_drawers()
+        return tuple(_stock_view(item, self.catalog.find(item.type), drawers) for item in drawers.items)
 
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         """Catalog parts that a half-read marking may mean, best first."""
@@ -179,4 +214,19 @@ def _candidate_view(one: "Candidate") -> CandidateView:
         one.part.confidence,
         one.accepted,
         tuple(plain(found.text) for found in one.refusals),
+        one.stock.quantity if one.stock else 0,
+        plain(one.stock.where) if one.stock else "",
+        one.price,
     )
+
+
+def _stock_view(item: "StockItem", part: "CatalogPart | None", drawers: "Drawers") -> StockView:
+    word = drawers.as_read(part).confidence if part is not None else ""
+    part_class = part.part_class if part is not None else ""
+    return StockView(plain(item.type), item.quantity, plain(item.where), item.price, part_class, word)
+
+
+def _costs_of_shop() -> Costs:
+    """What readings cost in this shop; those that none of its own meters takes are never asked for."""
+    own = workshop.own_instruments()
+    return Costs.load() if own is None else Costs.load().for_functions(own.can_read())

@@ -79,14 +79,16 @@ def candidates(
 
 
 def to_confirm(
-    catalog: Catalog, demand: Demand, drawers: Drawers | None = None, limit: int = 20
+    catalog: Catalog, demand: Demand, drawers: Drawers | None = None, limit: int = 20, suppliers: Sequence[SupplierList] = ()
 ) -> tuple[Candidate, ...]:
     """Parts that would pass once their values from memory are read in the sheet or on the body, best first."""
-    judged = (judge(part, demand, drawers) for part in possible_parts(catalog, demand))
+    judged = (judge(part, demand, drawers, suppliers) for part in possible_parts(catalog, demand))
     return tuple(sorted((c for c in judged if c.to_confirm), key=_order)[:limit])
 
 
-def ask(catalog: Catalog, demand: Demand, type_number: str, drawers: Drawers | None = None) -> Candidate:
+def ask(
+    catalog: Catalog, demand: Demand, type_number: str, drawers: Drawers | None = None, suppliers: Sequence[SupplierList] = ()
+) -> Candidate:
     """The judgement on any part one asks about, with every rule it fails. Raises CatalogError for an unknown type."""
     part = catalog.find(type_number)
     if part is None:
@@ -94,7 +96,7 @@ def ask(catalog: Catalog, demand: Demand, type_number: str, drawers: Drawers | N
             f"part {type_number!r}", "not in the catalog", "a type number or a generic name",
             "search its marking, or look its ratings up and compare them with the demand",
         )
-    return judge(part, demand, drawers)
+    return judge(part, demand, drawers, suppliers)
 
 
 def possible_parts(catalog: Catalog, demand: Demand) -> Iterator[CatalogPart]:
