@@ -83,7 +83,8 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
         ((("words",), {"nargs": argparse.REMAINDER, "metavar": "ACTION ...", "help": "one of these, and -h for its arguments"}),),
     ),
     "check": (
-        "check files: profiles, templates, part catalogs, jobs (all shipped ones when none is named)",
+        "check files: profiles, templates, kept answers, part catalogs, jobs, settings (all shipped ones and the shop's own "
+        "settings when none is named)",
         ((("files",), {"nargs": "*"}),),
     ),
     "deck": (
@@ -114,7 +115,8 @@ COMMANDS: dict[str, tuple[str, tuple[tuple[tuple[str, ...], dict[str, Any]], ...
 """Sub-command -> (help, its arguments)."""
 
 PLACES = {
-    **dict.fromkeys(("new", "add", "check", "jobs"), "triage.commands.working"),
+    **dict.fromkeys(("new", "add", "jobs"), "triage.commands.working"),
+    "check": "triage.commands.checking",
     **dict.fromkeys(("combine", "drawers"), "triage.commands.stock"),
     "profile": "triage.commands.profile",
 }

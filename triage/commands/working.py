@@ -1,13 +1,11 @@
-"""Sub-commands that work on files: begin a job, add an entry, check files, find jobs."""
+"""Sub-commands that work on files: begin a job, add an entry, find jobs."""
 
 import argparse
-from collections.abc import Iterator
 from dataclasses import asdict
 from pathlib import Path
-from typing import Any
 
 from triage.commands.output import columns, print_csv, print_json, print_lines
-from triage.errors import JobError, TriageError
+from triage.errors import JobError
 
 MOST_SHOWN = 50
 """Jobs listed."""
@@ -51,72 +49,6 @@ def run_add(asked: argparse.Namespace) -> int:
     else:
         print_lines([f"entry {number}: {text}"])
     return 0
-
-
-def run_check(asked: argparse.Namespace) -> int:
-    """Check files and say what is wrong with each; status 1 when anything is."""
-    found = list(_checked([Path(name) for name in asked.files]))
-    if asked.json:
-        print_json([{"file": file, "kind": kind, "faults": faults} for file, kind, faults in found])
-    else:
-        for file, kind, faults in found:
-            print_lines([f"{file}: {kind}: {fault}" for fault in faults] or [f"{file}: {kind} in order"])
-    return 1 if any(faults for _, _, faults in found) else 0
-
-
-def _checked(files: list[Path]) -> Iterator[tuple[str, str, list[str]]]:
-    """(file, what it is, its faults) for each file; every shipped one when none is named."""
-    from triage.data import data_folder
-    from triage.job.display import plain
-    from triage.job.toml_guard import read_toml
-
-    profiles = data_folder("profiles")
-    shipped = [*sorted(profiles.glob("*.toml")), *sorted((profiles / "templates").glob("*.toml"))]
-    shipped += sorted(data_folder("part_catalog").glob("*.toml"))
-    for path in files or shipped:
-        kind = "file"
-        try:
-            document, _ = read_toml(path)
-            kind = _kind_of(document)
-            faults = _faults(path, document, kind)
-        except TriageError as error:
-            faults = [str(error)]
-        yield plain(path if files else path.name), kind, [plain(fault, 2000) for fault in faults]
-
-
-def _kind_of(document: dict[str, Any]) -> str:
-    if "job" in document:
-        return "job"
-    if document.get("template") is True:
-        return "template"
-    if "family" in document or "mains" in document:
-        return "profile"
-    return "catalog" if "class" in document else "table"
-
-
-def _faults(path: Path, document: dict[str, Any], kind: str) -> list[str]:
-    """What is wrong with a file that could be read as TOML."""
-    if kind == "job":
-        from triage.board.profile import board_from_dict
-        from triage.job.store import load
-
-        job = load(path)
-        board_from_dict(job.board, f"{path}, board")
-        return [f"a sync program left another version: {copy.name}" for copy in job.conflicts]
-    if kind == "profile":
-        from triage.board.profile import board_from_dict
-
-        board_from_dict(document, str(path))
-    if kind == "template":
-        from triage.board.estimate.template import template_from_dict
-        from triage.families import family_of
-
-        family_of(template_from_dict(document, str(path)).family)
-    if kind == "catalog":
-        from triage.replacement.catalog_file import read_catalog_file
-
-        read_catalog_file(path)
-    return []
 
 
 def run_jobs(asked: argparse.Namespace) -> int:

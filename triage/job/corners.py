@@ -149,3 +149,18 @@ def _read(content: Any) -> Settled:
     stretch = Stretch(statistics, float(content["frequency"]), int(content["steps"]), np.zeros((0, 1)))
     capacitors = {str(name): float(volts) for name, volts in content["capacitors"].items()}
     return Settled(stretch, rows, capacitors, int(content["periods"]), bool(content["started"]))
+
+
+def kept_keys(board: Board) -> tuple[str, ...]:
+    """Keys under which everything that this module keeps of a board lies."""
+    corners = tuple(_key(board, corner) for corner in conditions(board))
+    return (*corners, "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load)))
+
+
+def is_corner(content: Any) -> bool:
+    """True for a kept corner that can be read again."""
+    try:
+        _read(content)
+    except (TypeError, KeyError, ValueError):
+        return False
+    return True

@@ -161,3 +161,8 @@ def _key(board: Board, probes: tuple[Probe, ...]) -> str:
     content["probes"] = [str(probe) for probe in probes]
     content["solution"] = [SOLUTION, DRAWS, SEED]
     return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:20]
+
+
+def kept_key(board: Board) -> str:
+    """Key under which the cold readings of a board are kept."""
+    return f"cold-{_key(board, cold_probes(board))}"

@@ -5,6 +5,7 @@ Answers are pure functions of the board. What takes seconds is kept under the fi
 rounded before it is used, so that a kept and a new answer are the same to the last digit.
 """
 
+import contextlib
 from collections.abc import Callable
 from functools import cached_property
 from typing import TYPE_CHECKING
@@ -79,7 +80,9 @@ class Wiring:
         here."""
         from triage.families.points import OperatingPoints, fingerprint
 
-        return OperatingPoints(board, self._kept.get(f"points-{fingerprint(board)}"))
+        with contextlib.suppress(TypeError, KeyError, ValueError, AttributeError):
+            return OperatingPoints(board, self._kept.get(f"points-{fingerprint(board)}"))
+        return OperatingPoints(board)
 
     def solve(self, board: Board, progress: Callable[[str], None]) -> None:
         """Solve everything that a job on this board asks for, and keep it: corners, operating points, cold

@@ -15,12 +15,12 @@ from functools import lru_cache
 from pathlib import Path
 from typing import Any, TypeVar, cast
 
-from triage.errors import CatalogError, EntryError, TriageError
+from triage.errors import CatalogError, EntryError
 from triage.job.display import plain
 from triage.job.folder import data_directory
 from triage.job.toml_guard import read_toml
 from triage.replacement.drawers import FILES as DRAWER_FILES
-from triage.replacement.drawers import Drawers, load_drawers
+from triage.replacement.drawers import Drawers, read_drawers
 from triage.replacement.supplier import COLUMNS, SupplierList, read_supplier_list
 from triage.safety.decision import Shop
 from triage.safety.instruments import SHIPPED, Instruments
@@ -29,6 +29,8 @@ from triage.safety.instruments import load as load_instruments
 T = TypeVar("T")
 
 INSTRUMENTS, SHOP = "instruments.toml", "shop.toml"
+SETTINGS = (INSTRUMENTS, *DRAWER_FILES, SHOP)
+"""Every settings file there may be."""
 MOST_MONEY = 1e9
 """Above this a price or rate is a slip of the pen."""
 
@@ -68,11 +70,7 @@ def own_drawers() -> Drawers:
     """The stock in the data directory; empty where there is none. Raises CatalogError."""
     folder = data_directory()
     path = next((folder / name for name in DRAWER_FILES if (folder / name).is_file()), None)
-    return Drawers() if path is None else _fresh(_drawers_beside, path)
-
-
-def _drawers_beside(path: Path) -> Drawers:
-    return load_drawers(path.parent)
+    return Drawers() if path is None else _fresh(read_drawers, path)
 
 
 def own_shop() -> ShopFile:
@@ -83,9 +81,13 @@ def own_shop() -> ShopFile:
 
 def own_suppliers() -> tuple[SupplierList, ...]:
     """The suppliers' lists that shop.toml names. Raises CatalogError for a list that cannot be read."""
-    folder = data_directory()
+    return read_suppliers(data_directory(), own_shop())
+
+
+def read_suppliers(folder: Path, said: ShopFile) -> tuple[SupplierList, ...]:
+    """The lists that a shop file beside them names. Raises CatalogError for one that cannot be read."""
     lists = []
-    for supplier in own_shop().suppliers:
+    for supplier in said.suppliers:
         columns = tuple(sorted(supplier.columns.items())) if supplier.columns else ()
         lists.append(_fresh(_supplier_reader(columns), folder / supplier.file))
     return tuple(lists)
@@ -167,20 +169,3 @@ def _supplier(row: object, where: str, faults: list[str]) -> Supplier | None:
         faults.append(f"{where}, columns: expected headings for {', '.join(COLUMNS)}")
         return None
     return Supplier(file, dict(columns))
-
-
-def faults_of_settings() -> list[tuple[str, list[str]]]:
-    """(file, its faults) for every settings file there is in the data directory."""
-    folder = data_directory()
-    readers: dict[str, Callable[[], object]] = {
-        INSTRUMENTS: own_instruments, **dict.fromkeys(DRAWER_FILES, own_drawers), SHOP: own_suppliers,
-    }  # fmt: skip
-    found: list[tuple[str, list[str]]] = []
-    for name, read in readers.items():
-        if (folder / name).is_file():
-            try:
-                read()
-                found.append((name, []))
-            except TriageError as error:
-                found.append((name, [str(error)]))
-    return found

@@ -86,8 +86,13 @@ def load_drawers(folder: Path) -> Drawers:
     for name in FILES:
         path = folder / name
         if path.is_file():
-            return Drawers(_from_toml(path) if path.suffix == ".toml" else _from_csv(path))
+            return read_drawers(path)
     return Drawers()
+
+
+def read_drawers(path: Path) -> Drawers:
+    """The stock of one file, TOML or CSV by its ending. Raises CatalogError as ``load_drawers``."""
+    return Drawers(_from_toml(path) if path.suffix == ".toml" else _from_csv(path))
 
 
 def _from_toml(path: Path) -> list[StockItem]:
