@@ -110,11 +110,10 @@ _POLICY = "default-src 'none'; style-src 'unsafe-inline'"
 _STYLE = """
 :root { color-scheme: light }
 body { font: 10.5pt/1.4 system-ui, sans-serif; max-width: 50em; margin: 1.5em auto; padding: 0 1em;
-  color: #111; background: #fff }
+  color: #111; background: #fff; overflow-wrap: anywhere }
 h1 { font-size: 1.5em } h2 { font-size: 1.1em; margin: 1.4em 0 .4em; border-bottom: 1px solid #999 }
 table { border-collapse: collapse; width: 100%; font-size: .92em }
-th, td { border: 1px solid #bbb; padding: .2em .45em; text-align: left; vertical-align: top;
-  overflow-wrap: anywhere }
+th, td { border: 1px solid #bbb; padding: .2em .45em; text-align: left; vertical-align: top }
 th { background: #eee } ul { margin: .3em 0; padding-left: 1.3em } .nothing { color: #555 }
 @page { margin: 15mm }
 @media print {
