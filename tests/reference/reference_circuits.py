@@ -64,7 +64,7 @@ def _lines(circuit: str, table: str) -> list[list[str]]:
 
 
 def cold_table(circuit: str) -> dict[str, dict[Probe, float]]:
-    """Fault -> cold reading -> value, complete for every fault."""
+    """Fault -> cold reading -> value; a fault that shows in no cold reading at all has no entry."""
     sound: dict[Probe, float] = {}
     table: dict[str, dict[Probe, float]] = {"healthy": sound}
     for fault, plus, minus, function, value in _lines(circuit, "cold")[1:]:

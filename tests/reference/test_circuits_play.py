@@ -50,16 +50,14 @@ def units(circuit: str, board: Board) -> list[Unit]:
     loads = [load for load in LOADS if ("healthy", load) in live]
     sound = {load: live_summary(board, live["healthy", load][1], load) for load in loads}
     found = []
-    for fault in cold:
-        if fault == "healthy" or (fault, loads[-1]) not in live:
-            continue
+    for fault in dict.fromkeys(name for name, _ in live if name != "healthy"):
         after = {load: live.get((fault, load + "_after"), live[fault, load]) for load in loads}
         seen = {x: live_summary(board, after[x][1], x) for x in loads}
         states = {load: state_class(board, load, seen, sound) for load in loads}
         load = next((x for x in reversed(loads) if states[x] != "normal"), "full")
         collateral = after[load][0]
         faults = frozenset((*fault_of(fault), *collateral))
-        readings = dict(chains.get(faults, {}) if collateral else cold[fault])
+        readings = dict(chains.get(faults, {}) if collateral else cold.get(fault, cold["healthy"]))
         for x in loads:
             readings |= after[x][1] if after[x][0] == collateral else {}
         state = "dead" if states[load] == "fuse gone" else states[load]
