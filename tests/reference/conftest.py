@@ -15,12 +15,15 @@ forms: ``absolute=True``, ``same`` for texts, ``at_least`` for rates. ``subject`
 """
 
 import os
-from collections.abc import Iterator
+import shutil
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
 import pytest
+
+from tests.reference import simulator
 
 
 @dataclass
@@ -102,10 +105,28 @@ HEAD = ("subject", "source", "checks", "worst, share of bound", "bound")
 _CHECKS = OutsideChecks()
 
 
+WIDEST = 60
+"""Most characters of a cell in the terminal; the Markdown table has them all."""
+
+
+def cut(text: str) -> str:
+    """A cell of the terminal table."""
+    return text if len(text) <= WIDEST else text[: WIDEST - 1] + "…"
+
+
 @pytest.fixture(scope="session")
 def outside_check() -> Iterator[OutsideChecks]:
     """The recorder; see the head of this file."""
     yield _CHECKS
+
+
+@pytest.fixture(scope="session")
+def ngspice(tmp_path_factory: pytest.TempPathFactory) -> Callable[[str, float, str, str], simulator.Waveforms]:
+    """Simulates a deck: (deck, begin of the window [s], reference node, options) -> waveforms; skips where ngspice is absent."""
+    if shutil.which("ngspice") is None:
+        pytest.skip("ngspice is not installed")
+    folder = tmp_path_factory.mktemp("ngspice")
+    return lambda deck, begin, reference, options: simulator.run(deck, folder, begin, reference, options)
 
 
 def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
@@ -113,9 +134,10 @@ def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
     if not _CHECKS.rows:
         return
     lines = _CHECKS.lines()
-    widths = [max(len(line[k]) for line in [HEAD, *lines]) for k in range(len(HEAD))]
+    shown = [tuple(cut(cell) for cell in line) for line in [HEAD, *lines]]
+    widths = [max(len(line[k]) for line in shown) for k in range(len(HEAD))]
     terminalreporter.section("checks against the outside")
-    for line in [HEAD, *lines]:
+    for line in shown:
         cells = (cell.ljust(width) for cell, width in zip(line, widths, strict=True))
         terminalreporter.write_line("  ".join(cells).rstrip())
     terminalreporter.write_line(_CHECKS.summary)

@@ -11,6 +11,7 @@ from pathlib import Path
 
 import pytest
 
+from tests.reference.conftest import OutsideChecks
 from triage.replacement.catalog import Catalog, plain_number
 from triage.replacement.catalog_part import CatalogPart
 
@@ -107,7 +108,7 @@ def _figure(part: CatalogPart, key: str, pattern: str, text: str) -> float | Non
     return value
 
 
-def test_chief_ratings_agree_with_the_library(descriptions: dict[str, str]) -> None:
+def test_chief_ratings_agree_with_the_library(descriptions: dict[str, str], outside_check: OutsideChecks) -> None:
     """Within 2 % (rms voltages are rounded), or with a reason above; figures as the library prints them."""
     compared, unexplained, used = 0, [], set()
     for part, text in _pairs(descriptions):
@@ -117,6 +118,7 @@ def test_chief_ratings_agree_with_the_library(descriptions: dict[str, str]) -> N
                 continue
             compared += 1
             if math.isclose(theirs, ours, rel_tol=0.02):
+                outside_check("catalog ratings", "KiCad symbol library, descriptions", ours, theirs, 0.0205, what=part.type)
                 continue
             if (part.part_class, key) in ALLOWED_CLASSES:
                 assert ours < theirs, (part.type, key)

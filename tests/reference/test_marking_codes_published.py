@@ -10,6 +10,7 @@ from pathlib import Path
 
 import pytest
 
+from tests.reference.conftest import OutsideChecks
 from triage.quantities import parse
 from triage.replacement.marking_codes import decode, is_preferred, series_values
 
@@ -180,20 +181,21 @@ VOLTAGE_CODES = {
 
 
 @pytest.mark.parametrize(("text", "value"), LETTER_CODE_OHM.items())
-def test_letter_code_of_resistance(text: str, value: float) -> None:
-    assert parse(text, "ohm") == pytest.approx(value, rel=1e-13)
-    assert decode(text)[0].values["resistance"] == pytest.approx(value, rel=1e-13)
+def test_letter_code_of_resistance(text: str, value: float, outside_check: OutsideChecks) -> None:
+    got = [parse(text, "ohm"), decode(text)[0].values["resistance"]]
+    outside_check("marking, letter code", "IEC 60062", got, value, 1e-13, what=text)
 
 
 @pytest.mark.parametrize(("text", "value"), LETTER_CODE_FARAD.items())
-def test_letter_code_of_capacitance(text: str, value: float) -> None:
-    assert parse(text, "F") == pytest.approx(value, rel=1e-13)
-    assert decode(text)[0].values["capacitance"] == pytest.approx(value, rel=1e-13)
+def test_letter_code_of_capacitance(text: str, value: float, outside_check: OutsideChecks) -> None:
+    got = [parse(text, "F"), decode(text)[0].values["capacitance"]]
+    outside_check("marking, letter code", "IEC 60062", got, value, 1e-13, what=text)
 
 
 @pytest.mark.parametrize("series", E_SERIES)
-def test_preferred_values(series: str) -> None:
-    assert series_values(series) == E_SERIES[series]
+def test_preferred_values(series: str, outside_check: OutsideChecks) -> None:
+    assert len(series_values(series)) == len(E_SERIES[series])
+    outside_check("preferred values", "IEC 60063:2015", series_values(series), E_SERIES[series], 0.0, absolute=True)
 
 
 def test_fine_series_have_their_length_and_contain_the_coarser_one() -> None:
@@ -215,10 +217,10 @@ def test_printed_code(text: str, key: str, value: float, tolerance: float | None
 
 @pytest.mark.parametrize(("mark", "key", "value", "tolerance", "voltage"), DECODE_CHECKS)
 def test_decode_check_of_the_handbook(
-    mark: str, key: str, value: float, tolerance: float, voltage: float | None
+    mark: str, key: str, value: float, tolerance: float, voltage: float | None, outside_check: OutsideChecks
 ) -> None:
     first = decode(mark)[0]
-    assert first.values[key] == pytest.approx(value, rel=1e-12)
+    outside_check("marking, decoded", "IEC 60062:2016; EIA RS-198", first.values[key], value, 1e-12, what=mark)
     assert first.tolerance == tolerance
     assert first.values.get("voltage") == voltage
 
@@ -231,17 +233,19 @@ def test_no_decode_check_of_the_handbook_is_left_out(shared: Path) -> None:
 
 
 @pytest.mark.parametrize(("code", "volts"), VOLTAGE_CODES.items())
-def test_voltage_code(code: str, volts: float) -> None:
-    assert decode(f"{code}104K")[0].values["voltage"] == volts
+def test_voltage_code(code: str, volts: float, outside_check: OutsideChecks) -> None:
+    got = decode(f"{code}104K")[0].values["voltage"]
+    outside_check("marking, voltage code", "EIA voltage code tables", got, volts, 0.0, absolute=True, what=code)
 
 
 @pytest.mark.parametrize(
     ("letter", "tolerance"),
     [("F", 0.01), ("G", 0.02), ("H", 0.03), ("J", 0.05), ("K", 0.10), ("M", 0.20), ("Z", 0.80)],
 )
-def test_tolerance_letters_of_capacitors(letter: str, tolerance: float) -> None:
+def test_tolerance_letters_of_capacitors(letter: str, tolerance: float, outside_check: OutsideChecks) -> None:
     """EIA RS-198 / IEC 60062; Z is -20 +80 %, kept by its wider side."""
-    assert decode(f"104{letter} 100V")[0].tolerance == tolerance
+    got = decode(f"104{letter} 100V")[0].tolerance
+    outside_check("marking, tolerance letter", "IEC 60062:2016; EIA RS-198", got, tolerance, 0.0, absolute=True, what=letter)
 
 
 @pytest.mark.parametrize(("letter", "picofarads"), [("B", 0.1), ("C", 0.25), ("D", 0.5), ("F", 1.0)])

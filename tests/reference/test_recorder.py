@@ -1,9 +1,12 @@
 """The recorder itself: what it lets pass, what it fails, what it counts."""
 
+import datetime
+
 import numpy as np
 import pytest
 
-from tests.reference.conftest import OutsideChecks
+from tests.reference.conftest import WIDEST, OutsideChecks, cut
+from tests.reference.write_table import condense, markdown
 
 
 def test_counts_every_element_and_keeps_the_worst_share() -> None:
@@ -36,3 +39,24 @@ def test_texts_and_rates() -> None:
     with pytest.raises(AssertionError):
         checks.at_least("s", "book", 0.94, 0.95)
     assert checks.rows["s", "book"].failed == 2
+
+
+def test_cells_of_the_terminal_table_are_cut() -> None:
+    assert cut("a book") == "a book"
+    assert len(cut("b" * 200)) == WIDEST and cut("b" * 200).endswith("…")
+
+
+def test_the_condensed_table_counts_what_the_full_one_holds() -> None:
+    table = """| subject | source | checks | worst, share of bound | bound |
+| --- | --- | --- | --- | --- |
+| flyback | book | 4 | 50 % | 1 % |
+| flyback | sheet | 2 (1 failed) | 120 % | 1 % |
+| thermal | book | 3 | 10 % | 5 % |
+"""
+    found = condense(table)
+    assert set(found) == {"converters and magnetics", "heat"}
+    text = markdown(found, datetime.date(2026, 1, 2))
+    assert "| converters and magnetics | 2 | 6 (1 failed) | 120 % |" in text
+    assert "9 checks against 2 named sources, 1 failed" in text and "2026-01-02" in text
+    with pytest.raises(ValueError, match="no row"):
+        condense("nothing")
