@@ -114,7 +114,7 @@ def test_the_index_lies_outside_the_jobs_folder(jobs: Path, tmp_path: Path, monk
 def test_the_short_way_through_a_file_gives_the_same_as_the_long_one(jobs: Path) -> None:
     """The board of these jobs has a drawing with a line that looks like the start of the log."""
     from triage.job.summary import summary_of
-    from triage.job.toml_guard import read_toml
+    from triage.toml_guard import read_toml
 
     for path in jobs.glob("*.toml"):
         assert read_summary(path) == summary_of(path.stem, read_toml(path)[0])

@@ -61,7 +61,7 @@ class Check:
         number = math.nan
         if isinstance(value, str):
             try:
-                number = parse(value, unit)
+                number = parse(value, unit or "1")
             except QuantityError:
                 number = math.nan
         elif isinstance(value, int | float) and not isinstance(value, bool):

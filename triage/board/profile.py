@@ -6,7 +6,6 @@ fractions, the spreads of estimated values factors; temperatures degC. The same 
 open anywhere.
 """
 
-import tomllib
 from collections.abc import Mapping
 from pathlib import Path
 from typing import Any
@@ -16,13 +15,14 @@ from triage.board.kinds import PartKind, kinds
 from triage.board.part import ORIGINS, Board, Label, Mains, Part
 from triage.data import data_folder
 from triage.errors import ProfileError
+from triage.toml_guard import read_toml
 
 RATING_UNITS = {
     "voltage": "V", "current": "A", "power": "W", "ripple_current": "A", "temperature": "degC", "i2t": "A2s",
     "collector_emitter_voltage": "V", "isolation_voltage": "V", "ac_voltage": "V", "surge_current": "A",
     "saturation_current": "A", "breaking_current": "A", "life": "h",
 }
-MAX_PARTS, MAX_NODES, MAX_BYTES = 200, 120, 1_000_000
+MAX_PARTS, MAX_NODES = 200, 120
 
 
 def profile_path(name: str) -> Path:
@@ -40,14 +40,7 @@ def profile_path(name: str) -> Path:
 def load_profile(name: str) -> Board:
     """Board of a profile, by path or by the name of a shipped one. Raises ProfileError with every fault found."""
     path = profile_path(name)
-    try:
-        if path.stat().st_size > MAX_BYTES:
-            raise ProfileError(path.name, f"{path.stat().st_size} bytes", f"at most {MAX_BYTES}")
-        content = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError) as error:
-        raise ProfileError(path.name, f"cannot be read: {error}") from error
-    except (tomllib.TOMLDecodeError, RecursionError) as error:
-        raise ProfileError(path.name, f"is not TOML: {str(error)[:120]}") from error
+    content, _ = read_toml(path, ProfileError, path.name)
     return board_from_dict(content, path.name)
 
 

@@ -207,7 +207,7 @@ def _prepared(name: str) -> "Bench":
 def _bench_or_board(name: str) -> "tuple[Bench | None, Board]":
     """The job of that file, or the board of that profile."""
     from triage.board.profile import load_profile
-    from triage.job.toml_guard import read_toml
+    from triage.toml_guard import read_toml
 
     path = Path(name)
     if path.suffix == ".toml" and path.is_file() and "job" in read_toml(path)[0]:

@@ -54,7 +54,7 @@ def _own() -> list[Path]:
 
 def _judged(path: Path) -> tuple[str, list[str]]:
     """What a file is, and what is wrong with it."""
-    from triage.job.toml_guard import read_toml
+    from triage.toml_guard import read_toml
 
     kind = "kept" if path.suffix in (".json", ".npz") else "list" if path.suffix == ".csv" else "file"
     try:

@@ -21,7 +21,7 @@ import tomli_w
 
 from triage.errors import JobError
 from triage.job.entries import Entry, entry_from_dict, entry_to_dict
-from triage.job.toml_guard import LARGEST_FILE, parse_toml, read_regular, read_toml
+from triage.toml_guard import LARGEST_FILE, parse_toml, read_regular, read_toml
 
 FORMAT = 1
 """Version of the job file; a file of a higher version is refused rather than misread."""

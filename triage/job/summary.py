@@ -12,7 +12,7 @@ from typing import Any
 
 from triage.errors import JobError
 from triage.job.display import plain
-from triage.job.toml_guard import LARGEST_FILE, parse_toml, read_regular
+from triage.toml_guard import LARGEST_FILE, parse_toml, read_regular
 
 _PARTS = re.compile(rb"^\[\[board\.part\]\].*?(?=^\[\[entry\]\]|\Z)", re.MULTILINE | re.DOTALL)
 _MEASURED = re.compile(

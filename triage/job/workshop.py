@@ -18,13 +18,13 @@ from typing import Any, TypeVar, cast
 from triage.errors import CatalogError, EntryError
 from triage.job.display import plain
 from triage.job.folder import data_directory
-from triage.job.toml_guard import read_toml
 from triage.replacement.drawers import FILES as DRAWER_FILES
 from triage.replacement.drawers import Drawers, read_drawers
 from triage.replacement.supplier import COLUMNS, SupplierList, read_supplier_list
 from triage.safety.decision import Shop
 from triage.safety.instruments import SHIPPED, Instruments
 from triage.safety.instruments import load as load_instruments
+from triage.toml_guard import read_toml
 
 T = TypeVar("T")
 

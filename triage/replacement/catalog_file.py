@@ -6,8 +6,7 @@ chosen later (``[[kind]]``, see ``triage.replacement.generic``). Faults are gath
 """
 
 import math
-import tomllib
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 from pathlib import Path
@@ -15,6 +14,7 @@ from typing import Any
 
 from triage.errors import CatalogError
 from triage.replacement.catalog_part import CatalogPart
+from triage.toml_guard import read_toml
 
 CONFIDENCES = ("datasheet", "memory")
 """Words allowed as confidence of a record."""
@@ -115,8 +115,10 @@ def read_catalog_file(path: Path) -> CatalogFile:
         if name in types:
             faults.append(CatalogError(f"{path.name}, {name}", "the type is there twice", "unique types"))
         types.add(name)
-        faults.extend(_record_faults(schema, name, record, schema.needed))
-        parts.append(_part(schema, record))
+        wrong = list(_record_faults(schema, name, record, schema.needed))
+        faults.extend(wrong)
+        if not wrong:
+            parts.append(_part(schema, record))
     sizes = tuple(_sizes(schema, data, faults))
     if faults:
         raise CatalogFaults(path.name, faults)
@@ -128,11 +130,47 @@ def read_catalog_file(path: Path) -> CatalogFile:
 
 def _parse(path: Path) -> dict[str, Any]:
     try:
-        return tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError) as error:
-        raise CatalogFaults(path.name, [CatalogError(path.name, f"cannot be read: {error}")]) from None
-    except tomllib.TOMLDecodeError as error:
-        raise CatalogFaults(path.name, [CatalogError(path.name, f"is not TOML: {error}")]) from None
+        return read_toml(path, CatalogError, path.name)[0]
+    except CatalogError as error:
+        raise CatalogFaults(path.name, [error]) from None
+
+
+def _is_texts(found: object) -> bool:
+    return isinstance(found, list) and all(isinstance(one, str) for one in found)
+
+
+def _is_numbers(found: object) -> bool:
+    return isinstance(found, list) and all(_is_number(one) for one in found)
+
+
+def _is_tables(found: object) -> bool:
+    return isinstance(found, list) and all(isinstance(one, dict) for one in found)
+
+
+def _is_generic(found: object) -> bool:
+    return isinstance(found, dict) and isinstance(found.get("field", ""), str) and _is_numbers(found.get("decade", []))
+
+
+_SHAPES: Mapping[str, tuple[Callable[[Any], bool], str]] = {
+    "kinds": (_is_texts, "a list of part kinds"),
+    "needed": (_is_texts, "a list of keys"),
+    "ordered": (lambda found: isinstance(found, list) and all(map(_is_texts, found)), "lists of keys, the least first"),
+    "texts": (lambda found: isinstance(found, dict), "a table of keys and their meaning"),
+    "choices": (lambda found: isinstance(found, dict) and all(map(_is_texts, found.values())), "lists of words by key"),
+    "common": (lambda found: isinstance(found, dict), "a table of values that all parts share"),
+    "generic": (_is_generic, "a table with field (a key) and decade (figures)"),
+    "part": (_is_tables, "[[part]] tables"),
+    "series": (
+        lambda found: _is_tables(found) and all(_is_texts(one.get("columns", [])) for one in found),
+        "[[series]] tables with columns (keys) and rows",
+    ),
+    "kind": (
+        lambda found: _is_tables(found)
+        and all(_is_numbers(one.get(key, [])) for one in found for key in ("values", "decade")),
+        "[[kind]] tables, values and decade lists of figures",
+    ),
+}
+"""Key of a file -> whether what stands there has the right shape, and that shape in words."""
 
 
 def _head_faults(file: str, data: Mapping[str, Any]) -> Iterator[CatalogError]:
@@ -147,9 +185,9 @@ def _head_faults(file: str, data: Mapping[str, Any]) -> Iterator[CatalogError]:
         numbers = spec[:2] if isinstance(spec, list) and len(spec) == 3 else ()
         if len(numbers) != 2 or not all(_is_number(limit) for limit in numbers) or numbers[0] >= numbers[1]:
             yield CatalogError(f"{file}, fields.{key}", f"{spec!r}", "[lowest, highest, meaning]")
-    for key in ("series", "part", "kind"):
-        if not isinstance(data.get(key, []), list):
-            yield CatalogError(f"{file}, {key}", f"{type(data[key]).__name__}", f"[[{key}]] tables")
+    for key, (is_right, word) in _SHAPES.items():
+        if key in data and not is_right(data[key]):
+            yield CatalogError(f"{file}, {key}", f"{data[key]!r}"[:60], word)
     if "kind" in data and not isinstance(data.get("generic"), dict):
         yield CatalogError(f"{file}, generic", "missing", "field and decade of the value, as there are [[kind]] tables")
 
@@ -263,8 +301,11 @@ def _sizes(schema: _Schema, data: Mapping[str, Any], faults: list[CatalogError])
             continue
         sized = {key: value for key, value in table.items() if key not in _KIND_KEYS}
         for record in _rows(schema, name, sized, faults):
-            faults.extend(_record_faults(schema, name, record, needed))
-            yield GenericSize(_part(schema, record), float(lowest), float(highest), values, tuple(table.get("decade", ())))
+            wrong = list(_record_faults(schema, name, record, needed))
+            faults.extend(wrong)
+            if not wrong:
+                decade = tuple(table.get("decade", ()))
+                yield GenericSize(_part(schema, record), float(lowest), float(highest), values, decade)
 
 
 def _is_number(value: Any) -> bool:

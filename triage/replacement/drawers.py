@@ -14,7 +14,6 @@ is what lets a safety part pass whose catalog values are from memory.
 """
 
 import csv
-import tomllib
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, field, replace
 from pathlib import Path
@@ -24,6 +23,7 @@ from triage.errors import CatalogError
 from triage.replacement.catalog import Catalog, plain_number
 from triage.replacement.catalog_part import CatalogPart
 from triage.replacement.supplier import clean_cell, read_number
+from triage.toml_guard import read_toml
 
 FILES = ("drawers.toml", "drawers.csv")
 """Names looked for in the data directory, in this order."""
@@ -96,10 +96,7 @@ def read_drawers(path: Path) -> Drawers:
 
 
 def _from_toml(path: Path) -> list[StockItem]:
-    try:
-        data = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
-        raise CatalogError(path.name, f"cannot be read: {error}") from None
+    data, _ = read_toml(path, CatalogError, path.name)
     rows = data.get("item", [])
     if not isinstance(rows, list):
         raise CatalogError(path.name, "item is not a list", "[[item]] tables")

@@ -6,7 +6,6 @@ the standard uncertainty.
 """
 
 import math
-import tomllib
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from pathlib import Path
@@ -16,6 +15,7 @@ from triage.board.probe import UNITS
 from triage.errors import TriageError
 from triage.safety.limits import Source
 from triage.safety.uncertainty import rectangular
+from triage.toml_guard import read_toml
 
 FUNCTIONS: Mapping[str, str] = {
     **UNITS,
@@ -120,10 +120,7 @@ class Instruments:
 
 def load(path: Path = SHIPPED) -> Instruments:
     """Read an instruments file. Raises InstrumentError with all faults of the file in one line."""
-    try:
-        content = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
-        raise InstrumentError(path.name, str(error), "a TOML file of instruments") from None
+    content, _ = read_toml(path, InstrumentError, path.name)
     faults: list[str] = []
     functions = []
     records = content.get("instrument")

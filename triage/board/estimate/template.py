@@ -1,6 +1,5 @@
 """Templates: which parts the adapters of a family have and how they are joined, and what such adapters look like."""
 
-import tomllib
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from functools import cache
@@ -14,6 +13,7 @@ from triage.board.kinds import kinds
 from triage.board.profile import MAX_PARTS, RATING_UNITS
 from triage.data import data_folder
 from triage.errors import ProfileError
+from triage.toml_guard import read_toml
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,10 +85,7 @@ def template_of(family: str) -> Template:
 
 def read_template(path: Path) -> Template:
     """One template file. Raises ProfileError with every fault found."""
-    try:
-        content = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
-        raise ProfileError(path.name, f"cannot be read: {str(error)[:120]}") from error
+    content, _ = read_toml(path, ProfileError, path.name)
     return template_from_dict(content, path.name)
 
 
@@ -101,12 +98,19 @@ def template_from_dict(content: Mapping[str, Any], where: str) -> Template:
     places = tuple(_place(check, row, number) for number, row in enumerate(check.rows(content, "part", MAX_PARTS), 1))
     template = Template(
         check.text(content, "family"), check.text(content, "title"), usual, check.text(content, "drawing", default=""),
-        {str(side): tuple(map(str, nodes)) for side, nodes in check.table(content, "sides").items()},
+        {str(side): _nodes(check, nodes, f"sides {side}") for side, nodes in check.table(content, "sides").items()},
         {str(side): str(node) for side, node in check.table(content, "ground").items()}, places,
         _look(check, check.table(content, "look")))
     _cross_checks(check, template)
     check.finish()
     return template
+
+
+def _nodes(check: Check, found: object, at: str) -> tuple[str, ...]:
+    if isinstance(found, list) and all(isinstance(node, str) for node in found):
+        return tuple(found)
+    check.fault(at, found, "a list of nodes")
+    return ()
 
 
 def _place(check: Check, row: Mapping[str, Any], number: int) -> Place:

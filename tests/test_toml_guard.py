@@ -5,7 +5,7 @@ import time
 import pytest
 
 from triage.errors import JobError
-from triage.job.toml_guard import LARGEST_FILE, LONGEST_STRING, parse_toml
+from triage.toml_guard import LARGEST_FILE, LONGEST_STRING, parse_toml
 
 HOSTILE = {
     "deep arrays": "a = " + "[" * 100_000,
