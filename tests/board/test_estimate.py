@@ -198,6 +198,8 @@ def test_derivations_give_value_spread_and_reason():
     (["controller", "optocoupler", "field-effect switch"], 24.0, "pwm_flyback_opto"),
     (["iron transformer", "regulator"], 4.5, "linear_regulated"),
     (["1 transistor", "no optocoupler", "no controller", "3 windings"], 3.0, "ringing_choke_zener"),
+    (["controller", "no optocoupler", "3 windings"], 5.0, "pwm_flyback_primary"),
+    (["controller", "output coil", "0 windings"], 1.4, "buck_nonisolated"),
     (["2 transistors", "optocoupler", "no controller"], 5.0, "ringing_choke_opto"),
     (["optocoupler", "no controller"], None, "ringing_choke_opto"),
     (["iron transformer", "regulator"], 60.0, "linear_regulated"),

@@ -232,6 +232,19 @@ def _low_rectifier(place: Place, part: CatalogPart) -> None:
     _at_least(place, part, ("if_av_A",), _over(place, "average_current", 0.6), _rating(place, "current", "if_av_A"))
 
 
+def _fast_high_voltage(place: Place, part: CatalogPart) -> None:
+    _class(place, part, "fast_rectifier")
+    _at_least(place, part, ("vrrm_V",), _over(place, "reverse_voltage", 0.75), _over(place, "peak_voltage", 0.75), 600.0)
+    _at_least(place, part, ("if_av_A",), _over(place, "average_current", 0.6), _rating(place, "current", "if_av_A"))
+    if part.texts.get("speed") not in ("ultrafast", "superfast"):
+        place.wrong.append("speed")
+
+
+def _inrush_resistor(place: Place, part: CatalogPart) -> None:
+    _class(place, part, "fusible_resistor")
+    _within(place, part, "r_ohm", place.values.get("resistance", place.old_number("r_ohm")), 0.1, 0.1)
+
+
 def _shunt_zener(place: Place, part: CatalogPart) -> None:
     _class(place, part, "zener")
     _within(place, part, "vz_V", place.values.get("zener_voltage", place.old_number("vz_V")), 0.03, 0.03)
@@ -319,6 +332,7 @@ RULES: dict[str, Callable[[Place, CatalogPart], None]] = {
     "main switch": _bipolar_switch, "power switch": _mosfet_switch, "output rectifier": _schottky_output,
     "output rectifier, pn": _pn_output, "auxiliary rectifier": _aux_rectifier, "regulation zener": _zener,
     "optocoupler": _optocoupler, "shunt reference": _reference, "mains fuse": _fuse, "fusible input resistor": _fusible,
+    "free-wheeling diode": _fast_high_voltage, "inrush resistor": _inrush_resistor, "integrated switch": _nothing,
     "dropper capacitor": _dropper_capacitor, "secondary rectifier": _low_rectifier, "shunt zener": _shunt_zener,
     "bleeder of the dropper capacitor": _discharge, "mains cord": _nothing, "common-mode choke": _nothing,
     "varistor": _varistor, "inrush NTC": _ntc, "X2 capacitor": _x_capacitor, "Y1 capacitor": _y1_capacitor,

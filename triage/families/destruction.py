@@ -53,6 +53,10 @@ def _field_effect(part: Part, at: Settled) -> tuple[float, str]:
                _over(row[POWER], part.ratings.get("power"), FIELD_EFFECT_POWER)), "short_dgs"
 
 
+def _switcher(part: Part, at: Settled) -> tuple[float, str]:
+    return _field_effect(part, at)[0], "short"
+
+
 def _bridge(part: Part, at: Settled) -> tuple[float, str]:
     legs = [at.row(part.ref, f"_{leg}") for leg in "abcd"]
     return max(_over(leg[I_MEAN], part.ratings.get("current"), DIODE_CURRENT) for leg in legs), "d_short"
@@ -90,7 +94,8 @@ def _capacitor(part: Part, at: Settled) -> tuple[float, str]:
 RULES: Mapping[str, Callable[[Part, Settled], tuple[float, str]]] = {
     "fuse": _fuse, "fusible_resistor": _resistor, "resistor": _resistor, "bipolar_transistor": _transistor,
     "zener": _zener, "diode": _diode, "led": _led, "electrolytic": _electrolytic, "capacitor": _capacitor,
-    "x_capacitor": _capacitor, "y_capacitor": _capacitor, "mosfet": _field_effect, "bridge": _bridge,
+    "x_capacitor": _capacitor, "y_capacitor": _capacitor, "varistor": _zener, "mosfet": _field_effect,
+    "primary_side_switcher": _switcher, "buck_switcher": _switcher, "bridge": _bridge,
     "optocoupler": _optocoupler,
 }
 

@@ -27,5 +27,9 @@ class Family:
     """True where every solution begins with empty capacitors: nothing would empty a reservoir that a fault no longer feeds."""
     swing_low: float = 0.78
     """Share of the bulk voltage below which a swing of the switch ends [-]; what rings about the bulk voltage must not count."""
+    swing_high: float = 1.03
+    """Share of the bulk voltage above which a swing begins [-]."""
+    swing_pin: str = ""
+    """Pin of the switch that swings; empty: its collector or drain."""
     look: tuple[str, ...] = ()
     """What can be seen on a board of this family, for telling it apart."""

@@ -7,7 +7,7 @@ from triage.board.circuit import LINE, live_ground, neutral, output_ground
 from triage.board.part import Board
 from triage.board.probe import Probe
 from triage.families.family import Family
-from triage.families.steady import Settled
+from triage.families.steady import Settled, swinging_pin
 from triage.physics.transient import I_RMS, POWER, V_MAX, V_MEAN, V_MIN, V_RMS
 
 INPUT_ROLES = ("fusible input resistor", "mains fuse", "thermal fuse", "inrush NTC", "mains rectifier", "mains bridge",
@@ -26,7 +26,7 @@ def live_probes(board: Board, family: Family, condition: str) -> tuple[Probe, ..
     probes += [Probe("watts", LINE, neutral(board), condition), Probe("amps_ac", LINE, neutral(board), condition)]
     switch = board.by_role(family.switch_role)
     if switch is not None:
-        node = switch.pins["collector" if "collector" in switch.pins else "drain"]
+        node = switch.pins[swinging_pin(switch, family)]
         probes.append(Probe("hertz", node, board.ground["primary"], condition))
     return tuple(probes)
 

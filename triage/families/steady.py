@@ -13,7 +13,7 @@ from triage.board.circuit import NOMINAL, Draw, circuit, output_ground
 from triage.board.fault import Fault
 from triage.board.part import Board, Part
 from triage.families.family import Family
-from triage.physics.netlist import CONTROLLER, Compiled, Netlist, compile_netlist
+from triage.physics.netlist import CONTROLLER, OFF_TIME, Compiled, Netlist, compile_netlist
 from triage.physics.transient import (
     SWITCHING_START,
     V_MAX,
@@ -159,9 +159,14 @@ def _watch(board: Board, family: Family, compiled: Compiled) -> Watch:
     switch, bulk = board.by_role(family.switch_role), board.by_role(family.bulk_role)
     if switch is None or bulk is None:
         return Watch()
-    drain = compiled.index(switch.pins["collector" if "collector" in switch.pins else "drain"])
+    drain = compiled.index(switch.pins[swinging_pin(switch, family)])
     ground = compiled.index(board.ground["primary"])
-    return Watch((drain, ground, compiled.index(bulk.pins["plus"]), ground), family.swing_low)
+    return Watch((drain, ground, compiled.index(bulk.pins["plus"]), ground), family.swing_low, family.swing_high)
+
+
+def swinging_pin(switch: Part, family: Family) -> str:
+    """Pin of the switch whose swings are the switching frequency."""
+    return family.swing_pin or ("collector" if "collector" in switch.pins else "drain")
 
 
 def _voltages(run: _Run) -> dict[str, float]:
@@ -206,9 +211,9 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
 
 
 def _asleep(run: _Run) -> bool:
-    """True when a controller is locked out: it will try again later, or never."""
+    """True when a controller is locked out or rests: it will try again later, or never."""
     kinds, states = run.compiled.behaviour[2], run.compiled.behaviour[4]
-    return bool(np.any((kinds == CONTROLLER) & (states[:, 0] < 0.5)))
+    return bool(np.any((kinds >= CONTROLLER) & (states[:, 0] < 0.5) | (kinds == OFF_TIME) & (states[:, 2] > 0.5)))
 
 
 def _resting_output(run: _Run) -> float:

@@ -103,6 +103,8 @@ def part_stresses(part: Part, at: Settled) -> dict[str, float]:
     if part.kind in ("diode", "led"):
         return {"reverse_voltage": max(-float(row[V_MIN]), 0.0), "average_current": abs(float(row[I_MEAN])),
                 "power": abs(float(row[POWER]))}
+    if part.kind in ("primary_side_switcher", "buck_switcher"):
+        return {"peak_voltage": peak, "peak_current": float(row[I_MAX]), "power": abs(float(row[POWER]))}
     if part.kind == "varistor":
         return {"rms_voltage": float(row[V_RMS]), "peak_voltage": peak, "power": abs(float(row[POWER]))}
     if part.kind == "zener":

@@ -39,7 +39,7 @@ BIPOLAR_DEFAULTS = {"saturation_current": 1e-14, "gain": 100.0, "reverse_gain": 
 
 TERMINALS = 5
 """Most terminals of a part that is more than a junction."""
-MOSFET, SHUNT_REFERENCE, REGULATOR, CONTROLLER = 1, 2, 3, 4
+MOSFET, SHUNT_REFERENCE, REGULATOR, CONTROLLER, PLATEAU, OFF_TIME = 1, 2, 3, 4, 5, 6
 """Kinds of parts that are more than a junction."""
 CLOCK = 3
 """Place of the start of the running period [s] in the state of a controller."""

@@ -84,6 +84,8 @@ class Watch:
     """Switch node, its reference, bulk node, its reference."""
     low: float = 0.78
     """An excursion of the switch ends below this share of the bulk voltage [-]."""
+    high: float = 1.03
+    """It begins above this share of the bulk voltage [-]."""
     nodes: tuple[int, ...] = ()
     start: float = 0.0
     interval: float = 1e-6
@@ -130,7 +132,8 @@ def run_stretch(compiled: Compiled, state: State, start: float, stop: float, wat
         work, compiled.program, compiled.resistor, compiled.transfer, compiled.capacitor, compiled.winding,
         compiled.diode, compiled.bipolar, compiled.behaviour, compiled.source, compiled.port, state.capacitors, state.windings,
         np.array([start, stop, start + skip, quality.largest_step, SMALLEST_STEP, quality.trusted_step]),
-        (quality.newton_share, quality.newton_absolute, quality.step_relative, watch.low), np.array(watch.switch, dtype=np.int64),
+        (quality.newton_share, quality.newton_absolute, quality.step_relative, watch.low, watch.high),
+        np.array(watch.switch, dtype=np.int64),
         (watch.start, watch.interval, np.array(watch.nodes, dtype=np.int64), trace))
     if status != 0:
         raise NoConvergence(reached)

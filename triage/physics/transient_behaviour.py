@@ -1,6 +1,6 @@
 # mypy: disable-error-code="no-untyped-def,call-overload"
 """Compiled behaviour of parts that are more than a junction: field-effect transistors, shunt references, three-terminal
-regulators, current-mode controllers.
+regulators, current-mode controllers; switchers with their own transistor are in transient_switchers.
 
 A behaviour has up to five terminals, its parameters, and a state that changes only between steps. ``currents`` gives what
 flows from the nodes into the terminals; the slopes are taken by differences. ``advance`` moves the state after a step and
@@ -16,8 +16,9 @@ import math
 import numpy as np
 
 from triage.physics.compiled_code import njit
-from triage.physics.netlist import CONTROLLER, MOSFET, REGULATOR, SHUNT_REFERENCE, TERMINALS
+from triage.physics.netlist import CONTROLLER, MOSFET, PLATEAU, REGULATOR, SHUNT_REFERENCE, TERMINALS
 from triage.physics.transient_devices import OPTIONS, voltage
+from triage.physics.transient_switchers import LEADING_EDGE, advance_off_time, advance_plateau, next_edge, peak_sense
 
 DIFFERENCE = 1e-6
 """Step of the slopes [V]."""
@@ -69,13 +70,13 @@ def currents(kind, u, p, s, out):
         i = min(max((p[0] - (exit_ - ground)) * p[1], 0.0), most) * step_up(drop - p[3], 0.12)
         quiet = p[4] * math.tanh(max(entry - ground, 0.0) / 3.0)
         out[0], out[1], out[2] = i + quiet, -i, -quiet
-    elif kind == CONTROLLER:
+    elif kind >= CONTROLLER:
         supply, drive, feedback, ground = u[0], u[1], u[2], u[4]
         awake, high = s[0], s[1]
         source = (supply - drive) / p[9] if high > 0.5 else 0.0
         sink = (drive - ground) / p[10] if awake > 0.5 and high < 0.5 else 0.0
         quiet = (p[8] if awake > 0.5 else 0.0) + (supply - ground) / p[11]
-        pull = (feedback - ground - (p[12] if awake > 0.5 else 0.0)) / p[7]
+        pull = (feedback - ground - (p[12] if awake > 0.5 else 0.0)) / p[7] if kind == CONTROLLER else 0.0
         out[0] = source + quiet
         out[1] = sink - source
         out[2] = pull
@@ -139,6 +140,9 @@ def margin(v, behaviour, t):
             if ramp > p[14]:
                 peak = threshold(voltage(v, nodes[b, 2]) - ground, p) - p[5] * ramp
                 worst = max(worst, voltage(v, nodes[b, 3]) - ground - peak)
+        elif kinds[b] > CONTROLLER and states[b, 1] > 0.5 and states[b, 3] > LEADING_EDGE:
+            sensed = voltage(v, nodes[b, 3]) - voltage(v, nodes[b, 4])
+            worst = max(worst, sensed - peak_sense(kinds[b], params[b], states[b]))
     return worst
 
 
@@ -153,6 +157,8 @@ def next_event(behaviour, t):
             for when in (s[3] + p[6], s[3] + p[13] * p[6] if s[1] > 0.5 else 1e30, s[3] + p[14] * p[6]):
                 if when > t * (1.0 + 1e-15) + 1e-13:
                     soonest = min(soonest, when)
+        elif kinds[b] > CONTROLLER:
+            soonest = min(soonest, t + next_edge(kinds[b], params[b], states[b]))
     return soonest
 
 
@@ -171,7 +177,19 @@ def advance(v, behaviour, t, h):
             s[0] += (25.0 + heat * p[6] - s[0]) * (1.0 - math.exp(-h / p[7]))
         elif kinds[b] == CONTROLLER:
             jumped = advance_controller(v, nodes[b], p, s, t) or jumped
+        elif kinds[b] > CONTROLLER:
+            jumped = advance_switcher(v, nodes[b], kinds[b], p, s, h) or jumped
     return jumped
+
+
+@njit(**OPTIONS)
+def advance_switcher(v, nodes, kind, p, s, h):
+    """Move a switcher with its own transistor; True when its drive or supply current jumped."""
+    ground = voltage(v, nodes[4])
+    supply, feedback, sensed = voltage(v, nodes[0]) - ground, voltage(v, nodes[2]) - ground, voltage(v, nodes[3]) - ground
+    if kind == PLATEAU:
+        return advance_plateau(supply, feedback, sensed, p, s, h)
+    return advance_off_time(supply, feedback, sensed, p, s, h)
 
 
 @njit(**OPTIONS)

@@ -302,8 +302,8 @@ def keep(m, h, euler):
 
 
 @njit(**INNER)
-def excursion(v, swing, low, up):
-    """(swing state, 1 at the end of an excursion) of the watched switch: 1 after it was above 1.03 of the bulk voltage.
+def excursion(v, swing, low, high, up):
+    """(swing state, 1 at the end of an excursion) of the watched switch: 1 after it was above ``high`` of the bulk voltage.
 
     ``swing`` = (switch node, its reference, bulk node, its reference); an excursion ends below ``low`` of the bulk voltage [-].
     """
@@ -311,7 +311,7 @@ def excursion(v, swing, low, up):
         return up, 0
     level = voltage(v, swing[0]) - voltage(v, swing[1])
     bulk = voltage(v, swing[2]) - voltage(v, swing[3])
-    if bulk > 15.0 and level > 1.03 * bulk:
+    if bulk > 15.0 and level > high * bulk:
         return 1, 0
     if level < low * bulk:
         return -1, 1 if up == 1 else 0
@@ -343,11 +343,11 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
 
     ``vc``, ``iw`` and the nodes in ``m`` are read and left at the end point. ``times`` = (start, stop, start of statistics,
     largest step, smallest step, step below which the error is not asked). ``tolerances`` = (move of a blocked junction [-],
-    error of a conducting junction [V], error of a step [-], end of an excursion of the switch [-]). ``trace`` = (start, interval,
+    error of a conducting junction [V], error of a step [-], end and begin of an excursion [-]). ``trace`` = (start, interval,
     nodes, rows).
     """
     stop, stats_from, h_max, h_min, h_trust = times[1], times[2], times[3], times[4], times[5]
-    share, error, scale, low = tolerances
+    share, error, scale, low, high = tolerances
     begin(m, transfer, source, diode, bipolar, vc, iw)
     t, h, steps, up, swings, used, next_trace = times[0], h_min * EULER_START, 0, 0, 0, 0, trace[0]
     since, overshoot = 0, -1.0
@@ -399,7 +399,7 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
         if advance(m.v, behaviour, t, h):
             since, worst, h = 0, 1.0, AFTER_JUMP
         overshoot = margin(m.v, behaviour, t)
-        up, ended = excursion(m.v, swing, low, up)
+        up, ended = excursion(m.v, swing, low, high, up)
         if t >= stats_from:
             swings += ended
         if t >= next_trace and used < trace[3].shape[0]:

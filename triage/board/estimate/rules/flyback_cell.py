@@ -7,7 +7,7 @@ from triage.physics.clamp import characteristic_resistance, clamp_power, clamp_r
 from triage.physics.flyback import continuous_duty, diode_reverse, turns_ratio
 from triage.physics.magnetics import turns_for_peak
 
-FAMILIES = ("ringing_choke_zener", "ringing_choke_opto", "pwm_flyback_opto")
+FAMILIES = ("ringing_choke_zener", "ringing_choke_opto", "pwm_flyback_opto", "pwm_flyback_primary")
 
 COPPER = 2.1e-8
 """Resistivity of copper at 70 degC [ohm m]; handbook value."""
