@@ -16,6 +16,7 @@ from triage.board.part import Board, Label, Mains, Part
 from triage.board.probe import UNITS
 from triage.errors import EntryError, JobError, QuantityError
 from triage.job import views as v
+from triage.job.progress import Listener
 
 DRAWING = """\
  mains_l          rect         bulk                        |  sec          out
@@ -263,6 +264,7 @@ class FakeBench:
     prepare_seconds: float = 0.0
     board: Board = BOARD
     ready: bool = False
+    track: list[v.MoveView] = field(default_factory=list)
     said: list[v.EntryView] = field(default_factory=list)
     values: dict[tuple[str, str, str, str], float] = field(default_factory=dict)
     order: list[object] = field(default_factory=list)
@@ -352,6 +354,9 @@ class FakeBench:
     def view(self) -> v.JobView:
         if not self.ready:
             return self._framed(computing=True)
+        suspects = self._suspects()
+        if not self.track or self.track[-1].suspects != suspects:
+            self.track.append(v.MoveView(self.said[-1].text if self.said else "at the start", suspects))
         verdict = self._verdict()
         gate_open = self._stage() not in ("cautions", "inspection")
         return self._framed(
@@ -377,8 +382,14 @@ class FakeBench:
             **more,  # type: ignore[arg-type]
         )
 
-    def prepare(self) -> None:
-        time.sleep(self.prepare_seconds)
+    def moves(self) -> tuple[v.MoveView, ...]:
+        return tuple(self.track)
+
+    def prepare(self, listener: Listener | None = None) -> None:
+        for done in range(20):
+            time.sleep(self.prepare_seconds / 20)
+            if listener is not None:
+                listener("cold readings", done, 20)
         self.ready = True
 
     def acknowledge(self, key: str) -> v.JobView:

@@ -5,6 +5,7 @@ from collections.abc import Awaitable, Callable
 from pathlib import Path
 from typing import Any
 
+from textual import _wait
 from textual.pilot import Pilot
 from textual.strip import Strip
 
@@ -12,6 +13,10 @@ from tests.app.fake_bench import FakeShelf
 from triage.app.app import TriageApp
 from triage.app.glyphs import FULL, Glyphs
 from triage.app.terminal import Terminal
+
+# Textual's pilot sleeps 20 ms at a time, twice a key, until the process is idle; `settle` waits for the bench besides.
+_wait.SLEEP_GRANULARITY = 1 / 250
+_wait.SLEEP_IDLE = 1 / 2500
 
 Story = Callable[[Pilot[int]], Awaitable[None]]
 
@@ -45,7 +50,6 @@ async def settle(pilot: Pilot[int]) -> None:
         if not desk.busy and not desk.pending:
             break
         await asyncio.sleep(0.01)
-    await pilot.pause()
     await pilot.pause()
 
 

@@ -61,7 +61,7 @@ class Terminal:
         self._stream.feed(_QUERIES.sub(b"", data))
         return data
 
-    def wait_for(self, text: str, limit: float = 10.0) -> str:
+    def wait_for(self, text: str, limit: float = 30.0) -> str:
         """Take in what is sent until the screen shows the text; the screen. Fails with the screen
         otherwise."""
         end = time.monotonic() + limit

@@ -1,10 +1,13 @@
 """The app in a real pseudo terminal: a whole job by keyboard under the common TERMs, signals, refusals, idle
 silence."""
 
+import os
 import re
 import signal
 import subprocess
 import sys
+from concurrent.futures import Future, ThreadPoolExecutor
+from pathlib import Path
 
 import pytest
 
@@ -36,7 +39,7 @@ def press(term: Terminal, *keys: str) -> None:
     """Press keys as a person does, each after the screen has come to rest."""
     for key in keys:
         term.send(key)
-        term.read(quiet=0.15)
+        term.read(quiet=0.3)
 
 
 def to_bench(term: Terminal) -> None:
@@ -45,8 +48,8 @@ def to_bench(term: Terminal) -> None:
     press(term, DOWN)
     say(term, ENTER, "What is wrong with it?")
     press(term, ENTER, ENTER)
-    say(term, ENTER, "cautions: 3 to acknowledge")
-    for left in ("2 to acknowledge", "1 to acknowledge", "to look at: 2"):
+    say(term, ENTER, "cautions: 3 before touching")
+    for left in ("2 before touching", "1 before touching", "to look at: 2"):
         say(term, ENTER, left)
     press(term, ENTER)
     say(term, ENTER, "to look at: 1")
@@ -54,10 +57,8 @@ def to_bench(term: Terminal) -> None:
     say(term, ENTER, "next  volts DC")
 
 
-@pytest.mark.parametrize("name", TERMS)
-def test_a_whole_job_by_keyboard_at_80x24(tmp_path, name):
-    keys = LINUX_F if name == "linux" else F
-    term = app_on_stand_in(tmp_path, environ=TERMS[name])
+def whole_job(term: Terminal, keys: dict[str, str]) -> str:
+    """From the start page to the closed job; the last screen."""
     to_bench(term)
     say(term, "12 V" + ENTER, "ok safe to touch")
     say(term, "*" + ENTER, "{+coll}")
@@ -72,9 +73,28 @@ def test_a_whole_job_by_keyboard_at_80x24(tmp_path, name):
     press(term, ENTER)
     say(term, "50M" + ENTER, "retest insulation: pass")
     say(term, "5.02" + ENTER, "retest output: pass")
-    press(term, DOWN, DOWN, DOWN)
     say(term, ENTER, "saved after every entry")
-    text = term.wait_for("fitted KSC5027 at Q1")
+    return term.wait_for("fitted KSC5027 at Q1")
+
+
+@pytest.fixture(scope="module")
+def whole_jobs(tmp_path_factory) -> dict[str, tuple[Terminal, Path, Future[str]]]:
+    """The same job under every TERM, played side by side: name -> terminal, folder, last screen."""
+    begun = {}
+    for name, environ in TERMS.items():
+        folder = tmp_path_factory.mktemp("jobs")
+        begun[name] = app_on_stand_in(folder, environ=environ), folder
+    with ThreadPoolExecutor(2 * (os.cpu_count() or 1)) as pool:
+        return {
+            name: (term, folder, pool.submit(whole_job, term, LINUX_F if name == "linux" else F))
+            for name, (term, folder) in begun.items()
+        }
+
+
+@pytest.mark.parametrize("name", TERMS)
+def test_a_whole_job_by_keyboard_at_80x24(whole_jobs, name):
+    term, folder, last = whole_jobs[name]
+    text = last.result()
     assert "CLOSED" in text
     assert text.splitlines()[-1].startswith("F1 ?") and len(text.splitlines()) == 24
     if name in ("no UTF-8",):
@@ -83,7 +103,7 @@ def test_a_whole_job_by_keyboard_at_80x24(tmp_path, name):
         assert not re.search(rb"\x1b\[[0-9;]*[34]8;[25];", term.received)
     term.send("\x11")
     assert term.status() == 0
-    assert "closed: repaired" in (tmp_path / "radio-desk-cube.toml").read_text()
+    assert "closed: repaired" in (folder / "radio-desk-cube.toml").read_text()
     assert b"\x1b[?1049l" in term.received
 
 

@@ -123,38 +123,45 @@ FROM_START = (start, intake, cautions, looks)
 FROM_BENCH = (bench, refused, verdict, stress, moves, parts, marking, retest, record, reading, sign, menu, help_bench)
 
 
-def drawn(story, size: tuple[int, int], folder: Path) -> str:
-    """The screen at the end of a story, paths left out."""
-    shown: list[str] = []
+def drawn(story, folder: Path) -> dict[tuple[int, int], str]:
+    """The screen at the end of a story in each size, the terminal being resized in between; paths left out."""
+    shown: dict[tuple[int, int], str] = {}
 
     async def run(pilot: Pilot[int]) -> None:
         await story(pilot)
         await settle(pilot)
-        shown.append(text_of(pilot.app).replace(str(folder), "JOBS"))
+        for size in SIZES:
+            await pilot.resize_terminal(*size)
+            await settle(pilot)
+            shown[size] = text_of(pilot.app).replace(str(folder), "JOBS") + "\n"
 
-    play(folder, run, size=size, at_bench=story in FROM_BENCH)
-    return shown[0] + "\n"
+    play(folder, run, size=SIZES[0], at_bench=story in FROM_BENCH)
+    return shown
 
 
-@pytest.mark.parametrize("size", SIZES, ids=lambda size: f"{size[0]}x{size[1]}")
+def kept(story, size: tuple[int, int]) -> Path:
+    """The file of a screen."""
+    return KEPT / f"{story.__name__}-{size[0]}x{size[1]}.txt"
+
+
 @pytest.mark.parametrize("story", FROM_START + FROM_BENCH, ids=lambda story: story.__name__)
-def test_the_screen_is_as_kept(story, size):
+def test_the_screen_is_as_kept(story):
     with tempfile.TemporaryDirectory(prefix="jobs") as folder:
-        text = drawn(story, size, Path(folder))
-    rows = text.splitlines()
-    assert len(rows) == size[1]
-    assert rows[-1].startswith("F1 ?")
-    assert text == (KEPT / f"{story.__name__}-{size[0]}x{size[1]}.txt").read_text(encoding="utf-8")
+        shown = drawn(story, Path(folder))
+    for size, text in shown.items():
+        rows = text.splitlines()
+        assert len(rows) == size[1]
+        assert rows[-1].startswith("F1 ?")
+        assert text == kept(story, size).read_text(encoding="utf-8")
 
 
 def main() -> None:
     """Write every screen anew."""
     KEPT.mkdir(exist_ok=True)
     for story in FROM_START + FROM_BENCH:
-        for size in SIZES:
-            with tempfile.TemporaryDirectory(prefix="jobs") as folder:
-                text = drawn(story, size, Path(folder))
-            (KEPT / f"{story.__name__}-{size[0]}x{size[1]}.txt").write_text(text, encoding="utf-8")
+        with tempfile.TemporaryDirectory(prefix="jobs") as folder:
+            for size, text in drawn(story, Path(folder)).items():
+                kept(story, size).write_text(text, encoding="utf-8")
 
 
 if __name__ == "__main__":

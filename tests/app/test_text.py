@@ -20,7 +20,7 @@ from triage.app.text.frame import status_lines
 from triage.app.text.key_line import standard_keys
 from triage.app.text.moves import move_lines
 from triage.app.text.stress import stress_head, stress_line, with_it, worst_first
-from triage.job.views import EntryView, JobView, OutcomeView, SuggestionView, SuspectView, VerdictView
+from triage.job.views import EntryView, JobView, MoveView, OutcomeView, SuggestionView, SuspectView, VerdictView
 
 SUGGESTION = SuggestionView(
     "ohms",
@@ -65,7 +65,7 @@ def test_the_next_reading_fits_and_names_leads_reason_and_outcomes(width, rows):
     text = "\n".join(map(plain, lines))
     assert "ohms" in text and "! C1 may hold 325 V" in text and "shorted" in text
     if width >= 80:
-        assert "{+coll}" in text and "{-pgnd}" in text and "unplugged" in text and "D2 anode" in text
+        assert "{+coll}" in text and "{-pgnd}" in text and "unplugged" in text and "Q1 collector" in text and "Q1 emitter" in text
 
 
 def test_a_live_reading_says_so_in_words():
@@ -134,7 +134,7 @@ def test_stresses_with_a_part_fitted_are_told_as_shares():
 def test_moves_show_rise_and_fall():
     before = (SuspectView("Q1", "ce_short", 0.3), SuspectView("R1", "open", 0.7))
     after = (SuspectView("Q1", "ce_short", 0.9), SuspectView("R1", "open", 0.1))
-    lines = move_lines([("start", before), ("ohms: 0.8", after)], 80, 6, ASCII)
+    lines = move_lines([MoveView("start", before), MoveView("ohms: 0.8", after)], 80, 6, ASCII)
     assert "last +60" in plain(lines[1]) and "last -60" in plain(lines[2])
 
 

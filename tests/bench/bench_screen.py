@@ -116,7 +116,7 @@ class Player:
         self.press("\x1b[17~", ENTER)
         self.value("50M")
         self.value("5.02")
-        self.press(DOWN, DOWN, DOWN, ENTER)
+        self.press(ENTER)
         self.term.wait_for("saved after every entry")
 
 

@@ -151,7 +151,7 @@ def test_a_charged_bulk_capacitor_is_asked_for_again(bench: Bench) -> None:
 
 def test_a_reading_entered_before_its_time_is_recorded_and_the_caution_shown(bench: Bench) -> None:
     view = bench.read("ohms", "rect", "mains_l", "cold", "10R")
-    assert view.entries[-1].text.startswith("ohms rect to mains_l")
+    assert view.entries[-1].text.startswith("resistance rect to mains_l")
     assert "CAUTION" in view.message and "acknowledge" in view.message
     view = bench.read("volts_dc", "bulk", "pgnd", "cold", "0.1")
     assert "CAUTION" in view.message, "the bulk capacitor too is read with the cautions known"

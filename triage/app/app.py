@@ -103,8 +103,13 @@ class TriageApp(App[int]):
     def _changed(self) -> None:
         """Tell the screen on top that there is something new to show."""
         refresh_view = getattr(self.screen, "refresh_view", None)
-        if refresh_view is not None:
+        if refresh_view is None:
+            return
+        try:
             refresh_view()
+        except Exception as error:
+            self._fault(error)
+            self.notify(f"this screen cannot be drawn ({type(error).__name__}: {error}); every entry is saved")
 
     def _fault(self, error: Exception) -> None:
         self.faults.append(error)
@@ -142,6 +147,14 @@ class TriageApp(App[int]):
         """Say that the adapter was powered up or unplugged."""
         self.desk.enter(lambda bench: bench.power(on))
 
+    def action_stop(self) -> None:
+        """End the calculation of what to expect."""
+        self.desk.stop()
+
+    def action_compute(self) -> None:
+        """Go on with it."""
+        self.desk.compute()
+
     def action_start(self) -> None:
         """Put the job away and go back to the start page."""
         self.places.clear()
@@ -171,4 +184,11 @@ def run(job: Path | None, profile: str | None, jobs_folder: Path | None) -> int:
     app.run()
     for fault in app.faults:
         print(f"triage: fault in the program: {type(fault).__name__}: {fault}", file=sys.stderr)
-    return app.return_code or 0
+    code = app.return_code or 0
+    if app.desk.busy:
+        # Python would wait for the threads of a running solution, up to a minute; the entries are on the disk.
+        app.desk.finish(_SAVE_SECONDS)
+        app.desk.put_away()
+        sys.stderr.flush()
+        os._exit(code)
+    return code

@@ -11,7 +11,8 @@ from typing import TYPE_CHECKING, Protocol
 
 if TYPE_CHECKING:
     from triage.board.part import Board
-    from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+    from triage.job.progress import Listener
+    from triage.job.views import CandidateView, DemandView, JobView, MatchView, MoveView, StressView
 
 
 class OpenJob(Protocol):
@@ -28,8 +29,8 @@ class OpenJob(Protocol):
     def view(self) -> JobView:
         """What there is to show now."""
 
-    def prepare(self) -> object:
-        """Compute what readings to expect; takes seconds."""
+    def prepare(self, listener: Listener | None = None) -> object:
+        """Compute what readings to expect; takes seconds. What the listener raises ends it."""
 
     def acknowledge(self, key: str) -> JobView:
         """A caution was read."""
@@ -60,6 +61,9 @@ class OpenJob(Protocol):
 
     def suspect(self, ref: str) -> JobView:
         """The technician's own hunch."""
+
+    def moves(self) -> tuple[MoveView, ...]:
+        """How the suspects moved over the entries."""
 
     def stresses(self) -> tuple[StressView, ...]:
         """The stresses of every part at their worst conditions."""

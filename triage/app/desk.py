@@ -6,6 +6,7 @@ calculation runs in a thread of its own, so that cautions and signs can be enter
 
 from __future__ import annotations
 
+import threading
 from collections.abc import Callable, Mapping
 from typing import TYPE_CHECKING, TypeVar
 
@@ -14,9 +15,17 @@ from triage.app.contract import OpenJob
 from triage.errors import TriageError
 
 if TYPE_CHECKING:
-    from triage.job.views import JobView, SuspectView
+    from triage.job.views import JobView
 
 T = TypeVar("T")
+_STEPS = 20
+"""Times that a calculation shows how far it is: each costs a line on a slow link."""
+
+
+class Stopped(Exception):
+    """The technician stopped the calculation."""
+
+
 Deliver = Callable[[Callable[[], None]], object]
 
 
@@ -36,21 +45,23 @@ class Desk:
         self._fault = fault
         self._quick = BackRoom()
         self._slow = BackRoom()
+        self._long = BackRoom()
         self.bench: OpenJob | None = None
         self.view: JobView | None = None
         self.message = ""
         """What the last question came to, for the message line."""
         self.refused = False
         """True when the message says that something was not accepted."""
+        self.progress = ""
+        """How far the calculation of what to expect is; empty when there is none."""
+        self._stop = threading.Event()
         self.pending = False
         """True while an entry is being worked on."""
-        self.track: list[tuple[str, tuple[SuspectView, ...]]] = []
-        """What each entry since the job was opened led to: its words and the suspects after it."""
 
     @property
     def busy(self) -> bool:
         """True while something is being computed."""
-        return self._quick.busy or self._slow.busy
+        return self._quick.busy or self._slow.busy or self._long.busy
 
     @property
     def pins(self) -> Mapping[str, tuple[str, ...]]:
@@ -84,18 +95,49 @@ class Desk:
 
         self._quick.ask("open", work, opened, self._deliver)
 
+    def compute(self) -> None:
+        """Go on with a calculation that was stopped."""
+        if self.bench is not None and self.view is not None and self.view.computing and not self._slow.busy:
+            self._prepare(self.bench)
+
+    def stop(self) -> None:
+        """End the calculation of what to expect; entries can be made without it."""
+        self._stop.set()
+
     def _prepare(self, bench: OpenJob) -> None:
+        self._stop = stop = threading.Event()
+        self.progress = "computing..."
+        step = -1
+
+        def listen(what: str, done: int, wanted: int) -> None:
+            nonlocal step
+            if stop.is_set():
+                raise Stopped
+            now = done * _STEPS // wanted if wanted else 0
+            if now != step:
+                step = now
+                self._deliver(lambda: hear(f"computing {what}" + (f", {100 * done // wanted} %" if wanted else "")))
+
+        def hear(text: str) -> None:
+            if bench is self.bench:
+                self.progress = text
+                self._changed()
+
         def ready(answer: Answer[object]) -> None:
             if bench is not self.bench:
                 return
-            if answer.error is not None:
+            self.progress = ""
+            if isinstance(answer.error, Stopped):
+                self.progress = "stopped"
+                self._say("stopped: nothing is suggested; type go to compute on, or enter readings of your own choice (+)")
+            elif answer.error is not None:
                 self._report(answer.error)
             elif self.pending:
                 self._changed()
             else:
                 self._quick.ask("entry", bench.view, self._accepted_quietly, self._deliver)
 
-        self._slow.ask("prepare", bench.prepare, ready, self._deliver)
+        self._slow.ask("prepare", lambda: bench.prepare(listen), ready, self._deliver)
 
     def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None, queue: bool = False) -> bool:
         """Give the bench an entry; False when there is no job, or the entry before is still being worked on.
@@ -130,8 +172,12 @@ class Desk:
         call: Callable[[OpenJob], T],
         then: Callable[[T], None],
         failed: Callable[[str], None] | None = None,
+        long: bool = False,
     ) -> None:
-        """Ask the bench something that changes nothing; only the newest question of a lane is answered."""
+        """Ask the bench something that changes nothing; only the newest question of a lane is answered.
+
+        ``long``: what may solve a circuit anew, which takes up to a minute and must not keep an entry waiting.
+        """
         bench = self.bench
         if bench is None:
             return
@@ -139,19 +185,24 @@ class Desk:
         def done(answer: Answer[T]) -> None:
             if answer.error is not None:
                 self._report(answer.error, failed)
-            else:
+                return
+            try:
                 then(answer.value)  # type: ignore[arg-type]
+            except Exception as error:
+                # What cannot be shown must not take the screen down in the middle of a job.
+                self._report(error, failed)
 
-        self._quick.ask(lane, lambda: call(bench), done, self._deliver)
+        (self._long if long else self._quick).ask(lane, lambda: call(bench), done, self._deliver)
 
     def put_away(self) -> None:
         """Let go of the job; answers still to come for it are dropped."""
         self._quick.forget()
+        self._stop.set()
         self._slow.forget()
+        self._long.forget()
         if self.bench is not None:
             self.bench.release()
         self.bench, self.view, self.message, self.refused, self.pending = None, None, "", False, False
-        self.track = []
 
     def finish(self, seconds: float) -> bool:
         """Wait until every entry is with the bench, which writes each at once; False when that takes
@@ -167,8 +218,6 @@ class Desk:
 
     def _take(self, view: JobView) -> None:
         self.view = view
-        if view.suspects and (not self.track or self.track[-1][1] != view.suspects):
-            self.track.append((view.entries[-1].text if view.entries else "at the start", view.suspects))
 
     def _say(self, text: str, refused: bool = False) -> None:
         self.message, self.refused = text, refused
@@ -176,7 +225,11 @@ class Desk:
 
     def _report(self, error: Exception | None, failed: Callable[[str], None] | None = None) -> None:
         if isinstance(error, TriageError):
+            from triage.app.text.bench import key_for
+
             text = str(error)
+            key = key_for(text)
+            text = f"{key}: {text}" if key else text
         else:
             text = f"fault in the program ({type(error).__name__}: {error}); the entries before are saved"
             if error is not None:

@@ -15,7 +15,7 @@ from triage.app.desk import Desk
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, clip, line, wrapped
 from triage.app.text.key_line import standard_keys
-from triage.app.widgets.panel import ListPanel, Panel
+from triage.app.widgets.panel import ListPanel, Palette, Panel
 
 if TYPE_CHECKING:
     from triage.app.app import TriageApp
@@ -57,6 +57,7 @@ class Frame(Screen[None]):
 
     def compose(self) -> ComposeResult:
         """Status, body, message, keys."""
+        yield Palette()
         yield Panel(id="status")
         yield from self.body()
         yield Panel(id="message")
@@ -102,18 +103,28 @@ class Frame(Screen[None]):
             return (line(Span(f" {self.NAME} ", "head")),)
         from triage.app.text.frame import status_lines
 
-        return status_lines(view, self.NAME, self.wide)
+        return status_lines(view, self.NAME, self.wide, self.desk.progress)
 
     def refresh_body(self, view: JobView | None) -> None:
         """Show the newest view in the body."""
 
-    def ask(self, lane: str, call: Callable[[OpenJob], T], then: Callable[[T], None], failed: Callable[[str], None]) -> None:
-        """Ask the bench something that changes nothing; nothing is shown when this screen is gone by then."""
+    def ask(
+        self,
+        lane: str,
+        call: Callable[[OpenJob], T],
+        then: Callable[[T], None],
+        failed: Callable[[str], None],
+        long: bool = False,
+    ) -> None:
+        """Ask the bench something that changes nothing; nothing is shown when this screen is gone by then.
+
+        ``long`` as for ``Desk.look``.
+        """
 
         def while_here(show: Callable[[U], None]) -> Callable[[U], None]:
             return lambda answer: show(answer) if self.is_attached and self.is_running else None
 
-        self.desk.look(lane, call, while_here(then), while_here(failed))
+        self.desk.look(lane, call, while_here(then), while_here(failed), long)
 
     def show_message(self, text: str = "", refused: bool = False) -> None:
         """Show a message, or the newest one of the desk; what it cannot hold is cut."""

@@ -38,6 +38,8 @@ COMMANDS = (
     Command("", "", "seen", "form('sign')", "enter something seen, heard, smelt or felt at a part"),
     Command("", "", "power on", "power(True)", "say that the adapter was powered up through the current limit"),
     Command("", "", "unplug", "power(False)", "say that the adapter was unplugged"),
+    Command("", "", "stop", "stop", "end the calculation of what to expect (stop in the empty field)"),
+    Command("", "", "go", "compute", "go on with it (go in the empty field)"),
     Command("", "", "note", "form('note')", "a remark for the next reader of the record"),
     Command("", "", "complaint", "go('intake')", "what is wrong with the adapter, and where it was seen"),
     Command("", "", "suspect", "form('hunch')", "name a part that you suspect yourself"),

@@ -11,19 +11,24 @@ from triage.board.probe import COLD_FUNCTIONS, CONDITIONS, LIVE_FUNCTIONS, Probe
 _OPEN_LINE = ("ol", "o.l", "o.l.", "o", "*", "inf", "open")
 _SKIP = ("skip", "s")
 _NO_REACH = ("can't reach", "cant reach", "cannot reach", "c")
-_UNDO = ("undo", "u")
-_MENU = ("/",)
-_OTHER = ("+",)
-_POWER = ("on", "power")
-_UNPLUG = ("off", "unplug", "unplugged")
+_COMMANDS = {
+    "undo": ("undo", "u"),
+    "menu": ("/",),
+    "other": ("+",),
+    "on": ("on", "power"),
+    "off": ("off", "unplug", "unplugged"),
+    "stop": ("stop",),
+    "go": ("go", "go on"),
+}
+"""What is meant -> the words for it."""
 
 
 class Typed(NamedTuple):
     """What was meant."""
 
     kind: str
-    """``reading``, ``skip``, ``undo``, ``menu``, ``other`` (a form for any reading), ``on``, ``off`` or
-    ``nothing``."""
+    """``reading``, ``skip``, ``undo``, ``menu``, ``other`` (a form for any reading), ``on``, ``off``, ``stop``, ``go``
+    or ``nothing``."""
     text: str = ""
     """The value as typed, or the reason of a skip."""
     probe: Probe | None = None
@@ -50,9 +55,9 @@ def understand(text: str) -> Typed:
         return Typed("skip", "skipped")
     if word.startswith(("skip ", "s ")):
         return Typed("skip", text.split(" ", 1)[1])
-    for words, kind in ((_UNDO, "undo"), (_MENU, "menu"), (_OTHER, "other"), (_POWER, "on"), (_UNPLUG, "off")):
-        if word in words:
-            return Typed(kind)
+    kind = next((kind for kind, words in _COMMANDS.items() if word in words), "")
+    if kind:
+        return Typed(kind)
     return _whole_reading(text) or Typed("reading", text)
 
 

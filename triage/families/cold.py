@@ -88,12 +88,17 @@ def read_cold(board: Board, faults: Sequence[Fault], probes: Sequence[Probe], dr
 
 def cold_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Sequence[Probe], draws: Sequence[Draw],
                  progress: Callable[[int, int], None] | None = None) -> NDArray[np.float32]:
-    """Readings over hypotheses, probes and specimens; shape (H, P, D). ``progress`` hears (done, wanted)."""
+    """Readings over hypotheses, probes and specimens; shape (H, P, D). ``progress`` hears (done, wanted) and may raise to
+    end it."""
     out = np.empty((len(hypotheses), len(probes), len(draws)), dtype=np.float32)
     with ThreadPoolExecutor(max_workers=os.cpu_count() or 1) as pool:
         jobs = {pool.submit(read_cold, board, hypothesis.faults, probes, draws): h for h, hypothesis in enumerate(hypotheses)}
-        for done, job in enumerate(as_completed(jobs), 1):
-            out[jobs[job]] = job.result()
-            if progress:
-                progress(done, len(hypotheses))
+        try:
+            for done, job in enumerate(as_completed(jobs), 1):
+                out[jobs[job]] = job.result()
+                if progress:
+                    progress(done, len(hypotheses))
+        except BaseException:
+            pool.shutdown(wait=False, cancel_futures=True)
+            raise
     return out

@@ -29,11 +29,12 @@ from triage.job.entries import last_standing, make_entry, probe_of, replay
 from triage.job.gates import Rules, allow, facts_of
 from triage.job.learning import NONE, experience_from_dict, experience_of
 from triage.job.lock import Lock
+from triage.job.progress import Listener, heard_by
 from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import SuspectWriter, entry_text, stress_view
-from triage.job.views import CandidateView, CombinationView, DemandView, JobView, MatchView, StressView, WorthView
+from triage.job.views import CandidateView, CombinationView, DemandView, JobView, MatchView, MoveView, StressView, WorthView
 from triage.job.worth import worth_of
 from triage.quantities import parse, parse_reading
 from triage.safety.cautions import cautions
@@ -160,11 +161,15 @@ class Bench:
         left = self._lock.left_behind if self._lock is not None else None
         return str(left) if left is not None else ""
 
-    def prepare(self) -> None:
+    def prepare(self, listener: Listener | None = None) -> None:
         """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
-        first time."""
-        diagnosis = self.workings.diagnosis(self.board, self.experience)
-        stresses = self.stresses_before()
+        first time.
+
+        listener: hears how far it is; what it raises ends the calculation.
+        """
+        with heard_by(listener):
+            diagnosis = self.workings.diagnosis(self.board, self.experience)
+            stresses = self.stresses_before()
         self.answers = picture.Answers(diagnosis, stresses, SuspectWriter(self.board, stresses))
 
     def view(self, message: str = "") -> JobView:
@@ -244,6 +249,12 @@ class Bench:
         """A remark for the next reader."""
         return self._enter("note", note=text)
 
+    def moves(self) -> tuple[MoveView, ...]:
+        """How the suspects moved over the entries, oldest first; empty before ``prepare``."""
+        from triage.job.track import moves
+
+        return moves(self)
+
     def stresses(self) -> tuple[StressView, ...]:
         """Stresses at their worst conditions, with the parts fitted so far."""
         return self._stress_views(self.board_now())
@@ -317,7 +328,7 @@ class Bench:
         The fault that the next job may learn from is noted: that of the verdict, confirmed when its part was
         replaced and the adapter works.
         """
-        return self._enter("closed", verdict=verdict, **picture.lesson(self))
+        return self._enter("closed", verdict=verdict, **picture.lesson(self, verdict))
 
     def returned(self, reason: str) -> JobView:
         """The adapter came back after the repair; the job is open again."""

@@ -28,6 +28,7 @@ from triage.families.stresses import (
     worst_stresses,
 )
 from triage.job.cache import Kept
+from triage.job.progress import report
 from triage.physics.netlist import Netlist
 from triage.physics.transient import NoConvergence, Stretch
 
@@ -63,6 +64,8 @@ def settled_corners(board: Board, corners: Iterable[Condition], kept: Kept) -> d
             found[corner] = _read(kept.get(_key(board, corner)))
             continue
         missing.append(corner)
+    if missing:
+        report("the sound board at low and high mains")
     for corner, settled in _solved(board, missing).items():
         content = _write(settled)
         kept.put(_key(board, corner), content)

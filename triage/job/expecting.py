@@ -28,6 +28,7 @@ from triage.families.cold import cold_probes, cold_samples, specimens
 from triage.families.live import live_probes, state_class, summary
 from triage.families.points import SOLUTION, OperatingPoints, Point, point_key
 from triage.job.cache import Kept
+from triage.job.progress import report
 from triage.job.views import ReadingExpected
 from triage.quantities import engineering
 
@@ -134,13 +135,17 @@ def _cold(
     place = {name: row for row, name in enumerate(names)}
     missing = [one for one in dict.fromkeys(hypotheses) if str(one) not in place]
     if missing:
-        found = cold_samples(board, missing, probes, specimens(board, DRAWS, SEED), progress)
+        found = cold_samples(board, missing, probes, specimens(board, DRAWS, SEED), progress or _told)
         rows = np.concatenate([rows, found])
         names += [str(one) for one in missing]
         kept.put_array(key, rows)
         kept.put(key, names)
         place = {name: row for row, name in enumerate(names)}
     return rows[[place[str(one)] for one in hypotheses]]
+
+
+def _told(done: int, wanted: int) -> None:
+    report("cold readings", done, wanted)
 
 
 def _kept_rows(kept: Kept, key: str, probes: int) -> tuple[list[str], NDArray[np.float32]]:

@@ -12,7 +12,7 @@ from triage.diagnosis.engine import Diagnosis, Job
 from triage.job import shown
 from triage.job.display import plain
 from triage.job.entries import Replay, Told, replay
-from triage.job.gates import Rules, bulk_open, cold_waits_for, live_open, open_check, waits_for
+from triage.job.gates import Rules, bulk_open, claims_repair, cold_waits_for, live_open, open_check, waits_for
 from triage.job.proof import shown as shown_lines
 from triage.job.views import CautionView, JobView, LookView, StressView, SuggestionView, SuspectView, VerdictView
 from triage.safety.gate import GateFacts, permit, safe_to_touch, stage
@@ -79,6 +79,8 @@ def view(bench: "Bench", message: str) -> JobView:
         suggestion = None
         if found.status == "open" and not facts.closed and not facts.repaired:
             suggestion = _next(bench, facts, state, job)
+        elif not facts.closed and not _live_checks_left(facts):
+            suggestion = _bulk_again(bench, facts)
     return JobView(
         id=plain(bench.job.id),
         title=plain(bench.board.title),
@@ -114,9 +116,10 @@ def weighed_lines(bench: "Bench") -> tuple[str, ...]:
     return tuple(f"x{one.ratio:.3g}  {plain(one.text)}" for one in bench.answers.diagnosis.evidence(job))
 
 
-def lesson(bench: "Bench") -> dict[str, object]:
+def lesson(bench: "Bench", outcome: str) -> dict[str, object]:
     """What the next job may learn from this one: root fault, role of its part, and whether its repair cured.
 
+    outcome: what the job is closed as; one that hands the adapter back has passed every needed check.
     Empty where nothing was computed or no single part is accused.
     """
     state = replay(bench.job.entries)
@@ -128,7 +131,7 @@ def lesson(bench: "Bench") -> dict[str, object]:
     fault = suspect.root[0]
     replaced = fault.ref in {ref for ref, _ in state.fitted}
     role = bench.board.part(fault.ref).role
-    return {"fault": str(fault), "role": role, "cured": replaced and state.repaired == "works"}
+    return {"fault": str(fault), "role": role, "cured": replaced and (state.repaired == "works" or claims_repair(outcome))}
 
 
 def cautions_of(bench: "Bench", facts: GateFacts | None = None) -> tuple[CautionView, ...]:
@@ -155,6 +158,21 @@ def _first_of_all(bench: "Bench", facts: GateFacts, state: Replay) -> Suggestion
         minutes = bench.answers.diagnosis.costs.reading["volts_dc"]
     open_now = facts.unplugged and permit(facts, "bulk voltage").allowed
     return shown.bulk_suggestion(store, minutes) if open_now else None
+
+
+def _live_checks_left(facts: GateFacts) -> bool:
+    """True while a repaired adapter is still to be read with mains on it."""
+    done = {key for key, result in facts.retested if result == "pass"}
+    return facts.repaired and not facts.unplugged and bool((facts.required & facts.live_lines) - done)
+
+
+def _bulk_again(bench: "Bench", facts: GateFacts) -> SuggestionView | None:
+    """The bulk reading that stands between readings with mains and hands at the board again."""
+    store = bench.rules.bulk
+    if store is None or not bulk_open(bench.rules, facts) or not permit(facts, "bulk voltage").allowed:
+        return None
+    assert bench.answers is not None
+    return shown.bulk_suggestion(store, bench.answers.diagnosis.costs.reading["volts_dc"])
 
 
 def _next(bench: "Bench", facts: GateFacts, state: Replay, job: Job) -> SuggestionView | None:

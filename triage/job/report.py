@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from triage.board.probe import UNITS
+from triage.diagnosis.words import FUNCTION_WORDS
 from triage.job.entries import Entry, undone_numbers
 from triage.job.render import Section, Table
 from triage.job.views import CautionView, StressView, VerdictView
@@ -83,14 +84,14 @@ def sections(content: ReportContent) -> tuple[Section, ...]:
 
 
 def reading_text(said: Mapping[str, Any]) -> str:
-    """A reading in words: ``ohms mains_l to rect, cold: 9.8 ohm``."""
+    """A reading in words: ``resistance mains_l to rect, cold: 9.8 ohm``."""
     value = engineering(float(said["value"]), UNITS[said["function"]])
     return f"{probe_text(said)}: {value}"
 
 
 def probe_text(said: Mapping[str, Any]) -> str:
-    """The reading an entry is about, in words: ``ohms mains_l to rect, cold``."""
-    return f"{said['function']} {said['plus']} to {said['minus']}, {said['condition']}"
+    """The reading an entry is about, in words: ``resistance mains_l to rect, cold``."""
+    return f"{FUNCTION_WORDS[said['function']]} {said['plus']} to {said['minus']}, {said['condition']}"
 
 
 def stress_text(stress: StressView) -> str:
@@ -127,11 +128,14 @@ def _inspection(standing: Mapping[str, list[Entry]]) -> tuple[str, ...]:
         f"{entry.said['sign']} {'at ' + entry.said['ref'] if entry.said['ref'] else 'on the whole adapter'}"
         for entry in standing.get("sign", ())
     ]
-    looks = [
-        f"{entry.said['item']}: {entry.said['look']}; {entry.said.get('text', entry.said['answer'])}"
-        for entry in standing.get("look", ())
-    ]
-    return (*signs, *looks)
+    looks = [f"{entry.said['item']}: {_found(entry.said)}" for entry in standing.get("look", ())]
+    return (*looks, *signs)
+
+
+def _found(look: Mapping[str, Any]) -> str:
+    """What a look found: ``sound``, or the verdict with its text."""
+    text = look.get("text", look["answer"])
+    return str(text) if text == look["look"] else f"{look['look']}; {text}"
 
 
 def _readings(standing: Mapping[str, list[Entry]]) -> Table:

@@ -121,7 +121,7 @@ def bulk_suggestion(store: Store, minutes: float) -> SuggestionView:
     """The reading that opens the cold stage: what the bulk capacitor still holds."""
     time = f"{store.board_time:.2g} s" if math.isfinite(store.board_time) else "never"
     reason = (
-        f"Before you touch anything: {store.ref} may hold {store.voltage:.0f} V; a sound board bleeds it in "
+        f"Unplug; before you touch anything: {store.ref} may hold {store.voltage:.0f} V; a sound board bleeds it in "
         f"{time}, a faulty one may not."
     )
     return SuggestionView(

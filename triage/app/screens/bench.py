@@ -8,7 +8,15 @@ from textual.containers import Container, Horizontal
 from triage.app.drawing import Marks, marked, pin_list, rows_of, squeezed
 from triage.app.frame import Frame
 from triage.app.lines import Line, Span, line, plain, width_of, wrapped
-from triage.app.text.bench import log_lines, rooms, suggestion_lines, suspect_lines, verdict_lines, waiting_lines
+from triage.app.text.bench import (
+    log_lines,
+    retest_lines,
+    rooms,
+    suggestion_lines,
+    suspect_lines,
+    verdict_lines,
+    waiting_lines,
+)
 from triage.app.typed import Typed, understand
 from triage.app.widgets.field import Field, ReadingField
 from triage.app.widgets.panel import Panel
@@ -105,14 +113,20 @@ class BenchScreen(Frame):
     def _show_next(self, view: JobView) -> None:
         panel = self.panel("next")
         rows = self._rooms.next
-        lines = verdict_lines(view.verdict, self.wide, rows)
-        if view.suggestion is not None and len(lines) < rows:
-            lines = (*lines, *suggestion_lines(view.suggestion, self.desk.pins, self.wide, rows - len(lines)))
+        lines = retest_lines(view.retest, self.wide) if view.stage == "retest" else ()
+        verdict = verdict_lines(view.verdict, self.wide, rows - len(lines))
+        if view.suggestion is not None:
+            # A reading that is due comes before what is only to be known, but the verdict keeps its first line.
+            verdict = verdict[:1]
+            left = rows - len(lines) - len(verdict)
+            verdict = (*suggestion_lines(view.suggestion, self.desk.pins, self.wide, left), *verdict)
+        lines = (*lines, *verdict)
         if not lines and view.waits_for and not view.computing and view.stage != "closed":
             lines = waiting_lines(view.waits_for, self.wide, rows)
         if not lines:
             text = (
-                "computing what each fault would show; signs (F8) can be entered meanwhile"
+                f"{self.desk.progress or 'computing what each fault would show'}; looks and signs (F8) can be entered "
+                "meanwhile; type stop to end it, go to go on"
                 if view.computing
                 else (view.message or "no reading left that would tell more; F6 closes the job, + enters any reading")
             )
@@ -126,12 +140,14 @@ class BenchScreen(Frame):
     def on_input_submitted(self, event: Field.Submitted) -> None:
         """Do what was typed."""
         typed = understand(event.value)
-        if typed.kind in ("menu", "other", "undo", "on", "off"):
+        if typed.kind in ("menu", "other", "undo", "on", "off", "stop", "go"):
             event.input.value = ""
             {
                 "on": lambda: self.triage.action_power(True),
                 "off": lambda: self.triage.action_power(False),
                 "menu": self.triage.action_menu,
+                "stop": self.desk.stop,
+                "go": self.desk.compute,
                 "undo": self.triage.action_undo,
                 "other": lambda: self.triage.action_form("reading"),
             }[typed.kind]()

@@ -1,5 +1,6 @@
 """Cautions: each is read and acknowledged by itself before the readings begin."""
 
+from collections.abc import Sequence
 from typing import ClassVar
 
 from textual.app import ComposeResult
@@ -8,6 +9,22 @@ from triage.app.frame import Frame
 from triage.app.lines import Span, line, wrapped
 from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import CautionView, JobView
+
+
+def _sign(one: CautionView, held: bool) -> tuple[str, str]:
+    """Mark of one caution; those that stand before power can wait while the board may not be touched yet."""
+    if one.acknowledged:
+        return "ok ", "good"
+    return (".  ", "quiet") if held and one.gate == "live" else ("!  ", "bad")
+
+
+def _head(cautions: Sequence[CautionView]) -> str:
+    """How many are to be acknowledged, and before what."""
+    cold, live = (sum(one.gate == gate and not one.acknowledged for one in cautions) for gate in ("cold", "live"))
+    if cold:
+        later = f"; {live} more (.) before power" if live else ""
+        return f"cautions: {cold} before touching, Enter acknowledges{later}"
+    return f"cautions: {live} before power, Enter acknowledges" if live else "cautions: all acknowledged, F2 goes on"
 
 
 class CautionsScreen(Frame):
@@ -27,25 +44,28 @@ class CautionsScreen(Frame):
         yield ListPanel(id="list")
         yield Panel(id="full")
 
+    def entered(self) -> None:
+        """The cursor goes to the first that is still open."""
+        self._to_next()
+
     def _cautions(self) -> tuple[CautionView, ...]:
         return self.desk.view.cautions if self.desk.view else ()
 
     def refresh_body(self, view: JobView | None) -> None:
         """Acknowledged ones carry ``ok``, the others ``!``."""
         cautions = self._cautions()
-        open_ones = sum(not caution.acknowledged for caution in cautions)
-        text = f"cautions: {open_ones} to acknowledge, Enter on each" if open_ones else "cautions: all acknowledged, F2 goes on"
+        held = view is not None and view.stage == "cautions"
         rows = [
             (
                 one.key,
                 line(
-                    Span("ok " if one.acknowledged else "!  ", "good" if one.acknowledged else "bad"),
-                    Span(one.text, "quiet" if one.acknowledged else ""),
+                    Span(*_sign(one, held)),
+                    Span(one.text, "quiet" if one.acknowledged or (held and one.gate == "live") else ""),
                 ),
             )
             for one in cautions
         ]
-        self.query_one("#list", ListPanel).fill(rows, line(Span(text.ljust(self.wide), "head")))
+        self.query_one("#list", ListPanel).fill(rows, line(Span(_head(cautions).ljust(self.wide), "head")))
         self._show_full()
 
     def _show_full(self) -> None:

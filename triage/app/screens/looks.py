@@ -8,6 +8,7 @@ from textual.widgets import Input
 
 from triage.app.frame import Frame
 from triage.app.lines import Line, Span, line, wrapped
+from triage.app.text.bench import leading_line
 from triage.app.widgets.field import ChoiceField, Field
 from triage.app.widgets.panel import ListPanel, Panel
 from triage.job.views import JobView, LookView
@@ -24,7 +25,7 @@ class LooksScreen(Frame):
     AUTO_FOCUS = "#list"
     CSS_PATH = "looks.tcss"
 
-    BINDINGS = [("s,space", "sound", "sound")]  # noqa: RUF012 (Textual's own way)
+    BINDINGS = [("s,space", "sound", "sound"), ("a", "all_sound", "all sound")]  # noqa: RUF012 (Textual's own way)
 
     def __init__(self) -> None:
         super().__init__()
@@ -41,6 +42,7 @@ class LooksScreen(Frame):
             yield Panel(id="ref-label")
             yield ChoiceField((), id="ref")
             yield Panel(id="ref-hint")
+        yield Panel(id="lead")
 
     def _looks(self) -> tuple[LookView, ...]:
         looks = self.desk.view.looks if self.desk.view else ()
@@ -55,13 +57,14 @@ class LooksScreen(Frame):
         looks = self._looks()
         left = sum(one.needed and not one.said for one in looks)
         text = (
-            f"to look at: {left} before the readings; s: sound, Enter: other answers"
+            f"to look at: {left} before the readings; s: sound, a: all the rest is, Enter: else"
             if left
             else "looked at; F2 goes on to the readings"
         )
         rows: list[tuple[str, Line]] = [(one.key, self._row(one)) for one in looks]
         rows.append((_REST, line("   ", Span("everything not answered was looked at and is sound", "key"))))
         self.query_one("#list", ListPanel).fill(rows, line(Span(text.ljust(self.wide), "head")))
+        self.panel("lead").show((leading_line(view.suspects if view else (), self.wide),))
         self._show_answers()
 
     @staticmethod
@@ -106,7 +109,7 @@ class LooksScreen(Frame):
         here = self._here()
         if event.panel.id == "list":
             if here is None:
-                self.desk.enter(lambda bench: bench.see("sound", ""), self._accepted)
+                self.action_all_sound()
             else:
                 self.query_one("#answers" if here.answers else "#ref").focus()
         elif event.key == "sound" or here is None or not here.refs:
@@ -120,6 +123,10 @@ class LooksScreen(Frame):
         here = self._here()
         if here is not None and "sound" in here.answers:
             self._enter("sound", "")
+
+    def action_all_sound(self) -> None:
+        """Everything not answered yet: looked at, nothing found."""
+        self.desk.enter(lambda bench: bench.see("sound", ""), self._accepted, queue=True)
 
     def on_input_submitted(self, event: Input.Submitted) -> None:
         """The part, or the number."""

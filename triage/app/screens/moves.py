@@ -5,9 +5,10 @@ from typing import ClassVar
 from textual.app import ComposeResult
 
 from triage.app.frame import Frame
+from triage.app.lines import Span, line
 from triage.app.text.moves import entry_lines, move_lines
 from triage.app.widgets.panel import Panel
-from triage.job.views import JobView
+from triage.job.views import JobView, MoveView
 
 
 class MovesScreen(Frame):
@@ -24,10 +25,17 @@ class MovesScreen(Frame):
         yield Panel(id="entries")
 
     def refresh_body(self, view: JobView | None) -> None:
-        """Show the track that the desk kept."""
-        track = self.desk.track
-        self.panel("suspects").show(move_lines(track, self.wide, 8, self.glyphs))
-        self.panel("entries").show(entry_lines(track, self.wide, len(track)))
+        """Ask for the moves; they are reckoned from the log, so that a resumed job has its whole way."""
+        self.ask("moves", lambda bench: bench.moves(), self._show, self._failed)
+
+    def _show(self, found: tuple[MoveView, ...]) -> None:
+        self.panel("suspects").show(move_lines(found, self.wide, 8, self.glyphs))
+        panel = self.panel("entries")
+        panel.show(entry_lines(found, self.wide))
+        panel.scroll_rows(len(found))
+
+    def _failed(self, text: str) -> None:
+        self.panel("suspects").show((line(Span(text, "bad")),))
 
     def action_page(self, by: int) -> None:
         """Scroll the entries."""

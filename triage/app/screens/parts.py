@@ -7,8 +7,8 @@ from textual.containers import Horizontal
 from textual.widgets import Input
 
 from triage.app.frame import Frame
-from triage.app.lines import Span, line
-from triage.app.text.parts import candidate_detail, candidate_line, demand_lines, match_line
+from triage.app.lines import Line, Span, line
+from triage.app.text.parts import candidate_detail, candidate_line, demand_lines, match_line, reason_lines
 from triage.app.text.stress import before_after, with_it
 from triage.app.widgets.field import ChoiceField, Field
 from triage.app.widgets.panel import ListPanel, Panel
@@ -30,6 +30,8 @@ class PartsScreen(Frame):
         self._candidates: dict[str, CandidateView] = {}
         self._matches: tuple[MatchView, ...] = ()
         self._before: tuple[StressView, ...] = ()
+        self._asked_for: DemandView | None = None
+        self._fitted_here: set[str] = set()
         self._sure = ("", "")
         """Position and type on which Enter was pressed once."""
 
@@ -60,6 +62,7 @@ class PartsScreen(Frame):
             return
         refs = [part.ref for part in bench.board.parts]
         wanted = [ref for ref in view.verdict.repair or [one.ref for one in view.suspects] if ref in refs]
+        wanted = [ref for ref in wanted if ref not in self._fitted_here] or wanted
         field = self.query_one("#ref", ChoiceField)
         field.choices = (*wanted, *(ref for ref in refs if ref not in wanted))
         if wanted and self._ref not in view.verdict.repair:
@@ -77,21 +80,26 @@ class PartsScreen(Frame):
             return
         if ref == self._ref:
             return
-        self._ref, self._candidates = ref, {}
+        self._ref, self._candidates, self._asked_for = ref, {}, None
         self.panel("demand").show((line(Span(f"computing what {ref} must withstand...", "near")),))
         self.ask(
             "demand",
-            lambda bench: (bench.demand(ref), bench.candidates(ref), bench.stresses()),
+            lambda bench: (bench.demand(ref), bench.candidates(ref)),
             self._demand,
             self._failed,
         )
+        self.ask("stress", lambda bench: bench.stresses(), self._keep_before, self._failed, long=True)
+
+    def _keep_before(self, found: tuple[StressView, ...]) -> None:
+        self._before = found
+        self._show_detail()
 
     def _failed(self, text: str) -> None:
         self.panel("demand").show((line(Span(text, "bad")),))
 
-    def _demand(self, found: tuple[DemandView, tuple[CandidateView, ...], tuple[StressView, ...]]) -> None:
-        demand, candidates, self._before = found
-        self.panel("demand").show(demand_lines(demand, self.wide, 6))
+    def _demand(self, found: tuple[DemandView, tuple[CandidateView, ...]]) -> None:
+        self._asked_for, candidates = found
+        self.panel("demand").show(demand_lines(self._asked_for, self.wide, 6))
         self._candidates = {one.type: one for one in candidates}
         self._fill()
 
@@ -111,8 +119,8 @@ class PartsScreen(Frame):
         key = self.query_one("#list", ListPanel).key
         known = self._candidates.get(key)
         if known is not None:
-            self.panel("detail").show(candidate_detail(known, self.wide), top=0)
-            if known.accepted:
+            self._tell(known, (line(Span("with it: computing; a value that was never solved takes a minute", "near")),))
+            if known.accepted and self._before:
                 self._what_if(known)
             return
         self.panel("detail").show(())
@@ -126,15 +134,21 @@ class PartsScreen(Frame):
 
         def show(after: tuple[StressView, ...]) -> None:
             if self.query_one("#list", ListPanel).key == known.type:
-                rows = (*with_it(before, after, ref, self.wide), *candidate_detail(known, self.wide))
-                self.panel("detail").show(rows, top=0)
+                self._tell(known, with_it(before, after, ref, self.wide))
 
-        self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed)
+        self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed, long=True)
+
+    def _tell(self, known: CandidateView, first: tuple[Line, ...]) -> None:
+        """The text on a candidate: the stresses with it, the part, and why the position asks for what it asks."""
+        rows = (*(first if known.accepted else ()), *candidate_detail(known, self.wide))
+        if self._asked_for is not None:
+            rows = (*rows, *reason_lines(self._asked_for, self.wide))
+        self.panel("detail").show(rows, top=0)
 
     def _asked(self, found: CandidateView) -> None:
         self._candidates[found.type] = found
         if self.query_one("#list", ListPanel).key == found.type:
-            self.panel("detail").show(candidate_detail(found, self.wide))
+            self._tell(found, ())
 
     def _ask_failed(self, text: str) -> None:
         self.panel("detail").show((line(Span(text, "bad")),))
@@ -179,10 +193,18 @@ class PartsScreen(Frame):
         self.desk.enter(lambda bench: bench.fit(ref, wanted), self._fitted)
 
     def _fitted(self) -> None:
-        before, ref = self._before, self._ref
+        before, ref, view = self._before, self._ref, self.desk.view
+        self._fitted_here.add(ref)
+        more = [one for one in (view.verdict.repair if view else ()) if one not in self._fitted_here]
+        following = f"Enter: {more[0]} is next" if more else "F6 goes on to the checks"
+        if more:
+            field = self.query_one("#ref", ChoiceField)
+            field.value = more[0]
+            field.focus()
 
         def show(after: tuple[StressView, ...]) -> None:
             self._before = after
-            self.panel("demand").show(before_after(before, after, ref, self.wide))
+            self.panel("demand").show(before_after(before, after, ref, self.wide, following))
 
-        self.ask("stress", lambda bench: bench.stresses(), show, self._failed)
+        self.panel("demand").show((line(Span(f"fitted at {ref}; computing its stresses; {following}", "near")),))
+        self.ask("stress", lambda bench: bench.stresses(), show, self._failed, long=True)

@@ -5,7 +5,7 @@ from typing import ClassVar
 from textual.app import ComposeResult
 
 from triage.app.frame import Frame
-from triage.app.lines import Span, clip, line
+from triage.app.lines import Span, line
 from triage.app.widgets.panel import Panel
 from triage.job.views import JobView
 
@@ -21,6 +21,8 @@ class RecordScreen(Frame):
         ("pagedown", "page(10)", "down"),
         ("up", "page(-1)", "up"),
         ("down", "page(1)", "down"),
+        ("left", "pan(-16)", "left"),
+        ("right", "pan(16)", "right"),
     ]
 
     def body(self) -> ComposeResult:
@@ -33,13 +35,17 @@ class RecordScreen(Frame):
         bench = self.desk.bench
         if bench is not None:
             self.panel("file").show((line("saved after every entry: ", Span(str(bench.path), "strong")),))
-            self.ask("report", lambda one: one.report("text"), self._show, self._failed)
+            self.ask("report", lambda one: one.report("text"), self._show, self._failed, long=True)
 
     def _show(self, text: str) -> None:
-        self.panel("report").show(tuple(clip(line(row), self.wide) for row in text.splitlines()))
+        self.panel("report").show(tuple(line(row) for row in text.splitlines()))
 
     def _failed(self, text: str) -> None:
         self.panel("report").show((line(Span(text, "bad")),))
+
+    def action_pan(self, columns: int) -> None:
+        """Move the report sideways."""
+        self.panel("report").pan(columns)
 
     def action_page(self, rows: int) -> None:
         """Scroll the report."""

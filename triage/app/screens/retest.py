@@ -25,6 +25,10 @@ _SAY = {
 }
 
 
+_DONE = "close repaired"
+"""The line to go to when every needed check has passed."""
+
+
 class RetestScreen(Frame):
     """Checks and outcomes in one list; the result of a check is entered below it."""
 
@@ -32,6 +36,12 @@ class RetestScreen(Frame):
     NAME: ClassVar[str] = "retest"
     AUTO_FOCUS = "#list"
     CSS_PATH = "retest.tcss"
+    BINDINGS = [("up", "step(-1)", "line up"), ("down", "step(1)", "line down")]  # noqa: RUF012 (Textual's own way)
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._arrived = False
+        """True between coming to the front and the first lines shown."""
 
     def body(self) -> ComposeResult:
         """What was found, the list, the line in full, its reading."""
@@ -42,6 +52,10 @@ class RetestScreen(Frame):
             yield Panel(id="read-label")
             yield Field(id="read")
             yield Panel(id="hint")
+
+    def entered(self) -> None:
+        """The cursor goes to the first needed check, unless it stands on one that is still open."""
+        self._arrived = True
 
     def refresh_body(self, view: JobView | None) -> None:
         """The checks with their results, then what can be said."""
@@ -55,6 +69,10 @@ class RetestScreen(Frame):
         rows += [(key, line("   ", Span(word.ljust(18), "key"), text)) for key, (word, text) in _SAY.items()]
         head = "after the repair: the checks in order, then what came of it; Enter takes a line"
         self.query_one("#list", ListPanel).fill(rows, line(Span(head.ljust(self.wide), "head")))
+        here = self._here()
+        if self._arrived and (here is None or here.result or not here.required):
+            self._to_needed()
+        self._arrived = False
         self._show_full()
 
     def _here(self) -> RetestView | None:
@@ -99,12 +117,25 @@ class RetestScreen(Frame):
         elif here is not None:
             self.desk.enter(lambda bench: bench.retest(here.key, text), self._accepted)
 
-    def _accepted(self) -> None:
+    def action_step(self, by: int) -> None:
+        """Another line, from within the field."""
         self.query_one("#read", Field).value = ""
+        self.query_one("#list", ListPanel).action_move(by)
+        if self._here() is None:
+            self.query_one("#list").focus()
+
+    def _accepted(self) -> None:
+        """To the next check that is needed; when all are done, to closing the job."""
+        self.query_one("#read", Field).value = ""
+        if not self._to_needed():
+            self.query_one("#list").focus()
+
+    def _to_needed(self) -> bool:
+        """Put the cursor on the next needed check, or on what comes after all of them; True for a check."""
         panel, view = self.query_one("#list", ListPanel), self.desk.view
-        after = [one.key for one in view.retest if not one.result] if view else []
-        if after:
-            panel.go_to(after[0])
-        else:
-            panel.focus()
-            panel.action_move(1)
+        lines = view.retest if view else ()
+        here = next((at for at, one in enumerate(lines) if one.key == panel.key), 0)
+        left = [one.key for one in (*lines[here:], *lines[:here]) if one.required and not one.result]
+        failed = any(one.required and one.result != "pass" for one in lines)
+        panel.go_to(left[0] if left else next(iter(_SAY)) if failed or not lines else _DONE)
+        return bool(left)

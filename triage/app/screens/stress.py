@@ -38,7 +38,7 @@ class StressScreen(Frame):
             self._asked = True
             if not self._found:
                 self.panel("detail").show((line(Span("computing the stresses...", "near")),))
-            self.ask("stress", lambda bench: bench.stresses(), self._show, self._failed)
+            self.ask("stress", lambda bench: bench.stresses(), self._show, self._failed, long=True)
         if self._found:
             self._show(self._found)
 

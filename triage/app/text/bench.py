@@ -6,7 +6,7 @@ from typing import NamedTuple
 from triage.app.bars import share_bar
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, apart, clip, columns, line, width_of, wrapped
-from triage.job.views import EntryView, SuggestionView, SuspectView, VerdictView
+from triage.job.views import EntryView, OutcomeView, RetestView, SuggestionView, SuspectView, VerdictView
 
 FUNCTION_WORDS = {
     "ohms": "ohms",
@@ -19,6 +19,9 @@ FUNCTION_WORDS = {
     "watts": "watts at the plug",
     "amps_ac": "amps AC at the plug",
     "hertz": "frequency",
+    "insulation_ohms": "insulation tester",
+    "touch_amps": "touch current",
+    "temperature": "temperature",
 }
 CONDITION_WORDS = {
     "cold": "unplugged",
@@ -60,8 +63,11 @@ def mode_words(mode: str) -> str:
 
 
 def fault_words(suspect: SuspectView) -> str:
-    """``Q1 ce short``."""
-    return f"{suspect.ref} {mode_words(suspect.mode)}".strip()
+    """``Q1 ce short``, ``C5 high esr + R1 open``."""
+    refs, modes = suspect.ref.split("+"), suspect.mode.split("+")
+    if len(refs) != len(modes):
+        return f"{suspect.ref} {mode_words(suspect.mode)}".strip()
+    return " + ".join(f"{ref} {mode_words(mode)}".strip() for ref, mode in zip(refs, modes, strict=True))
 
 
 def percent(share: float) -> str:
@@ -104,9 +110,15 @@ def _suspect_line(suspect: SuspectView, first: bool, width: int, wide: bool, gly
     if wide:
         along = " + ".join(mode_words(fault) for fault in suspect.collateral)
         stress = Span("! " + suspect.stress, "over") if suspect.stress else Span("")
-        rest = "; ".join(part for part in (along and "took " + along, suspect.role) if part)
-        row = (*row, Span(" "), *line(stress, "  " if suspect.stress else "", Span(rest, "quiet")))
+        took = line(Span("took " + along, "strong"), "  ") if along else ()
+        row = (*row, Span(" "), *took, *line(stress, "  " if suspect.stress else "", Span(suspect.role, "quiet")))
     return clip(row, width)
+
+
+def leading_line(suspects: Sequence[SuspectView], width: int) -> Line:
+    """The leading suspects in one row."""
+    told = ", ".join(f"{fault_words(one)} {percent(one.probability)}" for one in suspects[:4])
+    return clip(line(Span("suspects now: ", "quiet"), Span(told, "near")), width) if told else ()
 
 
 def suggestion_lines(
@@ -126,7 +138,7 @@ def suggestion_lines(
     keep = max(rows - len(out) - min(len(found.outcomes), 2), 1)
     reason = wrapped(found.reason, width)
     out += reason[:keep] if len(reason) <= keep else (*reason[: keep - 1], clip((*reason[keep - 1], Span(" ..." * 30)), width))
-    for outcome in found.outcomes[: max(rows - len(out), 0)]:
+    for outcome in _likeliest(found.outcomes, max(rows - len(out), 0)):
         out.append(
             clip(
                 columns(
@@ -142,6 +154,21 @@ def suggestion_lines(
     return tuple(out[:rows])
 
 
+def _likeliest(outcomes: Sequence[OutcomeView], rows: int) -> list[OutcomeView]:
+    """As many outcomes as there is room for, the likeliest, in the order of the meter's scale."""
+    kept = sorted(range(len(outcomes)), key=lambda at: -outcomes[at].probability)[:rows]
+    return [outcomes[at] for at in sorted(kept)]
+
+
+def pin_words(node: str, other: str, pins: Mapping[str, Sequence[str]], count: int) -> str:
+    """Part pins at which a node is found on the board: first those of a part whose other end the other
+    lead goes to."""
+    all_pins = [pin.split(" ")[0] for found in pins.values() for pin in found]
+    shared = {ref for pin in pins.get(other, ()) if all_pins.count(ref := pin.split(" ")[0]) == 2}
+    found = sorted(pins.get(node, ()), key=lambda pin: (pin.split(" ")[0] not in shared, len(pin)))
+    return ", ".join(found[:count])
+
+
 def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: int) -> Line:
     """Function, leads with as many part pins as there is room for, condition and minutes."""
     live = found.condition != "cold"
@@ -150,7 +177,7 @@ def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: 
         Span(f" {found.minutes:.1f} min", "quiet"),
     )
     for count in (3, 2, 1, 0):
-        places = {node: ", ".join(sorted(pins.get(node, ()), key=len)[:count]) for node in (found.plus, found.minus)}
+        red, black = (pin_words(*pair, pins, count) for pair in ((found.plus, found.minus), (found.minus, found.plus)))
         left = line(
             Span("next ", "head"),
             " ",
@@ -158,11 +185,11 @@ def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: 
             "  red ",
             Span(f"{{+{found.plus}}}", "red"),
             " ",
-            Span(places[found.plus]),
+            Span(red),
             "  black ",
             Span(f"{{-{found.minus}}}", "black"),
             " ",
-            Span(places[found.minus]),
+            Span(black),
         )
         if width_of(left) + width_of(right) < width:
             break
@@ -203,8 +230,24 @@ def verdict_lines(found: VerdictView, width: int, rows: int) -> tuple[Line, ...]
     return tuple(out[:rows])
 
 
-_WHERE = {"acknowledge": "F10", "look at": "F8", "put right": "F8", "retest": "F6", "not passed": "F6", "record the repair": "F5"}
+_WHERE = {"acknowledge": "F10", "look at": "F8", "put right": "F8", "retest": "F6", "not passed": "F6", "record the repair": "F5",
+          "read or refuse the cold check": "F2", "unplug": "F2"}
 """First words of what must be done -> key of the screen where it is done."""
+
+
+def key_for(text: str) -> str:
+    """Key of the screen where what a refusal asks for is done first; empty when it names nothing of the kind."""
+    _, found, rest = text.partition(": first ")
+    return next((key for words, key in _WHERE.items() if found and rest.startswith(words)), "")
+
+
+def retest_lines(checks: Sequence[RetestView], width: int) -> tuple[Line, ...]:
+    """After the repair: what is still to be checked, and where."""
+    left = [one for one in checks if one.required and one.result != "pass"]
+    if not left:
+        return (line(Span("next ", "head"), Span(" every needed check has passed: F6 closes the job", "strong")),)
+    text = f" F6: checks after the repair, needed: {len(left)} left, now: {left[0].text}"
+    return (clip(line(Span("next ", "head"), Span(text, "strong")), width),)
 
 
 def waiting_lines(waits: Sequence[str], width: int, rows: int) -> tuple[Line, ...]:

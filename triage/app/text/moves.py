@@ -6,19 +6,16 @@ from triage.app.bars import ramp
 from triage.app.glyphs import Glyphs
 from triage.app.lines import Line, Span, clip, line
 from triage.app.text.bench import fault_words, percent
-from triage.job.views import SuspectView
-
-Track = Sequence[tuple[str, Sequence[SuspectView]]]
-"""Entry in words and the suspects after it, oldest first."""
+from triage.job.views import MoveView
 
 
-def move_lines(track: Track, width: int, rows: int, glyphs: Glyphs) -> tuple[Line, ...]:
+def move_lines(track: Sequence[MoveView], width: int, rows: int, glyphs: Glyphs) -> tuple[Line, ...]:
     """A row for each of the leading suspects: one sign an entry, the fuller the likelier, and the change by
     the last one."""
     if not track:
         return (line(Span("no suspects yet", "quiet")),)
-    shares = [{(one.ref, one.mode): one.probability for one in suspects} for _, suspects in track]
-    last = track[-1][1]
+    shares = [{(one.ref, one.mode): one.probability for one in move.suspects} for move in track]
+    last = track[-1].suspects
     room = max(width - 46, 8)
     seen = shares[-room:]
     out = [line(Span("suspects over the entries, oldest left".ljust(width), "head"))]
@@ -39,10 +36,10 @@ def move_lines(track: Track, width: int, rows: int, glyphs: Glyphs) -> tuple[Lin
     return tuple(clip(row, width) for row in out)
 
 
-def entry_lines(track: Track, width: int, rows: int) -> tuple[Line, ...]:
-    """What each of the last entries did: who led before and after."""
+def entry_lines(track: Sequence[MoveView], width: int) -> tuple[Line, ...]:
+    """What each entry did: who led after it."""
     out = [line(Span("entries and who led after them".ljust(width), "head"))]
-    for text, suspects in list(track)[-rows:]:
-        lead = f"{fault_words(suspects[0])} {percent(suspects[0].probability)}" if suspects else "-"
-        out.append(clip(line(Span(lead.ljust(30), "strong"), " ", text), width))
+    for move in track:
+        lead = f"{fault_words(move.suspects[0])} {percent(move.suspects[0].probability)}" if move.suspects else "-"
+        out.append(clip(line(Span(lead.ljust(30), "strong"), " ", move.text), width))
     return tuple(out)

@@ -28,9 +28,17 @@ def demand_lines(found: DemandView, width: int, rows: int) -> tuple[Line, ...]:
                 width,
             )
         )
-    if found.note:
-        out += wrapped(found.note, width, "near")
+    if found.note and len(out) < rows:
+        out.append(clip(line(Span(found.note, "near")), width))
     return tuple(out[:rows])
+
+
+def reason_lines(found: DemandView, width: int) -> tuple[Line, ...]:
+    """Why a position asks for what it asks, a paragraph a requirement, and the note in full."""
+    out: list[Line] = []
+    for one in found.requirements:
+        out += wrapped(f"{one.reason} ({one.source})" if one.source else one.reason, width, "quiet", first=f"{one.text}: ")
+    return (*out, *wrapped(found.note, width, "near")) if found.note else tuple(out)
 
 
 def _bounds(one: RequirementView) -> str:

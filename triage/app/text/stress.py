@@ -22,7 +22,9 @@ def worst_first(found: Sequence[StressView]) -> tuple[StressView, ...]:
 
 def amount(value: float | None, unit: str) -> str:
     """A value in engineering form, or a dash."""
-    return "-" if value is None else engineering(value, unit)
+    if value is None:
+        return "-"
+    return engineering(value, unit) if unit else f"{value:.3g}"
 
 
 def quantity_words(quantity: str) -> str:
@@ -74,10 +76,12 @@ def stress_detail(one: StressView, width: int) -> tuple[Line, ...]:
     return (head, *wrapped(limits + source, width))
 
 
-def before_after(before: Sequence[StressView], after: Sequence[StressView], ref: str, width: int) -> tuple[Line, ...]:
-    """Stresses of one part with the old and the new one fitted."""
+def before_after(
+    before: Sequence[StressView], after: Sequence[StressView], ref: str, width: int, following: str
+) -> tuple[Line, ...]:
+    """Stresses of one part with the old and the new one fitted; ``following``: what to do next."""
     then = {(one.ref, one.quantity): one for one in before}
-    rows = [line(Span(f"stresses of {ref}: before -> now".ljust(width), "head"))]
+    rows = [line(Span(f"stresses of {ref}: before -> now; {following}".ljust(width), "head"))]
     for one in after:
         if one.ref != ref:
             continue

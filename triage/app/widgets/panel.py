@@ -20,10 +20,15 @@ from triage.app.glyphs import FULL, Glyphs
 from triage.app.lines import MARKS, Line, Span, clip, drop, merged, width_of
 
 
+class Palette(Widget):
+    """Holds the style of every mark, once a screen: styling each panel with all of them makes every change of
+    screens wait."""
+
+    COMPONENT_CLASSES = {f"palette--{mark}" for mark in MARKS}  # noqa: RUF012 (Textual's own way)
+
+
 class Panel(Widget):
     """Shows lines; scrolls by rows when there are more than fit, and says so by arrows in its last column."""
-
-    COMPONENT_CLASSES = {f"panel--{mark}" for mark in MARKS}  # noqa: RUF012 (Textual's own way)
 
     def __init__(self, **names: Any) -> None:
         super().__init__(**names)
@@ -129,7 +134,9 @@ class Panel(Widget):
 
     def style_of(self, mark: str) -> Style:
         """The style sheet's style of a mark."""
-        return self.get_component_rich_style(f"panel--{mark}", partial=True) if mark else Style.null()
+        if not mark:
+            return Style.null()
+        return self.screen.query_one(Palette).get_component_rich_style(f"palette--{mark}", partial=True)
 
     def get_content_height(self, container: Size, viewport: Size, width: int) -> int:
         """Height for ``height: auto`` (called by Textual)."""
@@ -173,6 +180,7 @@ class ListPanel(Panel, can_focus=True):
     """Rows of which one is chosen: up, down, page keys, home and end move; Enter or a click on the chosen
     row takes it."""
 
+    COMPONENT_CLASSES = {"panel--cursor"}  # noqa: RUF012 (Textual's own way)
     BINDINGS = [  # noqa: RUF012 (Textual's own way)
         ("up", "move(-1)", "up"),
         ("down", "move(1)", "down"),
@@ -252,6 +260,12 @@ class ListPanel(Panel, can_focus=True):
     def action_page(self, pages: int) -> None:
         """Move the cursor by a screenful."""
         self.action_move(pages * max(self._body_height - 1, 1))
+
+    def style_of(self, mark: str) -> Style:
+        """The row under the cursor looks different where the keys go elsewhere."""
+        if mark == "cursor":
+            return self.get_component_rich_style("panel--cursor", partial=True)
+        return super().style_of(mark)
 
     def action_take(self) -> None:
         """Take the row under the cursor."""
