@@ -7,6 +7,7 @@ the collection; nothing of the program was set by the hit rates below.
 
 import tomllib
 from collections import Counter
+from collections.abc import Callable
 from functools import cache
 from itertools import product
 from pathlib import Path
@@ -24,7 +25,7 @@ from triage.diagnosis.engine import Diagnosis, Job
 from triage.families.cold import cold_probes
 from triage.families.points import fingerprint
 from triage.job import expecting
-from triage.job.cache import Cache, Shipped
+from triage.job.cache import Cache, Kept, Shipped
 from triage.job.complaint_words import state_of
 from triage.job.learning import NONE
 from triage.job.wiring import Wiring
@@ -65,22 +66,34 @@ def _readings_of(case: dict[str, Any], board: Board) -> set[tuple[str, frozenset
     return {(one.probe.function, frozenset((one.probe.plus, one.probe.minus))) for one in entered}
 
 
+def narrowed(name: str, kept: Kept) -> Diagnosis:
+    """The diagnosis of a profile with only those cold readings that occur in a case."""
+    board = load_profile(name)
+    used = set().union(*(_readings_of(case, board) for case in CASES if case["profile"] == name))
+
+    def taken(asked: Board) -> tuple[Probe, ...]:
+        return tuple(one for one in cold_probes(asked) if (one.function, frozenset((one.plus, one.minus))) in used)
+
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(expecting, "cold_probes", taken)
+        return _Quick(kept).diagnosis(board, NONE)
+
+
 @pytest.fixture(scope="module")
-def diagnosis_of(tmp_path_factory: pytest.TempPathFactory) -> Any:
-    """Profile -> its diagnosis, computed once; only the readings that occur in a case are computed."""
-    kept = Shipped(data_folder("profiles") / "kept", Cache(tmp_path_factory.mktemp("answers")))
+def kept(tmp_path_factory: pytest.TempPathFactory) -> Kept:
+    """What ships with the program, and an empty cache."""
+    return Shipped(data_folder("profiles") / "kept", Cache(tmp_path_factory.mktemp("answers")))
+
+
+@pytest.fixture(scope="module")
+def diagnosis_of(kept: Kept) -> Callable[[str], Diagnosis]:
+    """Profile -> its diagnosis; whole where its cold readings ship, narrowed elsewhere."""
 
     @cache
     def found(name: str) -> Diagnosis:
         board = load_profile(name)
-        used = set().union(*(_readings_of(case, board) for case in CASES if case["profile"] == name))
-
-        def taken(asked: Board) -> tuple[Probe, ...]:
-            return tuple(one for one in cold_probes(asked) if (one.function, frozenset((one.plus, one.minus))) in used)
-
-        with pytest.MonkeyPatch.context() as patch:
-            patch.setattr(expecting, "cold_probes", taken)
-            return _Quick(kept).diagnosis(board, NONE)
+        ships = kept.has(f"cold-{expecting._key(board, cold_probes(board))}")
+        return _Quick(kept).diagnosis(board, NONE) if ships else narrowed(name, kept)
 
     return found
 
@@ -126,7 +139,7 @@ def group(case: dict[str, Any]) -> str:
 
 
 @pytest.mark.long
-def test_the_part_found_is_among_the_first_three_suspects(diagnosis_of: Any, outside_check: Any) -> None:
+def test_the_part_found_is_among_the_first_three_suspects(diagnosis_of: Callable[[str], Diagnosis], outside_check: Any) -> None:
     """Played through the program's own diagnosis; the rates and the coverage are printed (``-rP`` shows them)."""
     left_out = {reason: len(ids) for reason, ids in REPAIRS["left_out"].items()}
     total = len(CASES) + sum(left_out.values())
@@ -147,13 +160,13 @@ def test_the_part_found_is_among_the_first_three_suspects(diagnosis_of: Any, out
     outside_check.at_least("real repairs, fault outside the board", SOURCE, rates["outside"], OUTSIDE_THE_BOARD)
 
 
-def test_leaving_readings_out_that_nobody_took_changes_no_suspect(diagnosis_of: Any) -> None:
+def test_leaving_readings_out_that_nobody_took_changes_no_suspect(kept: Kept) -> None:
     """Holds the short cut of this file against the whole diagnosis, on the board whose readings all ship."""
     name = "harbour-handset-charger"
-    whole, board = Wiring().diagnosis(load_profile(name), NONE), load_profile(name)
+    board, whole, short = load_profile(name), Wiring(kept).diagnosis(load_profile(name), NONE), narrowed(name, kept)
     for case in (one for one in CASES if one["profile"] == name):
         for entries in placements(case, board):
-            one, other = (found.suspects(Job(entries))[:3] for found in (whole, diagnosis_of(name)))
+            one, other = (found.suspects(Job(entries))[:3] for found in (whole, short))
             assert [(s.root, round(s.probability, 9)) for s in one] == [(s.root, round(s.probability, 9)) for s in other]
 
 

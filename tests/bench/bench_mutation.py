@@ -1,0 +1,180 @@
+"""Changes the program's formulas one place at a time and asks whether the tests notice.
+
+    python -m tests.bench.bench_mutation [COUNT] [SEED] [ROOM ...]
+
+Each mutant is one changed operator, comparison, number, sign or boolean word in a module of ROOM (default: the formula rooms of
+``triage/physics`` and ``triage/diagnosis``). It lives in a copy of the package in a temporary folder; the test files that import
+its module run there first, then those of the room, until one fails. A run that takes too long counts as killed. Compiled kernels
+are left out: they are held by the simulated circuits, which take minutes.
+"""
+
+import ast
+import os
+import random
+import shutil
+import subprocess
+import sys
+import tempfile
+import time
+from collections.abc import Iterator
+from dataclasses import dataclass
+from pathlib import Path
+
+ROOT = Path(__file__).resolve().parents[2]
+ROOMS = ("physics", "diagnosis")
+COMPILED = ("transient", "network_solver", "compiled_code", "netlist", "network.py")
+TESTS = {
+    "physics": ("tests/physics", "tests/reference/test_worked_rectifier.py", "tests/reference/test_worked_regulation.py",
+                "tests/reference/test_worked_protection.py", "tests/reference/test_worked_converter.py",
+                "tests/reference/test_handbook_life.py", "tests/reference/test_handbook_failure_rate.py",
+                "tests/reference/test_handbook_derating.py"),
+    "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py",
+                  "tests/reference/test_diagnosis_playing.py"),
+}
+LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py")
+LONGEST = 240.0
+"""A run beyond this counts as killed [s]."""
+
+BINARY: dict[type[ast.operator], type[ast.operator]] = {
+    ast.Add: ast.Sub, ast.Sub: ast.Add, ast.Mult: ast.Div, ast.Div: ast.Mult, ast.Pow: ast.Mult, ast.FloorDiv: ast.Div,
+}
+COMPARE: dict[type[ast.cmpop], type[ast.cmpop]] = {
+    ast.Lt: ast.GtE, ast.LtE: ast.Gt, ast.Gt: ast.LtE, ast.GtE: ast.Lt, ast.Eq: ast.NotEq, ast.NotEq: ast.Eq,
+    ast.In: ast.NotIn, ast.NotIn: ast.In, ast.Is: ast.IsNot, ast.IsNot: ast.Is,
+}
+WORDS = {"min": "max", "max": "min", "minimum": "maximum", "maximum": "minimum", "any": "all", "all": "any", "exp": "log1p",
+         "sin": "cos", "cos": "sin"}
+
+
+@dataclass(frozen=True, slots=True)
+class Mutant:
+    """One change at one place."""
+
+    path: Path
+    place: int
+    """Number of the changeable node in the module, in the order of the walk."""
+    line: int
+    what: str
+
+
+def changed(node: ast.AST) -> str:
+    """Change a node in place and say how; empty when nothing of it can be changed."""
+    if isinstance(node, ast.BinOp) and type(node.op) in BINARY:
+        old, node.op = type(node.op), BINARY[type(node.op)]()
+        return f"{old.__name__} -> {type(node.op).__name__}"
+    if isinstance(node, ast.Compare) and type(node.ops[0]) in COMPARE:
+        old_compare, node.ops[0] = type(node.ops[0]), COMPARE[type(node.ops[0])]()
+        return f"{old_compare.__name__} -> {type(node.ops[0]).__name__}"
+    if isinstance(node, ast.BoolOp):
+        node.op = ast.Or() if isinstance(node.op, ast.And) else ast.And()
+        return "and <-> or"
+    if isinstance(node, ast.UnaryOp) and isinstance(node.op, ast.USub | ast.Not):
+        old_unary, node.op = type(node.op).__name__, ast.UAdd() if isinstance(node.op, ast.USub) else ast.Not()
+        if old_unary == "Not":
+            node.operand = ast.UnaryOp(ast.Not(), node.operand)
+        return f"{old_unary} dropped"
+    if isinstance(node, ast.Constant) and type(node.value) in (int, float):
+        node.value = node.value * 1.1 if isinstance(node.value, float) and node.value else node.value + 1
+        return f"number -> {node.value:.6g}"
+    if isinstance(node, ast.Call):
+        name = node.func.id if isinstance(node.func, ast.Name) else node.func.attr if isinstance(node.func, ast.Attribute) else ""
+        if name in WORDS:
+            if isinstance(node.func, ast.Name):
+                node.func.id = WORDS[name]
+            elif isinstance(node.func, ast.Attribute):
+                node.func.attr = WORDS[name]
+            return f"{name} -> {WORDS[name]}"
+    return ""
+
+
+def places(tree: ast.Module) -> Iterator[ast.AST]:
+    """Nodes of functions and of module constants, annotations left out."""
+    for node in ast.walk(tree):
+        if isinstance(node, ast.FunctionDef):
+            node.returns = None
+            for argument in (*node.args.args, *node.args.kwonlyargs):
+                argument.annotation = None
+        elif isinstance(node, ast.AnnAssign):
+            node.annotation = ast.Name("object", ast.Load())
+    yield from ast.walk(tree)
+
+
+def mutants(path: Path) -> list[Mutant]:
+    """Every change that a module allows."""
+    found = []
+    count = sum(1 for _ in places(ast.parse(path.read_text("utf-8"))))
+    for place in range(count):
+        tree = ast.parse(path.read_text("utf-8"))
+        node = next(one for k, one in enumerate(places(tree)) if k == place)
+        if what := changed(node):
+            found.append(Mutant(path, place, getattr(node, "lineno", 0), what))
+    return found
+
+
+def write(mutant: Mutant, target: Path) -> None:
+    """The changed module."""
+    tree = ast.parse(mutant.path.read_text("utf-8"))
+    changed(next(one for k, one in enumerate(places(tree)) if k == mutant.place))
+    target.write_text(ast.unparse(ast.fix_missing_locations(tree)), "utf-8")
+
+
+def matching(mutant: Mutant, room: str, folder: Path) -> list[str]:
+    """Test files that import the module of a mutant."""
+    name = f"triage.{room}.{mutant.path.stem}"
+    folders = ("tests/physics", "tests/diagnosis", "tests/safety", "tests/replacement", "tests/reference")
+    found = [path.relative_to(folder).as_posix() for one in folders for path in sorted((folder / one).glob("test_*.py"))
+             if f"{name} import" in (text := path.read_text("utf-8")) or f"from triage.{room} import {mutant.path.stem}" in text]
+    return [one for one in found if one not in LEAVE_OUT and "circuits" not in one and "simulator" not in one]
+
+
+def killed(mutant: Mutant, room: str, folder: Path) -> bool:
+    """True when a test fails in the copy."""
+    target = folder / mutant.path.relative_to(ROOT)
+    kept = target.read_text("utf-8")
+    write(mutant, target)
+    try:
+        near = matching(mutant, room, folder)
+        return (bool(near) and fails(near, folder)) or fails(list(TESTS[room]), folder)
+    finally:
+        target.write_text(kept, "utf-8")
+
+
+def fails(files: list[str], folder: Path) -> bool:
+    """True when a test of these files fails, or none can be run."""
+    ignored = [f"--ignore={one}" for one in LEAVE_OUT]
+    try:
+        ended = subprocess.run(
+            [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", *ignored, *files],
+            cwd=folder, capture_output=True, check=False, timeout=LONGEST, env={**os.environ, "PYTHONPATH": str(folder)},
+        )  # fmt: skip
+        return ended.returncode != 0
+    except subprocess.TimeoutExpired:
+        return True
+
+
+def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:
+    """A sample of the mutants, one line each, and the shares."""
+    every = [(room, one) for room in rooms for path in sorted((ROOT / "triage" / room).glob("*.py"))
+             if not path.name.startswith(COMPILED) and path.name != "__init__.py" for one in mutants(path)]
+    sample = random.Random(seed).sample(every, min(count, len(every)))
+    begun, survived = time.monotonic(), 0
+    with tempfile.TemporaryDirectory() as name:
+        folder = Path(name)
+        for part in ("triage", "tests", "profiles", "part_catalog", "pyproject.toml"):
+            copy = shutil.copytree if (ROOT / part).is_dir() else shutil.copy
+            copy(ROOT / part, folder / part)
+        for room in rooms:
+            if fails(list(TESTS[room]), folder):
+                raise SystemExit(f"the tests of {room} fail without any change")
+        for number, (room, one) in enumerate(sample, 1):
+            dead = killed(one, room, folder)
+            survived += not dead
+            place = f"{one.path.relative_to(ROOT)}:{one.line}"
+            print(f"{number:4} {'killed' if dead else 'SURVIVED'} {place} {one.what}", flush=True)
+    share = 1.0 - survived / len(sample)
+    print(f"{len(sample)} of {len(every)} mutants, {share:.0%} killed, {survived} survived, {time.monotonic() - begun:.0f} s")
+
+
+if __name__ == "__main__":
+    given = sys.argv[1:]
+    main(int(given[0]) if given else 40, int(given[1]) if len(given) > 1 else 1, tuple(given[2:]) or ROOMS)
