@@ -191,6 +191,9 @@ def _next(bench: "Bench", facts: GateFacts, state: Replay, job: Job) -> Suggesti
     suggestion = diagnosis.suggest(job, gate)
     if suggestion is not None:
         return shown.suggestion_view(suggestion)
+    if not facts.unplugged:
+        # No reading with mains tells more: what is left is read on the unpowered board.
+        return _bulk_again(bench, facts)
     check = open_check(bench.rules, facts)
     if live or not cold or check is None:
         return None
