@@ -20,7 +20,8 @@ UNITS = {
 """Every bracket of a docstring: a unit, ``-`` for a plain number, ``key`` for a name out of a table, ``SI`` for a record."""
 
 ROOMS = [
-    "capacitor_discharge", "capacitor_dropper", "clamp", "derating", "divider", "electrolytic_life", "failure_factors", "failure_modes",
+    "capacitor_discharge", "capacitor_dropper", "clamp", "derating", "divider", "electrolytic_life",
+         "failure_factors", "failure_modes",
     "failure_rate", "flyback", "fuse_inrush", "linear_regulator", "magnetics", "rectifier", "rectifier_estimates",
     "ringing_choke", "shunt_reference", "thermal", "y_capacitor", "zener",
 ]
