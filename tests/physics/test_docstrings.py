@@ -21,9 +21,9 @@ UNITS = {
 
 ROOMS = [
     "capacitor_discharge", "capacitor_dropper", "clamp", "derating", "divider", "electrolytic_life",
-         "failure_factors", "failure_modes",
-    "failure_rate", "flyback", "fuse_inrush", "linear_regulator", "magnetics", "rectifier", "rectifier_estimates",
-    "ringing_choke", "shunt_reference", "thermal", "y_capacitor", "zener",
+    "failure_factors", "failure_modes", "failure_rate", "flyback", "fuse_inrush", "linear_regulator",
+    "magnetics", "rectifier", "rectifier_estimates", "ringing_choke", "shunt_reference", "thermal",
+    "y_capacitor", "zener",
 ]
 """The formula rooms; the solvers of the netlist beside them have their own tests."""
 
