@@ -260,7 +260,7 @@ def accumulate(stats, start, stage, end, h, peaks):
     """Add one step of length ``h`` to extremes and integrals of every port.
 
     Extremes look at the ends of steps only: the inner stage of a step over a stiff part overshoots, and the end takes that
-    back. They leave out the first steps of a run (``peaks`` False), some picoseconds in which the junctions take up their charges.
+    back. They leave out the first steps of a run (``peaks`` False), some picoseconds in which junctions take up their charges.
     """
     w, w1 = h * STAGE_WEIGHT, h * END_WEIGHT
     for p in range(end.shape[1]):
