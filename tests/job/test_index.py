@@ -1,7 +1,9 @@
 """Finding jobs: derived, deletable, incremental, forgiving."""
 
+import contextlib
 import os
 import time
+from concurrent.futures import BrokenExecutor
 from pathlib import Path
 
 import pytest
@@ -141,3 +143,16 @@ def test_no_search_words_break_the_query(words: str) -> None:
     one = Index(Path("/nonexistent"), Path(":memory:"))
     one.refresh()
     assert one.find(words) == ()
+
+
+class KilledReaders:
+    """Stands for processes that were killed while they read."""
+
+    def map(self, *arguments: object, **options: object) -> list[object]:
+        raise BrokenExecutor("terminated abruptly")
+
+
+def test_killed_readers_leave_the_index_whole(jobs: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("triage.job.index._pool_for", lambda files: contextlib.nullcontext(KilledReaders()))
+    one = Index(jobs, tmp_path / "alone.sqlite")
+    assert one.refresh() == one.count() == 3

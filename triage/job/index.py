@@ -14,7 +14,7 @@ import os
 import sqlite3
 import time
 from collections.abc import Iterable, Iterator, Sequence
-from concurrent.futures import ProcessPoolExecutor
+from concurrent.futures import BrokenExecutor, ProcessPoolExecutor
 from dataclasses import astuple, fields
 from pathlib import Path
 from types import TracebackType
@@ -158,9 +158,13 @@ class Index:
     def _read(self, batch: Sequence[tuple[str, int, int]]) -> list[tuple[Summary, str]]:
         """Summaries of the files of a batch, on all processors when there are many."""
         paths = [self.folder / name for name, _, _ in batch]
-        if self._pool is None:
-            return [_summary_or_problem(path) for path in paths]
-        return list(self._pool.map(_summary_or_problem, paths, chunksize=100))
+        if self._pool is not None:
+            try:
+                return list(self._pool.map(_summary_or_problem, paths, chunksize=100))
+            except BrokenExecutor:
+                # A reader was killed (memory, an impatient administrator): go on alone, slower.
+                self._pool = None
+        return [_summary_or_problem(path) for path in paths]
 
     def count(self) -> int:
         """Number of jobs, unreadable ones left out."""
