@@ -316,6 +316,24 @@ def test_every_command_of_the_table_can_be_run(tmp_path):
     play(tmp_path, story, at_bench=True)
 
 
+def test_the_calculation_can_be_stopped_and_gone_on_with(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await pilot.press("down", "enter")
+        for _ in range(300):
+            await asyncio.sleep(0.01)
+            if "complaint" in text_of(pilot.app):
+                break
+        await pilot.press("f2", *"stop", "enter")
+        await settle(pilot)
+        text = text_of(pilot.app)
+        assert "stopped: nothing is suggested; type go" in text
+        assert not pilot.app.desk.bench.ready and not pilot.app.desk.busy  # type: ignore[attr-defined]
+        await type_in(pilot, "go")
+        assert pilot.app.desk.bench.ready and "stopped" not in text_of(pilot.app)  # type: ignore[attr-defined]
+
+    play(tmp_path, story, prepare_seconds=2.0)
+
+
 def test_going_back_to_the_start_page_puts_the_job_away(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await pilot.app.run_action("start")

@@ -8,6 +8,8 @@ from tests.app.fake_bench import BOARD, STRESSES
 from triage.app.glyphs import ASCII
 from triage.app.lines import plain, width_of
 from triage.app.text.bench import (
+    fault_words,
+    key_for,
     log_lines,
     mode_words,
     percent,
@@ -150,3 +152,33 @@ def test_the_stand_in_board_names_nodes_that_the_drawing_has():
 def test_the_worst_stress_stands_first():
     assert [one.ref for one in worst_first(STRESSES[::-1])][:2] == ["Q1", "R1"]
     assert worst_first(STRESSES)[-1].ref == "LED1"
+
+
+def test_a_reading_at_the_plug_has_no_leads_to_place():
+    lines = suggestion_lines(SuggestionView("watts", "mains_l", "pgnd", "noload", "W", 6.0, "why", ()), PINS, 80, 5)
+    text = plain(lines[0])
+    assert "watts at the plug" in text and "LIVE, no load" in text and "red" not in text and "mains_l" not in text
+
+
+def test_two_faults_at_once_are_named_each_with_its_part():
+    assert fault_words(SuspectView("C5+R1", "high_esr+open", 0.1)) == "C5 high esr + R1 open"
+    assert fault_words(SuspectView("", "no part fault", 0.1)) == "no part fault"
+
+
+def test_with_little_room_the_likeliest_outcomes_are_shown_in_the_order_of_the_scale():
+    outcomes = tuple(OutcomeView(f"band {at}", at, at + 1, chance, "x") for at, chance in enumerate((0.02, 0.9, 0.01, 0.07)))
+    lines = suggestion_lines(SuggestionView("ohms", "a", "b", "cold", "ohm", 1.0, "why", outcomes), {}, 80, 4)
+    assert [plain(row).split()[3] for row in lines[-2:]] == ["1", "3"]
+
+
+@pytest.mark.parametrize(
+    ("refusal", "key"),
+    [
+        ("power up: not open yet: first acknowledge scope", "F10"),
+        ("retest cold: not open yet: first unplug and read the bulk voltage", "F2"),
+        ("repair: not open yet: first look at cord", "F8"),
+        ("reading: 'x'; expected ohm", ""),
+    ],
+)
+def test_a_refusal_names_the_key_where_it_is_put_right(refusal, key):
+    assert key_for(refusal) == key

@@ -99,6 +99,7 @@ class Desk:
         """Go on with a calculation that was stopped."""
         if self.bench is not None and self.view is not None and self.view.computing and not self._slow.busy:
             self._prepare(self.bench)
+            self._say("")
 
     def stop(self) -> None:
         """End the calculation of what to expect; entries can be made without it."""

@@ -9,6 +9,7 @@ from triage.app.drawing import Marks, marked, pin_list, rows_of, squeezed
 from triage.app.frame import Frame
 from triage.app.lines import Line, Span, line, plain, width_of, wrapped
 from triage.app.text.bench import (
+    AT_THE_PLUG,
     log_lines,
     retest_lines,
     rooms,
@@ -66,7 +67,7 @@ class BenchScreen(Frame):
         self._arrange(rows)
         board, suspects, log = self.panel("board"), self.panel("suspects"), self.panel("log")
         board.show(rows)
-        found = view.suggestion
+        found = view.suggestion if view.suggestion and view.suggestion.function not in AT_THE_PLUG else None
         for node in (found.minus, found.plus) if found else ():
             for row in rows_of(rows, node)[:1]:
                 board.scroll_to_row(row)
@@ -79,7 +80,7 @@ class BenchScreen(Frame):
 
     @staticmethod
     def _marked(view: JobView, drawing: str) -> tuple[Line, ...]:
-        found = view.suggestion
+        found = view.suggestion if view.suggestion and view.suggestion.function not in AT_THE_PLUG else None
         marks = Marks(
             suspects=[ref for one in view.suspects[:4] for ref in one.ref.split("+") if ref],
             over=frozenset(ref for one in view.suspects if one.stress for ref in one.ref.split("+")),

@@ -23,6 +23,8 @@ FUNCTION_WORDS = {
     "touch_amps": "touch current",
     "temperature": "temperature",
 }
+AT_THE_PLUG = ("watts", "amps_ac")
+"""Functions of the meter in the mains lead: there are no leads to place."""
 CONDITION_WORDS = {
     "cold": "unplugged",
     "noload": "LIVE, no load",
@@ -176,6 +178,9 @@ def _lead_line(found: SuggestionView, pins: Mapping[str, Sequence[str]], width: 
         Span(CONDITION_WORDS.get(found.condition, found.condition), "bad" if live else "strong"),
         Span(f" {found.minutes:.1f} min", "quiet"),
     )
+    if found.function in AT_THE_PLUG:
+        words = Span(f"{FUNCTION_WORDS[found.function]}, between socket and adapter", "strong")
+        return apart(line(Span("next ", "head"), " ", words), right, width)
     for count in (3, 2, 1, 0):
         red, black = (pin_words(*pair, pins, count) for pair in ((found.plus, found.minus), (found.minus, found.plus)))
         left = line(
