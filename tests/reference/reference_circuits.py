@@ -19,8 +19,6 @@ MODES = {"low_c": "low_capacitance", "low_vz": "low_voltage"}
 FUNCTIONS = {"cap": "capacitance"}
 BY_CURRENT = Meter(ohms_currents=(1e-3, 1e-4, 1e-5, 1e-6, 1e-7, 1.5e-8), diode_limit=3.0, bridge_series=True)
 """The meter of the circuits pwm-opto and linear-reg: their ohms test current steps down, their bridge shows series values."""
-METERS_ALIKE = ("rcc-zener", "rcc-opto")
-"""Circuits whose cold tables were taken with a meter like the program's own: a low voltage behind a resistance."""
 LEAK = 4700.0
 """Resistance of a leaky part in those two circuits [ohm]; the other two use the program's own."""
 SOURCE = "reference circuits, simulated with ngspice 39"
