@@ -100,15 +100,10 @@ def places(tree: ast.Module) -> Iterator[ast.AST]:
 
 
 def mutants(path: Path) -> list[Mutant]:
-    """Every change that a module allows."""
-    found = []
-    count = sum(1 for _ in places(ast.parse(path.read_text("utf-8"))))
-    for place in range(count):
-        tree = ast.parse(path.read_text("utf-8"))
-        node = next(one for k, one in enumerate(places(tree)) if k == place)
-        if what := changed(node):
-            found.append(Mutant(path, place, getattr(node, "lineno", 0), what))
-    return found
+    """Every change that a module allows; a change of one node leaves it to the others to be changed."""
+    nodes = list(places(ast.parse(path.read_text("utf-8"))))
+    told = ((place, node, changed(node)) for place, node in enumerate(nodes))
+    return [Mutant(path, place, getattr(node, "lineno", 0), what) for place, node, what in told if what]
 
 
 def write(mutant: Mutant, target: Path) -> None:

@@ -140,7 +140,7 @@ SHARES = [
     ("transformer", "transformer", "mains transformer",
      {"open": "pri_open+sec_open+half_open", "short+parameter_change": "shorted_turns"}),
     ("transformer", "transformer", "flyback transformer",
-     {"open": "pri_open+fb_open+aux_open+sec_open", "short+parameter_change": "shorted_turns"}),
+     {"open": "pri_open+fb_open+aux_open+sec_open+half_open", "short+parameter_change": "shorted_turns"}),
     ("microcircuit_linear", "pwm_controller", "controller", {"no_output": "open",
      "improper_output": "vcc_short+drv_low+vcc_leaky+drv_high"}),
     ("microcircuit_linear", "regulator", "regulator", {"no_output": "open",
