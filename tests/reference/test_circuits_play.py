@@ -28,6 +28,7 @@ from triage.job.learning import NONE
 from triage.job.wiring import Wiring
 
 CLEAN, GROSS = 0.95, 0.93
+SEEDS = (500, 1500, 2500)
 PLAYED = ("rcc-zener",)
 """Circuits that reach the share. rcc-opto stands at 84 %: the verdict there names the fusible resistor before the shorted bridge
 diode that blew it. The cold tables of the other two were taken with another kind of meter than the expectations."""
@@ -65,11 +66,11 @@ def units(circuit: str, board: Board) -> list[Unit]:
 
 
 def play_all(circuit: str, meter: Meter) -> list[Play]:
-    """Every unit once."""
+    """Every unit once with an honest meter; with one that errs three times, as one play more or less is luck."""
     board = load_profile(PROFILES[circuit])
     diagnosis = Wiring().diagnosis(board, NONE)
-    return [play(diagnosis, unit.name, unit.needed, [unit.symptom, Sign("sound")], unit.readings.get, 500 + number, meter)
-            for number, unit in enumerate(units(circuit, board))]
+    return [play(diagnosis, unit.name, unit.needed, [unit.symptom, Sign("sound")], unit.readings.get, seed + number, meter)
+            for seed in (SEEDS if meter.gross else SEEDS[:1]) for number, unit in enumerate(units(circuit, board))]
 
 
 @pytest.mark.parametrize("circuit", PLAYED)
