@@ -44,6 +44,14 @@ def test_no_node_hangs_on_a_single_element() -> None:
     assert [node for node, count in ends.items() if count < 2] == []
 
 
+def test_the_deck_reads_a_plateau_as_the_solver_does() -> None:
+    from triage.job import deck_behaviour
+    from triage.physics import transient_switchers
+
+    for name in ("LEADING_EDGE", "PLATEAU_FILTER", "SLOW_FILTER", "BEND", "KNEE", "NO_PLATEAU"):
+        assert getattr(deck_behaviour, name) == getattr(transient_switchers, name)
+
+
 def test_a_fault_changes_the_deck_and_is_named_in_its_head() -> None:
     faulty = deck(BOARD, (Fault("D1", "short"),))
     assert "D1.short" in faulty.splitlines()[0]

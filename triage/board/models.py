@@ -71,6 +71,8 @@ def _diode_case(part: Part) -> str:
         if amperes >= 4.0:
             return "schottky_5A" if volts <= 60.0 else "schottky_10A"
         return "schottky_60" if volts <= 60.0 else "schottky_100"
+    if part.role in ("free-wheeling diode", "feedback diode"):
+        return "ultrafast"
     if amperes <= 0.3:
         return "small_signal"
     return "rectifier" if part.role.startswith("mains") else "fast"

@@ -13,12 +13,14 @@ from collections.abc import Mapping, Sequence
 from triage.board.circuit import circuit
 from triage.board.fault import Fault
 from triage.board.part import Board
+from triage.families import family_of
+from triage.job.deck_behaviour import behaviour_lines
 from triage.job.display import plain
-from triage.physics.netlist import Netlist
+from triage.physics.netlist import OFF_TIME, Netlist
 
 DIODE_NAMES = {
     "saturation_current": "IS", "emission": "N", "zero_bias_capacitance": "CJO", "junction_potential": "VJ",
-    "grading": "M", "transit_time": "TT", "breakdown_voltage": "BV", "breakdown_current": "IBV",
+    "grading": "M", "transit_time": "TT", "breakdown_voltage": "BV", "breakdown_current": "IBV", "breakdown_emission": "NBV",
 }  # fmt: skip
 BIPOLAR_NAMES = {
     "saturation_current": "IS", "gain": "BF", "reverse_gain": "BR", "early_voltage": "VAF", "knee_current": "IKF",
@@ -33,30 +35,44 @@ PERIODS = 4
 LARGEST_STEP = 2e-7
 """Largest time step asked of the simulator [s]: a hundredth of the shortest switching period of the reference
 boards."""
+SLOW_STEP = 2e-5
+"""The same where nothing switches [s]."""
+SLOW_OPTIONS = ".options method=gear reltol=0.003 abstol=1e-7 vntol=1e-4 chgtol=1e-10"
+"""Where nothing switches the ring of a rectifier with the stray inductance is not worth following."""
+FLOATING_OPTIONS = ".options reltol=1e-4"
+"""A controller whose ground swings by the mains compares millivolts there: the usual tolerance is a tenth of a volt."""
 LEAST_RESISTANCE = 1e-6
 """A resistance below this is written as this [ohm]: SPICE knows no zero."""
 
 
-def deck(board: Board, faults: Sequence[Fault] = (), *, mains: float | None = None, load: float | None = None) -> str:
+def deck(board: Board, faults: Sequence[Fault] = (), *, mains: float | None = None, load: float | None = None,
+         start: Mapping[str, float] | None = None, periods: int = PERIODS, largest_step: float | None = None) -> str:
     """The deck of the powered board under these faults.
 
-    mains [V rms], load [ohm]: default nominal mains and rated load.
+    mains [V rms], load [ohm]: default nominal mains and rated load. start: capacitor -> voltage to begin with [V], as a settled
+    operating point gives them; others are empty. periods: mains periods of the analysis. largest_step [s]:
+    by default what the family asks for.
     """
     net = circuit(board, faults, mains=mains, load=load)
+    slow, floating = family_of(board.family).slow, any(kind == OFF_TIME for _, kind, *_ in net.behaviours)
+    largest_step = largest_step or (SLOW_STEP if slow else LARGEST_STEP)
+    charged = dict(start or {})
+    net.capacitors = [(*one[:5], charged.get(one[0], one[5])) for one in net.capacitors]
     state = " + ".join(map(str, faults)) or "healthy"
     volts = mains or board.mains.nominal
     lines = [
         f"* {plain(board.title)}: {plain(state)}, {volts:g} V mains, load {load or board.full_load:g} ohm",
         "* nodes carry the names of the board; node 0 is " + plain(net.reference),
-        *_elements(net),
+        *_elements(net, bool(charged)),
         ".temp 27",
-        f".tran {LARGEST_STEP:g} {PERIODS / board.mains.frequency:g} 0 {LARGEST_STEP:g} uic",
+        *([SLOW_OPTIONS] if slow else [FLOATING_OPTIONS] if floating else []),
+        f".tran {largest_step:g} {periods / board.mains.frequency:g} 0 {largest_step:g} uic",
         ".end",
     ]
     return "\n".join(lines) + "\n"
 
 
-def _elements(net: Netlist) -> list[str]:
+def _elements(net: Netlist, awake: bool) -> list[str]:
     names = _Names(net.reference)
     lines = [
         f"R{names.element(name)} {names.node(a)} {names.node(b)} {max(value, LEAST_RESISTANCE):.9g}"
@@ -77,6 +93,10 @@ def _elements(net: Netlist) -> list[str]:
         lines.append(f"Q{names.element(name)} {ends} QM{number}")
         kind = "NPN" if polarity > 0 else "PNP"
         lines.append(f".model QM{number} {kind}({_parameters(model, BIPOLAR_NAMES)})")
+    for name, a, b, plus, minus, siemens in net.transfers:
+        ends = " ".join(names.node(node) for node in (a, b, plus, minus))
+        lines.append(f"G{names.element(name)} {ends} {siemens:.9g}")
+    lines += behaviour_lines(net, names.node, awake)
     for name, plus, minus, amplitude, frequency, phase, resistance in net.sources:
         one, inner = names.element(name), names.node(f"{name}:inner")
         degrees = math.degrees(phase)
@@ -98,7 +118,7 @@ def _windings(net: Netlist, names: "_Names") -> list[str]:
 
 def _stated(key: str, value: float) -> bool:
     """A breakdown voltage of 0 means none, which SPICE says by leaving it out."""
-    return key not in ("breakdown_voltage", "breakdown_current") or value > 0
+    return key not in ("breakdown_voltage", "breakdown_current", "breakdown_emission") or value > 0
 
 
 def _parameters(model: Mapping[str, float], names: Mapping[str, str]) -> str:

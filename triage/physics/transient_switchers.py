@@ -2,8 +2,8 @@
 """Compiled behaviour of switchers with their own transistor: one reads the plateau of an auxiliary winding, one has a time off.
 
 PLATEAU, a primary-side regulator: the peak current is set and the period stretched as the sampled plateau rises; the sample is
-what the winding shows last before the secondary current ends (the knee). The period also stays above the time of that current
-over a set share, which limits the mean output current. OFF_TIME, a step-down switcher: a pulse ends at the peak current, the next
+what the winding shows last before the secondary current ends (the knee), half of it that of the pulse before. The period also
+stays above the time of that current over a set share, which limits the mean output current. OFF_TIME, a step-down switcher: a pulse ends at the peak current, the next
 begins after a fixed time off as soon as the feedback is below its reference; with no feedback for long it rests.
 
 All times are counted since the last edge, so nothing depends on where a stretch of the solution begins. State of both: awake,
@@ -24,8 +24,10 @@ LEADING_EDGE = 2.5e-7
 """The current sense is blind after turn-on [s]."""
 PLATEAU_FILTER = 4e-7
 """Time constant of the plateau's follower [s]."""
-KNEE, NO_PLATEAU = 0.85, 0.02
-"""Share of the plateau below which it has ended, and of the reference below which there was none [-]."""
+SLOW_FILTER = 6e-6
+"""The same once the voltage bends away from the plateau, so that the fall at its end is not followed [s]."""
+BEND, KNEE, NO_PLATEAU = 0.98, 0.85, 0.02
+"""Shares of the plateau at which it bends and has ended, and of the reference below which there was none [-]."""
 
 
 @njit(**OPTIONS)
@@ -67,9 +69,10 @@ def follow_plateau(feedback, p, s, h):
     elif s[5] == 0.0:
         s[5] = feedback
     elif feedback < KNEE * s[5] or s[4] > p[7]:
-        s[6], s[7], s[5] = s[5], s[4], -1.0
+        s[6], s[7], s[5] = 0.5 * (s[6] + s[5]), s[4], -1.0
     else:
-        s[5] += (feedback - s[5]) * (1.0 - math.exp(-h / PLATEAU_FILTER))
+        lag = PLATEAU_FILTER if feedback > BEND * s[5] else SLOW_FILTER
+        s[5] += (feedback - s[5]) * (1.0 - math.exp(-h / lag))
 
 
 @njit(**OPTIONS)

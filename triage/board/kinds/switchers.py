@@ -23,7 +23,7 @@ _LOW_PEAK = 0.4
 """Share of the peak current that is left at the lowest frequency [-]."""
 _SPAN = 0.06
 """Band of the plateau over which the frequency goes from highest to lowest, share of the reference [-]."""
-_LONGEST_ON, _PLATEAU_BLANKING = 2.5e-5, 1.8e-6
+_LONGEST_ON, _PLATEAU_BLANKING = 2.5e-5, 2.2e-6
 _SUPPLY_LEVEL, _SUPPLY_SLOPE, _SUPPLY_PATH = 5.9, 4e-3, 20e3
 """Depletion transistor: voltage at which it stops [V], slope [A/V2], resistance in front of it [ohm]."""
 _NO_FEEDBACK, _REST = 0.02, 0.08
