@@ -39,6 +39,7 @@ def test_frequency_is_read_at_the_swinging_node():
     assert (probe.plus, probe.minus) == ("sw", "gnd")
 
 
+@pytest.mark.long
 @pytest.mark.parametrize(("fault", "expected"), [
     ("U1.open", {"dead"}), ("L1.open", {"dead"}), ("RF1.open", {"fuse gone", "dead"}), ("J1.open", {"dead"}),
     ("D2.short", {"dead"}),

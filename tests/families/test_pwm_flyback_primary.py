@@ -33,6 +33,7 @@ def test_rectifiers_side_by_side_share_the_load_and_one_alone_carries_on():
     assert alone["out"] == pytest.approx(shown(BOARD)["out"], rel=0.02)
 
 
+@pytest.mark.long
 @pytest.mark.parametrize(("fault", "expected"), [
     ("U1.open", {"dead"}), ("R1.open", {"fuse gone", "dead"}), ("L1.return_open", {"fuse gone", "dead"}), ("W1.open", {"dead"}),
 ])  # fmt: skip
