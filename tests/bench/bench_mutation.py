@@ -28,8 +28,7 @@ TESTS = {
                 "tests/reference/test_worked_protection.py", "tests/reference/test_worked_converter.py",
                 "tests/reference/test_handbook_life.py", "tests/reference/test_handbook_failure_rate.py",
                 "tests/reference/test_handbook_derating.py"),
-    "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py",
-                  "tests/reference/test_diagnosis_playing.py"),
+    "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py"),
 }
 LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py")
 LONGEST = 240.0
@@ -137,14 +136,17 @@ def killed(mutant: Mutant, room: str, folder: Path) -> bool:
 def fails(files: list[str], folder: Path) -> bool:
     """True when a test of these files fails, or none can be run."""
     ignored = [f"--ignore={one}" for one in LEAVE_OUT]
+    command = [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", *ignored, *files]
+    code = -1
     try:
-        ended = subprocess.run(
-            [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", *ignored, *files],
-            cwd=folder, capture_output=True, check=False, timeout=LONGEST, env={**os.environ, "PYTHONPATH": str(folder)},
-        )  # fmt: skip
-        return ended.returncode != 0
+        # A run that a signal ended from outside says nothing: it is repeated.
+        while code < 0 or code == 143:
+            ended = subprocess.run(command, cwd=folder, capture_output=True, check=False, timeout=LONGEST,
+                                   env={**os.environ, "PYTHONPATH": str(folder)})
+            code = ended.returncode
     except subprocess.TimeoutExpired:
         return True
+    return code != 0
 
 
 def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:

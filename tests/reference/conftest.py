@@ -23,7 +23,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from tests.reference import simulator
+from tests.reference.simulator import Waveforms, run
 
 
 @dataclass
@@ -121,12 +121,19 @@ def outside_check() -> Iterator[OutsideChecks]:
 
 
 @pytest.fixture(scope="session")
-def ngspice(tmp_path_factory: pytest.TempPathFactory) -> Callable[[str, float, str, str], simulator.Waveforms]:
-    """Simulates a deck: (deck, begin of the window [s], reference node, options) -> waveforms; skips where ngspice is absent."""
-    if shutil.which("ngspice") is None:
+def simulator() -> str:
+    """The program ngspice; where there is none the checks that need it are skipped."""
+    found = shutil.which("ngspice")
+    if found is None:
         pytest.skip("ngspice is not installed")
+    return found
+
+
+@pytest.fixture(scope="session")
+def ngspice(simulator: str, tmp_path_factory: pytest.TempPathFactory) -> Callable[[str, float, str, str], Waveforms]:
+    """Simulates a deck: (deck, begin of the window [s], reference node, options) -> waveforms."""
     folder = tmp_path_factory.mktemp("ngspice")
-    return lambda deck, begin, reference, options: simulator.run(deck, folder, begin, reference, options)
+    return lambda deck, begin, reference, options: run(simulator, deck, folder, begin, reference, options)
 
 
 def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:

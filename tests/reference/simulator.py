@@ -51,11 +51,11 @@ class Waveforms:
         return float(np.sum((values[:-1] < level) & (values[1:] >= level)) / (self.time[-1] - self.time[0]))
 
 
-def run(text: str, folder: Path, begin: float, reference: str, options: str = "") -> Waveforms:
+def run(program: str, text: str, folder: Path, begin: float, reference: str, options: str) -> Waveforms:
     """Simulate a deck; the window is ``begin`` [s] to the end. Raises AssertionError when the simulator gives up."""
     deck, raw = folder / "deck.cir", folder / "deck.raw"
-    deck.write_text(text.replace("\n.end\n", f"\n.options {options}\n.end\n") if options else text, "utf-8")
-    ended = subprocess.run(["ngspice", "-b", "-r", str(raw), str(deck)], capture_output=True, text=True, check=False, timeout=600)
+    deck.write_text(text.replace("\n.end\n", f"\n.options {options}\n.end\n"), "utf-8")
+    ended = subprocess.run([program, "-b", "-r", str(raw), str(deck)], capture_output=True, text=True, check=False, timeout=600)
     said = ended.stdout[-500:] + ended.stderr[-500:]
     assert ended.returncode == 0 and raw.is_file(), said
     names, rows = _read(raw.read_bytes())

@@ -5,7 +5,6 @@ Both solve the same elements from the same start; what differs is the method and
 """
 
 import re
-import shutil
 import subprocess
 from pathlib import Path
 
@@ -22,15 +21,6 @@ from triage.job.deck import deck
 from triage.physics.transient import FINE, I_RMS, POWER, V_MAX, V_MEAN
 
 SOURCE = "ngspice, run of the deck written for the board"
-
-
-@pytest.fixture(scope="module")
-def simulator() -> str:
-    """The program ngspice; where there is none these checks are skipped."""
-    found = shutil.which("ngspice")
-    if found is None:
-        pytest.skip("ngspice is not installed")
-    return found
 
 
 def _own(board: Board, load: str) -> Settled:

@@ -75,3 +75,11 @@ def test_drying_law(outside_check: OutsideChecks, loss: float, times: float) -> 
     """Bound 2 %: the volume losses of 29 and 42 % are printed with two digits."""
     got = life.aged_esr(1.0, loss, 1.0)
     outside_check("electrolytic life", "A. Gasperi, Life prediction modeling of bus capacitors", got, times, 0.02)
+
+
+@pytest.mark.parametrize("ratio, base", [(0.99, 2.0), (1.01, 4.0), (1.04, 4.0), (1.3, 4.0)])
+def test_overload_halves_the_life_twice_as_fast_from_the_rated_ripple_on(ratio: float, base: float,
+                                                                         outside_check: OutsideChecks) -> None:
+    """Safety factor K: 2 up to the rated ripple current, 4 beyond it for 105 degC parts; the printed formula, by hand."""
+    expected = base ** ((1.0 - ratio**2) * 5.0 / 10.0)
+    outside_check("electrolytic life", ALBERTSEN, life.ripple_factor(ratio, 1.0, 5.0, 105.0), expected, 1e-9)
