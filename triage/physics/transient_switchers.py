@@ -3,8 +3,9 @@
 
 PLATEAU, a primary-side regulator: the peak current is set and the period stretched as the sampled plateau rises; the sample is
 what the winding shows last before the secondary current ends (the knee), half of it that of the pulse before. The period also
-stays above the time of that current over a set share, which limits the mean output current. OFF_TIME, a step-down switcher: a pulse ends at the peak current, the next
-begins after a fixed time off as soon as the feedback is below its reference; with no feedback for long it rests.
+stays above the time of that current over a set share, which limits the mean output current. OFF_TIME, a step-down switcher: a
+pulse ends at the peak current, the next begins after a fixed time off as soon as the feedback is below its reference; with no
+feedback for long it rests.
 
 All times are counted since the last edge, so nothing depends on where a stretch of the solution begins. State of both: awake,
 drive high, latched off or resting, time since turn-on [s], time since turn-off [s], then PLATEAU: tracked plateau [V] (below 0:
