@@ -116,10 +116,10 @@ def _facts(board: Board, dismantled: bool) -> Mapping[str, bool]:
     return {
         "varistor": "varistor" in part_kinds,
         "input fuse": bool(part_kinds & {"fuse", "fusible_resistor"}),
-        "safety capacitor": "X capacitor" in roles or "Y capacitor" in roles,
+        "safety capacitor": bool(part_kinds & {"x_capacitor", "y_capacitor"}) or "X capacitor" in roles or "Y capacitor" in roles,
         "transformer": "transformer" in part_kinds,
         "optocoupler": "optocoupler" in part_kinds,
-        "isolated": "primary" in board.sides and "secondary" in board.sides,
+        "isolated": insulation.is_isolated(board),
         "dismantled": dismantled,
     }
 
