@@ -1,9 +1,8 @@
 """Limits of what is read from a file of unknown origin: one line, at once, whatever comes."""
 
-import time
-
 import pytest
 
+from tests.hang import answers_in_time
 from triage.errors import JobError
 from triage.toml_guard import LARGEST_FILE, LONGEST_STRING, parse_toml
 
@@ -30,10 +29,8 @@ HOSTILE = {
 
 @pytest.mark.parametrize("name", HOSTILE)
 def test_a_hostile_document_is_refused_at_once_in_one_line(name: str) -> None:
-    begin = time.process_time()
-    with pytest.raises(JobError) as caught:
+    with answers_in_time(), pytest.raises(JobError) as caught:
         parse_toml(HOSTILE[name].encode(), "job.toml")
-    assert time.process_time() - begin < 1.0
     assert "\n" not in str(caught.value) and len(str(caught.value)) < 400
 
 

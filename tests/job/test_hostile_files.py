@@ -7,7 +7,6 @@ The short run is part of every test run; the long one (100,000 documents over al
 import os
 import re
 import tempfile
-import time
 from pathlib import Path
 from typing import Any
 
@@ -16,6 +15,7 @@ import tomli_w
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
+from tests.hang import answers_in_time
 from tests.job.samples import BOARD, TIME, log
 from tests.job.stand_in import PROFILE, StandIn
 from triage.board.profile import board_to_dict, load_profile
@@ -62,14 +62,13 @@ def load_or_refuse(content: bytes) -> None:
     with tempfile.TemporaryDirectory() as folder:
         path = Path(folder) / "job.toml"
         path.write_bytes(content)
-        begin = time.process_time()
         for look in (_whole, read_summary):
             try:
-                look(path)
+                with answers_in_time():
+                    look(path)
             except TriageError as error:
                 assert not CONTROL.search(plain(str(error), 2000))
                 assert "\n" not in plain(str(error), 2000)
-        assert time.process_time() - begin < 1.0
 
 
 def _whole(path: Path) -> None:
@@ -139,14 +138,12 @@ def hostile_board(**change: Any) -> dict[str, Any]:
 def test_a_hostile_board_in_a_job_is_refused_in_one_line_or_shown_as_text(tmp_path: Path, board: dict[str, Any]) -> None:
     path = tmp_path / "job.toml"
     path.write_bytes(written({"job": {"format": 1}, "board": board}))
-    begin = time.process_time()
     try:
-        with Bench.open(path, StandIn()) as bench:
+        with answers_in_time(), Bench.open(path, StandIn()) as bench:
             view = bench.view()
             assert not CONTROL.search(repr(view.title)) and not CONTROL.search(view.drawing)
     except TriageError as error:
         assert len(plain(str(error), 4000)) < 4000 and not CONTROL.search(plain(str(error), 4000))
-    assert time.process_time() - begin < 2.0
 
 
 def test_markup_and_formulas_of_an_entry_stay_text_everywhere(tmp_path: Path) -> None:
