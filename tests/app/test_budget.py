@@ -1,4 +1,4 @@
-"""Bytes at 80x24 with 256 colours, counted in a pseudo terminal; the bounds are the house's own (issue on bad
+"""Bytes at 80x24 with 256 colours, counted in a pseudo terminal; the bounds are the house's own (bad
 links)."""
 
 from tests.bench.bench_screen import measured_bytes

@@ -40,7 +40,7 @@ def test_the_old_rating_counts_too() -> None:
 
 
 def test_a_dead_part_below_the_demand_is_told_as_the_mistake() -> None:
-    """The issue's example: carried 0.6 A average against a rating of 0.2 A."""
+    """Carried 0.6 A average against a rating of 0.2 A."""
     dead = part("D5", "diode", "auxiliary rectifier", "1N4148", rated_current=0.2)
     asked = demand(board(dead), "D5", stress("D5", average_current=0.6), CATALOG)
     assert asked.mistakes == ("carried 0.6 A average current against a rating of 0.2 A: it was past its rating",)

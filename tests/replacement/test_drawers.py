@@ -168,7 +168,7 @@ def test_numbers_as_lists_write_them(text: object, number: float | None) -> None
 
 @pytest.mark.long
 def test_a_list_of_100_000_rows_is_read_and_searched(tmp_path: Path) -> None:
-    """The issue's size; the time is printed, the answer checked."""
+    """The size of a large supplier's list; the time is printed, the answer checked."""
     names = type_numbers(100_000, seed=9)
     path = tmp_path / "list.csv"
     path.write_text("type,price\n" + "".join(f'"{name}",{i % 97 / 100}\n' for i, name in enumerate(names)), encoding="utf-8")

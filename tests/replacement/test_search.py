@@ -140,7 +140,7 @@ def _hits(listed: MarkingList, names: list[str], count: int, seed: int, asked_fo
 
 
 def test_damaged_markings_are_found_in_the_shipped_catalog(catalog: Catalog, shipped: MarkingList) -> None:
-    """Bar of the issue: hit@10 at least 0.97 over the damage model, here the mean of five fixed seeds (4400 queries).
+    """The bar: hit@10 at least 0.97 over the damage model, here the mean of five fixed seeds (4400 queries).
 
     Only the 948 type numbers are asked for; the names of generic sizes would be found more easily.
     """
@@ -152,7 +152,7 @@ def test_damaged_markings_are_found_in_the_shipped_catalog(catalog: Catalog, shi
 
 
 def test_the_index_recalls_what_the_exhaustive_scorer_shows(catalog: Catalog, shipped: MarkingList) -> None:
-    """Bar of the issue: recall@10 at least 0.97 against comparing every key."""
+    """The bar: recall@10 at least 0.97 against comparing every key."""
     names = [part.type for part in catalog.parts()]
     recalls = []
     for query, _, _ in damaged_queries(names, 12, seed=21):
@@ -167,7 +167,7 @@ def test_the_index_recalls_what_the_exhaustive_scorer_shows(catalog: Catalog, sh
 
 @pytest.mark.long
 def test_damaged_markings_are_found_among_100_000() -> None:
-    """Bar of the issue: hit@10 at least 0.95 at 100,000 entries."""
+    """The bar: hit@10 at least 0.95 at 100,000 entries."""
     names = type_numbers(100_000, seed=5)
     hit = _hits(MarkingList([(name,) for name in names]), names, 30, seed=3)
     print(f"\nhit@10 at 100,000: {hit:.3f}")
