@@ -4,10 +4,8 @@ start."""
 import csv
 import io
 import json
-import os
 import subprocess
 import sys
-import time
 from pathlib import Path
 from typing import Any
 
