@@ -84,6 +84,15 @@ class Settled:
         return result
 
 
+@dataclass(frozen=True, slots=True)
+class Traced:
+    """What of the last mains period is wanted as a waveform."""
+
+    nodes: tuple[str, ...]
+    rows: int
+    """Most points of a waveform, evenly over the period."""
+
+
 @dataclass(slots=True)
 class _Run:
     """One board being settled."""
@@ -118,8 +127,10 @@ class _Run:
 
 
 def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
-           start: Mapping[str, float] | None = None, draw: Draw = NOMINAL) -> Settled:
+           start: Mapping[str, float] | None = None, draw: Draw = NOMINAL, traced: Traced | None = None) -> Settled:
     """Steady state at ``mains`` [V rms] with ``load`` [ohm], begun from the capacitor voltages ``start`` [V].
+
+    ``traced``: nodes whose voltages over the last mains period are wanted in ``stretch.trace``.
 
     Raises NoConvergence of the time-domain solution when it breaks off.
     """
@@ -130,18 +141,18 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
     rows = {(port.ref, port.suffix): index for index, port in enumerate(net.ports)}
     start_refs = {part.ref for part in board.parts if part.role in family.start_roles}
     if any(fault.ref in start_refs for fault in faults):
-        run = _begin(board, family, net, compiled, quality, mains, {})
+        run = _begin(board, family, net, compiled, quality, mains, {}, traced)
         run.state = rest_state(compiled)
         stretch = run.period()
         if stretch.frequency == 0.0 and _output(run) < 0.1 * board.label.output_voltage:
             return Settled(stretch, rows, _voltages(run), 1, False)
-    run = _begin(board, family, net, compiled, quality, mains, {} if family.starts_empty else start or {})
+    run = _begin(board, family, net, compiled, quality, mains, {} if family.starts_empty else start or {}, traced)
     stretch, periods = _repeat(run, rows)
     return Settled(stretch, rows, _voltages(run), periods, True)
 
 
 def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quality: Quality, mains: float,
-           start: Mapping[str, float]) -> _Run:
+           start: Mapping[str, float], traced: Traced | None) -> _Run:
     """A run at the crest of the mains: the bulk capacitor charged, the others as given, else empty."""
     bulk = board.by_role(family.bulk_role)
     peak = 0.985 * mains * 2.0**0.5
@@ -150,8 +161,12 @@ def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quali
         known[bulk.ref] = min(known.get(bulk.ref, peak), peak)
     electrolytics = {part.ref: compiled.names["capacitor"].index(part.ref) for part in board.parts
                      if part.kind == "electrolytic"}
-    return _Run(board, family, net, compiled, _watch(board, family, compiled), quality, initial_state(compiled, known),
-                electrolytics)
+    watch = _watch(board, family, compiled)
+    if traced is not None:
+        nodes = tuple(map(compiled.index, traced.nodes))
+        watch = replace(watch, nodes=nodes, start=SWITCHING_START, interval=1.0 / board.mains.frequency / traced.rows,
+                        rows=traced.rows)
+    return _Run(board, family, net, compiled, watch, quality, initial_state(compiled, known), electrolytics)
 
 
 def _watch(board: Board, family: Family, compiled: Compiled) -> Watch:
