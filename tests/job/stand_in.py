@@ -5,6 +5,7 @@ It answers through the real diagnosis, so that gates, suggestions and verdicts o
 only the physics is left out. The readings are invented.
 """
 
+from collections.abc import Sequence
 from dataclasses import replace
 from datetime import UTC, datetime, timedelta
 
@@ -19,7 +20,17 @@ from triage.diagnosis.engine import Diagnosis
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.priors import Weight, prior_of
 from triage.job.learning import Experience
-from triage.job.views import CandidateView, CombinationView, DemandView, MatchView, RequirementView
+from triage.job.views import (
+    CandidateView,
+    ChartView,
+    CombinationView,
+    CurveView,
+    DemandView,
+    LevelView,
+    MatchView,
+    RequirementView,
+    StressView,
+)
 
 PROFILE = "harbour-handset-charger"
 
@@ -79,6 +90,11 @@ class StandIn:
             Stress("D1", "reverse_voltage", 716.0, 1000.0, 0.7, "house table", "253 V, full load"),
             Stress("C1", "temperature", 71.0),
         )
+
+    def charts(self, board: Board, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
+        names = ("sound", *(str(fault) for fault in faults))
+        curves = tuple(CurveView(name, ((0.0, 0.0), (1e-5, 400.0 + 50.0 * n))) for n, name in enumerate(names))
+        return (ChartView("switch", "Q1", "s", "V", curves, (LevelView("rating", 600.0),)),)
 
     def demand(self, board: Board, ref: str) -> DemandView:
         need = RequirementView("v_lim_V", "limiting voltage", 447.0, None, "V", "358 V / 0.8", "house table", 250.0)

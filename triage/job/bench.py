@@ -34,7 +34,17 @@ from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
 from triage.job.shown import SuspectWriter, entry_text, stress_view
-from triage.job.views import CandidateView, CombinationView, DemandView, JobView, MatchView, MoveView, StressView, WorthView
+from triage.job.views import (
+    CandidateView,
+    ChartView,
+    CombinationView,
+    DemandView,
+    JobView,
+    MatchView,
+    MoveView,
+    StressView,
+    WorthView,
+)
 from triage.job.worth import worth_of
 from triage.quantities import parse, parse_reading
 from triage.safety.cautions import cautions
@@ -262,6 +272,11 @@ class Bench:
     def stresses_before(self) -> tuple[StressView, ...]:
         """Stresses of the board as it came onto the mat."""
         return self.answers.stresses if self.answers else self._stress_views(self.board)
+
+    def charts(self) -> tuple[ChartView, ...]:
+        """Waveforms and load line of the board as it came, sound and under the leading suspect; seconds for a suspect that
+        was not drawn before."""
+        return self.workings.charts(self.board, picture.leading_fault(self), self.stresses_before())
 
     def board_now(self) -> Board:
         """The board with the parts fitted so far."""

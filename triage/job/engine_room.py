@@ -4,13 +4,15 @@
 Everything here is a pure function of the board, so that a job gives the same answers wherever it is opened.
 """
 
+from collections.abc import Sequence
 from typing import Protocol
 
+from triage.board.fault import Fault
 from triage.board.part import Board
 from triage.board.stress import Stress
 from triage.diagnosis.engine import Diagnosis
 from triage.job.learning import Experience
-from triage.job.views import CandidateView, CombinationView, DemandView, MatchView
+from triage.job.views import CandidateView, ChartView, CombinationView, DemandView, MatchView, StressView
 
 
 class Workings(Protocol):
@@ -24,6 +26,9 @@ class Workings(Protocol):
 
     def stresses(self, board: Board) -> tuple[Stress, ...]:
         """Every stress of every part at its worst condition."""
+
+    def charts(self, board: Board, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
+        """Waveforms and load line, sound and under these faults, with the limits of these stresses; seconds a fault."""
 
     def demand(self, board: Board, ref: str) -> DemandView:
         """What the position of a part asks of a replacement."""

@@ -101,6 +101,14 @@ def view(bench: "Bench", message: str) -> JobView:
     )
 
 
+def leading_fault(bench: "Bench") -> tuple[Fault, ...]:
+    """The root faults of the likeliest suspect that is a fault of a part; empty where nothing was computed or none is."""
+    if bench.answers is None:
+        return ()
+    found = bench.answers.diagnosis.suspects(asked(replay(bench.job.entries)))
+    return found[0].root if found else ()
+
+
 def derivations(bench: "Bench") -> dict[tuple[str, str], str]:
     """(ref, mode) -> derivation of the chance of that fault before anything was seen; empty before
     ``prepare``."""

@@ -166,6 +166,42 @@ class StressView:
 
 
 @dataclass(frozen=True, slots=True)
+class CurveView:
+    """One curve of a chart."""
+
+    name: str
+    """``sound``, or the fault it is drawn under: ``C1 low capacitance``."""
+    points: tuple[tuple[float, float], ...]
+    """x and y [SI], x rising."""
+
+
+@dataclass(frozen=True, slots=True)
+class LevelView:
+    """A limit that holds along the whole chart."""
+
+    name: str
+    value: float
+
+
+@dataclass(frozen=True, slots=True)
+class ChartView:
+    """Curves with the limits they are held against."""
+
+    key: str
+    """``switch``, ``bulk`` or ``load line``."""
+    title: str
+    x_unit: str
+    y_unit: str
+    curves: tuple[CurveView, ...]
+    """The sound board first."""
+    levels: tuple[LevelView, ...] = ()
+    note: str = ""
+    """What is to be known besides; empty for nothing."""
+    edges: tuple[CurveView, ...] = ()
+    """Limits that change along the chart."""
+
+
+@dataclass(frozen=True, slots=True)
 class RequirementView:
     """One thing a replacement must offer in a position."""
 

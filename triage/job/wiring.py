@@ -6,7 +6,7 @@ rounded before it is used, so that a kept and a new answer are the same to the l
 """
 
 import contextlib
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from functools import cached_property
 from typing import TYPE_CHECKING
 
@@ -23,16 +23,19 @@ from triage.job.display import plain
 from triage.job.learning import NONE, Experience, handbook_shares
 from triage.job.views import (
     CandidateView,
+    ChartView,
     CombinationView,
     DemandView,
     MatchView,
     ReadingExpected,
     RequirementView,
     StockView,
+    StressView,
 )
 
 if TYPE_CHECKING:
     from triage.families.points import OperatingPoints
+    from triage.job.curves import Curves
     from triage.replacement.catalog import Catalog
     from triage.replacement.catalog_part import CatalogPart
     from triage.replacement.demand import Demand
@@ -51,6 +54,7 @@ class Wiring:
         """cache: where slow answers are kept; by default the user's cache folder behind what ships with the
         program."""
         self._kept = cache if cache is not None else Shipped(data_folder("profiles") / "kept", Cache())
+        self._curves: dict[str, Curves] = {}
 
     @cached_property
     def catalog(self) -> "Catalog":
@@ -112,6 +116,17 @@ class Wiring:
         from triage.job.corners import board_stresses
 
         return board_stresses(board, self._kept)
+
+    def charts(self, board: Board, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
+        """Waveforms and load line, sound and under these faults, with the limits of these stresses; seconds a fault that
+        was not asked for before."""
+        from triage.families.points import fingerprint
+        from triage.job.curves import Curves
+
+        key = fingerprint(board)
+        if key not in self._curves:
+            self._curves[key] = Curves(board, self.points(board))
+        return self._curves[key].charts(faults, stresses)
 
     def expected(self, board: Board, faults: tuple[Fault, ...]) -> tuple[ReadingExpected, ...]:
         """What each reading should show under these faults: median and the middle 90 % of boards."""
