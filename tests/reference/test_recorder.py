@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from tests.reference.conftest import WIDEST, OutsideChecks, cut
-from tests.reference.write_table import condense, markdown
+from tests.reference.write_table import BEGIN, END, condense, markdown, put, source_of
 
 
 def test_counts_every_element_and_keeps_the_worst_share() -> None:
@@ -50,13 +50,30 @@ def test_the_condensed_table_counts_what_the_full_one_holds() -> None:
     table = """| subject | source | checks | worst, share of bound | bound |
 | --- | --- | --- | --- | --- |
 | flyback | book | 4 | 50 % | 1 % |
-| flyback | sheet | 2 (1 failed) | 120 % | 1 % |
+| flyback | sheet | 2 (1 failed) | 120 % | 2 % |
 | thermal | book | 3 | 10 % | 5 % |
 """
     found = condense(table)
     assert set(found) == {"converters and magnetics", "heat"}
     text = markdown(found, datetime.date(2026, 1, 2))
-    assert "| converters and magnetics | 2 | 6 (1 failed) | 120 % |" in text
-    assert "9 checks against 2 named sources, 1 failed" in text and "2026-01-02" in text
+    assert "| converters and magnetics | book; sheet | 6 (1 failed) | 120 % | 2 % |" in text
+    assert "9 checks against 2 sources, 1 failed" in text and "2026-01-02" in text
     with pytest.raises(ValueError, match="no row"):
         condense("nothing")
+
+
+@pytest.mark.parametrize(("cell", "name"), [
+    ("IEC 60664-1:2007, table F.5", "IEC 60664-1:2007"),
+    ("Gelman et al.: Bayesian Data Analysis, 3rd ed. (2013), section 2.4", "Gelman et al."),
+    ("D. W. Hart, Power Electronics", "D. W. Hart, Power Electronics"),
+    ("ngspice, live run of the program's deck", "ngspice"),
+    ("computed by an independent method", ""), ("own numbers", ""), ("usual practice of consumer supplies", ""),
+])
+def test_a_source_is_a_publication_whatever_the_place_in_it(cell: str, name: str) -> None:
+    assert source_of(cell) == name
+
+
+def test_the_table_is_put_between_its_marks_only() -> None:
+    assert put("new\n", f"a\n{BEGIN}\nold\n{END}\nb\n") == f"a\n{BEGIN}\nnew\n{END}\nb\n"
+    with pytest.raises(ValueError, match="needs one line"):
+        put("new", "no marks")
