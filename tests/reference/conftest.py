@@ -43,6 +43,8 @@ class OutsideChecks:
 
     def __init__(self) -> None:
         self.rows: dict[tuple[str, str], Row] = {}
+        self.told: list[str] = []
+        """Rates that have no bound of their own, and what was left out: printed after the table."""
 
     def __call__(self, subject: str, source: str, got: object, expected: object, tolerance: float,
                  absolute: bool = False, what: str = "") -> None:
@@ -152,7 +154,8 @@ def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
     for line in shown:
         cells = (cell.ljust(width) for cell, width in zip(line, widths, strict=True))
         terminalreporter.write_line("  ".join(cells).rstrip())
-    terminalreporter.write_line(_CHECKS.summary)
+    for line in (*_CHECKS.told, _CHECKS.summary):
+        terminalreporter.write_line(line)
     path = os.environ.get("TRIAGE_OUTSIDE_TABLE")
     if path:
         rows = ["| " + " | ".join(line) + " |" for line in [HEAD, ("---",) * len(HEAD), *lines]]

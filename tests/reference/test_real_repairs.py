@@ -140,10 +140,9 @@ def group(case: dict[str, Any]) -> str:
 
 @pytest.mark.long
 def test_the_part_found_is_among_the_first_three_suspects(diagnosis_of: Callable[[str], Diagnosis], outside_check: Any) -> None:
-    """Played through the program's own diagnosis; the rates and the coverage are printed (``-rP`` shows them)."""
+    """Played through the program's own diagnosis; the rates and the coverage stand after the table of outside checks."""
     left_out = {reason: len(ids) for reason, ids in REPAIRS["left_out"].items()}
     total = len(CASES) + sum(left_out.values())
-    print(f"\n{len(CASES)} of {total} cases can be expressed ({len(CASES) / total:.0%}); not: {left_out}")
     shares: dict[str, list[float]] = {}
     for name in PROFILES:
         board, diagnosis = load_profile(name), diagnosis_of(name)
@@ -154,8 +153,12 @@ def test_the_part_found_is_among_the_first_three_suspects(diagnosis_of: Callable
                 print(f"  {case['id']} ({name}, {group(case)}): {case['entered']} found {case['found']}, {share:.2f}")
     everything = [share for rows in shares.values() for share in rows]
     rates = {key: sum(rows) / len(rows) for key, rows in shares.items()}
-    print(f"found class among the first three: {sum(everything) / len(everything):.1%} of all; "
-          + "; ".join(f"{key} {rates[key]:.1%} of {len(shares[key])}" for key in rates))
+    outside_check.told += [
+        f"real repairs: {len(CASES)} of {total} cases can be expressed ({len(CASES) / total:.0%}); found class among the first "
+        f"three in {sum(everything) / len(everything):.1%} of them: "
+        + "; ".join(f"{key} {rates[key]:.1%} of {len(shares[key])}" for key in rates),
+        "real repairs left out: " + "; ".join(f"{reason} {count}" for reason, count in left_out.items()),
+    ]
     outside_check.at_least("real repairs, seen or measured at a part", SOURCE, rates["at a part"], AT_THE_PART)
     outside_check.at_least("real repairs, fault outside the board", SOURCE, rates["outside"], OUTSIDE_THE_BOARD)
 
@@ -184,24 +187,28 @@ def test_complaints_of_owners_mean_the_state_of_their_class(outside_check: Any) 
     """60 gists. The phrase table was written with the classes known, so this shows its coverage more than its foresight."""
     missed = [gist for gist, row in GISTS["gist"].items() if state_of(gist) != GISTS["state"][row["class"]]]
     weight = sum(GISTS["gist"][gist]["count"] for gist in missed) / sum(row["count"] for row in GISTS["gist"].values())
-    print(f"\n{len(missed)} of {len(GISTS['gist'])} gists missed ({weight:.1%} of the records): {missed}")
-    outside_check.at_least("complaint phrases, English gists", SOURCE, 1.0 - len(missed) / len(GISTS["gist"]), 0.9)
+    rate = 1.0 - len(missed) / len(GISTS["gist"])
+    outside_check.told.append(f"complaint phrases, English gists: {rate:.1%} of {len(GISTS['gist'])} understood; "
+                              f"missed, with {weight:.1%} of the records: {missed or 'none'}")
+    outside_check.at_least("complaint phrases, English gists", SOURCE, rate, 0.9)
 
 
-def test_complaints_in_other_languages_mean_the_same() -> None:
+def test_complaints_in_other_languages_mean_the_same(outside_check: Any) -> None:
     """German, French, Spanish and Dutch sentences of our own; common practice, no source."""
     said = [(words, state) for state, rows in GISTS["said"].items() for words in rows]
     missed = [(words, state, state_of(words)) for words, state in said if state_of(words) != state]
-    print(f"\n{len(said) - len(missed)} of {len(said)} sentences understood; missed: {missed}")
+    outside_check.told.append(f"complaint phrases, German, French, Spanish, Dutch (own sentences): {len(said) - len(missed)} of "
+                              f"{len(said)} understood; missed: {missed or 'none'}")
     assert len(missed) <= 0.15 * len(said)
 
 
-def test_complaints_of_the_played_cases_mean_the_state_that_was_entered() -> None:
+def test_complaints_of_the_played_cases_mean_the_state_that_was_entered(outside_check: Any) -> None:
     """The complaints of the cases, whose wording the phrase table does not know; not counted are those that tell none
     and those whose state was seen at the bench."""
     told = [(case["complaint"], case["entered"][0]) for case in CASES
             if case["entered"][0] in STATES and case["complaint"] != "not stated" and "state_from" not in case]
     understood = [(words, state, state_of(words)) for words, state in told if state_of(words)]
     wrong = [row for row in understood if row[1] != row[2]]
-    print(f"\n{len(understood)} of {len(told)} complaints tell a state; {len(wrong)} another one than was entered: {wrong}")
+    outside_check.told.append(f"complaints of the played cases: {len(understood)} of {len(told)} tell a state, {len(wrong)} of them "
+                              f"another one than was entered: {wrong or 'none'}")
     assert len(understood) >= 0.6 * len(told) and len(wrong) <= 0.15 * len(understood)
