@@ -209,6 +209,6 @@ def test_complaints_of_the_played_cases_mean_the_state_that_was_entered(outside_
             if case["entered"][0] in STATES and case["complaint"] != "not stated" and "state_from" not in case]
     understood = [(words, state, state_of(words)) for words, state in told if state_of(words)]
     wrong = [row for row in understood if row[1] != row[2]]
-    outside_check.told.append(f"complaints of the played cases: {len(understood)} of {len(told)} tell a state, {len(wrong)} of them "
-                              f"another one than was entered: {wrong or 'none'}")
+    outside_check.told.append(f"complaints of the played cases: {len(understood)} of {len(told)} tell a state, {len(wrong)} of "
+                              f"them another one than was entered: {wrong or 'none'}")
     assert len(understood) >= 0.6 * len(told) and len(wrong) <= 0.15 * len(understood)
