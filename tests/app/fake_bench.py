@@ -16,7 +16,7 @@ from triage.board.part import Board, Label, Mains, Part
 from triage.board.probe import UNITS
 from triage.errors import EntryError, JobError, QuantityError
 from triage.job import views as v
-from triage.job.progress import Listener
+from triage.job.progress import Listener, report
 
 DRAWING = """\
  mains_l          rect         bulk                        |  sec          out
@@ -262,6 +262,7 @@ class FakeBench:
 
     path: Path
     prepare_seconds: float = 0.0
+    chart_seconds: float = 0.0
     board: Board = BOARD
     ready: bool = False
     track: list[v.MoveView] = field(default_factory=list)
@@ -465,6 +466,28 @@ class FakeBench:
         if self.fitted:
             return (replace(STRESSES[0], rating=1100.0, limit=880.0, ratio=0.66, verdict="ok"), *STRESSES[1:])
         return STRESSES
+
+    def charts(self) -> tuple[v.ChartView, ...]:
+        for step in range(4):
+            report("waveforms and load line", step, 4)
+            time.sleep(self.chart_seconds / 4)
+        lead = next((one for one in self._suspects() if one.ref), None)
+        names = ("sound", *([f"{lead.ref} {lead.mode.replace('_', ' ')}"] if lead else []))
+        ringing = [400.0 + 60.0 * math.exp(-(t % 200) / 8) * math.cos(t / 2) for t in range(300)]
+        swing = [(t * 1e-7, 0.0 if 60 < t % 200 < 120 else volts) for t, volts in enumerate(ringing)]
+        bulk = [(t * 1e-4, 320.0 - 30.0 * (t % 200) / 200) for t in range(200)]
+        line = [(0.0, 5.2), (0.3, 5.1), (0.6, 4.9)]
+        curves = [
+            tuple(v.CurveView(name, tuple((x, y * (1.0 - 0.3 * n)) for x, y in points)) for n, name in enumerate(names))
+            for points in (swing, bulk, line)
+        ]
+        window = (v.CurveView("low", ((0.0, 4.75), (0.6, 4.75))), v.CurveView("high", ((0.0, 5.25), (0.6, 5.25))))
+        limits, rated = (v.LevelView("rating", 700.0), v.LevelView("derated limit", 595.0)), (v.LevelView("rating", 400.0),)
+        return (
+            v.ChartView("switch", "Q1 main switch: voltage at 253 V, full load", "s", "V", curves[0], limits),
+            v.ChartView("bulk", "C1 bulk capacitor: voltage at 253 V, full load", "s", "V", curves[1], rated),
+            v.ChartView("load line", "output at 230 V, no load to full load", "A", "V", curves[2], (), "invented", window),
+        )
 
     def demand(self, ref: str) -> v.DemandView:
         role = BOARD.part(ref).role

@@ -58,7 +58,7 @@ def test_ascii_shows_height_within_a_cell():
 @pytest.mark.parametrize(("width", "height"), [(60, 12), (24, 4), (100, 30)])
 def test_a_chart_has_its_size_and_names_its_limit(glyphs, width, height):
     curve = Series("healthy", tuple((t / 50, 300 + 200 * math.sin(t / 4)) for t in range(50)))
-    rows = chart([curve], [Level("rating 700 V", 700.0)], width, height, glyphs, "ms", "V")
+    rows = chart([curve], [Level("rating 700 V", 700.0)], width, height, glyphs, "s", "V")
     assert len(rows) == height
     assert all(len(plain(row)) <= width for row in rows)
     assert sum("rating" in plain(row) for row in rows) == 1

@@ -68,6 +68,16 @@ async def stress(pilot: Pilot[int]) -> None:
     await keys(pilot, "f3")
 
 
+async def waveforms(pilot: Pilot[int]) -> None:
+    """Switch, sound and under the suspect."""
+    await keys(pilot, "f3", "enter")
+
+
+async def load_line(pilot: Pilot[int]) -> None:
+    """The last chart."""
+    await keys(pilot, "f3", "enter", "up")
+
+
 async def moves(pilot: Pilot[int]) -> None:
     """After three readings."""
     await found(pilot)
@@ -120,7 +130,9 @@ async def help_bench(pilot: Pilot[int]) -> None:
 
 
 FROM_START = (start, intake, cautions, looks)
-FROM_BENCH = (bench, refused, verdict, stress, moves, parts, marking, retest, record, reading, sign, menu, help_bench)
+FROM_BENCH = (
+    bench, refused, verdict, stress, waveforms, load_line, moves, parts, marking, retest, record, reading, sign, menu, help_bench,
+)  # fmt: skip
 
 
 def drawn(story, folder: Path) -> dict[tuple[int, int], str]:

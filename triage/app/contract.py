@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Protocol
 if TYPE_CHECKING:
     from triage.board.part import Board
     from triage.job.progress import Listener
-    from triage.job.views import CandidateView, DemandView, JobView, MatchView, MoveView, StressView
+    from triage.job.views import CandidateView, ChartView, DemandView, JobView, MatchView, MoveView, StressView
 
 
 class OpenJob(Protocol):
@@ -67,6 +67,9 @@ class OpenJob(Protocol):
 
     def stresses(self) -> tuple[StressView, ...]:
         """The stresses of every part at their worst conditions."""
+
+    def charts(self) -> tuple[ChartView, ...]:
+        """Waveforms and load line, sound and under the leading suspect."""
 
     def demand(self, ref: str) -> DemandView:
         """What the position of a part demands."""

@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, TypeVar
 from triage.app.back_room import Answer, BackRoom
 from triage.app.contract import OpenJob
 from triage.errors import TriageError
+from triage.job.progress import Listener, heard_by
 
 if TYPE_CHECKING:
     from triage.job.views import JobView
@@ -54,6 +55,9 @@ class Desk:
         """True when the message says that something was not accepted."""
         self.progress = ""
         """How far the calculation of what to expect is; empty when there is none."""
+        self.looking = ""
+        """How far a long look is; empty when there is none."""
+        self._long_looks: dict[str, threading.Event] = {}
         self._stop = threading.Event()
         self.pending = False
         """True while an entry is being worked on."""
@@ -105,24 +109,39 @@ class Desk:
         """End the calculation of what to expect; entries can be made without it."""
         self._stop.set()
 
-    def _prepare(self, bench: OpenJob) -> None:
-        self._stop = stop = threading.Event()
-        self.progress = "computing..."
-        step = -1
+    def stop_looking(self) -> bool:
+        """End the long looks that a screen waits for; False when there is none."""
+        waiting = [stop for stop in self._long_looks.values() if not stop.is_set()]
+        for stop in waiting:
+            stop.set()
+        self.looking = ""
+        return bool(waiting)
+
+    def _listener(self, stop: threading.Event, hear: Callable[[str], None]) -> Listener:
+        """What hears of a calculation in its thread: tells the screen how far it is, and ends it once ``stop`` is set."""
+        step: tuple[str, int] | None = None
 
         def listen(what: str, done: int, wanted: int) -> None:
             nonlocal step
             if stop.is_set():
                 raise Stopped
-            now = done * _STEPS // wanted if wanted else 0
+            now = (what, done * _STEPS // wanted if wanted else 0)
             if now != step:
                 step = now
                 self._deliver(lambda: hear(f"computing {what}" + (f", {100 * done // wanted} %" if wanted else "")))
 
+        return listen
+
+    def _prepare(self, bench: OpenJob) -> None:
+        self._stop = stop = threading.Event()
+        self.progress = "computing..."
+
         def hear(text: str) -> None:
-            if bench is self.bench:
+            if bench is self.bench and not stop.is_set():
                 self.progress = text
                 self._changed()
+
+        listen = self._listener(stop, hear)
 
         def ready(answer: Answer[object]) -> None:
             if bench is not self.bench:
@@ -177,13 +196,21 @@ class Desk:
     ) -> None:
         """Ask the bench something that changes nothing; only the newest question of a lane is answered.
 
-        ``long``: what may solve a circuit anew, which takes up to a minute and must not keep an entry waiting.
+        ``long``: what may solve a circuit anew, which takes up to a minute and must not keep an entry waiting. It tells how
+        far it is; a newer question of its lane ends it, and so does ``stop_looking``.
         """
         bench = self.bench
         if bench is None:
             return
+        stop = threading.Event()
 
         def done(answer: Answer[T]) -> None:
+            if self._long_looks.get(lane) is stop:
+                del self._long_looks[lane]
+                self.looking = ""
+            if isinstance(answer.error, Stopped):
+                (failed or self._say)("stopped")
+                return
             if answer.error is not None:
                 self._report(answer.error, failed)
                 return
@@ -193,12 +220,30 @@ class Desk:
                 # What cannot be shown must not take the screen down in the middle of a job.
                 self._report(error, failed)
 
-        (self._long if long else self._quick).ask(lane, lambda: call(bench), done, self._deliver)
+        if not long:
+            self._quick.ask(lane, lambda: call(bench), done, self._deliver)
+            return
+
+        def hear(text: str) -> None:
+            if bench is self.bench and self._long_looks.get(lane) is stop and not stop.is_set():
+                self.looking = text
+                self._changed()
+
+        def work() -> T:
+            with heard_by(self._listener(stop, hear)):
+                return call(bench)
+
+        if (before := self._long_looks.pop(lane, None)) is not None:
+            before.set()
+        self._long_looks[lane] = stop
+        self._long.ask(lane, work, done, self._deliver)
 
     def put_away(self) -> None:
         """Let go of the job; answers still to come for it are dropped."""
         self._quick.forget()
         self._stop.set()
+        self.stop_looking()
+        self._long_looks.clear()
         self._slow.forget()
         self._long.forget()
         if self.bench is not None:

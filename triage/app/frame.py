@@ -103,7 +103,7 @@ class Frame(Screen[None]):
             return (line(Span(f" {self.NAME} ", "head")),)
         from triage.app.text.frame import status_lines
 
-        return status_lines(view, self.NAME, self.wide, self.desk.progress)
+        return status_lines(view, self.NAME, self.wide, self.desk.progress, self.desk.looking)
 
     def refresh_body(self, view: JobView | None) -> None:
         """Show the newest view in the body."""
@@ -142,8 +142,11 @@ class Frame(Screen[None]):
         panel.show((clip(line(lead, Span(text, "bad" if refused else "near")), self.wide),))
 
     def action_back(self) -> None:
-        """From a field to the list of the screen; else to the screen before, or to the bench; from there
-        nowhere."""
+        """End a calculation that the screen waits for; from a field to the list of the screen; else to the screen
+        before, or to the bench; from there nowhere."""
+        if self.desk.stop_looking():
+            self.show_message("stopped; come back to this screen to compute it again")
+            return
         lists = self.query(ListPanel)
         if lists and self.focused is not None and not isinstance(self.focused, ListPanel):
             lists.first().focus()

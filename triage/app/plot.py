@@ -9,10 +9,15 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 from triage.app.glyphs import Glyphs
-from triage.app.lines import Line, Span, fit, line, merged
+from triage.app.lines import Line, Span, line, merged
+from triage.quantities import engineering
 
 _DOT_BITS = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
 """Bits of a braille cell by dot row and column (Unicode Standard, block U+2800)."""
+_FAR, _ROOM = 0.5, 0.05
+"""Share of the highest value above which the lowest leaves zero out of the axis, and room left above and below [-]."""
+_FIGURE = 16
+"""Columns for a figure on the lower axis."""
 _HEIGHTS = "'-.,"
 """A lone dot of a cell in ASCII, by its row from the top."""
 
@@ -24,6 +29,8 @@ class Series:
     name: str
     points: tuple[tuple[float, float], ...]
     """x and y, x rising."""
+    limit: bool = False
+    """True for a limit that changes along the chart."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -115,15 +122,14 @@ def chart(
     """Curves and limit lines in a frame of ``width`` x ``height`` characters with round figures along both
     axes.
 
-    The first series is drawn plainly, the second as ``suspect``; limit lines carry their name at the right
-    end.
+    The first series is drawn plainly, the second as ``suspect``, limits in a mark of their own; limit lines carry their
+    name at the right end. The upright axis begins at zero, unless everything lies far above it.
     """
     points = [point for curve in series for point in curve.points if all(map(math.isfinite, point))]
     if not points or width < 24 or height < 4:
         return (line(Span("nothing to draw", "quiet")),)
     x_range = (min(x for x, _ in points), max(x for x, _ in points))
-    values = [y for _, y in points] + [level.value for level in levels]
-    y_range = (min(0.0, *values), max(values) * 1.02 or 1.0)
+    y_range = _upright([y for _, y in points] + [level.value for level in levels])
     labels = 8
     columns, rows = width - labels - 1, height - 1
     canvas = _canvas(series, levels, columns, rows, x_range, y_range, glyphs)
@@ -132,10 +138,28 @@ def chart(
     for row in range(rows):
         label = f"{ticks[row]:.4g} {y_unit}" if row in ticks else ""
         out.append(line(Span(label.rjust(labels), "quiet"), "|", *canvas[row]))
-    foot = f"{x_range[0]:.4g}"
-    end = f"{x_range[1]:.4g} {x_unit}"
-    out.append(line(" " * (labels + 1), Span(fit(foot, columns - len(end)) + end, "quiet")))
+    out.append(line(" " * (labels + 1), Span(_foot(x_range, columns, x_unit), "quiet")))
     return tuple(out)
+
+
+def _upright(values: Sequence[float]) -> tuple[float, float]:
+    """Range of the upright axis [unit of the values]."""
+    low, high = min(values), max(values)
+    if low > _FAR * high > 0.0:
+        room = _ROOM * (high - low) or high
+        return low - room, high + room
+    return min(0.0, low), high * 1.02 or 1.0
+
+
+def _foot(x_range: tuple[float, float], columns: int, unit: str) -> str:
+    """Round figures along the lower axis, each under its place as far as there is room."""
+    foot = ""
+    for x in round_ticks(*x_range, max(columns // _FIGURE, 1)):
+        text = engineering(x, unit, 4) if unit else f"{x:.4g}"
+        at = min(max(_place(x, x_range, columns) - len(text) // 2, 0), columns - len(text))
+        if at > len(foot) or not foot:
+            foot = foot.ljust(at) + text
+    return foot
 
 
 def _canvas(
@@ -148,15 +172,19 @@ def _canvas(
     glyphs: Glyphs,
 ) -> list[Line]:
     cells: list[list[tuple[str, str]]] = [[(" ", "")] * columns for _ in range(rows)]
+    names: dict[int, list[str]] = {}
     for level in levels:
-        row = rows - 1 - _place(level.value, y_range, rows * 4) // 4
-        text = glyphs.rule * max(columns - len(level.name) - 1, 0) + " " + level.name
-        cells[row] = [(char, "near") for char in text[:columns]]
+        names.setdefault(rows - 1 - _place(level.value, y_range, rows * 4) // 4, []).append(level.name)
+    for row in names:
+        cells[row] = [(glyphs.rule, "near")] * columns
     for number, curve in enumerate(series):
         grid = grid_text(dots(curve.points, columns, rows, x_range, y_range), glyphs.braille)
         for row, text in enumerate(grid):
             for column, char in enumerate(text):
                 if char != " ":
-                    shown = char if glyphs.braille or number == 0 else "x"
-                    cells[row][column] = (shown, "suspect" if number else "strong")
+                    shown = char if glyphs.braille or number == 0 or curve.limit else "x"
+                    cells[row][column] = (shown, "near" if curve.limit else "suspect" if number else "strong")
+    for row, found in names.items():
+        name = (" " + ", ".join(found))[-columns:]
+        cells[row][columns - len(name) :] = [(char, "near") for char in name]
     return [merged(tuple(Span(char, mark) for char, mark in row)) for row in cells]

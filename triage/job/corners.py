@@ -9,6 +9,7 @@ import contextlib
 import hashlib
 import json
 from collections.abc import Iterable
+from concurrent.futures import ThreadPoolExecutor, as_completed
 from dataclasses import asdict
 from typing import Any
 
@@ -32,6 +33,7 @@ from triage.job.progress import report
 from triage.physics.netlist import Netlist
 from triage.physics.transient import NoConvergence, Stretch
 
+_WHAT = "the sound board at low and high mains"
 DIGITS = 7
 """Digits kept: more than a solution is good for, fewer than two machines may differ in."""
 
@@ -64,8 +66,6 @@ def settled_corners(board: Board, corners: Iterable[Condition], kept: Kept) -> d
             found[corner] = _read(kept.get(_key(board, corner)))
             continue
         missing.append(corner)
-    if missing:
-        report("the sound board at low and high mains")
     for corner, settled in _solved(board, missing).items():
         content = _write(settled)
         kept.put(_key(board, corner), content)
@@ -76,16 +76,21 @@ def settled_corners(board: Board, corners: Iterable[Condition], kept: Kept) -> d
 def _solved(board: Board, corners: list[Condition]) -> dict[Condition, Settled]:
     """The corners solved side by side; one whose solution breaks off is left out, so that the others still
     tell."""
+    found: dict[Condition, Settled] = {}
     if not corners:
-        return {}
-    try:
-        return settle_corners(board, corners)
-    except NoConvergence:
-        found: dict[Condition, Settled] = {}
-        for corner in corners:
-            with contextlib.suppress(NoConvergence):
-                found |= settle_corners(board, [corner])
         return found
+    with ThreadPoolExecutor() as pool:
+        jobs = [pool.submit(settle_corners, board, [corner]) for corner in corners]
+        try:
+            report(_WHAT, 0, len(jobs))
+            for done, job in enumerate(as_completed(jobs), 1):
+                with contextlib.suppress(NoConvergence):
+                    found |= job.result()
+                report(_WHAT, done, len(jobs))
+        except BaseException:
+            pool.shutdown(wait=False, cancel_futures=True)
+            raise
+    return {corner: found[corner] for corner in corners if corner in found}
 
 
 def _inrush(board: Board, kept: Kept) -> dict[str, float]:

@@ -88,7 +88,7 @@ class PartsScreen(Frame):
             self._demand,
             self._failed,
         )
-        self.ask("stress", lambda bench: bench.stresses(), self._keep_before, self._failed, long=True)
+        self.ask("stress", lambda bench: bench.stresses(), self._keep_before, self._ask_failed, long=True)
 
     def _keep_before(self, found: tuple[StressView, ...]) -> None:
         self._before = found

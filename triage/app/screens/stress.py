@@ -56,6 +56,10 @@ class StressScreen(Frame):
         if key:
             self.panel("detail").show(stress_detail(self._found[int(key)], self.wide))
 
+    def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
+        """On to the waveforms behind the stresses."""
+        self.triage.action_go("waveforms")
+
     def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
         """Show the stress under the cursor in full."""
         self._show_detail()
