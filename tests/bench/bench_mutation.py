@@ -4,14 +4,16 @@
 
 Each mutant is one changed operator, comparison, number, sign or boolean word in a module of ROOM (default: the formula rooms of
 ``triage/physics`` and ``triage/diagnosis``). It lives in a copy of the package in a temporary folder; the test files that import
-its module run there first, then those of the room, until one fails. A run that takes too long counts as killed. Compiled kernels
-are left out: they are held by the simulated circuits, which take minutes.
+its module run there first, then those of the room, until one fails. A run that takes too long counts as killed and is told.
+Compiled kernels are left out: they are held by the simulated circuits, which take minutes.
 """
 
 import ast
 import os
 import random
+import resource
 import shutil
+import signal
 import subprocess
 import sys
 import tempfile
@@ -31,8 +33,9 @@ TESTS = {
     "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py"),
 }
 LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py")
-LONGEST = 240.0
-"""A run beyond this counts as killed [s]."""
+LONGEST = 90
+"""A run beyond this counts as killed [s of processor time]."""
+TOO_LONG = -signal.SIGXCPU
 
 BINARY: dict[type[ast.operator], type[ast.operator]] = {
     ast.Add: ast.Sub, ast.Sub: ast.Add, ast.Mult: ast.Div, ast.Div: ast.Mult, ast.Pow: ast.Mult, ast.FloorDiv: ast.Div,
@@ -121,32 +124,29 @@ def matching(mutant: Mutant, room: str, folder: Path) -> list[str]:
     return [one for one in found if one not in LEAVE_OUT and "circuits" not in one and "simulator" not in one]
 
 
-def killed(mutant: Mutant, room: str, folder: Path) -> bool:
-    """True when a test fails in the copy."""
+def tried(mutant: Mutant, room: str, folder: Path) -> str:
+    """``killed`` when a test fails in the copy, ``too long``, or ``SURVIVED``."""
     target = folder / mutant.path.relative_to(ROOT)
     kept = target.read_text("utf-8")
     write(mutant, target)
     try:
         near = matching(mutant, room, folder)
-        return (bool(near) and fails(near, folder)) or fails(list(TESTS[room]), folder)
+        code = (ended(near, folder) if near else 0) or ended(list(TESTS[room]), folder)
+        return "SURVIVED" if code == 0 else "too long" if code == TOO_LONG else "killed"
     finally:
         target.write_text(kept, "utf-8")
 
 
-def fails(files: list[str], folder: Path) -> bool:
-    """True when a test of these files fails, or none can be run."""
+def ended(files: list[str], folder: Path) -> int:
+    """Exit code of the tests of these files: 0 when all pass. A run that a signal ended from outside says nothing: it is
+    repeated."""
     ignored = [f"--ignore={one}" for one in LEAVE_OUT]
     command = [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", *ignored, *files]
-    code = -1
-    try:
-        # A run that a signal ended from outside says nothing: it is repeated.
-        while code < 0 or code == 143:
-            ended = subprocess.run(command, cwd=folder, capture_output=True, check=False, timeout=LONGEST,
-                                   env={**os.environ, "PYTHONPATH": str(folder)})
-            code = ended.returncode
-    except subprocess.TimeoutExpired:
-        return True
-    return code != 0
+    code, here = -1, {**os.environ, "PYTHONPATH": str(folder)}
+    while code not in (TOO_LONG, *range(128)):
+        code = subprocess.run(command, cwd=folder, capture_output=True, check=False, env=here,
+                              preexec_fn=lambda: resource.setrlimit(resource.RLIMIT_CPU, (LONGEST, LONGEST + 10))).returncode
+    return code
 
 
 def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:
@@ -161,13 +161,13 @@ def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:
             copy = shutil.copytree if (ROOT / part).is_dir() else shutil.copy
             copy(ROOT / part, folder / part)
         for room in rooms:
-            if fails(list(TESTS[room]), folder):
+            if ended(list(TESTS[room]), folder):
                 raise SystemExit(f"the tests of {room} fail without any change")
         for number, (room, one) in enumerate(sample, 1):
-            dead = killed(one, room, folder)
-            survived += not dead
+            fate = tried(one, room, folder)
+            survived += fate == "SURVIVED"
             place = f"{one.path.relative_to(ROOT)}:{one.line}"
-            print(f"{number:4} {'killed' if dead else 'SURVIVED'} {place} {one.what}", flush=True)
+            print(f"{number:4} {fate} {place} {one.what}", flush=True)
     share = 1.0 - survived / len(sample)
     print(f"{len(sample)} of {len(every)} mutants, {share:.0%} killed, {survived} survived, {time.monotonic() - begun:.0f} s")
 
