@@ -168,11 +168,13 @@ def test_collateral_of_every_fault(circuit, outside_check):
 def test_kept_points_are_what_the_solution_gives(circuit):
     """A sample of the kept operating points, solved anew: reasoned, the kept file is only a short cut."""
     board, points = load_profile(PROFILES[circuit]), points_of(circuit)
-    sample = [part for part in board.parts if part.fault_modes][::7]
+    sample, compared = [part for part in board.parts if part.fault_modes][::7], 0
     for part in sample:
         faults = (Fault(part.ref, part.fault_modes[0]),)
         kept = points.at(faults, "full")
         anew = solve_point(board, faults, "full", points.at((), "full").capacitors)
         for probe in kept.readings:
             if probe.function == "volts_dc":
+                compared += 1
                 assert anew.readings[probe] == pytest.approx(kept.readings[probe], rel=0.02, abs=0.05), (faults, probe)
+    assert compared >= 5 * len(sample) > 0

@@ -171,7 +171,7 @@ def _optocoupler(place: Place, part: CatalogPart) -> None:
 
 def _reference(place: Place, part: CatalogPart) -> None:
     _class(place, part, "shunt_reference")
-    _within(place, part, "vref_V", place.old_number("vref_V"), 0.01, 0.01)
+    _within(place, part, "vref_V", place.old_number("vref_V") or place.values.get("reference_voltage"), 0.01, 0.01)
     _at_least(place, part, ("vka_max_V",), _over(place, "peak_voltage", 0.7), _rating(place, "voltage", "vka_max_V"))
 
 

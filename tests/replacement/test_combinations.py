@@ -52,7 +52,9 @@ def test_every_combination_stays_in_its_ratings() -> None:
     """Re-computed plainly: voltage and power of each resistor at its worst share."""
     for power in (0.05, 0.25, 0.8):
         asked = _startup(power=power)
-        for one in combinations(CATALOG, asked, limit=500):
+        found = combinations(CATALOG, asked, limit=500)
+        assert found
+        for one in found:
             values = [p.numbers["r_ohm"] for p in one.parts]
             tolerances = [p.numbers.get("tol_percent", 10.0) / 100 for p in one.parts]
             for place, single in enumerate(one.parts):

@@ -70,6 +70,7 @@ def test_leaving_a_part_out_opens_its_path() -> None:
 
 @pytest.mark.parametrize("board", [charger(), brick(), brick(None)], ids=["cube", "brick", "brick no R9"])
 def test_every_proposal_keeps_its_own_rules(board) -> None:
+    assert discharge.stores(board)
     for store in discharge.stores(board):
         bleeder = discharge.propose_bleeder(store)
         assert bleeder is not None
