@@ -259,8 +259,11 @@ def test_a_confirmation_is_asked_for_once_and_can_be_skipped() -> None:
     sure = sb.diagnosis(pins=pins, settings=replace(Settings.load(), stop_target=0.3, hunch_factor=50.0))
     step = sure.suggest(job(DEAD, hunches=hunch), everything)
     assert step is not None and step.probe == sb.DIODE_D1 and step.reason.startswith("Confirm D1 short")
-    skipped = job(DEAD, hunches=hunch, skipped=frozenset({sb.DIODE_D1}))
-    assert sure.suggest(skipped, everything) is None and sure.verdict(skipped).status == "found"
+    state, asked = job(DEAD, hunches=hunch), []
+    while (step := sure.suggest(state, everything)) is not None:
+        asked.append(step.probe)
+        state = replace(state, skipped=state.skipped | {step.probe})
+    assert asked.count(sb.DIODE_D1) == 1 and len(asked) == len(set(asked)) and sure.verdict(state).status == "found"
 
 
 def test_a_confirmation_says_what_confirms_and_what_contradicts() -> None:

@@ -2,6 +2,8 @@
 
 import csv
 import math
+from collections.abc import Iterable
+from functools import cache
 from pathlib import Path
 
 from triage.board.circuit import NOMINAL, Draw, output_ground
@@ -9,6 +11,7 @@ from triage.board.fault import Fault
 from triage.board.kinds import leak_resistance
 from triage.board.part import Board
 from triage.board.probe import Probe
+from triage.board.profile import load_profile
 from triage.physics.network import HAND_METER, Meter
 
 DATA = Path(__file__).parent / "data"
@@ -125,3 +128,32 @@ def collateral_cold_table(circuit: str) -> dict[frozenset[Fault], dict[Probe, fl
         rows = table.setdefault(frozenset(fault_of(faults)), dict(sound))
         rows[Probe(FUNCTIONS.get(function, function), plus, minus)] = number(value, function)
     return table
+
+
+@cache
+def lifted_table(circuit: str) -> dict[tuple[str, str], dict[Probe, float]]:
+    """(ref, fault mode or ``sound``) -> readings of the part with one leg lifted: the same generator on the part alone."""
+    pins: dict[str, list[str]] = {}
+    rows: dict[tuple[str, str], list[tuple[str, str, str]]] = {}
+    for ref, mode, function, plus, value in _lines(circuit, "lifted")[1:]:
+        pins.setdefault(ref, [])
+        pins[ref] += [plus] if plus not in pins[ref] else []
+        rows.setdefault((ref, MODES.get(mode, mode)), []).append((function, plus, value))
+    board = load_profile(PROFILES[circuit])
+    table: dict[tuple[str, str], dict[Probe, float]] = {}
+    for (ref, mode), found in rows.items():
+        names = tuple(board.part(ref).pins)
+        for function, plus, value in found:
+            minus = names[1 - names.index(plus)]
+            probe = Probe(FUNCTIONS.get(function, function), f"{ref}.{plus}", f"{ref}.{minus}")
+            table.setdefault((ref, mode), {})[probe] = number(value, function)
+    return table
+
+
+def lifted_readings(circuit: str, faults: Iterable[Fault]) -> dict[Probe, float]:
+    """What every part of two legs reads with one of them lifted, on a board with these faults."""
+    table, modes = lifted_table(circuit), {fault.ref: fault.mode for fault in faults}
+    found: dict[Probe, float] = {}
+    for ref in dict.fromkeys(ref for ref, _ in table):
+        found |= table.get((ref, modes.get(ref, "sound")), {})
+    return found

@@ -15,6 +15,7 @@ from tests.reference.reference_circuits import (
     cold_table,
     collateral_cold_table,
     fault_of,
+    lifted_readings,
     live_table,
 )
 from triage.board.evidence import Sign, Symptom
@@ -60,6 +61,7 @@ def units(circuit: str, board: Board) -> list[Unit]:
         readings = dict(chains.get(faults, {}) if collateral else cold.get(fault, cold["healthy"]))
         for x in loads:
             readings |= after[x][1] if after[x][0] == collateral else {}
+        readings |= lifted_readings(circuit, faults)
         state = "dead" if states[load] == "fuse gone" else states[load]
         found.append(Unit(fault, frozenset(f.ref for f in faults), Symptom(state, load), readings))
     return found

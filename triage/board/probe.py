@@ -21,7 +21,7 @@ class Probe(NamedTuple):
     function: str
     """One of COLD_FUNCTIONS or LIVE_FUNCTIONS."""
     plus: str
-    """Node of the red lead."""
+    """Node of the red lead; ``C1.plus``, the pin of a part, where one leg of the part is lifted for the reading."""
     minus: str
     """Node of the black lead."""
     condition: str = "cold"
@@ -31,6 +31,12 @@ class Probe(NamedTuple):
     def live(self) -> bool:
         """True when the board is powered for this reading."""
         return self.condition != "cold"
+
+    @property
+    def lifted(self) -> str:
+        """Ref of the part that is read alone, with one leg lifted; empty for a reading of the board as it is."""
+        (one, dot, _), (other, _, pin) = self.plus.partition("."), self.minus.partition(".")
+        return one if dot and pin and one == other else ""
 
     @property
     def unit(self) -> str:

@@ -2,11 +2,10 @@
 
 Solving thousands of pairs takes minutes. Most pairs sit in different corners of the board: a reading that
 only one of the two faults moves reads as with that fault alone. Where both move it, it is left unknown and
-says nothing; pairs that survive the first readings can then be solved and put in their place
-(``Expectations.joined``).
+says nothing.
 """
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -36,9 +35,13 @@ def with_pairs(expectations: Expectations, pairs: Iterable[Hypothesis]) -> Expec
     sound = place.get(Hypothesis(()))
     if sound is None:
         return expectations
+    by_root: dict[Fault, list[Hypothesis]] = {}
+    for hypothesis in expectations.hypotheses:
+        if len(hypothesis.root) == 1:
+            by_root.setdefault(hypothesis.root[0], []).append(hypothesis)
     known, halves = [], []
     for pair in pairs:
-        parts = [_half(pair, root, place) for root in pair.root]
+        parts = [_half(pair, by_root.get(root, ()), place) for root in pair.root]
         if pair not in place and len(parts) == 2 and None not in parts:
             known.append(pair)
             halves.append(parts)
@@ -50,9 +53,9 @@ def with_pairs(expectations: Expectations, pairs: Iterable[Hypothesis]) -> Expec
     return expectations.joined(Expectations(tuple(known), expectations.probes, samples, states))
 
 
-def _half(pair: Hypothesis, root: Fault, place: dict[Hypothesis, int]) -> int | None:
+def _half(pair: Hypothesis, of_root: Sequence[Hypothesis], place: dict[Hypothesis, int]) -> int | None:
     """The listed hypothesis of one root with as much of the pair's collateral as it has, or None."""
-    options = [h for h in place if h.root == (root,) and set(h.collateral) <= set(pair.collateral)]
+    options = [h for h in of_root if set(h.collateral) <= set(pair.collateral)]
     return place[max(options, key=lambda h: len(h.collateral))] if options else None
 
 

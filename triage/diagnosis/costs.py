@@ -48,7 +48,7 @@ class Costs:
         return cls(
             owned,
             group("reading", COLD_FUNCTIONS + LIVE_FUNCTIONS),
-            group("setup", ("open_case", "power_up", "change_load")),
+            group("setup", ("open_case", "lift_leg", "power_up", "change_load")),
             group("hazard", ("primary", "secondary", "plug")),
             group("repair", ("once", "part", "transformer", "outside")),
         )
@@ -72,6 +72,8 @@ class Costs:
             and probe.function not in PLUG_FUNCTIONS
         ):
             work += self.setup["open_case"]
+        if probe.lifted and probe.lifted not in [t.lifted for t in taken][-1:]:
+            work += self.setup["lift_leg"]
         if probe.live:
             loads = [t.condition for t in taken if t.live]
             if not loads:

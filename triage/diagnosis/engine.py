@@ -27,7 +27,7 @@ from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
 from triage.diagnosis.next_reading import Candidate, Scorer, candidates, cold_first
 from triage.diagnosis.priors import Prior
-from triage.diagnosis.second_look import nothing_fits, odd_readings, reading_at_part
+from triage.diagnosis.second_look import nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
 from triage.diagnosis.settings import Settings
 from triage.diagnosis.verdict import Suspect, Verdict, best_repair, conclude, settled, suspects
 from triage.diagnosis.weigh import Weighed, evidence_ratios
@@ -209,9 +209,32 @@ class Diagnosis:
         action, _ = best_repair(belief, self.actions)
         lead = int(np.argmax(np.where(self.actions.of == action, belief, -1.0)))
         at_part = reading_at_part(self.model, lead, self.pins, taken, allowed)
-        if at_part is None:
+        if at_part is not None:
+            return explain.confirmation(self.model, belief, self.actions, self._candidate(at_part, taken), lead)
+        if not self.pins:
             return None
-        return explain.confirmation(self.model, belief, self.actions, self._candidate(at_part, taken), lead)
+        rivals = self._open_rivals(standing, lead)
+
+        def untaken(probe: Probe) -> bool:
+            return probe not in taken and allowed(probe)
+
+        against = reading_against(
+            self.model, lead, rivals, belief, lambda probe: self.costs.minutes(probe, taken), untaken
+        ) if rivals.size else None
+        if against is None:
+            return None
+        return explain.against(self.model, belief, self.actions, self._candidate(against, taken), lead, rivals)
+
+    def _open_rivals(self, standing: "Standing", lead: int) -> NDArray[np.int64]:
+        """What else would explain the readings; see ``second_look.open_rivals``."""
+        terms = self._likelihoods.terms(standing.since)
+        ratios, before = np.ones(len(self.prior)), standing.start.copy()
+        for entry, log in terms.items():
+            if isinstance(entry, Probe):
+                ratios = np.maximum(ratios, np.exp(np.minimum(log[lead] - log, 50.0)))
+            else:
+                before *= np.exp(log)
+        return open_rivals(lead, standing.belief, before, ratios, self.actions, self.kinds)
 
     def _candidate(self, probe: Probe, taken: Sequence[Probe]) -> Candidate:
         column = self.expectations.probes.index(probe)

@@ -107,6 +107,23 @@ def confirmation(model: ReadingModel, belief: NDArray[np.float64], actions: Acti
     return Suggestion(choice.probe, choice.minutes, reason, tuple(bands), hazard_words(choice.probe), choice.gain)
 
 
+def against(
+    model: ReadingModel,
+    belief: NDArray[np.float64],
+    actions: Actions,
+    choice: Candidate,
+    lead: int,
+    rivals: NDArray[np.int64],
+) -> Suggestion:
+    """A reading that tells the leading suspect from what else would explain the readings so far."""
+    name = suspect_name(model.expectations.hypotheses[lead])
+    others = [suspect_name(model.expectations.hypotheses[i]) for i in rivals[np.argsort(-belief[rivals], kind="stable")]]
+    few = ", ".join(list(dict.fromkeys(others))[:2])
+    reason = f"All readings so far fit {few} as well as {name}: the {probe_words(choice.probe)} tells them apart."
+    bands = outcomes(model, belief, actions, choice.column)
+    return Suggestion(choice.probe, choice.minutes, reason, bands, hazard_words(choice.probe), choice.gain)
+
+
 def outcomes(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, column: int) -> tuple[Outcome, ...]:
     """At most three bands of a reading; neighbouring ones that lead to the same best repair are one band."""
     joint = actions.joint(model.bins[model.owner == column], belief)

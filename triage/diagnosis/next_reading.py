@@ -139,8 +139,12 @@ def candidates(
 
 
 def cold_first(ranked: tuple[Candidate, ...], least: float) -> tuple[Candidate, ...]:
-    """The candidates without the live ones as long as a cold one is worth taking (at least ``least`` gain per
-    minute).
-    """
-    cold = tuple(c for c in ranked if not c.probe.live)
-    return cold if cold and cold[0].worth >= least else ranked
+    """The candidates without the live ones as long as a cold one is worth taking (at least ``least`` gain per minute), and of the
+    cold ones those of the board as it is before those for which a leg is lifted."""
+    for group in (
+        tuple(c for c in ranked if not c.probe.live and not c.probe.lifted),
+        tuple(c for c in ranked if not c.probe.live),
+    ):
+        if group and group[0].worth >= least:
+            return group
+    return ranked

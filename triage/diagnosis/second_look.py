@@ -1,5 +1,5 @@
-"""What a careful technician checks before believing a verdict: the odd reading once more, and the suspected
-part itself.
+"""What a careful technician checks before believing a verdict: the odd reading once more, the suspected part
+itself, and whatever else would explain the same readings.
 
 Both catch slips of the probe and faults that are not on the list: a list without the real fault finds another
     one that explains the few readings taken,
@@ -14,9 +14,20 @@ from numpy.typing import NDArray
 from triage.board.evidence import Reading
 from triage.board.fault import Hypothesis
 from triage.board.probe import Probe
+from triage.diagnosis.actions import Actions
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
 
+RULED_OUT = 10.0
+"""A rival is ruled out by a single reading this many times likelier under the leading repair. Many readings that each say a
+little do not rule out: they share the spread of the same parts."""
+RIVAL = 0.002
+"""Rivals with less than this share of the leading repair's belief are not looked for [-]."""
+PROTECTIVE = ("fuse", "fusible_resistor", "thermal_fuse")
+"""Kinds that as a rule open because of something else: of 40 failed fuses in public repair records 8 were all that had to
+be replaced, 26 stood beside another failed part or a short (Open Repair Data, Open Repair Alliance, CC BY-SA 4.0)."""
+MOST = 24
+"""Rivals that are looked at together."""
 SHOWS = 0.5
 """A reading at a part shows its fault when the expectations with and without it overlap by less than this
 [-].
@@ -76,3 +87,62 @@ def reading_at_part(
             if allowed(probe):
                 shown.append((common, column, probe))
     return min(shown)[2] if shown else None
+
+
+def open_rivals(
+    lead: int,
+    belief: NDArray[np.float64],
+    before: NDArray[np.float64],
+    ratios: NDArray[np.float64],
+    actions: Actions,
+    kinds: Mapping[str, str],
+) -> NDArray[np.int64]:
+    """Hypotheses with another repair that no single reading rules out, in the order of the list.
+
+    Behind a fuse that would be replaced alone everything that blows it counts, however little is believed of it.
+
+    Parameters
+    ----------
+    lead: index of the leading hypothesis.
+    belief: chances now, shape (H,) [-].
+    before: chances before any reading, shape (H,) [-].
+    ratios: strongest of the readings for the lead and against each hypothesis, shape (H,) [-].
+    actions, kinds: repairs of the hypotheses; ref -> part kind.
+    """
+    repair = actions.repairs[actions.of[lead]]
+    other = actions.of != actions.of[lead]
+    sought = belief >= RIVAL * belief[actions.of == actions.of[lead]].sum()
+    if repair and all(kinds.get(ref) in PROTECTIVE for ref in repair):
+        behind = np.array([repair < one for one in actions.repairs])[actions.of]
+        sought |= behind & (before >= RIVAL * before[lead])
+    return np.flatnonzero(other & sought & (ratios < RULED_OUT))
+
+
+def reading_against(
+    model: ReadingModel,
+    lead: int,
+    rivals: NDArray[np.int64],
+    weights: NDArray[np.float64],
+    minutes: Callable[[Probe], float],
+    allowed: Callable[[Probe], bool],
+) -> Probe | None:
+    """The cold reading that best tells the leading hypothesis from these rivals for its minutes; None when none does.
+
+    Parameters
+    ----------
+    weights: of all hypotheses, shape (H,) [-]; the heaviest MOST rivals are looked at.
+    minutes: probe -> minutes it takes.
+    allowed: says whether a reading may be suggested.
+    """
+    chosen = rivals[np.argsort(-weights[rivals], kind="stable")[:MOST]]
+    share = weights[chosen] / max(weights[chosen].sum(), 1e-300)
+    starts = np.flatnonzero(np.diff(model.owner, prepend=-1))
+    common = np.add.reduceat(np.minimum(model.bins[:, [lead]], model.bins[:, chosen]).astype(float), starts, axis=0)
+    told = np.where(common < SHOWS, 1.0 - common, 0.0) @ share
+    best: tuple[bool, float, int] | None = None
+    for column in np.flatnonzero(told > 0.0):
+        probe = model.expectations.probes[column]
+        if not probe.live and model.known(int(column)) and allowed(probe):
+            offer = (bool(probe.lifted), -float(told[column]) / minutes(probe), int(column))
+            best = offer if best is None else min(best, offer)
+    return model.expectations.probes[best[2]] if best else None

@@ -24,7 +24,10 @@ FUNCTION_WORDS = {
 
 
 def probe_words(probe: Probe) -> str:
-    """A reading to be taken: ``diode test a to b``, ``input power (full)``."""
+    """A reading to be taken: ``diode test a to b``, ``input power (full)``, ``ESR of C1 with one leg lifted``."""
+    if probe.lifted:
+        pins = f", red to {probe.plus.partition('.')[2]}" if probe.function == "diode" else ""
+        return f"{FUNCTION_WORDS[probe.function]} of {probe.lifted} with one leg lifted{pins}"
     where = "" if probe.function in PLUG_FUNCTIONS else f" {probe.plus} to {probe.minus}"
     return FUNCTION_WORDS[probe.function] + where + (f" ({probe.condition})" if probe.live else "")
 

@@ -7,6 +7,7 @@ same specimens are used for every hypothesis, so that hypotheses differ by their
 import os
 from collections.abc import Callable, Sequence
 from concurrent.futures import ThreadPoolExecutor, as_completed
+from dataclasses import replace
 from itertools import combinations
 
 import numpy as np
@@ -15,7 +16,7 @@ from numpy.typing import NDArray
 from triage.board.circuit import NOMINAL, Draw, circuit
 from triage.board.fault import Fault, Hypothesis
 from triage.board.kinds import kinds
-from triage.board.part import Board
+from triage.board.part import Board, Part
 from triage.board.probe import Probe
 from triage.physics.netlist import compile_netlist, with_values
 from triage.physics.network import HAND_METER, Meter, read_bridge, read_network
@@ -23,6 +24,8 @@ from triage.physics.network import HAND_METER, Meter, read_bridge, read_network
 SEVERITY_SPREAD = {"leaky": 0.8, "high": 0.6, "high_esr": 0.5, "low_capacitance": 0.35, "low_gain": 0.35, "low_voltage": 0.08,
                    "shorted_turns": 0.3}
 """Standard deviation of the natural logarithm of a fault's size about its nominal departure [-]; common practice, no source."""
+JUNCTIONS = ("diode", "zener", "led")
+"""Two-legged kinds that are also read with the diode test, both ways, when a leg is lifted."""
 NORMAL_90 = 1.645
 """Half-width of the middle 90 % of a normal distribution [standard deviations]."""
 
@@ -40,6 +43,21 @@ def cold_probes(board: Board) -> tuple[Probe, ...]:
             if a in known and b in known:
                 probes += [Probe("esr", a, b), Probe("capacitance", a, b)]
     return tuple(dict.fromkeys(probes))
+
+
+def lifted_probes(board: Board) -> tuple[Probe, ...]:
+    """Every reading across a part of two legs with one leg lifted, when nothing else on the board is in it."""
+    probes = []
+    for part in board.parts:
+        if len(part.pins) != 2 or len(set(part.pins.values())) != 2:
+            continue
+        a, b = (f"{part.ref}.{pin}" for pin in part.pins)
+        probes.append(Probe("ohms", a, b))
+        if part.kind in JUNCTIONS:
+            probes += [Probe("diode", a, b), Probe("diode", b, a)]
+        if "capacitance" in kinds()[part.kind].values:
+            probes += [Probe("esr", a, b), Probe("capacitance", a, b)]
+    return tuple(probes)
 
 
 def specimens(board: Board, count: int, seed: int = 1) -> tuple[Draw, ...]:
@@ -86,13 +104,40 @@ def read_cold(board: Board, faults: Sequence[Fault], probes: Sequence[Probe], dr
     return out
 
 
+def read_lifted(board: Board, part: Part, faults: Sequence[Fault], probes: Sequence[Probe], draws: Sequence[Draw] = (NOMINAL,),
+                meter: Meter = HAND_METER) -> NDArray[np.float64]:
+    """Readings of a part with one leg lifted: those of the part alone, faults of others count for nothing. As ``read_cold``."""
+    nodes = tuple(part.pins.values())
+    alone = replace(board, parts=(part,), sides={"primary": nodes}, ground={"primary": nodes[-1]})
+    across = [Probe(p.function, part.pins[p.plus.partition(".")[2]], part.pins[p.minus.partition(".")[2]]) for p in probes]
+    return read_cold(alone, [fault for fault in faults if fault.ref == part.ref], across, draws, meter)
+
+
+def lifted_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Sequence[Probe], draws: Sequence[Draw],
+                   meter: Meter = HAND_METER) -> NDArray[np.float32]:
+    """Lifted readings over hypotheses, probes and specimens; shape (H, P, D). Each part is reckoned once for each of its
+    faults."""
+    out = np.empty((len(hypotheses), len(probes), len(draws)), dtype=np.float32)
+    for ref in dict.fromkeys(probe.lifted for probe in probes):
+        columns = [k for k, probe in enumerate(probes) if probe.lifted == ref]
+        part, own = board.part(ref), [probes[k] for k in columns]
+        found: dict[tuple[Fault, ...], NDArray[np.float64]] = {}
+        for row, hypothesis in enumerate(hypotheses):
+            faults = tuple(fault for fault in hypothesis.faults if fault.ref == ref)
+            if faults not in found:
+                found[faults] = read_lifted(board, part, faults, own, draws, meter)
+            out[row, columns] = found[faults]
+    return out
+
+
 def cold_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Sequence[Probe], draws: Sequence[Draw],
-                 progress: Callable[[int, int], None] | None = None) -> NDArray[np.float32]:
+                 progress: Callable[[int, int], None] | None = None, meter: Meter = HAND_METER) -> NDArray[np.float32]:
     """Readings over hypotheses, probes and specimens; shape (H, P, D). ``progress`` hears (done, wanted) and may raise to
     end it."""
     out = np.empty((len(hypotheses), len(probes), len(draws)), dtype=np.float32)
     with ThreadPoolExecutor(max_workers=os.cpu_count() or 1) as pool:
-        jobs = {pool.submit(read_cold, board, hypothesis.faults, probes, draws): h for h, hypothesis in enumerate(hypotheses)}
+        jobs = {pool.submit(read_cold, board, hypothesis.faults, probes, draws, meter): h
+                for h, hypothesis in enumerate(hypotheses)}
         try:
             for done, job in enumerate(as_completed(jobs), 1):
                 out[jobs[job]] = job.result()

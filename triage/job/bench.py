@@ -410,6 +410,9 @@ class Bench:
                 "noload, half or full",
                 "only the bulk capacitor is read in volts while cold",
             )
+        on_board = self.board.side_of(probe.plus) and self.board.side_of(probe.minus)
+        if not on_board and (probe.live or not probe.lifted):
+            raise EntryError(str(probe), "the pin of a part", "two nodes, or both pins of one lifted part")
         if probe.plus == probe.minus:
             raise EntryError(str(probe), "both leads on one node", "two different nodes")
         return probe
@@ -419,7 +422,11 @@ class Bench:
         for name in nodes:
             if name.lower() == node.strip().lower():
                 return name
-        raise EntryError("node", f"{node[:40]!r}", "one of " + ", ".join(nodes))
+        for part in self.board.parts:
+            for pin in part.pins:
+                if f"{part.ref}.{pin}".lower() == node.strip().lower():
+                    return f"{part.ref}.{pin}"
+        raise EntryError("node", f"{node[:40]!r}", "one of " + ", ".join(nodes) + ", or REF.PIN of a part with one leg lifted")
 
 
 def _stamp(clock: Clock) -> str:

@@ -70,13 +70,13 @@ class Wiring:
         """
         from triage.diagnosis.handbook import fault_weights
         from triage.diagnosis.priors import prior_of
-        from triage.job.expecting import collateral_of, expectations
+        from triage.job.expecting import all_expectations, collateral_of
 
         points = self.points(board)
         weights = fault_weights(board, self.stresses(board))
         shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
         prior = prior_of(weights, collateral_of(points, tuple(weights)), experience.factors(shares), pair_floor=PAIR_FLOOR)
-        expected = expectations(board, prior.hypotheses, points, self._kept)
+        expected = all_expectations(board, prior.hypotheses, points, self._kept)
         return Diagnosis.of_board(board, expected, prior, costs=_costs_of_shop())
 
     def points(self, board: Board) -> "OperatingPoints":

@@ -49,6 +49,8 @@ class Meter:
     """Highest capacitance before OL [F]."""
     bridge_series: bool = False
     """True for a bridge that shows the series capacitance, False for one that shows the parallel capacitance."""
+    bridge_impedance: float = 1e9
+    """Impedance above which a bridge of the first kind shows OL [ohm]: no current is left to tell its phase by."""
 
     def numbers(self) -> np.ndarray:
         """The values in the order the compiled solver takes them."""
@@ -129,7 +131,8 @@ def read_bridge(compiled: Compiled, probes: Sequence[tuple[str, str, str]], mete
 def _capacitance(impedance: complex, omega: float, meter: Meter) -> float:
     """Capacitance that the bridge shows for an impedance [ohm] at ``omega`` [rad/s]; 0 for a short [F]."""
     if meter.bridge_series:
-        value = -1.0 / (omega * impedance.imag) if impedance.imag < 0.0 else math.inf
+        driven = impedance.imag < 0.0 and abs(impedance) < meter.bridge_impedance
+        value = -1.0 / (omega * impedance.imag) if driven else math.inf
     else:
         admittance = 1.0 / impedance
         value = admittance.imag / omega if abs(admittance) < 10.0 else 0.0
