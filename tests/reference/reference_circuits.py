@@ -13,6 +13,8 @@ from triage.board.part import Board
 from triage.board.probe import Probe
 from triage.board.profile import load_profile
 from triage.physics.network import HAND_METER, Meter
+from triage.safety.instruments import Instruments
+from triage.safety.instruments import load as load_instruments
 
 DATA = Path(__file__).parent / "data"
 PROFILES = {"rcc-zener": "harbour-handset-charger", "rcc-opto": "weather-display-adapter", "pwm-opto": "tide-gauge-brick",
@@ -30,6 +32,11 @@ SOURCE = "reference circuits, simulated with ngspice 39"
 def meter_of(circuit: str) -> Meter:
     """The meter a circuit's cold readings were taken with."""
     return HAND_METER if circuit.startswith("rcc") else BY_CURRENT
+
+
+def own_meters(circuit: str) -> Instruments | None:
+    """The same meter as a shop's own file tells of it; None where it is the program's usual one."""
+    return None if circuit.startswith("rcc") else load_instruments(DATA / "bench_meters.toml")
 
 
 def draw_of(circuit: str, board: Board) -> Draw:

@@ -5,6 +5,7 @@ two nodes it is asked to probe. Source of the answers: the reference circuits (n
 """
 
 from dataclasses import dataclass
+from unittest.mock import patch
 
 import pytest
 
@@ -17,6 +18,7 @@ from tests.reference.reference_circuits import (
     fault_of,
     lifted_readings,
     live_table,
+    own_meters,
 )
 from triage.board.evidence import Sign, Symptom
 from triage.board.part import Board
@@ -25,6 +27,7 @@ from triage.board.profile import load_profile
 from triage.families.live import state_class
 from triage.families.live import summary as live_summary
 from triage.families.points import LOADS
+from triage.job import workshop
 from triage.job.learning import NONE
 from triage.job.wiring import Wiring
 
@@ -70,7 +73,8 @@ def units(circuit: str, board: Board) -> list[Unit]:
 def play_all(circuit: str, meter: Meter) -> list[Play]:
     """Every unit once with an honest meter; with one that errs three times, as one play more or less is luck."""
     board = load_profile(PROFILES[circuit])
-    diagnosis = Wiring().diagnosis(board, NONE)
+    with patch.object(workshop, "own_instruments", lambda: own_meters(circuit)):
+        diagnosis = Wiring().diagnosis(board, NONE)
     return [play(diagnosis, unit.name, unit.needed, [unit.symptom, Sign("sound")], unit.readings.get, seed + number, meter)
             for seed in (SEEDS if meter.gross else SEEDS[:1]) for number, unit in enumerate(units(circuit, board))]
 

@@ -5,7 +5,7 @@ only one of the two faults moves reads as with that fault alone. Where both move
 says nothing.
 """
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from triage.board.evidence import STATES
 from triage.board.fault import Fault, Hypothesis
 from triage.diagnosis.expectations import UNKNOWN_STATE, Expectations
-from triage.diagnosis.settings import instruments
+from triage.diagnosis.settings import Instrument, instruments
 
 MOVED = 1.0
 """A fault moves a reading in a specimen when it changes by more than this many standard errors of the
@@ -24,12 +24,14 @@ STOPPED = (STATES.index("fuse gone"), STATES.index("dead"))
 """States that hide every other, the stronger first."""
 
 
-def with_pairs(expectations: Expectations, pairs: Iterable[Hypothesis]) -> Expectations:
+def with_pairs(
+    expectations: Expectations, pairs: Iterable[Hypothesis], meters: Mapping[str, Instrument] | None = None
+) -> Expectations:
     """The expectations with those pairs added that can be composed: both halves listed, with the collateral
     of the pair.
 
     The draws of all hypotheses must be the same specimens in the same order. Pairs already listed are left as
-    they are.
+    they are. meters: function -> instrument; by default those of instruments.toml.
     """
     place = {hypothesis: i for i, hypothesis in enumerate(expectations.hypotheses)}
     sound = place.get(Hypothesis(()))
@@ -48,7 +50,7 @@ def with_pairs(expectations: Expectations, pairs: Iterable[Hypothesis]) -> Expec
     if not known:
         return expectations
     first, second = np.array(halves, dtype=np.int64).T
-    samples = _composed_samples(expectations, sound, first, second)
+    samples = _composed_samples(expectations, sound, first, second, meters or instruments())
     states = _composed_states(expectations.states[first], expectations.states[second])
     return expectations.joined(Expectations(tuple(known), expectations.probes, samples, states))
 
@@ -60,12 +62,12 @@ def _half(pair: Hypothesis, of_root: Sequence[Hypothesis], place: dict[Hypothesi
 
 
 def _composed_samples(
-    expectations: Expectations, sound: int, first: NDArray[np.int64], second: NDArray[np.int64]
+    expectations: Expectations, sound: int, first: NDArray[np.int64], second: NDArray[np.int64], meters: Mapping[str, Instrument]
 ) -> NDArray[np.floating]:
     out = np.empty((len(first), *expectations.samples.shape[1:]), dtype=expectations.samples.dtype)
     for column, probe in enumerate(expectations.probes):
         values = expectations.samples[:, column, :].astype(float)
-        meter = instruments()[probe.function]
+        meter = meters[probe.function]
         with np.errstate(invalid="ignore"):
             error = np.hypot(meter.absolute, meter.relative * np.where(np.isfinite(values[sound]), values[sound], 0.0))
             same = (np.abs(values - values[sound]) <= MOVED * error) | (values == values[sound])

@@ -28,7 +28,7 @@ from triage.diagnosis.misfit import Fit, fit_of
 from triage.diagnosis.next_reading import Candidate, Scorer, candidates, cold_first
 from triage.diagnosis.priors import Prior
 from triage.diagnosis.second_look import nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
-from triage.diagnosis.settings import Settings
+from triage.diagnosis.settings import Instrument, Settings
 from triage.diagnosis.verdict import Suspect, Verdict, best_repair, conclude, settled, suspects
 from triage.diagnosis.weigh import Weighed, evidence_ratios
 from triage.diagnosis.words import suspect_name
@@ -61,6 +61,7 @@ class Diagnosis:
         settings: Settings | None = None,
         costs: Costs | None = None,
         pins: Mapping[str, frozenset[str]] | None = None,
+        meters: Mapping[str, Instrument] | None = None,
     ) -> None:
         """Tabulate the expectations.
 
@@ -72,6 +73,7 @@ class Diagnosis:
         sides: node -> ``primary`` or ``secondary``.
         settings, costs: by default those of the shipped files.
         pins: ref -> nodes of the part; with them a verdict is confirmed by a reading at the part itself.
+        meters: function -> instrument; by default those of instruments.toml.
         Raises EntryError when prior and expectations have no hypothesis in common.
         """
         self.settings = settings or Settings.load()
@@ -81,7 +83,7 @@ class Diagnosis:
         self.why = prior.why
         self.kinds, self.sides, self.pins = kinds, sides, pins or {}
         self.actions = Actions.of_hypotheses(expectations.hypotheses)
-        self.model = ReadingModel(expectations, self.settings)
+        self.model = ReadingModel(expectations, self.settings, meters)
         self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings, self.prior)
         self._scorer = Scorer.of_model(self.model, self.actions)
         self._last: tuple[Job, Standing] | None = None
@@ -94,12 +96,13 @@ class Diagnosis:
         prior: Prior,
         settings: Settings | None = None,
         costs: Costs | None = None,
+        meters: Mapping[str, Instrument] | None = None,
     ) -> "Diagnosis":
         """The diagnosis of a board, kinds and sides taken from it."""
         sides = {node: side for side, nodes in board.sides.items() for node in nodes}
         kinds = {part.ref: part.kind for part in board.parts}
         pins = {part.ref: frozenset(part.pins.values()) for part in board.parts}
-        return cls(expectations, prior, kinds, sides, settings, costs, pins)
+        return cls(expectations, prior, kinds, sides, settings, costs, pins, meters)
 
     def belief(self, job: Job) -> NDArray[np.float64]:
         """Chance of each hypothesis about the present state of the board, shape (H,), adds up to 1 [-]."""

@@ -7,7 +7,7 @@ readings (contaminated normal; Box, Tiao, A Bayesian approach to some outlier pr
 Econometrica 26 (1958) 24-36).
 """
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from triage.diagnosis.axis import Axis, draw_width, to_axis
 from triage.diagnosis.bins import bin_edges
 from triage.diagnosis.expectations import Expectations
-from triage.diagnosis.settings import Settings, instruments
+from triage.diagnosis.settings import Instrument, Settings, instruments
 
 
 class ReadingModel:
@@ -25,9 +25,13 @@ class ReadingModel:
     Built once for a board; all methods are pure.
     """
 
-    def __init__(self, expectations: Expectations, settings: Settings) -> None:
+    def __init__(
+        self, expectations: Expectations, settings: Settings, meters: Mapping[str, Instrument] | None = None
+    ) -> None:
+        """meters: function -> instrument; by default those of instruments.toml."""
         self.expectations = expectations
         self._settings = settings
+        meters = meters or instruments()
         self.axes: list[Axis] = []
         """One axis for each probe."""
         self._cells: list[NDArray[np.int32]] = []
@@ -35,7 +39,7 @@ class ReadingModel:
         self._row: list[NDArray[np.int64]] = []
         # Most faults leave most readings as they are: equal rows of draws are kept and reckoned once.
         for column, probe in enumerate(expectations.probes):
-            instrument = instruments()[probe.function]
+            instrument = meters[probe.function]
             samples = expectations.samples[:, column, :]
             axis = Axis.spanning(samples, instrument)
             self.axes.append(axis)

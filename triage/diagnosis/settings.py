@@ -2,7 +2,7 @@
 
 import tomllib
 from collections.abc import Mapping
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from functools import cache
 from pathlib import Path
 from typing import Any
@@ -76,6 +76,23 @@ class Instrument:
     """Above this the reading is uncertain for other reasons than the meter [SI]."""
     relative_above_knee: float = 0.0
     """Standard error proportional to the reading above the knee [-]."""
+    model_relative: float = 0.0
+    """Part of ``relative`` that is the model's [-]."""
+    model_absolute: float = 0.0
+    """Part of ``absolute`` that is the model's [SI]."""
+
+    def read_with(self, relative: float, absolute: float, over: float, step: float) -> "Instrument":
+        """The same function of another meter: its own standard errors, limit and step in place of these.
+
+        Below a thousandth of the step nothing is told apart, however true the meter claims to be.
+        """
+        return replace(
+            self,
+            relative=max((relative**2 + self.model_relative**2) ** 0.5, 1e-3),
+            absolute=max((absolute**2 + self.model_absolute**2) ** 0.5, 1e-3 * step),
+            over=over,
+            step=step,
+        )
 
 
 @cache
@@ -100,5 +117,7 @@ def instruments(path: Path = HERE / "instruments.toml") -> Mapping[str, Instrume
                 row.get("signed") is True,
                 number(where, row, "knee", 0.0, 1e12) if "knee" in row else float("inf"),
                 number(where, row, "relative_above_knee", 0.0, 1.0) if "knee" in row else 0.0,
+                error["model_relative"],
+                error["model_absolute"],
             )
     return found

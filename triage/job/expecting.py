@@ -25,6 +25,7 @@ from triage.board.profile import board_to_dict
 from triage.diagnosis.composed import with_pairs
 from triage.diagnosis.expectations import LOADS, UNKNOWN_STATE, Expectations
 from triage.diagnosis.hypotheses import Collateral, CollateralMap
+from triage.diagnosis.settings import Instrument
 from triage.families import family_of
 from triage.families.cold import cold_probes, cold_samples, lifted_probes, lifted_samples, specimens
 from triage.families.live import live_probes, state_class, summary
@@ -45,13 +46,21 @@ source."""
 
 
 def all_expectations(
-    board: Board, hypotheses: Sequence[Hypothesis], points: OperatingPoints, kept: Kept, meter: Meter = HAND_METER
+    board: Board,
+    hypotheses: Sequence[Hypothesis],
+    points: OperatingPoints,
+    kept: Kept,
+    meter: Meter = HAND_METER,
+    meters: Mapping[str, Instrument] | None = None,
 ) -> Expectations:
     """Readings and states under every hypothesis of a diagnosis: single faults with what they take along are solved, pairs of
-    independent faults composed from them."""
+    independent faults composed from them.
+
+    meter, meters: what the cold readings are taken with, and how truly each function shows.
+    """
     solved = tuple(one for one in hypotheses if len(one.root) < 2)
     found = expectations(board, solved, points, kept, meter)
-    return with_pairs(found, (one for one in hypotheses if len(one.root) > 1))
+    return with_pairs(found, (one for one in hypotheses if len(one.root) > 1), meters)
 
 
 def expectations(

@@ -21,6 +21,7 @@ from triage.job import workshop
 from triage.job.cache import Cache, Kept, Shipped
 from triage.job.display import plain
 from triage.job.learning import NONE, Experience, handbook_shares
+from triage.job.meters import instruments_of, meter_of
 from triage.job.views import (
     CandidateView,
     ChartView,
@@ -76,8 +77,10 @@ class Wiring:
         weights = fault_weights(board, self.stresses(board))
         shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
         prior = prior_of(weights, collateral_of(points, tuple(weights)), experience.factors(shares), pair_floor=PAIR_FLOOR)
-        expected = all_expectations(board, prior.hypotheses, points, self._kept)
-        return Diagnosis.of_board(board, expected, prior, costs=_costs_of_shop())
+        own = workshop.own_instruments()
+        meters = instruments_of(own)
+        expected = all_expectations(board, prior.hypotheses, points, self._kept, meter_of(own), meters)
+        return Diagnosis.of_board(board, expected, prior, costs=_costs_of_shop(), meters=meters)
 
     def points(self, board: Board) -> "OperatingPoints":
         """The operating points of a board as far as they have been solved: shipped with its profile, or kept
@@ -132,7 +135,7 @@ class Wiring:
         """What each reading should show under these faults: median and the middle 90 % of boards."""
         from triage.job.expecting import expected_readings
 
-        return expected_readings(board, faults, self.points(board), self._kept)
+        return expected_readings(board, faults, self.points(board), self._kept, meter_of(workshop.own_instruments()))
 
     def fitted(self, board: Board, ref: str, type: str) -> Board:
         """The board with this part in this position. Raises CatalogError for a type the catalog does not

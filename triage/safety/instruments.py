@@ -64,6 +64,13 @@ class Function:
     test_voltage: float | None
     """Open-circuit voltage [V], where known."""
     source: Source
+    constant_current: bool = False
+    """Ohms: True for a meter that drives its test current through the part, False for one that puts its voltage on it through a
+    resistor."""
+    series_value: bool = False
+    """Capacitance: True for a bridge that shows the series value, False for the parallel one."""
+    frequency: float | None = None
+    """Of the test signal [Hz], where known."""
 
     def range_for(self, value: float) -> Range | None:
         """The smallest range that shows a value [SI]; None above the last one (OL)."""
@@ -150,9 +157,16 @@ def _function(name: str, row: Mapping[str, Any], faults: list[str]) -> Function 
         faults.append(f"{where}: ranges must be above 0 and rise")
     share, counts, size = (_column(row, column, len(scales), where, faults) for column in ("percent", "counts", "count_size"))
     current = _column(row, "test_current_A", len(scales), where, faults) if "test_current_A" in row else []
-    for column in ("offset", "test_voltage_V"):
+    for column in ("offset", "test_voltage_V", "frequency_Hz"):
         if not _is_number(row.get(column, 0.0)):
             faults.append(f"{where}: {column} must be a number")
+        elif column != "offset" and column in row and row[column] <= 0.0:
+            faults.append(f"{where}: {column} must be above 0")
+    for flag in ("constant_current", "series_value"):
+        if not isinstance(row.get(flag, False), bool):
+            faults.append(f"{where}: {flag} must be true or false")
+    if row.get("constant_current") is True and not all(value > 0.0 for value in current or [0.0]):
+        faults.append(f"{where}: constant_current needs test_current_A above 0")
     if len(faults) > before:
         return None
     ranges = tuple(
@@ -163,7 +177,17 @@ def _function(name: str, row: Mapping[str, Any], faults: list[str]) -> Function 
         str(row.get("clause", "")),
         str(row.get("confidence", "from memory")),
     )
-    return Function(name, key, ranges, float(row.get("offset", 0.0)), row.get("test_voltage_V"), source)
+    return Function(
+        name,
+        key,
+        ranges,
+        float(row.get("offset", 0.0)),
+        row.get("test_voltage_V"),
+        source,
+        row.get("constant_current", False),
+        row.get("series_value", False),
+        row.get("frequency_Hz"),
+    )
 
 
 def _column(row: Mapping[str, Any], column: str, count: int, where: str, faults: list[str]) -> list[float]:
