@@ -32,7 +32,8 @@ TESTS = {
                 "tests/reference/test_handbook_derating.py"),
     "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py"),
 }
-LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py")
+LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py",
+             "tests/physics/test_compiled.py")
 LONGEST = 90
 """A run beyond this counts as killed [s of processor time]."""
 TOO_LONG = -signal.SIGXCPU
