@@ -5,7 +5,7 @@ It answers through the real diagnosis, so that gates, suggestions and verdicts o
 only the physics is left out. The readings are invented.
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import replace
 from datetime import UTC, datetime, timedelta
 
@@ -82,6 +82,12 @@ class StandIn:
             spread = 1.0 + 0.02 * chance.standard_normal((len(PROBES), DRAWS))
             samples[row] = np.array(values)[:, None] * spread
         return Diagnosis.of_board(board, Expectations(prior.hypotheses, PROBES, samples, states), prior)
+
+    def known_stresses(self, board: Board) -> tuple[Stress, ...]:
+        return self.stresses(board)
+
+    def work_out(self, board: Board, leading: Callable[[], Sequence[Fault]]) -> Iterator[tuple[str, int, int]]:
+        return iter(())
 
     def stresses(self, board: Board) -> tuple[Stress, ...]:
         rated = 500.0 if "500 V" in board.part("R1").type else 250.0

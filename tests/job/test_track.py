@@ -50,9 +50,9 @@ def test_volts_left_on_a_capacitor_are_no_move(tmp_path: Path) -> None:
 class Slow(StandIn):
     """Tells how far it is from deep within."""
 
-    def stresses(self, board: Board) -> tuple[Stress, ...]:
+    def known_stresses(self, board: Board) -> tuple[Stress, ...]:
         report("stresses", 1, 2)
-        return super().stresses(board)
+        return super().known_stresses(board)
 
 
 def test_a_listener_hears_how_far_it_is_and_can_end_it(tmp_path: Path) -> None:

@@ -29,7 +29,7 @@ from triage.job.entries import last_standing, make_entry, probe_of, replay
 from triage.job.gates import Rules, allow, facts_of
 from triage.job.learning import NONE, experience_from_dict, experience_of
 from triage.job.lock import Lock
-from triage.job.progress import Listener, heard_by
+from triage.job.progress import Listener, heard_by, report
 from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
 from triage.job.render import render
@@ -84,6 +84,8 @@ class Bench:
         """What the gates of this board ask for."""
         self.answers: picture.Answers | None = None
         """What ``prepare`` computed; None before."""
+        self._better: picture.Answers | None = None
+        """What was worked out since, for the next entry."""
         if lock is not None:
             weakref.finalize(self, lock.release)
 
@@ -172,15 +174,51 @@ class Bench:
         return str(left) if left is not None else ""
 
     def prepare(self, listener: Listener | None = None) -> None:
-        """Compute what every instrument would show under every fault, and the stresses. Takes seconds the
-        first time.
+        """Compute what every instrument would show under every fault: on the unpowered board, and as far as it was solved
+        before on the powered one. Takes seconds the first time.
 
         listener: hears how far it is; what it raises ends the calculation.
         """
         with heard_by(listener):
-            diagnosis = self.workings.diagnosis(self.board, self.experience)
-            stresses = self.stresses_before()
-        self.answers = picture.Answers(diagnosis, stresses, SuspectWriter(self.board, stresses))
+            self.answers, self._better = self._answers(), None
+
+    def work_out(self, listener: Listener | None = None) -> bool:
+        """Solve what the powered board does under every fault, the leading suspects first; True when there was anything to
+        solve. Minutes; what is solved is kept.
+
+        The answers come into the belief with the next entry or ``take_up``, so that no suggestion changes under the hand
+        that holds the probe.
+        """
+        step = 0
+        with heard_by(listener):
+            for done, number, wanted in self.workings.work_out(self.board, self._leading):
+                step += 1
+                report(f"the powered board: {done}", number, wanted)
+                if step & (step - 1) == 0:
+                    # Each time twice as many as before: putting the answers together costs about as much as a step.
+                    self._better = self._answers()
+            if step:
+                self._better = self._answers()
+        return step > 0
+
+    def take_up(self) -> JobView:
+        """What there is to show, with all that was worked out."""
+        self._take_better()
+        return self.view()
+
+    def _take_better(self) -> None:
+        if self._better is not None:
+            self.answers, self._better = self._better, None
+
+    def _answers(self) -> picture.Answers:
+        diagnosis = self.workings.diagnosis(self.board, self.experience)
+        stresses = tuple(stress_view(one, self.board) for one in self.workings.known_stresses(self.board))
+        return picture.Answers(diagnosis, stresses, SuspectWriter(self.board, stresses))
+
+    def _leading(self) -> list[Fault]:
+        """Every fault, the likeliest now first."""
+        chances = picture.fault_chances(self) if self.answers else {}
+        return sorted(chances, key=lambda fault: -chances[fault])
 
     def view(self, message: str = "") -> JobView:
         """What there is to show now."""
@@ -271,7 +309,8 @@ class Bench:
 
     def stresses_before(self) -> tuple[StressView, ...]:
         """Stresses of the board as it came onto the mat."""
-        return self.answers.stresses if self.answers else self._stress_views(self.board)
+        known = self.answers.stresses if self.answers else ()
+        return known or self._stress_views(self.board)
 
     def charts(self) -> tuple[ChartView, ...]:
         """Waveforms and load line of the board as it came, sound and under the leading suspect; seconds for a suspect that
@@ -381,6 +420,7 @@ class Bench:
             self._lock.touch()
         is_cold_reading = kind == "reading" and said["condition"] == "cold"
         caution = picture.unready(facts, self.rules, probe_of(said)) if is_cold_reading else ""
+        self._take_better()
         return self.view("; ".join(filter(None, (entry_text(entry), caution))))
 
     def _facts_now(self) -> Any:

@@ -34,6 +34,8 @@ from triage.physics.netlist import Netlist
 from triage.physics.transient import NoConvergence, Stretch
 
 _WHAT = "the sound board at low and high mains"
+_BROKE_OFF = {"broke off": True}
+"""Kept for a corner that has no solution, so that nobody waits for it twice."""
 DIGITS = 7
 """Digits kept: more than a solution is good for, fewer than two machines may differ in."""
 
@@ -51,6 +53,21 @@ def board_stresses(board: Board, kept: Kept) -> tuple[Stress, ...]:
     return worst_stresses(board, settled, _inrush(board, kept)) if settled else ()
 
 
+def solved_before(board: Board, kept: Kept) -> bool:
+    """True when the stresses of a board come at once, be it that there is no solution."""
+    return all(kept.has(_key(board, corner)) for corner in worst_corners(board))
+
+
+def known_stresses(board: Board, kept: Kept) -> tuple[Stress, ...]:
+    """The same from what is kept alone, at once; empty for a circuit that was never solved."""
+    for wanted in (conditions(board), worst_corners(board)):
+        if all(kept.has(_key(board, corner)) for corner in wanted):
+            settled = {corner: found for corner in wanted if (found := _kept_corner(board, corner, kept)) is not None}
+            inrush = kept.get(_inrush_key(board))
+            return worst_stresses(board, settled, _melting(inrush)) if settled else ()
+    return ()
+
+
 def solve_all_corners(board: Board, kept: Kept) -> None:
     """Solve all nine corners of a board and keep them."""
     settled_corners(board, conditions(board), kept)
@@ -62,15 +79,24 @@ def settled_corners(board: Board, corners: Iterable[Condition], kept: Kept) -> d
     found: dict[Condition, Settled] = {}
     missing = []
     for corner in corners:
-        with contextlib.suppress(TypeError, KeyError, ValueError):
-            found[corner] = _read(kept.get(_key(board, corner)))
-            continue
-        missing.append(corner)
-    for corner, settled in _solved(board, missing).items():
-        content = _write(settled)
+        settled = _kept_corner(board, corner, kept)
+        if settled is not None:
+            found[corner] = settled
+        elif kept.get(_key(board, corner)) != _BROKE_OFF:
+            missing.append(corner)
+    solved = _solved(board, missing)
+    for corner in missing:
+        content = _write(solved[corner]) if corner in solved else _BROKE_OFF
         kept.put(_key(board, corner), content)
-        found[corner] = _read(content)
+        if corner in solved:
+            found[corner] = _read(content)
     return found
+
+
+def _kept_corner(board: Board, corner: Condition, kept: Kept) -> Settled | None:
+    with contextlib.suppress(TypeError, KeyError, ValueError):
+        return _read(kept.get(_key(board, corner)))
+    return None
 
 
 def _solved(board: Board, corners: list[Condition]) -> dict[Condition, Settled]:
@@ -95,7 +121,7 @@ def _solved(board: Board, corners: list[Condition]) -> dict[Condition, Settled]:
 
 def _inrush(board: Board, kept: Kept) -> dict[str, float]:
     """Melting integral of the cold start by fuse [A2s]."""
-    key = "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load))
+    key = _inrush_key(board)
     found = kept.get(key)
     if not isinstance(found, dict):
         try:
@@ -103,7 +129,15 @@ def _inrush(board: Board, kept: Kept) -> dict[str, float]:
         except NoConvergence:
             return {}
         kept.put(key, found)
-    return {str(ref): float(value) for ref, value in found.items()}
+    return _melting(found)
+
+
+def _inrush_key(board: Board) -> str:
+    return "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load))
+
+
+def _melting(found: Any) -> dict[str, float]:
+    return {str(ref): float(value) for ref, value in found.items()} if isinstance(found, dict) else {}
 
 
 def _key(board: Board, corner: Condition) -> str:

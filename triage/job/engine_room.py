@@ -4,7 +4,7 @@
 Everything here is a pure function of the board, so that a job gives the same answers wherever it is opened.
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Iterator, Sequence
 from typing import Protocol
 
 from triage.board.fault import Fault
@@ -26,6 +26,16 @@ class Workings(Protocol):
 
     def stresses(self, board: Board) -> tuple[Stress, ...]:
         """Every stress of every part at its worst condition."""
+
+    def known_stresses(self, board: Board) -> tuple[Stress, ...]:
+        """The same as far as they were solved before, at once."""
+
+    def work_out(self, board: Board, leading: Callable[[], Sequence[Fault]]) -> Iterator[tuple[str, int, int]]:
+        """Solve the powered board step by step and keep it, the leading faults first; minutes. Yields what was done, how many
+        steps are done and how many there are; nothing when all is known.
+
+        leading: asked before each step for the faults that matter most now, first one first.
+        """
 
     def charts(self, board: Board, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
         """Waveforms and load line, sound and under these faults, with the limits of these stresses; seconds a fault."""

@@ -31,7 +31,7 @@ def report_sections(bench: "Bench") -> tuple[Section, ...]:
             label=_label(bench),
             entries=bench.job.entries,
             verdict=shown.verdict,
-            before=bench.stresses_before(),
+            before=bench.answers.stresses if bench.answers else bench.stresses_before(),
             after=bench.stresses() if state.fitted else (),
             retest=retest,
             worth=(worth.reason, *worth.upgrades) if worth else (),

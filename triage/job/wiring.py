@@ -6,7 +6,7 @@ rounded before it is used, so that a kept and a new answer are the same to the l
 """
 
 import contextlib
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from functools import cached_property
 from typing import TYPE_CHECKING
 
@@ -16,6 +16,7 @@ from triage.board.stress import Stress
 from triage.data import data_folder
 from triage.diagnosis.costs import Costs
 from triage.diagnosis.engine import Diagnosis
+from triage.diagnosis.second_look import PROTECTIVE
 from triage.errors import CatalogError
 from triage.job import workshop
 from triage.job.cache import Cache, Kept, Shipped
@@ -74,9 +75,11 @@ class Wiring:
         from triage.job.expecting import all_expectations, collateral_of
 
         points = self.points(board)
-        weights = fault_weights(board, self.stresses(board))
+        weights = fault_weights(board, self.known_stresses(board))
         shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
-        prior = prior_of(weights, collateral_of(points, tuple(weights)), experience.factors(shares), pair_floor=PAIR_FLOOR)
+        collateral, factors = collateral_of(points, tuple(weights)), experience.factors(shares)
+        fuses = [Fault(part.ref, "open") for part in board.parts if part.kind in PROTECTIVE]
+        prior = prior_of(weights, collateral, factors, pair_floor=PAIR_FLOOR, fuses=fuses)
         own = workshop.own_instruments()
         meters = instruments_of(own)
         expected = all_expectations(board, prior.hypotheses, points, self._kept, meter_of(own), meters)
@@ -98,21 +101,43 @@ class Wiring:
         Minutes for a small board, hours for a large one; what was solved before an interruption stays.
         progress: hears what has been done.
         """
-        from triage.board.kinds import kinds
-        from triage.families.points import OperatingPoints, fingerprint
         from triage.job.corners import solve_all_corners
 
+        for done, _, _ in self.work_out(board):
+            progress(done)
         solve_all_corners(board, self._kept)
         progress("the sound board in nine corners")
-        key = f"points-{fingerprint(board)}"
-        points = OperatingPoints(board, self._kept.get(key))
-        for part in board.parts:
-            for mode in part.fault_modes or kinds()[part.kind].fault_modes:
-                points.chains((Fault(part.ref, mode),))
-                self._kept.put(key, points.kept())
-                progress(f"{part.ref}.{mode}")
         self.diagnosis(board, NONE)
         progress("the cold readings")
+
+    def work_out(self, board: Board, leading: Callable[[], Sequence[Fault]] = tuple) -> Iterator[tuple[str, int, int]]:
+        """Solve stresses and operating points step by step and keep them, the leading faults first.
+
+        Yields what was done, how many steps are done and how many there are; nothing when all is known.
+        leading: asked before each step for the faults that matter most now, first one first.
+        """
+        from triage.families.points import LOADS, fingerprint, point_key
+        from triage.job.corners import solved_before
+
+        points, key = self.points(board), f"points-{fingerprint(board)}"
+        left = [fault for fault in faults_of(board) if any(point_key((fault,), load) not in points for load in LOADS)]
+        wanted = len(left)
+        if not solved_before(board, self._kept):
+            wanted += 1
+            self.stresses(board)
+            yield "the stresses of the sound board", 1, wanted
+        while left:
+            fault = next((one for one in leading() if one in left), left[0])
+            points.chains((fault,))
+            left.remove(fault)
+            self._kept.put(key, points.kept())
+            yield str(fault), wanted - len(left), wanted
+
+    def known_stresses(self, board: Board) -> tuple[Stress, ...]:
+        """The stresses as far as they were solved before, at once."""
+        from triage.job.corners import known_stresses
+
+        return known_stresses(board, self._kept)
 
     def stresses(self, board: Board) -> tuple[Stress, ...]:
         """Every stress of every part at its worst condition; a minute for a circuit that was never solved."""
@@ -201,6 +226,14 @@ class Wiring:
             MatchView(plain(one.type), one.part_class, round(100.0 * one.score, 1), one.band, plain(one.text))
             for one in search(self.catalog, marking)
         )
+
+
+def faults_of(board: Board) -> tuple[Fault, ...]:
+    """Every single fault of a board."""
+    from triage.board.kinds import kinds
+
+    return tuple(Fault(part.ref, mode) for part in board.parts
+                 for mode in part.fault_modes or kinds()[part.kind].fault_modes)  # fmt: skip
 
 
 def _demand_view(asked: "Demand") -> DemandView:

@@ -27,7 +27,7 @@ def worth_of(bench: "Bench", new_price: float | None) -> WorthView:
         new_price = next((own.new_adapter[name] for name in named if name in own.new_adapter), None)
     shown = view(bench, "")
     vetoes = tuple(f"the look at {item}" for item, look in sorted(bench.facts().looks) if look == "veto")
-    over = upgrades(bench.board, bench.workings.stresses(bench.board), shop)
+    over = upgrades(bench.board, bench.workings.known_stresses(bench.board), shop)
     fitted = [ref for ref, _ in replay(bench.job.entries).fitted]
     case = board_case(
         bench.board, shown.verdict.repair, shown.verdict.probability, over, fitted, vetoes=vetoes, new_price=new_price,
