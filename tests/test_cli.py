@@ -173,6 +173,35 @@ def test_the_answers_for_a_person_are_lines(job: str, run: Terminal) -> None:
         assert "dead" in run("report", job, "--format", format)
 
 
+def test_the_verdict_and_what_it_asks_for_are_told_in_words(job: str, run: Terminal) -> None:
+    """The input resistor is open and everything else reads sound."""
+    for words in (
+        ["complaint", "dead", "full"], ["ack", "all"], ["sign", "sound"], ["reading", "volts_dc", "bulk", "pgnd", "0.2"],
+        ["reading", "ohms", "mains_l", "rect", "OL"], ["reading", "diode", "rect", "bulk", "0.55"],
+    ):  # fmt: skip
+        run("add", job, *words)
+    assert run("next", job).startswith("verdict: ") and "RF1 open" in run("next", job)
+    verdict = run("verdict", job).splitlines()
+    assert verdict[0].startswith("verdict: found: RF1 open, ") and "replace: RF1" in verdict
+    assert any(line.startswith("  ") and "OL" in line for line in verdict), "the readings behind it"
+    assert run.json("next", job)["function"] is None and run.json("verdict", job)["repair"] == ["RF1"]
+    shown = run("show", job)
+    assert "leading suspect RF1 open" in shown and "replace: RF1" in shown
+    explained = run.json("suspects", job, "--explain")
+    assert explained[0]["ref"] == "RF1" and explained[0]["explain"]
+
+
+def test_what_is_asked_answers_in_json_as_well(job: str, run: Terminal) -> None:
+    """A script gets the same answers as a person."""
+    run("add", job, "complaint", "dead")
+    assert {one["ref"] for one in run.json("stress", job)} == {"R1", "D1", "C1"}
+    assert run.json("demand", job, "R1")["requirements"][0]["minimum"] == 447.0
+    assert run.json("candidates", job, "R1")[0]["accepted"]
+    assert not run.json("candidates", job, "R1", "carbon film")[0]["accepted"]
+    assert run.json("parts", "1N40")[0]["type"].startswith("1N40")
+    assert isinstance(run.json("combine", job, "R1"), list)
+
+
 def test_a_report_goes_into_a_file(job: str, run: Terminal, tmp_path: Path) -> None:
     run("report", job, "--format", "html", "-o", str(tmp_path / "r.html"))
     assert (tmp_path / "r.html").read_text().startswith("<!DOCTYPE html>")
