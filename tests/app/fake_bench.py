@@ -11,11 +11,12 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 from triage.app.contract import OpenJob
-from triage.app.shelf import Item
+from triage.app.shelf import Item, items
 from triage.board.part import Board, Label, Mains, Part
 from triage.board.probe import UNITS
 from triage.errors import EntryError, JobError, QuantityError
 from triage.job import views as v
+from triage.job.draft import Draft
 from triage.job.progress import Listener, report
 
 DRAWING = """\
@@ -578,8 +579,12 @@ class FakeShelf:
     def items(self) -> tuple[Item, ...]:
         return (
             Item(self.folder / "tide-gauge.toml", "Tide gauge supply, hums", "job"),
+            *(one for one in items(self.folder) if one.kind == "own" and self.folder in one.path.parents),
             Item(Path("radio-desk-cube.toml"), BOARD.title, "profile"),
         )
+
+    def draft(self, path: Path | None = None) -> Draft:
+        return Draft() if path is None else Draft.open(path)
 
     def opener(self, path: Path):  # type: ignore[no-untyped-def]
         return lambda: self._made(path)

@@ -33,6 +33,27 @@ async def start(pilot: Pilot[int]) -> None:
     """The start page."""
 
 
+async def label(pilot: Pilot[int]) -> None:
+    """The label typed, one transistor counted."""
+    await press(pilot, "up", "enter")
+    for text in ("radio cube", "", "5", "0.6", ""):
+        await type_in(pilot, text)
+    await keys(pilot, "down", "1")
+
+
+async def draft(pilot: Pilot[int]) -> None:
+    """The estimates, one marking read."""
+    await label(pilot)
+    await keys(pilot, "enter", "enter")
+    await type_in(pilot, "10R")
+
+
+async def role(pilot: Pilot[int]) -> None:
+    """A part more."""
+    await draft(pilot)
+    await keys(pilot, "plus", *"vari", "enter")
+
+
 async def intake(pilot: Pilot[int]) -> None:
     """The complaint."""
     await press(pilot, *BEGIN)
@@ -129,7 +150,7 @@ async def help_bench(pilot: Pilot[int]) -> None:
     await keys(pilot, "f1")
 
 
-FROM_START = (start, intake, cautions, looks)
+FROM_START = (start, label, draft, role, intake, cautions, looks)
 FROM_BENCH = (
     bench, refused, verdict, stress, waveforms, load_line, moves, parts, marking, retest, record, reading, sign, menu, help_bench,
 )  # fmt: skip
@@ -147,7 +168,9 @@ def drawn(story, folder: Path) -> dict[tuple[int, int], str]:
             await settle(pilot)
             shown[size] = text_of(pilot.app).replace(str(folder), "JOBS") + "\n"
 
-    play(folder, run, size=SIZES[0], at_bench=story in FROM_BENCH)
+    with pytest.MonkeyPatch.context() as patched:
+        patched.setenv("XDG_DATA_HOME", str(folder / "data"))
+        play(folder, run, size=SIZES[0], at_bench=story in FROM_BENCH)
     return shown
 
 

@@ -11,6 +11,7 @@ from textual.binding import Binding
 
 from triage.app import terminal, theme
 from triage.app.desk import Desk
+from triage.app.drafting import Drafting
 from triage.app.keys import COMMANDS
 from triage.app.places import Places, make_screen
 from triage.app.shelf import Shelf
@@ -50,6 +51,7 @@ class TriageApp(App[int]):
         self.glyphs = look.glyphs
         self.shelf = shelf
         self.desk = Desk(self.call_later, self._changed, self._fault)
+        self.drafting = Drafting(self.desk, shelf.draft)
         self.faults: list[Exception] = []
         self._first = (job, profile)
         self.places = Places(self)
@@ -117,7 +119,7 @@ class TriageApp(App[int]):
     def action_go(self, place: str) -> None:
         """Go to a place of the open job; forms and help pages in front of it are put away."""
         if self.desk.view is None:
-            self._changed()
+            (getattr(self.screen, "action_begin", self._changed) if place == "bench" else self._changed)()
             return
         self.places.show(place)
 
@@ -140,8 +142,8 @@ class TriageApp(App[int]):
             self.push_screen(make_screen("menu"))
 
     def action_undo(self) -> None:
-        """Take the last entry back."""
-        self.desk.enter(lambda bench: bench.undo())
+        """Take the last entry back, or the last change of a board that is being made."""
+        getattr(self.screen, "action_take_back", lambda: self.desk.enter(lambda bench: bench.undo()))()
 
     def action_power(self, on: bool) -> None:
         """Say that the adapter was powered up or unplugged."""

@@ -6,11 +6,13 @@ The tests' stand-in keeps to the same protocol, so that the screens are tested w
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Protocol
 
 if TYPE_CHECKING:
     from triage.board.part import Board
+    from triage.job.draft_views import DraftView, FamilyView
     from triage.job.progress import Listener
     from triage.job.views import CandidateView, ChartView, DemandView, JobView, MatchView, MoveView, StressView
 
@@ -103,3 +105,42 @@ class OpenJob(Protocol):
 
     def release(self) -> None:
         """Give the job free for other sessions."""
+
+
+class OpenDraft(Protocol):
+    """A board being made from its label: the part of ``triage.job.draft.Draft`` that the app uses."""
+
+    def families(self, volts: str, amperes: str, seen: Sequence[str]) -> tuple[FamilyView, ...]:
+        """The families it may be, likeliest first."""
+
+    def estimate(
+        self, family: str, input_line: str, volts: str, amperes: str, insulation_class: str, seen: Sequence[str], title: str = ""
+    ) -> DraftView:
+        """Begin with the board of a family, every value estimated."""
+
+    def keep(self) -> Path:
+        """From now on write every change into a profile of the shop's own."""
+
+    def set(self, ref: str, key: str, text: str, measured: bool = False) -> DraftView:
+        """One value or rating as read off the part, or measured."""
+
+    def mark(self, ref: str, marking: str) -> DraftView:
+        """What is printed on a part."""
+
+    def strike(self, ref: str) -> DraftView:
+        """A part that the board lacks."""
+
+    def add(self, role: str, pins: Mapping[str, str], ref: str = "") -> DraftView:
+        """A part more."""
+
+    def turns(self, ref: str, counts: Mapping[str, str], core_area: str = "") -> DraftView:
+        """Counted turns, held against the rest of the board."""
+
+    def undo(self) -> DraftView:
+        """Take the last change back."""
+
+    def role_pins(self) -> Mapping[str, tuple[str, ...]]:
+        """Roles in which a part can be added, with its pins."""
+
+    def view(self, message: str = "") -> DraftView:
+        """The board as it stands."""

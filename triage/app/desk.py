@@ -103,7 +103,7 @@ class Desk:
         """Go on with a calculation that was stopped."""
         if self.bench is not None and self.view is not None and self.view.computing and not self._slow.busy:
             self._prepare(self.bench)
-            self._say("")
+            self.say("")
 
     def stop(self) -> None:
         """End the calculation of what to expect; entries can be made without it."""
@@ -149,7 +149,7 @@ class Desk:
             self.progress = ""
             if isinstance(answer.error, Stopped):
                 self.progress = "stopped"
-                self._say("stopped: nothing is suggested; type go to compute on, or enter readings of your own choice (+)")
+                self.say("stopped: nothing is suggested; type go to compute on, or enter readings of your own choice (+)")
             elif answer.error is not None:
                 self._report(answer.error)
             elif self.pending:
@@ -168,7 +168,7 @@ class Desk:
         """
         bench = self.bench
         if bench is None or (self.pending and not queue):
-            self._say("still working on the entry before" if bench else "no job is open", refused=True)
+            self.say("still working on the entry before" if bench else "no job is open", refused=True)
             return False
         self.pending = True
 
@@ -180,7 +180,7 @@ class Desk:
             self._take(answer.value)
             if accepted is not None:
                 accepted()
-            self._say(answer.value.message)
+            self.say(answer.value.message)
 
         self._quick.ask("entry", lambda: call(bench), done, self._deliver, must_run=True)
         self._changed()
@@ -209,7 +209,7 @@ class Desk:
                 del self._long_looks[lane]
                 self.looking = ""
             if isinstance(answer.error, Stopped):
-                (failed or self._say)("stopped")
+                (failed or self.say)("stopped")
                 return
             if answer.error is not None:
                 self._report(answer.error, failed)
@@ -238,6 +238,20 @@ class Desk:
         self._long_looks[lane] = stop
         self._long.ask(lane, work, done, self._deliver)
 
+    def work(
+        self, lane: str, call: Callable[[], T], then: Callable[[T], None], failed: Callable[[str], None], must_run: bool = False
+    ) -> None:
+        """Have something done that needs no open job; the newest question of a lane is answered. ``must_run``: carry it out
+        even when a newer one waits."""
+
+        def done(answer: Answer[T]) -> None:
+            if answer.error is not None:
+                self._report(answer.error, failed)
+            else:
+                then(answer.value)  # type: ignore[arg-type]
+
+        self._quick.ask(lane, call, done, self._deliver, must_run)
+
     def put_away(self) -> None:
         """Let go of the job; answers still to come for it are dropped."""
         self._quick.forget()
@@ -265,7 +279,8 @@ class Desk:
     def _take(self, view: JobView) -> None:
         self.view = view
 
-    def _say(self, text: str, refused: bool = False) -> None:
+    def say(self, text: str, refused: bool = False) -> None:
+        """Put a message on the message line, whatever screen is in front."""
         self.message, self.refused = text, refused
         self._changed()
 
@@ -283,4 +298,4 @@ class Desk:
         if failed is not None:
             failed(text)
         else:
-            self._say(text, refused=True)
+            self.say(text, refused=True)

@@ -5,10 +5,10 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 
-from triage.app.contract import OpenJob
+from triage.app.contract import OpenDraft, OpenJob
 from triage.data import data_folder
 from triage.errors import JobError
-from triage.job.folder import free_name, jobs_folder, make_folder
+from triage.job.folder import PROFILES, data_directory, free_name, jobs_folder, make_folder
 
 _LONGEST_FILE = 4_000_000
 """Files beyond this size [bytes] are listed by name only."""
@@ -21,7 +21,7 @@ class Item:
     path: Path
     title: str
     kind: str
-    """``job`` or ``profile``."""
+    """``job``, ``profile`` (shipped) or ``own`` (a profile of the shop's own)."""
 
 
 def _title_of(path: Path) -> str:
@@ -40,13 +40,16 @@ def _title_of(path: Path) -> str:
 
 
 def items(folder: Path | None) -> tuple[Item, ...]:
-    """Jobs of the folder, newest first, then the shipped profiles by name."""
+    """Jobs of the folder, newest first, then the profiles by name, the shop's own before the shipped ones."""
     jobs_at = jobs_folder(folder)
     jobs = [path for path in jobs_at.glob("*.toml") if path.is_file()] if jobs_at.is_dir() else []
     jobs.sort(key=lambda path: path.stat().st_mtime, reverse=True)
     profiles = sorted(data_folder("profiles").glob("*.toml"))
+    own_at = data_directory() / PROFILES
+    own = sorted(path for path in own_at.glob("*.toml") if path.is_file()) if own_at.is_dir() else []
     return (
         *(Item(path, _title_of(path), "job") for path in jobs),
+        *(Item(path, _title_of(path), "own") for path in own),
         *(Item(path, _title_of(path), "profile") for path in profiles),
     )
 
@@ -83,3 +86,9 @@ class Shelf:
             return Bench.create(profile, path)
 
         return begin
+
+    def draft(self, path: Path | None = None) -> OpenDraft:
+        """A board to be made from its label, or a profile of the shop's own to go on with."""
+        from triage.job.draft import Draft
+
+        return Draft() if path is None else Draft.open(path)

@@ -9,6 +9,9 @@ from triage.errors import JobError
 VARIABLE = "TRIAGE_JOBS"
 """Environment variable that names a jobs folder, for instance one that several benches share."""
 
+PROFILES = "profiles"
+"""Folder of the shop's own profiles within the data directory."""
+
 
 def jobs_folder(chosen: str | Path | None = None) -> Path:
     """The jobs folder: as chosen, else as the environment says, else in the user's data directory (XDG base
