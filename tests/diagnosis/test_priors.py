@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 
 from triage.board.fault import Fault, Hypothesis
-from triage.diagnosis.hypotheses import NO_PART_FAULT, Collateral, pairs, single_faults
+from triage.diagnosis.hypotheses import NO_PART_FAULT, NOT_COMPUTED, Collateral, pairs, shorts_behind, single_faults
 from triage.diagnosis.learning import POOLED_STRENGTH, factors
 from triage.diagnosis.priors import EVEN_SHARE, Weight, evened, outside_share, prior_of
 from triage.errors import EntryError
@@ -103,3 +103,34 @@ def test_a_profile_starts_from_the_pooled_factor() -> None:
     pooled = factors([{A: 0.5}] * 8, [A] * 8)
     both = factors([{A: 0.5}] * 8, [A] * 8, [{A: 0.5}] * 2, [])
     assert 1 < both[A] < pooled[A]
+
+
+FUSE, SHORT, OTHER_SHORT, DRIFT = Fault("F", "open"), Fault("Q", "ce_short"), Fault("D", "short"), Fault("R", "high")
+
+
+def _stands(weights: dict[Fault, float], chains: dict[Fault, tuple[Collateral, ...]]) -> tuple[float, float]:
+    """Chance that an open fuse stands alone, and with a short, from the prior."""
+    prior = prior_of({f: Weight(w) for f, w in weights.items()}, chains, fuses=[FUSE], pair_share=0.0)
+    alone = sum(c for h, c in zip(prior.hypotheses, prior.chance, strict=True) if h.faults == (FUSE,))
+    other = sum(c for h, c in zip(prior.hypotheses, prior.chance, strict=True) if FUSE in h.faults and len(h.faults) > 1)
+    return float(alone), float(other)
+
+
+def test_an_open_fuse_of_a_board_that_is_not_solved_stands_alone_as_seldom_as_in_repair_records() -> None:
+    """8 of 34 failed fuses of which it is told: Open Repair Data (Open Repair Alliance, data to July 2025)."""
+    alone, other = _stands({FUSE: 1.0, SHORT: 20.0, OTHER_SHORT: 10.0, DRIFT: 5.0}, {})
+    assert alone / (alone + other) == pytest.approx(8 / 34, rel=1e-6)
+
+
+def test_what_is_computed_to_blow_the_fuse_counts_as_computed() -> None:
+    """With the computed shorts already beyond the records, the rest gets the small chance of a computation that is wrong."""
+    weights = evened({FUSE: 1.0, SHORT: 50.0, OTHER_SHORT: 50.0})
+    chains = {SHORT: (Collateral((FUSE,), 0.85),)}
+    found = {w.hypothesis: w.weight for w in shorts_behind(weights, chains, [FUSE])}
+    assert found == pytest.approx({Hypothesis((OTHER_SHORT, FUSE)): NOT_COMPUTED * weights[OTHER_SHORT]})
+
+
+def test_only_shorts_blow_a_fuse() -> None:
+    weights = evened({FUSE: 1.0, DRIFT: 50.0, SHORT: 5.0})
+    assert {f for w in shorts_behind(weights, {}, [FUSE]) for f in w.hypothesis.root} == {FUSE, SHORT}
+    assert shorts_behind(evened({FUSE: 1.0, DRIFT: 1.0}), {}, [FUSE]) == ()

@@ -433,3 +433,16 @@ def test_the_repair_is_weighed_against_a_new_adapter_and_a_veto_bars_it(bench: B
 def test_hostile_words_are_shown_as_text(bench: Bench) -> None:
     view = bench.note("\x1b[2J\u202eevil {0.__class__}")
     assert view.entries[-1].text == "note: <U+001B>[2J<U+202E>evil {0.__class__}"
+
+
+def test_a_reading_with_one_leg_lifted_is_named_by_the_pins_of_its_part(bench: Bench) -> None:
+    through_cautions(bench)
+    view = bench.read("ohms", "rf1.A", "RF1.b", "cold", "10.2")
+    assert "RF1.a to RF1.b" in view.entries[-1].text
+    for plus, minus, condition in (("RF1.a", "bulk", "cold"), ("RF1.a", "R1.b", "cold")):
+        with pytest.raises(EntryError, match="both pins of one lifted part"):
+            bench.read("ohms", plus, minus, condition, "10")
+    with pytest.raises(EntryError, match="both pins of one lifted part"):
+        bench.read("volts_dc", "RF1.a", "RF1.b", "full", "10")
+    with pytest.raises(EntryError, match=r"REF\.PIN"):
+        bench.read("ohms", "RF1.z", "RF1.b", "cold", "10")

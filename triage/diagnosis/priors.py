@@ -7,7 +7,7 @@ good within a factor of a few only; a fifth of the belief is therefore spread ev
 contaminated prior; Berger, Berliner, Annals of Statistics 14 (1986) 461-486).
 """
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
@@ -16,7 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from triage.board.fault import Fault, Hypothesis
-from triage.diagnosis.hypotheses import NO_PART_FAULT, CollateralMap, Weighted, pairs, single_faults
+from triage.diagnosis.hypotheses import NO_PART_FAULT, CollateralMap, pairs, shorts_behind, single_faults
 from triage.diagnosis.settings import HERE, load_table, number
 from triage.errors import EntryError
 
@@ -91,6 +91,7 @@ def prior_of(
     outside: float | None = None,
     pair_share: float = PAIR_SHARE,
     pair_floor: float = PAIR_FLOOR,
+    fuses: Iterable[Fault] = (),
 ) -> Prior:
     """All hypotheses of a board with their chances.
 
@@ -101,6 +102,7 @@ def prior_of(
     factors: fault -> factor from the bench's closed jobs (``learning.factors``); missing ones count as 1.
     outside: chance that no part of the board is at fault; by default the share of public repair records.
     pair_share, pair_floor: see ``hypotheses.pairs``; ``pair_share`` 0 lists no pairs.
+    fuses: faults that are a fuse of any kind standing open, which is seldom a root; see ``hypotheses.shorts_behind``.
     """
     factors = factors or {}
     raised = {fault: weight.value * factors.get(fault, 1.0) for fault, weight in weights.items()}
@@ -108,12 +110,14 @@ def prior_of(
     singles = single_faults(even, collateral)
     doubles = pairs(even, collateral, pair_share, pair_floor)
     out = outside_share() if outside is None else outside
-    found = [Weighted(NO_PART_FAULT, 0.0), *singles, *doubles]
-    inside = np.array([w.weight for w in found])
+    merged = {NO_PART_FAULT: 0.0}
+    for one in (*singles, *doubles, *shorts_behind(even, collateral, fuses)):
+        merged[one.hypothesis] = merged.get(one.hypothesis, 0.0) + one.weight
+    inside = np.array(list(merged.values()))
     inside = inside / inside.sum() * (1 - out)
     inside[0] = out
     why = {fault: _text(weight, factors.get(fault, 1.0), even[fault]) for fault, weight in weights.items()}
-    return Prior(tuple(w.hypothesis for w in found), inside, why)
+    return Prior(tuple(merged), inside, why)
 
 
 def _text(weight: Weight, factor: float, share: float) -> str:
