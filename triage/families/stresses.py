@@ -155,7 +155,7 @@ def inrush_i2t(board: Board) -> dict[str, float]:
     net = circuit(board, mains=board.mains.high, load=NO_LOAD)
     rows = {port.ref: index for index, port in enumerate(net.ports) if port.suffix == ""}
     compiled = compile_netlist(net)
-    stretch = run_stretch(compiled, initial_state(compiled), 0.0, INRUSH_TIME)
+    stretch = run_stretch(compiled, initial_state(compiled), 0.0, INRUSH_TIME, skip=0.0)
     span = INRUSH_TIME
     first = stretch.statistics
     return {ref: float(first[rows[ref], I_RMS]) ** 2 * span for ref in fuses}
