@@ -1,6 +1,7 @@
 """The demand of a position: figures by hand, the dead part's mistake, and what stays open where too little is known."""
 
 import math
+from dataclasses import replace
 
 import pytest
 
@@ -189,3 +190,51 @@ def test_a_type_of_another_kind_is_not_taken_for_the_dead_part() -> None:
     """1N60 on a diode is the germanium diode, not the MOSFET of the catalog."""
     asked = demand(board(part("D9", "diode", "small-signal diode", "1N60")), "D9", stress("D9", reverse_voltage=10.0), CATALOG)
     assert asked.original is None
+
+
+def test_a_place_without_a_rule_takes_the_very_same_type_only() -> None:
+    """A part that no table knows: nothing is computed, nothing is offered."""
+    asked = demand(board(part("SG1", "spark_gap", "spark gap", "SG-75")), "SG1", (), CATALOG)
+    assert asked.requirements == () and asked.classes == () and asked.original_type == "SG-75"
+    assert "fit the very same type" in asked.note and candidates(CATALOG, asked) == ()
+
+
+def test_an_estimated_value_is_to_be_read_before_ordering() -> None:
+    """A designer's estimate says what to look for, not what to order."""
+    dead = replace(part("C1", "electrolytic", "bulk capacitor", capacitance=4.7e-6), origin="estimated")
+    assert "only estimated" in demand(board(dead), "C1", (), CATALOG).note
+    assert "only estimated" not in demand(board(replace(dead, origin="marking")), "C1", (), CATALOG).note
+
+
+def test_the_gain_of_a_switch_comes_from_its_value_or_from_the_band_of_its_type() -> None:
+    """A base drive is made for the gain: 30 % either way of a known one, the band of the sheet where only the type is."""
+    known = _need(demand(board(part("Q1", "bipolar_transistor", "main switch", gain=20.0)), "Q1", (), CATALOG), "hfe_min")
+    assert (known.minimum, known.maximum, known.rule) == (pytest.approx(14.0), pytest.approx(26.0), "gain near")
+    typed = _need(demand(board(part("Q1", "bipolar_transistor", "main switch", "MJE13003")), "Q1", (), CATALOG), "hfe_min")
+    sheet = CATALOG.find("MJE13003")
+    assert sheet is not None
+    assert (typed.minimum, typed.maximum, typed.rule) == (sheet.numbers["hfe_min"], sheet.numbers["hfe_max"], "gain band")
+    nothing = demand(board(part("Q1", "bipolar_transistor", "main switch")), "Q1", (), CATALOG)
+    assert not any(need.key == "hfe_min" for need in nothing.requirements)
+
+
+def test_an_output_capacitor_is_asked_for_its_impedance_only_where_the_old_one_is_known() -> None:
+    """1.3 times the old series resistance at most; no figure out of nothing."""
+    dead = part("C5", "electrolytic", "output capacitor", "", SECOND, capacitance=470e-6, esr=0.1)
+    assert _need(demand(board(dead), "C5", (), CATALOG), "z_100kHz_20C_ohm").maximum == pytest.approx(0.13)
+    silent = part("C5", "electrolytic", "output capacitor", "", SECOND, capacitance=470e-6)
+    assert not any(need.key == "z_100kHz_20C_ohm" for need in demand(board(silent), "C5", (), CATALOG).requirements)
+
+
+def test_a_zener_current_that_is_known_is_taken_as_it_is() -> None:
+    """Five times 2 mA."""
+    dead = part("DZ1", "zener", "regulation zener", zener_voltage=6.2, rated_power=0.5)
+    asked = demand(board(dead), "DZ1", stress("DZ1", average_current=0.002, power=0.5), CATALOG)
+    assert _need(asked, "izt_A").maximum == pytest.approx(0.01)
+
+
+def test_a_surge_beyond_the_old_rating_is_no_designers_mistake() -> None:
+    """A melting integral is turned into a surge by a rule of thumb: too rough to blame anybody."""
+    dead = part("D1", "diode", "mains rectifier", "1N4007", rated_surge_current=5.0)
+    asked = demand(board(dead), "D1", stress("D1", i2t=50.0), CATALOG)
+    assert not any("surge" in text for text in asked.mistakes)
