@@ -80,6 +80,7 @@ def test_the_board_of_a_job_becomes_a_profile(cube, tmp_path):
     (["estimate", "linear_regulated", "--input", "mains", "--output", "5", "--current", "1"], "input line"),
     (["propose", "--seen", "smoke"], "one of controller"),
     (["set", "nothing.toml", "R1", "resistance", "1k"], "no such profile"),
+    (["turns", "nothing.toml", "T1", "primary"], "of the form name=value"),
 ])  # fmt: skip
 def test_what_cannot_be_done_is_said_in_one_line(words, says, capsys):
     assert cli.main(["profile", *words]) == 2
@@ -103,3 +104,30 @@ def test_a_template_with_a_fault_is_named(tmp_path, capsys):
 def test_roles_can_be_listed(capsys):
     assert cli.main(["profile", "roles"]) == 0
     assert "bulk capacitor" in capsys.readouterr().out
+
+
+def test_a_proposal_is_told_in_words_with_its_reasons(capsys):
+    assert cli.main(["profile", "propose", "--output", "5V", "--current", "0.6A", "--seen", "1 transistor"]) == 0
+    head, first, *_ = capsys.readouterr().out.splitlines()
+    assert head.split() == ["chance", "family", "what", "it", "is", "because"] and "%" in first and "ringing_choke" in first
+
+
+def test_estimates_and_roles_and_changes_answer_in_json(cube, tmp_path, capsys):
+    def answer(*words):
+        assert cli.main(["profile", *words, "--json"]) == 0
+        return json.loads(capsys.readouterr().out)
+
+    label = ["--input", "198-253 V~ 50 Hz", "--output", "5V", "--current", "0.6A"]
+    capsys.readouterr()
+    found = answer("estimate", "ringing_choke_zener", *label)
+    assert found["file"] is None and {"ref", "role", "key", "value", "spread", "reason"} <= set(found["estimates"][0])
+    assert {"role", "kind", "pins"} == set(answer("roles")[0])
+    assert "R1" in answer("set", cube, "R1", "resistance", "1M")["message"]
+    checks = answer("turns", cube, "T1", "primary=220", "secondary=19", "--core-area", "19")
+    assert checks and all(isinstance(one["fits"], bool) for one in checks)
+    assert load_profile(cube).part("T1").value["primary_turns"] == 220.0, "written though only asked in JSON"
+
+
+def test_a_core_area_beyond_all_cores_is_refused(cube, capsys):
+    assert cli.main(["profile", "turns", cube, "T1", "primary=220", "--core-area", "0.01"]) == 2
+    assert "1 to 10000 mm2" in capsys.readouterr().err

@@ -77,6 +77,23 @@ def test_faults_of_a_template_are_reported_together():
         assert word in str(caught.value)
 
 
+@pytest.mark.parametrize(("change", "said"), [
+    (lambda c: c["part"][0].update(value={"colour": 1.0}), "value colour"),
+    (lambda c: c["part"][0].update(role="a hand-made role", kind="resistor"), "resistance among them"),
+    (lambda c: c["part"][0].update(ratings={"speed": 1.0}), "ratings speed"),
+    (lambda c: c["part"][0].update(fault_modes=["bent"]), "fault_modes"),
+    (lambda c: c["part"].append(dict(c["part"][0])), "each ref once"),
+    (lambda c: c["sides"].update(primary="bulk"), "a list of nodes"),
+    (lambda c: c["look"].update(transistors={"two": 0.5}), "a table of shares by number"),
+])
+def test_each_fault_of_a_template_is_named(change, said):
+    content = tomllib.loads(template_files()[0].read_text(encoding="utf-8"))
+    change(content)
+    with pytest.raises(ProfileError) as caught:
+        template_from_dict(content, "mine.toml")
+    assert said in str(caught.value)
+
+
 @pytest.mark.parametrize("family", sorted(families()))
 @pytest.mark.parametrize(("line", "volts", "amperes"), [
     (SINGLE, 5.0, 0.5), (WIDE, 12.0, 1.5), ("120 V~ 60 Hz", 9.0, 0.3), (WIDE, 3.3, 0.2), (SINGLE, 24.0, 3.0),
