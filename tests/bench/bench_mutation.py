@@ -14,14 +14,23 @@ import random
 import resource
 import shutil
 import signal
-import subprocess
 import sys
 import tempfile
 import time
 from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
+from typing import NoReturn
 
+import hypothesis
+import numpy
+import pytest
+import scipy.integrate
+import scipy.optimize
+import scipy.stats
+
+LOADED = (hypothesis, numpy, pytest, scipy)
+"""Libraries of the tests, loaded once for all mutants."""
 ROOT = Path(__file__).resolve().parents[2]
 ROOMS = ("physics", "diagnosis")
 COMPILED = ("transient", "network_solver", "compiled_code", "netlist", "network.py")
@@ -128,26 +137,42 @@ def matching(mutant: Mutant, room: str, folder: Path) -> list[str]:
 def tried(mutant: Mutant, room: str, folder: Path) -> str:
     """``killed`` when a test fails in the copy, ``too long``, or ``SURVIVED``."""
     target = folder / mutant.path.relative_to(ROOT)
-    kept = target.read_text("utf-8")
+    kept, times = target.read_text("utf-8"), target.stat()
     write(mutant, target)
     try:
-        near = matching(mutant, room, folder)
-        code = (ended(near, folder) if near else 0) or ended(list(TESTS[room]), folder)
+        code = ended([*matching(mutant, room, folder), *TESTS[room]], folder)
         return "SURVIVED" if code == 0 else "too long" if code == TOO_LONG else "killed"
     finally:
         target.write_text(kept, "utf-8")
+        os.utime(target, ns=(times.st_atime_ns, times.st_mtime_ns))
 
 
-def ended(files: list[str], folder: Path) -> int:
-    """Exit code of the tests of these files: 0 when all pass. A run that a signal ended from outside says nothing: it is
-    repeated."""
-    ignored = [f"--ignore={one}" for one in LEAVE_OUT]
-    command = [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", *ignored, *files]
-    code, here = -1, {**os.environ, "PYTHONPATH": str(folder)}
+def ended(files: list[str], folder: Path, sound: bool = False) -> int:
+    """Exit code of the tests of these files, in this order: 0 when all pass. A run that a signal ended from outside says nothing:
+    it is repeated. Only the ``sound`` copy leaves compiled code behind."""
+    code = -1
     while code not in (TOO_LONG, *range(128)):
-        code = subprocess.run(command, cwd=folder, capture_output=True, check=False, env=here,
-                              preexec_fn=lambda: resource.setrlimit(resource.RLIMIT_CPU, (LONGEST, LONGEST + 10))).returncode
+        child = os.fork()
+        if not child:
+            run_tests(files, folder, sound)
+        code = os.waitstatus_to_exitcode(os.waitpid(child, 0)[1])
     return code
+
+
+def run_tests(files: list[str], folder: Path, sound: bool) -> NoReturn:
+    """In a process of its own, which has the libraries loaded already, and nothing of the program."""
+    resource.setrlimit(resource.RLIMIT_CPU, (LONGEST, LONGEST + 10))
+    os.chdir(folder)
+    os.environ["PYTHONPATH"] = str(folder)
+    sys.path.insert(0, str(folder))
+    sys.dont_write_bytecode = not sound
+    for name in [name for name in sys.modules if name.partition(".")[0] in ("tests", "triage")]:
+        del sys.modules[name]
+    quiet = os.open(os.devnull, os.O_WRONLY)
+    os.dup2(quiet, 1)
+    os.dup2(quiet, 2)
+    ignored = [f"--ignore={one}" for one in LEAVE_OUT]
+    os._exit(int(pytest.main(["-x", "-q", "-p", "no:cacheprovider", *ignored, *files])))
 
 
 def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:
@@ -162,7 +187,7 @@ def main(count: int, seed: int, rooms: tuple[str, ...]) -> None:
             copy = shutil.copytree if (ROOT / part).is_dir() else shutil.copy
             copy(ROOT / part, folder / part)
         for room in rooms:
-            if ended(list(TESTS[room]), folder):
+            if ended(list(TESTS[room]), folder, sound=True):
                 raise SystemExit(f"the tests of {room} fail without any change")
         for number, (room, one) in enumerate(sample, 1):
             fate = tried(one, room, folder)
