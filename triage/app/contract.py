@@ -103,6 +103,12 @@ class OpenJob(Protocol):
     def report(self, format: str) -> str:
         """The report as ``text`` or ``markdown``."""
 
+    def work_out(self, listener: Listener | None = None) -> bool:
+        """Solve what the powered board does under every fault; minutes, or at once when that was done before."""
+
+    def take_up(self) -> JobView:
+        """What there is to show, with all that was worked out."""
+
     def release(self) -> None:
         """Give the job free for other sessions."""
 

@@ -191,9 +191,9 @@ class Bench:
         """
         step = 0
         with heard_by(listener):
-            for done, number, wanted in self.workings.work_out(self.board, self._leading):
+            for _, number, wanted in self.workings.work_out(self.board, self._leading):
                 step += 1
-                report(f"the powered board: {done}", number, wanted)
+                report("the powered board", number, wanted)
                 if step & (step - 1) == 0:
                     # Each time twice as many as before: putting the answers together costs about as much as a step.
                     self._better = self._answers()

@@ -119,7 +119,8 @@ def suggestion_view(suggestion: Suggestion) -> SuggestionView:
 
 def bulk_suggestion(store: Store, minutes: float) -> SuggestionView:
     """The reading that opens the cold stage: what the bulk capacitor still holds."""
-    time = f"{store.board_time:.2g} s" if math.isfinite(store.board_time) else "never"
+    digits = 0 if store.board_time >= 10.0 else 1
+    time = f"{store.board_time:.{digits}f} s" if math.isfinite(store.board_time) else "never"
     reason = (
         f"Unplug; before you touch anything: {store.ref} may hold {store.voltage:.0f} V; a sound board bleeds it in "
         f"{time}, a faulty one may not."

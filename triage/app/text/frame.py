@@ -21,7 +21,7 @@ def status_lines(view: JobView, place: str, width: int, progress: str = "", look
     first = apart(line(Span(f" {place} ", "head"), " ", Span(view.title, "strong")), right, width)
     danger = view.safe_to_touch.startswith("NOT")
     touch = line(Span("! " if danger else "ok ", "bad" if danger else "good"), Span(view.safe_to_touch, "bad" if danger else ""))
-    told = looking or (view.computing and (progress or "computing..."))
+    told = looking or progress or (view.computing and "computing...")
     if not told:
         return first, apart(touch, line(Span(view.read_only, "bad")), width) if view.read_only else clip(touch, width)
     more = "; Esc stops" if looking else ""
