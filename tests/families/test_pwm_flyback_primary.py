@@ -3,6 +3,9 @@
 import pytest
 
 from tests.families.solving import settled, shown, state
+from triage.board.estimate.assemble import estimate
+from triage.board.estimate.template import template_of
+from triage.board.part import Label
 from triage.board.profile import load_profile
 from triage.physics.transient import I_MAX, V_MAX
 from triage.safety import cautions
@@ -39,6 +42,18 @@ def test_rectifiers_side_by_side_share_the_load_and_one_alone_carries_on():
 ])  # fmt: skip
 def test_state_under_faults(fault, expected):
     assert state(BOARD, "full", fault) in expected
+
+
+@pytest.mark.long
+@pytest.mark.parametrize(("line", "volts", "amperes"), [
+    ("100-240 V~ 50/60 Hz", 5.0, 1.0), ("220-240 V~ 50 Hz", 5.0, 0.6), ("100-240 V~ 50/60 Hz", 5.0, 2.0),
+    ("100-240 V~ 50/60 Hz", 12.0, 0.5),
+])  # fmt: skip
+def test_an_estimated_board_gives_what_its_label_says(line, volts, amperes):
+    """Whole turns and the current limit of the chip included; 8 % for cable, rectifier and the fall from no load to full load."""
+    board = estimate(template_of("pwm_flyback_primary"), Label(line, volts, amperes), name=f"label-{volts:g}-{amperes:g}")
+    assert shown(board)["out"] == pytest.approx(volts, rel=0.08)
+    assert shown(board, "noload")["out"] == pytest.approx(volts, rel=0.08)
 
 
 def test_the_missing_fuse_is_pointed_out():
