@@ -39,7 +39,8 @@ TESTS = {
                 "tests/reference/test_worked_protection.py", "tests/reference/test_worked_converter.py",
                 "tests/reference/test_handbook_life.py", "tests/reference/test_handbook_failure_rate.py",
                 "tests/reference/test_handbook_derating.py"),
-    "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py"),
+    "diagnosis": ("tests/diagnosis", "tests/reference/test_diagnosis_published.py", "tests/reference/test_libraries.py",
+                  "tests/reference/test_learning_from_jobs.py", "tests/reference/test_diagnosis_playing.py"),
 }
 LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py",
              "tests/physics/test_compiled.py")
