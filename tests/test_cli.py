@@ -15,6 +15,7 @@ from tests.job.stand_in import PROFILE, StandIn
 from triage import cli
 from triage.commands.adding import KINDS, parse_entry
 from triage.errors import EntryError
+from triage.job.views import ReadingExpected
 
 
 @pytest.fixture(autouse=True)
@@ -200,6 +201,50 @@ def test_what_is_asked_answers_in_json_as_well(job: str, run: Terminal) -> None:
     assert not run.json("candidates", job, "R1", "carbon film")[0]["accepted"]
     assert run.json("parts", "1N40")[0]["type"].startswith("1N40")
     assert isinstance(run.json("combine", job, "R1"), list)
+
+
+def test_a_profile_is_asked_without_a_job(stand_in: None, run: Terminal) -> None:
+    assert "358 V of 250 V rated" in run("stress", PROFILE)
+    assert run.json("stress", PROFILE)[0]["ref"] == "R1"
+
+
+def test_readings_to_expect_are_asked_with_faults_and_by_condition(
+    stand_in: None, run: Terminal, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """The rooms behind it are asked for exactly these faults; OL has no ends."""
+    asked: list[tuple[str, ...]] = []
+
+    def expected(self: StandIn, board: Any, faults: tuple[Any, ...]) -> tuple[ReadingExpected, ...]:
+        asked.append(tuple(map(str, faults)))
+        return (ReadingExpected("ohms", "mains_l", "rect", "cold", "ohm", float("inf"), float("inf"), float("inf"), "OL"),
+                ReadingExpected("volts_dc", "out", "sgnd", "noload", "V", 4.9, 5.2, 5.4, "5.2 V"))
+
+    monkeypatch.setattr(StandIn, "expected", expected, raising=False)
+    lines = run("expect", PROFILE, "--fault", "rf1.open", "--fault", "C5.open").splitlines()
+    assert asked == [("RF1.open", "C5.open")] and lines[0].endswith("90 % of boards")
+    assert "OL to OL" in lines[1] and "4.9 V to 5.4 V" in lines[2]
+    (only,) = run.json("expect", PROFILE, "--condition", "noload")
+    assert only["function"] == "volts_dc" and only["low"] == 4.9
+
+
+def test_solving_beforehand_tells_each_step_and_where_it_is_kept(
+    stand_in: None, run: Terminal, monkeypatch: pytest.MonkeyPatch, tmp_path: Path
+) -> None:
+    kept: list[object] = []
+    monkeypatch.setattr(StandIn, "__init__", lambda self, cache=None: kept.append(cache))
+    monkeypatch.setattr(StandIn, "solve", lambda self, board, told: told("cold readings"), raising=False)
+    assert run("solve", PROFILE, "--into", str(tmp_path)) == "solved: cold readings\n"
+    assert run("solve", PROFILE) == "solved: cold readings\n"
+    assert kept[0] is not None and kept[-1] is None
+
+
+def test_words_that_are_no_entry_are_refused_with_how_it_is_typed(job: str, run: Terminal) -> None:
+    assert "on or off" in run.refused("add", job, "power", "maybe")
+    assert "no value after --state" in run.refused("add", job, "complaint", "dead", "--state")
+
+
+def test_a_shop_without_a_list_is_told_where_to_write_one(run: Terminal, tmp_path: Path) -> None:
+    assert str(tmp_path / "data" / "triage") in run("drawers") and run.json("drawers") == []
 
 
 def test_a_report_goes_into_a_file(job: str, run: Terminal, tmp_path: Path) -> None:
