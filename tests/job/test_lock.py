@@ -10,6 +10,7 @@ from pathlib import Path
 
 import pytest
 
+from triage.job import lock as room
 from triage.job.lock import STALE_AFTER, Lock, read_holder
 
 HOLD = """
@@ -86,3 +87,34 @@ def test_a_folder_that_cannot_be_written_is_named_as_the_reason(tmp_path: Path) 
     lock = Lock(tmp_path / "gone" / "job.toml")
     assert not lock.take()
     assert lock.problem == "No such file or directory"
+
+
+def test_where_the_system_lists_no_processes_a_signal_asks_for_them(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A start time is not known there; a process that is gone still is."""
+
+    def unreadable(self: Path, *given: object, **more: object) -> str:
+        raise OSError
+
+    gone = subprocess.Popen([sys.executable, "-c", ""])
+    gone.wait()
+    monkeypatch.setattr(Path, "read_text", unreadable)
+    monkeypatch.setattr(Path, "exists", lambda self: False)
+    assert room._start_of(os.getpid()) == "running" and room._start_of(gone.pid) == "" and room._start_of(0) == ""
+
+    def forbidden(pid: int, number: int) -> None:
+        raise PermissionError
+
+    monkeypatch.setattr(os, "kill", forbidden)
+    assert room._start_of(1) == "running", "a process of somebody else is there"
+
+
+def test_a_user_without_a_name_is_told_by_number(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def nameless() -> str:
+        raise KeyError("no entry")
+
+    monkeypatch.setattr(room.getpass, "getuser", nameless)
+    lock = Lock(tmp_path / "job.toml")
+    assert lock.take()
+    holder = read_holder(lock.path)
+    lock.release()
+    assert holder is not None and holder.user == f"user {os.getuid()}"

@@ -142,3 +142,13 @@ def test_a_supplier_tells_the_price_and_nothing_else() -> None:
     assert {one.part.type for one in offered} == plain
     first = next(one for one in offered if one.part.type == "SB340")
     assert first.price == 0.15 and "0.15 in south.csv, order 17" in first.notes
+
+
+def test_a_place_without_a_rule_takes_only_its_own_type() -> None:
+    """Whatever the figures: another type is refused by name."""
+    asked = demand(board(part("U9", "pwm_controller", "current-mode PWM controller", "UC3842")), "U9", (), CATALOG)
+    judged = ask(CATALOG, asked, "1N4007")
+    assert not judged.accepted and [one.rule for one in judged.refusals] == ["class"]
+    assert "only UC3842 itself" in judged.refusals[0].text
+    unread = demand(board(part("U9", "pwm_controller", "current-mode PWM controller")), "U9", (), CATALOG)
+    assert "only the original type itself" in ask(CATALOG, unread, "1N4007").refusals[0].text
