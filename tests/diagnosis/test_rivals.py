@@ -103,3 +103,20 @@ def test_lifting_a_leg_costs_its_minutes_once() -> None:
 def test_a_lifted_reading_is_worded_by_its_part() -> None:
     step = board(0.3, 0.05, 0.05, 0.5, 0.1).suggest(LEAKS, any_reading)
     assert step is not None and "with one leg lifted" in step.reason and step.probe.lifted in step.reason
+
+
+def test_two_independent_faults_are_believed_only_after_the_reading_that_says_so_was_measured_again() -> None:
+    """One of two readings may be a slip of the probe."""
+    pair = Hypothesis((SHORT, LEAK))
+    noise = np.exp(0.03 * np.random.default_rng(3).normal(size=(1, len(PROBES), 40)))
+    means = np.vstack([MEANS, [0.1, 0.05, 2e3, 2e3, 1e6]])[[0, 3, 5]]
+    states = np.array([[[STATES.index(state)] for _ in range(3)] for state in ("normal", "output low", "output low")])
+    hypotheses = (Hypothesis(()), Hypothesis((LEAK,)), pair)
+    expected = Expectations(hypotheses, PROBES, means[:, :, None] * noise, states)
+    sure = Diagnosis(expected, Prior(hypotheses, np.array([0.3, 0.65, 0.05]), {}), KINDS, SIDES, pins=PINS)
+    seen = Job((Symptom("output low"), Sign("sound"), Reading(ACROSS, 2e3), Reading(LIFTED, 2e3), Reading(BULK, 0.05)))
+    assert sure.belief(seen)[2] > 0.95 and sure.verdict(seen).status == "open"
+    again = sure.suggest(seen, any_reading)
+    assert again is not None and again.again and again.probe == BULK
+    sound, shorted = (replace(seen, entries=(*seen.entries, Reading(BULK, value))) for value in (1e6, 0.05))
+    assert sure.verdict(sound).repair == ("D1",) and sure.verdict(shorted).repair == ("C1", "D1")

@@ -1,7 +1,7 @@
 """The repairs that the hypotheses ask for, and how the belief is spread over them."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,6 +17,7 @@ class Actions:
     """Refs to replace; the empty set is the repair outside the board."""
     of: NDArray[np.int64]
     """Repair of each hypothesis, shape (H,)."""
+    _cured: dict[int, NDArray[np.bool_]] = field(default_factory=dict, repr=False, compare=False)
 
     @classmethod
     def of_hypotheses(cls, hypotheses: Sequence[Hypothesis]) -> "Actions":
@@ -36,9 +37,11 @@ class Actions:
 
     def cures(self, action: int) -> NDArray[np.bool_]:
         """Hypotheses that a repair cures: those whose parts are all replaced by it. Shape (H,)."""
-        wanted = self.repairs[action]
-        good = np.array([repair <= wanted and bool(repair) == bool(wanted) for repair in self.repairs])
-        return good[self.of]
+        if action not in self._cured:
+            wanted = self.repairs[action]
+            good = np.array([repair <= wanted and bool(repair) == bool(wanted) for repair in self.repairs])
+            self._cured[action] = good[self.of]
+        return self._cured[action]
 
     def cure_chance(self, belief: NDArray[np.floating], action: int) -> float:
         """Chance that a repair cures [-]: also when it replaces more than is needed."""

@@ -14,7 +14,7 @@ from triage.diagnosis.axis import to_axis
 from triage.diagnosis.costs import Costs
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.repair_order import order
-from triage.diagnosis.verdict import suspects
+from triage.diagnosis.verdict import Roots
 from triage.diagnosis.words import suspect_name
 
 APART = 2.0
@@ -47,9 +47,11 @@ class RepairStep:
     minutes: float
 
 
-def expected_values(model: ReadingModel, column: int, belief: NDArray[np.float64], count: int) -> tuple[Expected, ...]:
+def expected_values(
+    model: ReadingModel, column: int, belief: NDArray[np.float64], roots: Roots, count: int
+) -> tuple[Expected, ...]:
     """Expected reading of one probe under the ``count`` leading suspects, the likeliest first."""
-    leading = [s for s in suspects(belief, model.expectations.hypotheses) if s.probability > 0][:count]
+    leading = [s for s in roots.suspects(belief) if s.probability > 0][:count]
     values = {}
     for place, suspect in enumerate(leading):
         draws = model.expectations.samples[suspect.index, column]

@@ -4,8 +4,9 @@ Evidence is taken in a fixed order of its own, so that a job gives the same beli
 order its entries were made. Readings of one probe are taken together (the part does not change between them).
 """
 
-from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from functools import partial
 
 import numpy as np
 from numpy.typing import NDArray
@@ -20,6 +21,8 @@ from triage.diagnosis.signs import complaint_likelihood, sign_likelihood, sign_t
 from triage.errors import EntryError
 
 _SMALLEST = 1e-300
+MOST_TERMS = 256
+"""Terms remembered for a board; the oldest go first."""
 WHOLE = Sign("sound")
 """The whole adapter was looked at, and nothing was found."""
 
@@ -35,6 +38,8 @@ class Likelihoods:
     settings: Settings
     prior: NDArray[np.float64] | None = None
     """Chances of the hypotheses before anything was seen, shape (H,) [-]; see ``complaint_likelihood``."""
+    _known: dict[object, NDArray[np.float64]] = field(default_factory=dict, repr=False, compare=False)
+    """Terms worked out before: a job asks for those of its earlier entries at every further one."""
 
     def log(self, evidence: Iterable[Evidence]) -> NDArray[np.float64]:
         """log p(evidence | hypothesis), shape (H,), independent of the order of the evidence.
@@ -63,18 +68,27 @@ class Likelihoods:
             seen -= {Sign(WHOLE.sign, place) for place in sign_table().at_place}
         found: dict[Symptom | Sign | Probe, NDArray[np.float64]] = {}
         for entry in sorted(seen, key=repr):
-            chance = (
-                complaint_likelihood(entry, self.expectations, self.settings, self.prior)
-                if isinstance(entry, Symptom)
-                else sign_likelihood(entry, self.expectations, self.kinds)
-            )
-            found[entry] = np.log(np.maximum(chance, _SMALLEST))
+            found[entry] = self._term(entry, partial(self._seen, entry))
         for probe in sorted(taken):
-            column = self.expectations.column(probe)
+            column, values = self.expectations.column(probe), tuple(sorted(taken[probe]))
             if column is not None and self.readings.known(column):
-                chance = self.readings.likelihood(column, taken[probe])
-                found[probe] = np.log(np.maximum(chance, _SMALLEST))
+                found[probe] = self._term((probe, values), partial(self.readings.likelihood, column, values))
         return found
+
+    def _seen(self, entry: Symptom | Sign) -> NDArray[np.float64]:
+        if isinstance(entry, Symptom):
+            return complaint_likelihood(entry, self.expectations, self.settings, self.prior)
+        return sign_likelihood(entry, self.expectations, self.kinds)
+
+    def _term(self, key: object, chance: Callable[[], NDArray[np.float64]]) -> NDArray[np.float64]:
+        """Logarithm of a chance, worked out once."""
+        if key not in self._known:
+            while len(self._known) >= MOST_TERMS:
+                self._known.pop(next(iter(self._known)))
+            term = np.log(np.maximum(chance(), _SMALLEST))
+            term.flags.writeable = False
+            self._known[key] = term
+        return self._known[key]
 
 
 def posterior(prior: NDArray[np.float64], log_likelihood: NDArray[np.float64]) -> NDArray[np.float64]:

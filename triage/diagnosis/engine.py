@@ -25,11 +25,11 @@ from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.explain import Suggestion
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
-from triage.diagnosis.next_reading import Candidate, Scorer, candidates, cold_first
+from triage.diagnosis.next_reading import Candidate, Offers, Ranking, Scorer
 from triage.diagnosis.priors import Prior
-from triage.diagnosis.second_look import nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
+from triage.diagnosis.second_look import hinges, nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
 from triage.diagnosis.settings import Instrument, Settings
-from triage.diagnosis.verdict import Suspect, Verdict, best_repair, conclude, settled, suspects
+from triage.diagnosis.verdict import Roots, Suspect, Verdict, best_repair, conclude, settled
 from triage.diagnosis.weigh import Weighed, evidence_ratios
 from triage.diagnosis.words import suspect_name
 
@@ -86,6 +86,8 @@ class Diagnosis:
         self.model = ReadingModel(expectations, self.settings, meters)
         self._likelihoods = Likelihoods(expectations, self.model, kinds, self.settings, self.prior)
         self._scorer = Scorer.of_model(self.model, self.actions)
+        self._offers = Offers.of_model(self.model, self.costs, sides)
+        self._roots = Roots.of_hypotheses(expectations.hypotheses)
         self._last: tuple[Job, Standing] | None = None
 
     @classmethod
@@ -110,7 +112,7 @@ class Diagnosis:
 
     def suspects(self, job: Job) -> tuple[Suspect, ...]:
         """What may be wrong, by root fault, the likeliest first; the probabilities add up to 1."""
-        return suspects(self.belief(job), self.expectations.hypotheses)
+        return self._roots.suspects(self.belief(job))
 
     def suggest(self, job: Job, gate: Callable[[Probe], bool], careful: bool = False) -> Suggestion | None:
         """The next reading to take, or None when the verdict stands or nothing is left that is worth reading.
@@ -149,7 +151,7 @@ class Diagnosis:
         odd = nothing_fits(self.model, standing.readings, standing.belief, self.settings.misfit_tail)
         verdict = conclude(
             standing.belief,
-            self.expectations.hypotheses,
+            self._roots,
             self.actions,
             self.settings,
             careful,
@@ -167,15 +169,15 @@ class Diagnosis:
         """
         standing = self._standing(job)
         belief, start, since = standing.belief, standing.start, standing.since
-        lead = suspects(belief, self.expectations.hypotheses)[0]
-        members = np.array([sorted(h.root) == sorted(lead.root) for h in self.expectations.hypotheses])
+        lead = self._roots.suspects(belief)[0]
+        members = self._roots.of == self._roots.of[lead.index]
         name = suspect_name(self.expectations.hypotheses[lead.index])
         return evidence_ratios(since, self._likelihoods.log, start, members, name)
 
     def expected(self, job: Job, probe: Probe, count: int = 5) -> tuple[Expected, ...]:
         """What the meter should show under the leading suspects; empty for a probe nothing is known of."""
         column = self.expectations.column(probe)
-        return () if column is None else expected_values(self.model, column, self.belief(job), count)
+        return () if column is None else expected_values(self.model, column, self.belief(job), self._roots, count)
 
     def repair_plan(self, job: Job) -> tuple[RepairStep, ...]:
         """The repairs to try, in the order that costs least on average."""
@@ -211,6 +213,11 @@ class Diagnosis:
             return explain.measure_again(self.model, belief, self.actions, self._candidate(again, taken))
         action, _ = best_repair(belief, self.actions)
         lead = int(np.argmax(np.where(self.actions.of == action, belief, -1.0)))
+        terms = self._likelihoods.terms(standing.since)
+        alone = hinges(lead, self.expectations.hypotheses, standing.start, terms, self.actions, taken)
+        again = next((probe for probe in alone if allowed(probe)), None)
+        if again is not None:
+            return explain.measure_again(self.model, belief, self.actions, self._candidate(again, taken), alone=True)
         at_part = reading_at_part(self.model, lead, self.pins, taken, allowed)
         if at_part is not None:
             return explain.confirmation(self.model, belief, self.actions, self._candidate(at_part, taken), lead)
@@ -240,7 +247,7 @@ class Diagnosis:
         return open_rivals(lead, standing.belief, before, ratios, self.actions, self.kinds)
 
     def _candidate(self, probe: Probe, taken: Sequence[Probe]) -> Candidate:
-        column = self.expectations.probes.index(probe)
+        column = self.expectations.column(probe) or 0
         return Candidate(column, probe, self.costs.minutes(probe, taken), self.costs.danger(probe, self.sides), 0.0)
 
     def _fit(self, standing: "Standing") -> Fit | None:
@@ -270,17 +277,13 @@ class Diagnosis:
             start, since = carry_over(belief, self.expectations.hypotheses, entry.refs, self.settings), []
         belief = posterior(start, self._likelihoods.log(since))
         taken = [entry.probe for entry in since if isinstance(entry, Reading)]
-        ranked = candidates(self._scorer, belief, self.costs, self.sides, taken)
-        return Standing(belief, start, tuple(since), ranked)
+        return Standing(belief, start, tuple(since), Ranking.of_belief(self._scorer, self._offers, belief, taken))
 
     def _ranked(self, job: Job, standing: "Standing", gate: Callable[[Probe], bool]) -> tuple[Candidate, ...]:
-        """The readings that may be suggested now, best first; live ones only when no cold one is worth
-        taking.
-        """
-        ranked = tuple(c for c in standing.candidates if c.probe not in job.skipped and gate(c.probe))
+        """The best readings that may be suggested now; live ones only when no cold one is worth taking."""
         sound = not self.actions.repairs[best_repair(standing.belief, self.actions)[0]]
         least = self.settings.least_worth_when_sound_per_minute if sound else self.settings.least_worth_per_minute
-        return cold_first(ranked, least)
+        return standing.ranking.best(lambda probe: probe not in job.skipped and gate(probe), least)
 
 
 @dataclass(frozen=True, slots=True)
@@ -293,7 +296,7 @@ class Standing:
     """The same at the last repair, or before anything was seen."""
     since: tuple[Evidence, ...]
     """Evidence since then, in the order of entry."""
-    candidates: tuple[Candidate, ...]
+    ranking: Ranking
     """Readings not taken yet that the shop can take, most gain per minute first."""
 
     @property

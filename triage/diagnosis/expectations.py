@@ -6,6 +6,7 @@ compares it with what was read. Nothing here knows what a resistor is.
 """
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,7 +22,7 @@ UNKNOWN_STATE = -1
 """State code of a draw whose operating point was not computed."""
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Expectations:
     """Readings and states to expect, as arrays over hypotheses and tolerance draws."""
 
@@ -57,7 +58,11 @@ class Expectations:
 
     def column(self, probe: Probe) -> int | None:
         """Place of a probe on the second axis of ``samples``, or None when nothing is known of it."""
-        return self.probes.index(probe) if probe in self.probes else None
+        return self._columns.get(probe)
+
+    @cached_property
+    def _columns(self) -> dict[Probe, int]:
+        return {probe: column for column, probe in enumerate(self.probes)}
 
     def joined(self, more: "Expectations") -> "Expectations":
         """These hypotheses and, behind them, those of ``more`` that are not among them (pairs solved later).

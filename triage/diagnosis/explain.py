@@ -79,12 +79,16 @@ def suggestion(model: ReadingModel, belief: NDArray[np.float64], actions: Action
     )
 
 
-def measure_again(model: ReadingModel, belief: NDArray[np.float64], actions: Actions, choice: Candidate) -> Suggestion:
-    """A reading to be taken a second time, because the best repair explains it only by a slip."""
+def measure_again(
+    model: ReadingModel, belief: NDArray[np.float64], actions: Actions, choice: Candidate, alone: bool = False
+) -> Suggestion:
+    """A reading to be taken a second time, because the best repair explains it only by a slip, or (``alone``) rests on it."""
     action, _ = best_repair(belief, actions)
     lead = "+".join(sorted(actions.repairs[action])) or NO_PART_FAULT
     probe = choice.probe
-    reason = f"Measure the {probe_words(probe)} again: what was read does not fit {lead}, which all the rest points to."
+    odd = f"what was read does not fit {lead}, which all the rest points to"
+    why = f"it alone speaks for more than one fault ({lead})" if alone else odd
+    reason = f"Measure the {probe_words(probe)} again: {why}."
     bands = outcomes(model, belief, actions, choice.column)
     return Suggestion(probe, choice.minutes, reason, bands, hazard_words(probe), choice.gain, again=True)
 

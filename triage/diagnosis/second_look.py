@@ -11,7 +11,7 @@ from collections.abc import Callable, Mapping, Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from triage.board.evidence import Reading
+from triage.board.evidence import Reading, Sign, Symptom
 from triage.board.fault import Hypothesis
 from triage.board.probe import Probe
 from triage.diagnosis.actions import Actions
@@ -21,7 +21,7 @@ from triage.diagnosis.misfit import Fit, fit_of
 RULED_OUT = 10.0
 """A rival is ruled out by a single reading this many times likelier under the leading repair. Many readings that each say a
 little do not rule out: they share the spread of the same parts."""
-RIVAL = 0.002
+RIVAL = 0.01
 """Rivals with less than this share of the leading repair's belief are not looked for [-]."""
 PROTECTIVE = ("fuse", "fusible_resistor", "thermal_fuse")
 """Kinds that as a rule open because of something else: of 40 failed fuses in public repair records 8 were all that had to
@@ -37,6 +37,37 @@ SHOWS = 0.5
 def odd_readings(fit: Fit | None, taken: Sequence[Probe], limit: float) -> tuple[Probe, ...]:
     """Readings taken once that fit less than ``limit``: to be measured again, worst first."""
     return tuple(p for p in fit.doubtful(limit) if taken.count(p) == 1) if fit else ()
+
+
+def hinges(
+    lead: int,
+    hypotheses: Sequence[Hypothesis],
+    start: NDArray[np.float64],
+    terms: Mapping[Symptom | Sign | Probe, NDArray[np.float64]],
+    actions: Actions,
+    taken: Sequence[Probe],
+) -> tuple[Probe, ...]:
+    """Readings taken once without which a single fault would be believed instead of two independent ones, in their order.
+
+    A slip of the probe is commoner than a second fault: such a reading is measured again before both are believed.
+
+    Parameters
+    ----------
+    lead: index of the leading hypothesis.
+    start: chances before the evidence, shape (H,) [-].
+    terms: entry -> log-likelihoods, shape (H,).
+    """
+    if len(hypotheses[lead].root) < 2:
+        return ()
+    with np.errstate(divide="ignore"):
+        total = np.log(start) + sum(terms.values())
+    found = []
+    for probe in (one for one in terms if isinstance(one, Probe) and taken.count(one) == 1):
+        without = total - terms[probe]
+        weight = actions.chances(np.exp(without - without.max()))
+        if actions.repairs[int(np.argmax(weight))] < actions.repairs[actions.of[lead]]:
+            found.append(probe)
+    return tuple(found)
 
 
 def nothing_fits(

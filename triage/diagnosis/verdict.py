@@ -66,16 +66,46 @@ class Verdict:
     """Readings that do not fit this repair, as texts of their probes, worst first."""
 
 
-def suspects(belief: NDArray[np.float64], hypotheses: Sequence[Hypothesis]) -> tuple[Suspect, ...]:
-    """Suspects by root, the likeliest first; equal ones in the order of the list."""
-    groups: dict[tuple[Fault, ...], list[int]] = {}
-    for i, hypothesis in enumerate(hypotheses):
-        groups.setdefault(tuple(sorted(hypothesis.root)), []).append(i)
-    found = []
-    for members in groups.values():
-        lead = max(members, key=lambda i: (belief[i], -i))
-        found.append(Suspect(hypotheses[lead].root, float(belief[members].sum()), hypotheses[lead].collateral, lead))
-    return tuple(sorted(found, key=lambda s: (-s.probability, s.index)))
+@dataclass(frozen=True, slots=True)
+class Roots:
+    """The different root faults of a list of hypotheses."""
+
+    hypotheses: Sequence[Hypothesis]
+    of: NDArray[np.int64]
+    """Root of each hypothesis, shape (H,), in the order in which they first occur."""
+
+    @classmethod
+    def of_hypotheses(cls, hypotheses: Sequence[Hypothesis]) -> "Roots":
+        """Group the hypotheses."""
+        place: dict[tuple[Fault, ...], int] = {}
+        of = [place.setdefault(tuple(sorted(hypothesis.root)), len(place)) for hypothesis in hypotheses]
+        return cls(hypotheses, np.asarray(of, dtype=np.int64))
+
+    def suspects(self, belief: NDArray[np.float64], at_least: float = 0.0) -> tuple[Suspect, ...]:
+        """Suspects by root, the likeliest first; equal ones in the order of the list.
+
+        at_least: those below this probability are left out [-].
+        """
+        lead, chances = self._leads(belief)
+        return tuple(self._suspect(int(i), float(p)) for i, p in zip(lead, chances, strict=True) if p >= at_least)
+
+    def leading(self, belief: NDArray[np.float64], members: NDArray[np.bool_]) -> Suspect:
+        """The likeliest suspect of which the likeliest hypothesis is one of ``members``, shape (H,)."""
+        lead, chances = self._leads(belief)
+        place = int(np.argmax(members[lead]))
+        return self._suspect(int(lead[place]), float(chances[place]))
+
+    def _leads(self, belief: NDArray[np.float64]) -> tuple[NDArray[np.int64], NDArray[np.float64]]:
+        """Likeliest hypothesis and chance of each root, the likeliest root first."""
+        chances = np.bincount(self.of, weights=belief).astype(np.float64)
+        likeliest: NDArray[np.int64] = np.argsort(-belief, kind="stable").astype(np.int64)
+        lead = likeliest[np.unique(self.of[likeliest], return_index=True)[1]]
+        order = np.lexsort((lead, -chances))
+        return lead[order], chances[order]
+
+    def _suspect(self, index: int, chance: float) -> Suspect:
+        hypothesis = self.hypotheses[index]
+        return Suspect(hypothesis.root, chance, hypothesis.collateral, index)
 
 
 def best_repair(belief: NDArray[np.float64], actions: Actions) -> tuple[int, float]:
@@ -104,7 +134,7 @@ def settled(
 
 def conclude(
     belief: NDArray[np.float64],
-    hypotheses: Sequence[Hypothesis],
+    roots: Roots,
     actions: Actions,
     settings: Settings,
     careful: bool,
@@ -121,7 +151,7 @@ def conclude(
     Other parameters as in ``settled``.
     """
     action, cure = best_repair(belief, actions)
-    lead = next(s for s in suspects(belief, hypotheses) if actions.of[s.index] == action)
+    lead = roots.leading(belief, actions.of == action)
     enough, exhausted = settled(belief, actions, settings, careful, best_worth)
     odd = tuple(map(str, unexplained or (fit.doubtful(settings.misfit_tail) if fit else ())))
     if unexplained:
