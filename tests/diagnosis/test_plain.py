@@ -268,8 +268,8 @@ def test_rivals_stay_open_until_one_reading_rules_them_out() -> None:
     assert open_rivals(1, belief, belief, none, ACTIONS, sb.KINDS).tolist() == [3, 4]
     ruled = np.array([1.0, 1.0, 1.0, 10.0, 9.9, 1.0])
     assert open_rivals(1, belief, belief, ruled, ACTIONS, sb.KINDS).tolist() == [4]
-    small = np.array([0.0, 0.9, 0.0, 0.9 * 0.0019, 0.9 * 0.0021, 0.0])
-    assert open_rivals(1, small, small, none, ACTIONS, sb.KINDS).tolist() == [4], "a five-hundredth is not looked for"
+    small = np.array([0.0, 0.9, 0.0, 0.9 * 0.0099, 0.9 * 0.0101, 0.0])
+    assert open_rivals(1, small, small, none, ACTIONS, sb.KINDS).tolist() == [4], "less than a hundredth is not looked for"
     before = np.array([0.1, 0.3, 0.1, 0.2, 0.2, 0.1])
     fused = {**sb.KINDS, "R1": "fusible_resistor"}
     sure = np.eye(6)[1]

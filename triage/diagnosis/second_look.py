@@ -23,6 +23,8 @@ RULED_OUT = 10.0
 little do not rule out: they share the spread of the same parts."""
 RIVAL = 0.01
 """Rivals with less than this share of the leading repair's belief are not looked for [-]."""
+BEHIND = 0.001
+"""The same behind a fuse that stands open, as a share of what was believed before any reading [-]."""
 PROTECTIVE = ("fuse", "fusible_resistor", "thermal_fuse")
 """Kinds that as a rule open because of something else: of 40 failed fuses in public repair records 8 were all that had to
 be replaced, 26 stood beside another failed part or a short (Open Repair Data, Open Repair Alliance, CC BY-SA 4.0)."""
@@ -145,7 +147,7 @@ def open_rivals(
     sought = belief >= RIVAL * belief[actions.of == actions.of[lead]].sum()
     if repair and all(kinds.get(ref) in PROTECTIVE for ref in repair):
         behind = np.array([repair < one for one in actions.repairs])[actions.of]
-        sought |= behind & (before >= RIVAL * before[lead])
+        sought |= behind & (before >= BEHIND * before[lead])
     return np.flatnonzero(other & sought & (ratios < RULED_OUT))
 
 
