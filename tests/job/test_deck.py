@@ -6,9 +6,12 @@ import subprocess
 from dataclasses import replace
 from pathlib import Path
 
+import pytest
+
 from triage.board.circuit import circuit
 from triage.board.fault import Fault
 from triage.board.profile import load_profile
+from triage.data import data_folder
 from triage.job.deck import deck
 
 BOARD = load_profile("harbour-handset-charger")
@@ -42,6 +45,18 @@ def test_no_node_hangs_on_a_single_element() -> None:
             ends[node] = ends.get(node, 0) + 1
     assert "0" in ends
     assert [node for node, count in ends.items() if count < 2] == []
+
+
+@pytest.mark.parametrize("name", sorted(path.stem for path in data_folder("profiles").glob("*.toml")))
+def test_every_part_of_every_shipped_board_is_in_its_deck(name: str) -> None:
+    """Controllers, references and regulators as behaviours of their pins; parameters are numbers."""
+    board = load_profile(name)
+    text = deck(board)
+    for part in board.parts:
+        assert re.search(rf"(?m)^[A-Z]{{1,2}}{part.ref}(?=[_\s])", text), part.ref
+    assert not re.search(r"(?i)\bnan\b|\binf\b", text)
+    count = len(circuit(board).behaviours)
+    assert sum(line[:1] in "BX" for line in text.splitlines() if line) >= count
 
 
 def test_the_deck_reads_a_plateau_as_the_solver_does() -> None:

@@ -45,7 +45,8 @@ def powered(name: str, span: float, supply: float, fault: str) -> list[float]:
     family = family_of(board.family)
     compiled = compile_netlist(circuit(board, (Fault.parse(fault),) if fault else (), load=board.full_load))
     start = rated_start(board, family)
-    for role, share, volts in ((family.bulk_role, 0.985, 2.0**0.5 * board.mains.nominal), (family.supply_role, supply, 0.0)):
+    for role, share, volts in ((family.bulk_role, 0.985, 2.0**0.5 * board.mains.nominal), (family.supply_role, supply, 0.0),
+                               ("feedback filter", 1.0, 2.5)):
         part = board.by_role(role)
         if part is not None:
             start[part.ref] = share * (volts or start.get(part.ref, 0.0))
