@@ -154,3 +154,19 @@ def test_unlike_circuits_in_one_array_are_solved_as_well_as_alone() -> None:
         alone = rectifier.with_source_resistance(325.0, 50.0, farads[k], 10.0, lambda v, k=k: v / ohms[k], 1, 500)
         assert float(both.average[k]) == pytest.approx(float(alone.average), rel=1e-6)
         assert float(both.valley[k]) == pytest.approx(float(alone.valley), rel=1e-6)
+
+
+def test_edges_of_the_handbook_factors() -> None:
+    """MIL-HDBK-217F Notice 2: pi_R of a transistor (6.3), pi_S of a thyristor (6.10), pi_L of a chip (5.10)."""
+    powers = failure_factors.bipolar_power_factor(np.array([0.05, 0.1, 0.11, 1.0, 10.0]))
+    assert powers == pytest.approx([0.43, 0.43, 0.11**0.37, 1.0, 10.0**0.37])
+    stresses = failure_factors.thyristor_stress_factor(np.array([0.1, 0.3, 0.31, 1.0]))
+    assert stresses == pytest.approx([0.1, 0.1, 0.31**1.9, 1.0])
+    years = failure_factors.learning_factor(np.array([0.05, 0.1, 0.5, 1.0, 1.5, 2.0, 9.0]))
+    assert years == pytest.approx([2.0, 2.0, 1.768, 1.484, 1.246, 1.0, 1.0], abs=0.001)
+
+
+def test_the_core_heats_by_the_square_of_ripple_over_rated_ripple() -> None:
+    """Rubycon, lifetime calculation formula: half the ripple, a quarter of the rise."""
+    assert float(electrolytic_life.core_rise_by_rating(0.4, 0.8, 6.0)) == pytest.approx(1.5)
+    assert float(electrolytic_life.core_rise_by_rating(1.6, 0.8, 5.0)) == pytest.approx(20.0)
