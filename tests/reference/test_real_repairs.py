@@ -92,7 +92,7 @@ def diagnosis_of(kept: Kept) -> Callable[[str], Diagnosis]:
     @cache
     def found(name: str) -> Diagnosis:
         board = load_profile(name)
-        ships = kept.has(f"cold-{expecting._key(board, cold_probes(board))}")
+        ships = kept.has(expecting.kept_key(board))
         return _Quick(kept).diagnosis(board, NONE) if ships else narrowed(name, kept)
 
     return found

@@ -132,15 +132,19 @@ def lifted_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Seque
 
 def cold_samples(board: Board, hypotheses: Sequence[Hypothesis], probes: Sequence[Probe], draws: Sequence[Draw],
                  progress: Callable[[int, int], None] | None = None, meter: Meter = HAND_METER) -> NDArray[np.float32]:
-    """Readings over hypotheses, probes and specimens; shape (H, P, D). ``progress`` hears (done, wanted) and may raise to
-    end it."""
+    """Readings over hypotheses, probes (lifted ones too) and specimens; shape (H, P, D). ``progress`` hears (done, wanted) and
+    may raise to end it."""
     out = np.empty((len(hypotheses), len(probes), len(draws)), dtype=np.float32)
+    alone = [k for k, probe in enumerate(probes) if probe.lifted]
+    out[:, alone] = lifted_samples(board, hypotheses, [probes[k] for k in alone], draws, meter)
+    board_as_it_is = [k for k, probe in enumerate(probes) if not probe.lifted]
+    probes = [probes[k] for k in board_as_it_is]
     with ThreadPoolExecutor(max_workers=os.cpu_count() or 1) as pool:
         jobs = {pool.submit(read_cold, board, hypothesis.faults, probes, draws, meter): h
                 for h, hypothesis in enumerate(hypotheses)}
         try:
             for done, job in enumerate(as_completed(jobs), 1):
-                out[jobs[job]] = job.result()
+                out[jobs[job], board_as_it_is] = job.result()
                 if progress:
                     progress(done, len(hypotheses))
         except BaseException:

@@ -27,7 +27,7 @@ from triage.diagnosis.expectations import LOADS, UNKNOWN_STATE, Expectations
 from triage.diagnosis.hypotheses import Collateral, CollateralMap
 from triage.diagnosis.settings import Instrument
 from triage.families import family_of
-from triage.families.cold import cold_probes, cold_samples, lifted_probes, lifted_samples, specimens
+from triage.families.cold import cold_probes, cold_samples, lifted_probes, specimens
 from triage.families.live import live_probes, state_class, summary
 from triage.families.points import SOLUTION, OperatingPoints, Point, point_key
 from triage.job.cache import Kept
@@ -71,20 +71,23 @@ def expectations(
     meter: what the cold readings are taken with.
     """
     family = family_of(board.family)
-    cold, lifted = cold_probes(board), lifted_probes(board)
+    cold = unpowered_probes(board)
     live = tuple(probe for load in LOADS for probe in live_probes(board, family, load))
-    unpowered = len(cold) + len(lifted)
-    samples = np.full((len(hypotheses), unpowered + len(live), DRAWS), np.nan, dtype=np.float32)
+    samples = np.full((len(hypotheses), len(cold) + len(live), DRAWS), np.nan, dtype=np.float32)
     samples[:, : len(cold)] = _cold(board, hypotheses, cold, kept, meter)
-    samples[:, len(cold) : unpowered] = lifted_samples(board, hypotheses, lifted, specimens(board, DRAWS, SEED), meter)
     states = np.full((len(hypotheses), len(LOADS), 1), UNKNOWN_STATE, dtype=np.int64)
     healthy = _known(points, HEALTHY)
     for row, hypothesis in enumerate(hypotheses):
         found = _known(points, hypothesis.faults)
         values = {probe: value for point in found.values() for probe, value in point.readings.items()}
-        samples[row, unpowered:] = np.array([values.get(probe, math.nan) for probe in live])[:, None]
+        samples[row, len(cold) :] = np.array([values.get(probe, math.nan) for probe in live])[:, None]
         states[row, :, 0] = _states(board, found, healthy)
-    return Expectations(tuple(hypotheses), (*cold, *lifted, *live), samples, states)
+    return Expectations(tuple(hypotheses), (*cold, *live), samples, states)
+
+
+def unpowered_probes(board: Board) -> tuple[Probe, ...]:
+    """Every reading of the unpowered board: as it is, and with a leg lifted."""
+    return (*cold_probes(board), *lifted_probes(board))
 
 
 def expected_readings(
@@ -197,4 +200,4 @@ def _key(board: Board, probes: tuple[Probe, ...], meter: Meter = HAND_METER) -> 
 
 def kept_key(board: Board) -> str:
     """Key under which the cold readings of a board are kept."""
-    return f"cold-{_key(board, cold_probes(board))}"
+    return f"cold-{_key(board, unpowered_probes(board))}"
