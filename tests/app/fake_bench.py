@@ -18,6 +18,7 @@ from triage.errors import EntryError, JobError, QuantityError
 from triage.job import views as v
 from triage.job.draft import Draft
 from triage.job.progress import Listener, report
+from triage.job.summary import Summary
 
 DRAWING = """\
  mains_l          rect         bulk                        |  sec          out
@@ -264,6 +265,8 @@ class FakeBench:
     path: Path
     prepare_seconds: float = 0.0
     chart_seconds: float = 0.0
+    unsolved: int = 0
+    """Steps of the powered board still to be solved."""
     board: Board = BOARD
     ready: bool = False
     track: list[v.MoveView] = field(default_factory=list)
@@ -386,6 +389,17 @@ class FakeBench:
 
     def moves(self) -> tuple[v.MoveView, ...]:
         return tuple(self.track)
+
+    def work_out(self, listener: Listener | None = None) -> bool:
+        for done in range(self.unsolved):
+            time.sleep(0.05)
+            if listener is not None:
+                listener("the powered board", done, self.unsolved)
+        found, self.unsolved = bool(self.unsolved), 0
+        return found
+
+    def take_up(self) -> v.JobView:
+        return self.view()
 
     def prepare(self, listener: Listener | None = None) -> None:
         for done in range(20):
@@ -574,6 +588,7 @@ class FakeShelf:
         self.folder = folder
         self.at_bench = at_bench
         self.prepare_seconds = prepare_seconds
+        self.find_seconds = 0.0
         self.bench: FakeBench | None = None
 
     def items(self) -> tuple[Item, ...]:
@@ -582,6 +597,19 @@ class FakeShelf:
             *(one for one in items(self.folder) if one.kind == "own" and self.folder in one.path.parents),
             Item(Path("radio-desk-cube.toml"), BOARD.title, "profile"),
         )
+
+    def find(self, words: str) -> tuple[Summary, ...]:
+        for step in range(4):
+            report("the index of jobs", step, 4)
+            time.sleep(self.find_seconds / 4)
+        known = (
+            Summary("tide-gauge", "Tide gauge supply", changed="2026-02-03T02:00:00Z", complaint="hums"),
+            Summary("fog-horn", "Fog horn adapter", changed="2026-01-05", stage="closed", complaint="dead", verdict="worn"),
+        )
+        return tuple(one for one in known if words.lower() in f"{one.adapter} {one.complaint} {one.verdict}".lower())
+
+    def path_of(self, job: Summary) -> Path:
+        return self.folder / f"{job.id}.toml"
 
     def draft(self, path: Path | None = None) -> Draft:
         return Draft() if path is None else Draft.open(path)

@@ -113,5 +113,5 @@ def play(
             await story(pilot)
 
     asyncio.run(run())
-    assert app.faults == []
+    assert app.faults == [], app.faults
     return app

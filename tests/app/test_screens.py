@@ -334,6 +334,35 @@ def test_the_calculation_can_be_stopped_and_gone_on_with(tmp_path):
     play(tmp_path, story, prepare_seconds=2.0)
 
 
+def test_the_powered_board_is_solved_beside_the_work_and_can_be_stopped(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        desk = pilot.app.desk  # type: ignore[attr-defined]
+        desk.bench.unsolved = 200
+        desk.compute()
+        for _ in range(500):
+            await asyncio.sleep(0.01)
+            if "computing, " in text_of(pilot.app):
+                break
+        assert "computing, " in text_of(pilot.app) and "powered board" in desk.progress
+        assert "computing what each fault" not in text_of(pilot.app), "the suggestion stays"
+        before = len(desk.view.entries)
+        await pilot.press(*"10", "enter")
+        for _ in range(300):
+            await asyncio.sleep(0.01)
+            if len(desk.view.entries) > before:
+                break
+        assert len(desk.view.entries) > before and desk.busy, "the entry did not wait for it"
+        await pilot.press(*"stop", "enter")
+        await settle(pilot)
+        assert desk.bench.unsolved and "type go to go on" in text_of(pilot.app) and not desk.progress
+        desk.bench.unsolved = 2
+        await type_in(pilot, "go")
+        await settle(pilot)
+        assert desk.bench.unsolved == 0 and not desk.progress
+
+    play(tmp_path, story, at_bench=True)
+
+
 def test_going_back_to_the_start_page_puts_the_job_away(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await pilot.app.run_action("start")

@@ -33,6 +33,11 @@ async def start(pilot: Pilot[int]) -> None:
     """The start page."""
 
 
+async def jobs(pilot: Pilot[int]) -> None:
+    """All jobs."""
+    await pilot.app.run_action("form('jobs')")
+
+
 async def label(pilot: Pilot[int]) -> None:
     """The label typed, one transistor counted."""
     await press(pilot, "up", "enter")
@@ -150,7 +155,7 @@ async def help_bench(pilot: Pilot[int]) -> None:
     await keys(pilot, "f1")
 
 
-FROM_START = (start, label, draft, role, intake, cautions, looks)
+FROM_START = (start, jobs, label, draft, role, intake, cautions, looks)
 FROM_BENCH = (
     bench, refused, verdict, stress, waveforms, load_line, moves, parts, marking, retest, record, reading, sign, menu, help_bench,
 )  # fmt: skip

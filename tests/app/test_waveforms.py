@@ -10,7 +10,8 @@ from tests.app.screens import play, press, settle, text_of, type_in
 from triage.app.glyphs import ASCII, BOX, FULL
 from triage.app.lines import plain, width_of
 from triage.app.text.waveforms import chart_lines, charts_at_once
-from triage.job.views import ChartView, CurveView, LevelView
+from triage.job.progress import report
+from triage.job.views import ChartView, CurveView, LevelView, StressView
 
 CHART = ChartView(
     "switch", "Q1 main switch: voltage at 253 V, full load", "s", "V",
@@ -126,5 +127,27 @@ def test_escape_stops_it_and_stays_the_next_one_goes_back(tmp_path):
         assert "next" in text_of(pilot.app)
         await pilot.app.run_action("go('waveforms')")
         await until(pilot, "chart 1 of 3")
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_progress_of_a_long_look_asks_for_nothing_anew(tmp_path):
+    """Each word on how far a calculation is repaints the status line; were the screen written anew, it would ask again."""
+
+    async def story(pilot: Pilot[int]) -> None:
+        bench: FakeBench = pilot.app.desk.bench  # type: ignore[attr-defined]
+        asked: list[str] = []
+
+        def what_if(ref: str, type: str) -> tuple[StressView, ...]:
+            asked.append(type)
+            for step in range(4):
+                report("the sound board", step, 4)
+            return bench.stresses()
+
+        bench.what_if = what_if  # type: ignore[method-assign]
+        await press(pilot, "f5")
+        for _ in range(5):
+            await settle(pilot)
+        assert len(asked) == 1 and "with it:" in text_of(pilot.app)
 
     play(tmp_path, story, at_bench=True)

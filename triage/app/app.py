@@ -16,6 +16,7 @@ from triage.app.keys import COMMANDS
 from triage.app.places import Places, make_screen
 from triage.app.shelf import Shelf
 
+_WITHOUT_JOB = ("jobs", "label")
 _SAVE_SECONDS = 3.0
 """Longest wait for entries on their way to the file when the terminal goes away [s]."""
 
@@ -102,9 +103,9 @@ class TriageApp(App[int]):
         """Open a job file."""
         self.desk.open(self.shelf.opener(path), self._opened)
 
-    def _changed(self) -> None:
-        """Tell the screen on top that there is something new to show."""
-        refresh_view = getattr(self.screen, "refresh_view", None)
+    def _changed(self, status_only: bool = False) -> None:
+        """Tell the screen on top that there is something new to show, or only how far a calculation is."""
+        refresh_view = getattr(self.screen, "refresh_status" if status_only else "refresh_view", None)
         if refresh_view is None:
             return
         try:
@@ -125,7 +126,7 @@ class TriageApp(App[int]):
 
     def action_form(self, name: str) -> None:
         """Open a form for an entry in front of the screen."""
-        if self.desk.view is not None and getattr(self.screen, "PLACE", "") != name:
+        if (self.desk.view is not None or name in _WITHOUT_JOB) and getattr(self.screen, "PLACE", "") != name:
             self.push_screen(make_screen(name))
 
     def action_help(self) -> None:

@@ -36,17 +36,19 @@ class Desk:
     Parameters
     ----------
     deliver : has a callable called on the screen's side; safe to call from a thread
-    changed : called on the screen's side when there is a new view or a new message
+    changed : called on the screen's side when there is a new view or a new message; with True when only the status line
+        has something new
     fault : called with an exception that no person at the bench can mend
     """
 
-    def __init__(self, deliver: Deliver, changed: Callable[[], None], fault: Callable[[Exception], None]) -> None:
+    def __init__(self, deliver: Deliver, changed: Callable[..., None], fault: Callable[[Exception], None]) -> None:
         self._deliver = deliver
         self._changed = changed
         self._fault = fault
         self._quick = BackRoom()
         self._slow = BackRoom()
         self._long = BackRoom()
+        self._beside = BackRoom()
         self.bench: OpenJob | None = None
         self.view: JobView | None = None
         self.message = ""
@@ -54,7 +56,8 @@ class Desk:
         self.refused = False
         """True when the message says that something was not accepted."""
         self.progress = ""
-        """How far the calculation of what to expect is; empty when there is none."""
+        """How far the calculation of what to expect is, or that of the powered board beside the work; empty when there is
+        none."""
         self.looking = ""
         """How far a long look is; empty when there is none."""
         self._long_looks: dict[str, threading.Event] = {}
@@ -65,7 +68,7 @@ class Desk:
     @property
     def busy(self) -> bool:
         """True while something is being computed."""
-        return self._quick.busy or self._slow.busy or self._long.busy
+        return any(room.busy for room in (self._quick, self._slow, self._long, self._beside))
 
     @property
     def pins(self) -> Mapping[str, tuple[str, ...]]:
@@ -101,8 +104,13 @@ class Desk:
 
     def compute(self) -> None:
         """Go on with a calculation that was stopped."""
-        if self.bench is not None and self.view is not None and self.view.computing and not self._slow.busy:
+        if self.bench is None or self.view is None:
+            return
+        if self.view.computing and not self._slow.busy:
             self._prepare(self.bench)
+            self.say("")
+        elif not self.view.computing and not self._beside.busy:
+            self._work_out(self.bench)
             self.say("")
 
     def stop(self) -> None:
@@ -156,8 +164,35 @@ class Desk:
                 self._changed()
             else:
                 self._quick.ask("entry", bench.view, self._accepted_quietly, self._deliver)
+            if answer.error is None:
+                self._work_out(bench)
 
         self._slow.ask("prepare", lambda: bench.prepare(listen), ready, self._deliver)
+
+    def _work_out(self, bench: OpenJob) -> None:
+        """Have the powered board solved beside the work: minutes for one that nobody has drawn, nothing for a shipped one."""
+        self._stop = stop = threading.Event()
+
+        def hear(text: str) -> None:
+            if bench is self.bench and not stop.is_set():
+                self.progress = text
+                self._changed()
+
+        def ready(answer: Answer[bool]) -> None:
+            if bench is not self.bench:
+                return
+            self.progress = ""
+            if isinstance(answer.error, Stopped):
+                self.say("stopped: what mains on would show is known in part; type go to go on")
+            elif answer.error is not None:
+                self._report(answer.error)
+            elif answer.value and self.view is not None and self.view.suggestion is None and not self.pending:
+                # Nobody holds a probe to a suggestion: what is now known may bring one.
+                self._quick.ask("entry", bench.take_up, self._accepted_quietly, self._deliver)
+            else:
+                self._changed()
+
+        self._beside.ask("work out", lambda: bench.work_out(self._listener(stop, hear)), ready, self._deliver)
 
     def enter(self, call: Callable[[OpenJob], JobView], accepted: Callable[[], None] | None = None, queue: bool = False) -> bool:
         """Give the bench an entry; False when there is no job, or the entry before is still being worked on.
@@ -200,16 +235,42 @@ class Desk:
         far it is; a newer question of its lane ends it, and so does ``stop_looking``.
         """
         bench = self.bench
-        if bench is None:
-            return
-        stop = threading.Event()
+        if bench is not None:
+            self._ask(lane, lambda: call(bench), then, failed or (lambda text: self.say(text, refused=True)), long)
+
+    def work(
+        self,
+        lane: str,
+        call: Callable[[], T],
+        then: Callable[[T], None],
+        failed: Callable[[str], None],
+        long: bool = False,
+        must_run: bool = False,
+    ) -> None:
+        """Have something done that needs no open job; the newest question of a lane is answered.
+
+        ``long`` as for ``look``. ``must_run``: carry it out even when a newer one waits.
+        """
+        self._ask(lane, call, then, failed, long, must_run)
+
+    def _ask(
+        self,
+        lane: str,
+        call: Callable[[], T],
+        then: Callable[[T], None],
+        failed: Callable[[str], None],
+        long: bool,
+        must_run: bool = False,
+    ) -> None:
+        bench, stop = self.bench, threading.Event()
 
         def done(answer: Answer[T]) -> None:
             if self._long_looks.get(lane) is stop:
                 del self._long_looks[lane]
                 self.looking = ""
+                self._changed(True)
             if isinstance(answer.error, Stopped):
-                (failed or self.say)("stopped")
+                failed("stopped")
                 return
             if answer.error is not None:
                 self._report(answer.error, failed)
@@ -221,36 +282,22 @@ class Desk:
                 self._report(error, failed)
 
         if not long:
-            self._quick.ask(lane, lambda: call(bench), done, self._deliver)
+            self._quick.ask(lane, call, done, self._deliver, must_run)
             return
 
         def hear(text: str) -> None:
             if bench is self.bench and self._long_looks.get(lane) is stop and not stop.is_set():
                 self.looking = text
-                self._changed()
+                self._changed(True)
 
         def work() -> T:
             with heard_by(self._listener(stop, hear)):
-                return call(bench)
+                return call()
 
         if (before := self._long_looks.pop(lane, None)) is not None:
             before.set()
         self._long_looks[lane] = stop
-        self._long.ask(lane, work, done, self._deliver)
-
-    def work(
-        self, lane: str, call: Callable[[], T], then: Callable[[T], None], failed: Callable[[str], None], must_run: bool = False
-    ) -> None:
-        """Have something done that needs no open job; the newest question of a lane is answered. ``must_run``: carry it out
-        even when a newer one waits."""
-
-        def done(answer: Answer[T]) -> None:
-            if answer.error is not None:
-                self._report(answer.error, failed)
-            else:
-                then(answer.value)  # type: ignore[arg-type]
-
-        self._quick.ask(lane, call, done, self._deliver, must_run)
+        self._long.ask(lane, work, done, self._deliver, must_run)
 
     def put_away(self) -> None:
         """Let go of the job; answers still to come for it are dropped."""
@@ -260,6 +307,7 @@ class Desk:
         self._long_looks.clear()
         self._slow.forget()
         self._long.forget()
+        self._beside.forget()
         if self.bench is not None:
             self.bench.release()
         self.bench, self.view, self.message, self.refused, self.pending = None, None, "", False, False

@@ -89,18 +89,25 @@ class Frame(Screen[None]):
 
     def refresh_view(self) -> None:
         """Show the newest view of the job."""
-        if not self.is_mounted:
+        if not self.refresh_status():
             return
         view = self.desk.view
-        self.panel("status").show(self.status(view))
         self.panel("keys").show((standard_keys(self.wide, view is not None),))
         self.show_message()
         self.refresh_body(view)
 
+    def refresh_status(self) -> bool:
+        """Write the status line anew; False while the screen is not there yet."""
+        if not self.is_mounted or not self.query("#keys"):
+            return False
+        self.panel("status").show(self.status(self.desk.view))
+        return True
+
     def status(self, view: JobView | None) -> tuple[Line, ...]:
         """The status lines."""
         if view is None:
-            return (line(Span(f" {self.NAME} ", "head")),)
+            more = f"{self.desk.looking}; Esc stops" if self.desk.looking else ""
+            return (line(Span(f" {self.NAME} ", "head"), "  ", Span(more, "near")),)
         from triage.app.text.frame import status_lines
 
         return status_lines(view, self.NAME, self.wide, self.desk.progress, self.desk.looking)

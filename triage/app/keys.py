@@ -44,6 +44,8 @@ COMMANDS = (
     Command("", "", "note", "form('note')", "a remark for the next reader of the record"),
     Command("", "", "complaint", "go('intake')", "what is wrong with the adapter, and where it was seen"),
     Command("", "", "suspect", "form('hunch')", "name a part that you suspect yourself"),
+    Command("", "", "jobs", "form('jobs')", "find a job among all by a few words", job=False),
+    Command("", "", "label", "form('label')", "begin on a board nobody has drawn, from its label", job=False),
     Command("ctrl+p", "^P", "menu", "menu", "all commands by name (/ in the empty reading field)", job=False),
     Command("ctrl+t", "^T", "light", "other_theme", "dark or light screen", job=False),
     Command("ctrl+z", "^Z", "to shell", "suspend_process", "leave for the shell; `fg` comes back", job=False),

@@ -1,15 +1,23 @@
 """What there is to open: the shipped profiles and the jobs of the folder, for the start page."""
 
+from __future__ import annotations
+
 import tomllib
 from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from triage.app.contract import OpenDraft, OpenJob
 from triage.data import data_folder
 from triage.errors import JobError
 from triage.job.folder import PROFILES, data_directory, free_name, jobs_folder, make_folder
 
+if TYPE_CHECKING:
+    from triage.job.summary import Summary
+
+MOST_LISTED = 30
+"""Jobs on the start page; the others are found by their words."""
 _LONGEST_FILE = 4_000_000
 """Files beyond this size [bytes] are listed by name only."""
 
@@ -21,7 +29,7 @@ class Item:
     path: Path
     title: str
     kind: str
-    """``job``, ``profile`` (shipped) or ``own`` (a profile of the shop's own)."""
+    """``find``, ``job``, ``profile`` (shipped) or ``own`` (a profile of the shop's own)."""
 
 
 def _title_of(path: Path) -> str:
@@ -40,15 +48,17 @@ def _title_of(path: Path) -> str:
 
 
 def items(folder: Path | None) -> tuple[Item, ...]:
-    """Jobs of the folder, newest first, then the profiles by name, the shop's own before the shipped ones."""
+    """The newest jobs of the folder, then the profiles by name, the shop's own before the shipped ones."""
     jobs_at = jobs_folder(folder)
     jobs = [path for path in jobs_at.glob("*.toml") if path.is_file()] if jobs_at.is_dir() else []
     jobs.sort(key=lambda path: path.stat().st_mtime, reverse=True)
+    more = (Item(jobs_at, f"all {len(jobs):,} jobs: find one by a few words", "find"),) if len(jobs) > MOST_LISTED else ()
     profiles = sorted(data_folder("profiles").glob("*.toml"))
     own_at = data_directory() / PROFILES
     own = sorted(path for path in own_at.glob("*.toml") if path.is_file()) if own_at.is_dir() else []
     return (
-        *(Item(path, _title_of(path), "job") for path in jobs),
+        *more,
+        *(Item(path, _title_of(path), "job") for path in jobs[:MOST_LISTED]),
         *(Item(path, _title_of(path), "own") for path in own),
         *(Item(path, _title_of(path), "profile") for path in profiles),
     )
@@ -63,6 +73,19 @@ class Shelf:
     def items(self) -> tuple[Item, ...]:
         """What the start page lists."""
         return items(self.folder)
+
+    def find(self, words: str) -> tuple[Summary, ...]:
+        """Jobs that half-remembered words may mean, best first; the latest ones without words. Brings the index up to date,
+        which takes a while the first time."""
+        from triage.job.index import Index
+
+        with Index.of_folder(jobs_folder(self.folder)) as index:
+            index.refresh()
+            return index.find(words)
+
+    def path_of(self, job: Summary) -> Path:
+        """The file of a job that was found."""
+        return jobs_folder(self.folder) / f"{job.id}.toml"
 
     def opener(self, path: Path) -> Callable[[], OpenJob]:
         """What opens a job file when called."""

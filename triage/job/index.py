@@ -22,6 +22,7 @@ from types import TracebackType
 from triage.errors import JobError
 from triage.job.cache import cache_folder
 from triage.job.display import plain
+from triage.job.progress import report
 from triage.job.summary import Summary, read_summary
 
 COLUMNS = tuple(field.name for field in fields(Summary))
@@ -100,7 +101,8 @@ class Index:
         )
 
     def refresh(self, force: bool = False) -> int:
-        """Bring the index up to date with the folder; returns how many files were read.
+        """Bring the index up to date with the folder; returns how many files were read. Stopped in between, it goes on
+        there the next time.
 
         force: look through the folder even when nothing seems to have changed.
         """
@@ -115,7 +117,8 @@ class Index:
             return 0
         changed = self._changes()
         with _pool_for(len(changed)) as self._pool:
-            for batch in _batches(changed, BATCH):
+            for number, batch in enumerate(_batches(changed, BATCH)):
+                report("the index of jobs", number * BATCH, len(changed))
                 with self._base:
                     self._take(batch)
         self._pool = None

@@ -34,6 +34,8 @@ class PartsScreen(Frame):
         self._fitted_here: set[str] = set()
         self._sure = ("", "")
         """Position and type on which Enter was pressed once."""
+        self._with: dict[tuple[str, str], tuple[StressView, ...] | None] = {}
+        """Position and type -> the stresses with it; None while they are computed."""
 
     def body(self) -> ComposeResult:
         """Fields, demand, list, detail."""
@@ -57,6 +59,7 @@ class PartsScreen(Frame):
     def entered(self) -> None:
         """Offer the positions of the verdict first, else the suspects; keep the one chosen while it is among
         them."""
+        self._with.clear()
         bench, view = self.desk.bench, self.desk.view
         if bench is None or view is None:
             return
@@ -130,13 +133,18 @@ class PartsScreen(Frame):
 
     def _what_if(self, known: CandidateView) -> None:
         """Add what the stresses would be with the part under the cursor."""
-        ref, before = self._ref, self._before
+        ref, before, key = self._ref, self._before, (self._ref, known.type)
 
         def show(after: tuple[StressView, ...]) -> None:
-            if self.query_one("#list", ListPanel).key == known.type:
+            self._with[key] = after
+            if self._ref == ref and self.query_one("#list", ListPanel).key == known.type:
                 self._tell(known, with_it(before, after, ref, self.wide))
 
-        self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed, long=True)
+        if found := self._with.get(key):
+            show(found)
+        elif key not in self._with:
+            self._with = {done: stresses for done, stresses in self._with.items() if stresses is not None} | {key: None}
+            self.ask("what if", lambda bench: bench.what_if(ref, known.type), show, self._ask_failed, long=True)
 
     def _tell(self, known: CandidateView, first: tuple[Line, ...]) -> None:
         """The text on a candidate: the stresses with it, the part, and why the position asks for what it asks."""
@@ -195,6 +203,7 @@ class PartsScreen(Frame):
     def _fitted(self) -> None:
         before, ref, view = self._before, self._ref, self.desk.view
         self._fitted_here.add(ref)
+        self._with.clear()
         more = [one for one in (view.verdict.repair if view else ()) if one not in self._fitted_here]
         following = f"Enter: {more[0]} is next" if more else "F6 goes on to the checks"
         if more:

@@ -20,7 +20,7 @@ if TYPE_CHECKING:
 
 _LABEL = "label"
 """Key of the line that begins from a label."""
-_WORDS = {"job": "go on ", "profile": "begin ", "own": "own   "}
+_WORDS = {"job": "go on ", "profile": "begin ", "own": "own   ", "find": "find  "}
 _FIRST = (
     line(Span("First: ", "strong"), "pull the plug. The big capacitor counts as charged until it is read."),
     line("Choose a job to go on with, a profile, or begin from the label; Enter takes it."),
@@ -80,7 +80,7 @@ class StartScreen(Frame):
         begun = bool(items.key)
         items.fill(rows, head)
         if not begun and found:
-            items.go_to("0")
+            items.go_to("1" if found[0].kind == "find" else "0")
 
     def refresh_body(self, view: JobView | None) -> None:
         """The first words."""
@@ -93,9 +93,12 @@ class StartScreen(Frame):
         if self.desk.pending:
             return
         if event.key == _LABEL:
-            self.triage.push_screen(make_screen("label"))
+            self.triage.action_form("label")
             return
         item = self._items[int(event.key)]
+        if item.kind == "find":
+            self.triage.action_form("jobs")
+            return
         self.show_message("opening...")
         if item.kind == "job":
             self.triage.resume(Path(item.path))
