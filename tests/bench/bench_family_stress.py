@@ -55,6 +55,10 @@ def solve(board: Board, corner: Condition, draw: Draw, faults: tuple[Fault, ...]
     return at
 
 
+SWITCHING = ".options method=gear reltol=1e-3 itl4=100"
+"""For the simulator where something switches: its trapezoidal rule breaks off on the edges."""
+
+
 def ngspice_seconds(board: Board, start: dict[str, float], periods: int) -> float:
     """Processor time of one run of the sound board's deck [s]; nan when there is no ngspice or it breaks off."""
     program = shutil.which("ngspice")
@@ -62,7 +66,8 @@ def ngspice_seconds(board: Board, start: dict[str, float], periods: int) -> floa
         return float("nan")
     with tempfile.TemporaryDirectory() as folder:
         path = Path(folder) / "board.cir"
-        path.write_text(deck(board, start=start, periods=periods), "utf-8")
+        text = deck(board, start=start, periods=periods)
+        path.write_text(text if family_of(board.family).slow else text.replace("\n.end\n", f"\n{SWITCHING}\n.end\n"), "utf-8")
         before = resource.getrusage(resource.RUSAGE_CHILDREN)
         ended = subprocess.run([program, "-b", "-r", str(path.with_suffix(".raw")), str(path)], capture_output=True, check=False)
         after = resource.getrusage(resource.RUSAGE_CHILDREN)

@@ -45,6 +45,14 @@ def test_state_under_faults(fault, expected):
 
 
 @pytest.mark.long
+def test_without_its_auxiliary_supply_the_chip_stops_and_tries_again():
+    """Reasoned: it lives on its supply capacitor, some milliseconds of pulses, then waits for the start resistor."""
+    hiccup = shown(BOARD, "full", "D2.open")
+    assert 100.0 < hiccup["hertz"] < 0.6 * shown(BOARD)["hertz"] and 0.1 < hiccup["watts"] < 0.6 * shown(BOARD)["watts"]
+    assert hiccup["ripple"] > 0.5 * hiccup["out"]
+
+
+@pytest.mark.long
 @pytest.mark.parametrize(("line", "volts", "amperes"), [
     ("100-240 V~ 50/60 Hz", 5.0, 1.0), ("220-240 V~ 50 Hz", 5.0, 0.6), ("100-240 V~ 50/60 Hz", 5.0, 2.0),
     ("100-240 V~ 50/60 Hz", 12.0, 0.5),

@@ -24,6 +24,7 @@ from triage.physics.transient import (
     Stretch,
     Watch,
     initial_state,
+    joined,
     rest_state,
     run_stretch,
 )
@@ -70,6 +71,22 @@ def test_lc_rings_at_its_frequency_and_decays_by_its_resistance(quality: Quality
     late = (t > 4e-5) & (t < 6e-5)
     envelope = np.max(np.abs(v[late]) * np.exp(damping * t[late]))
     assert envelope == pytest.approx(400.0, rel=15.0 * most)
+
+
+def test_two_stretches_joined_are_the_whole() -> None:
+    """Means, rms values and extremes of a charging capacitor over 0.1 ms and the next 0.4 ms are those of 0.5 ms."""
+    net = Netlist("0")
+    net.resistor("R", "a", "0", 1e3)
+    net.capacitor("C", "a", "0", 1e-7, 0.0, 10.0)
+    net.port("R", "", "a", "0", PORT_RESISTOR, "R")
+    compiled = compile_netlist(net)
+    whole = run_stretch(compiled, initial_state(compiled), 0.0, 5e-4, skip=0.0)
+    state = initial_state(compiled)
+    first = run_stretch(compiled, state, 0.0, 1e-4, skip=0.0)
+    second = run_stretch(compiled, state, 1e-4, 5e-4, skip=0.0)
+    both = joined(first, first.reached, second, second.reached - first.reached)
+    assert second.reached == pytest.approx(5e-4)
+    assert np.allclose(both.statistics, whole.statistics, rtol=5e-3, atol=1e-6)
 
 
 def mains_rectifier(capacitance: float = 1e-5, load: float = 5e3, esr: float = 1e-6) -> Netlist:

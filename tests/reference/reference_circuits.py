@@ -125,6 +125,20 @@ def healthy_table(circuit: str) -> dict[tuple[str, str, str], float]:
     return {(condition, ref, quantity): number(value) for condition, ref, quantity, value in _lines(circuit, "healthy")[1:]}
 
 
+def sound_again_table(circuit: str) -> dict[tuple[str, str, str], float]:
+    """As healthy_table, of the circuit run again more closely and past its restart (repeat.py); empty where it was not."""
+    if not (DATA / f"{circuit.replace('-', '_')}_healthy_again.csv").is_file():
+        return {}
+    return {(condition, ref, quantity): number(value) for condition, ref, quantity, value in _lines(circuit, "healthy_again")[1:]}
+
+
+def ripple_again_table(circuit: str) -> dict[tuple[str, str], tuple[float, float]]:
+    """(fault, load) -> ripple of the output with the restart and without it [V], run again (repeat.py)."""
+    if not (DATA / f"{circuit.replace('-', '_')}_ripple_again.csv").is_file():
+        return {}
+    return {(fault, load): (number(whole), number(later)) for fault, load, whole, later in _lines(circuit, "ripple_again")[1:]}
+
+
 def collateral_cold_table(circuit: str) -> dict[frozenset[Fault], dict[Probe, float]]:
     """Cold readings with a fault and all its collateral present, made with the same generator; empty where there is no file."""
     if not (DATA / f"{circuit.replace('-', '_')}_collateral_cold.csv").is_file():

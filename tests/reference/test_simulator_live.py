@@ -16,7 +16,7 @@ from triage.board.kinds import kinds
 from triage.board.part import Board
 from triage.board.profile import load_profile
 from triage.families import family_of
-from triage.families.steady import rated_start, settle
+from triage.families.steady import rated_start, settle, swinging_pin
 from triage.job.deck import deck
 from triage.physics.netlist import PORT_WINDING, Compiled, Netlist, compile_netlist
 from triage.physics.transient import (
@@ -34,6 +34,7 @@ from triage.physics.transient import (
     Watch,
     initial_state,
     run_stretch,
+    wake,
 )
 
 SOURCE = "ngspice, live run of the program's deck"
@@ -44,7 +45,8 @@ FLOORS = {"voltage": 0.02, "current": 1e-5, "power": 1e-3}
 IDLE = 1e-3
 """Currents below this share of the largest on the board are what leaks while the mains rectifier is blocked."""
 SHARE = 0.95
-SWITCHERS = {"harbour-handset-charger": (0.004, 5e-8), "weather-display-adapter": (0.004, 1e-7)}
+SWITCHERS = {"harbour-handset-charger": (0.004, 5e-8), "weather-display-adapter": (0.004, 1e-7),
+             "tide-gauge-brick": (0.002, 1e-7)}
 """Profile -> window from the crest on and largest step of the simulator [s]. The mains rectifier rests in it."""
 LINEAR = {"choir-keyboard-supply": 3, "mast-lamp-adapter": 3, "harbour-gate-timer": 3}
 """Profile -> mains periods."""
@@ -67,6 +69,7 @@ def pair(board: Board, ngspice, window: float, step: float, options: str, faults
     net = circuit(board, faults)
     compiled = compile_netlist(net)
     quality = replace(FINE, largest_step=family.largest_step) if family.largest_step else FINE
+    wake(compiled)
     mine = run_stretch(compiled, initial_state(compiled, start), 0.0, window, watch(board, compiled), quality, 0.2 * window)
     text = deck(board, faults, start=start, periods=window * board.mains.frequency, largest_step=step)
     return Pair(net, mine, ngspice(text, 0.2 * window, net.reference, options))
@@ -74,11 +77,13 @@ def pair(board: Board, ngspice, window: float, step: float, options: str, faults
 
 def watch(board: Board, compiled: Compiled) -> Watch:
     """The switch, for the count of swings."""
-    switch, bulk = board.by_role("main switch"), board.by_role("bulk capacitor")
+    family = family_of(board.family)
+    switch, bulk = board.by_role(family.switch_role), board.by_role("bulk capacitor")
     if switch is None or bulk is None:
         return Watch()
     ground = compiled.index(board.ground["primary"])
-    return Watch((compiled.index(switch.pins["collector"]), ground, compiled.index(bulk.pins["plus"]), ground))
+    return Watch((compiled.index(switch.pins[swinging_pin(switch, family)]), ground, compiled.index(bulk.pins["plus"]), ground),
+                 family.swing_low, family.swing_high)
 
 
 def rows(both: Pair) -> list[tuple[str, str, float, float]]:
@@ -132,11 +137,12 @@ def test_switching_boards_run_as_ngspice_runs_them(name: str, ngspice, outside_c
     both = pair(board, ngspice, *SWITCHERS[name], SWITCHING)
     compare(f"{name}, all parts", both, outside_check)
     output(both, board, outside_check, name)
-    switch, bulk = board.by_role("main switch"), board.by_role("bulk capacitor")
+    family = family_of(board.family)
+    switch, bulk = board.by_role(family.switch_role), board.by_role("bulk capacitor")
     assert switch is not None and bulk is not None
     ground = both.theirs.node(board.ground["primary"])
     middle = 0.5 * both.theirs.mean(both.theirs.node(bulk.pins["plus"]) - ground)
-    swings = both.theirs.swings(both.theirs.node(switch.pins["collector"]) - ground, middle)
+    swings = both.theirs.swings(both.theirs.node(switch.pins[swinging_pin(switch, family)]) - ground, middle)
     outside_check(f"{name}, switching frequency", SOURCE, both.mine.frequency, swings, BOUNDS["frequency"])
 
 

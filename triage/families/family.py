@@ -21,6 +21,9 @@ class Family:
     """Role of the capacitor a controller lives on; empty where there is none."""
     largest_step: float = 0.0
     """Largest time step [s]; 0 leaves it to the solution."""
+    step_relative: float = 0.0
+    """Truncation error of a step that may not be exceeded, as a share of the size of each state [-]; 0 leaves it to the solution.
+    What rings after a swing starts the next one of a self-oscillating converter: looser steps damp it, and swings are lost."""
     slow: bool = False
     """True where nothing switches: many periods cost little there, and the settling is slow."""
     starts_empty: bool = False

@@ -13,6 +13,7 @@ FAMILY = Family(
     start_roles=("startup resistor", "main switch", "base drive resistor", "base drive capacitor", "base reset diode",
                  "flyback transformer", "turn-off transistor", "emitter current-sense resistor"),
     output_roles=("output capacitor", "output capacitor before the filter coil", "output capacitor after the filter coil"),
+    step_relative=0.003,
     look=("one power transistor and one small transistor on the primary side", "an optocoupler",
           "a transformer with three windings"),
 )

@@ -14,5 +14,6 @@ FAMILY = Family(
     switch_role="main switch",
     start_roles=("startup resistor", "main switch", "base drive resistor", "base drive capacitor", "base reset diode",
                  "flyback transformer"),
+    step_relative=0.003,
     look=("one transistor on the primary side and no controller", "no optocoupler", "a transformer with three windings"),
 )

@@ -4,6 +4,7 @@ Charges that nothing refreshes are set to zero, a geometric drift of the output 
 starting path are solved from rest as well: when nothing swings there, the adapter does not start, however well it would run.
 """
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
@@ -15,6 +16,7 @@ from triage.board.part import Board, Part
 from triage.families.family import Family
 from triage.physics.netlist import CONTROLLER, OFF_TIME, Compiled, Netlist, compile_netlist
 from triage.physics.transient import (
+    POWER,
     SWITCHING_START,
     V_MAX,
     Quality,
@@ -22,20 +24,28 @@ from triage.physics.transient import (
     Stretch,
     Watch,
     initial_state,
+    joined,
+    move_clocks,
     rest_state,
     run_stretch,
+    wake,
 )
 
 MOST_PERIODS = 8
 LEAST_SLOW_PERIODS, MOST_SLOW_PERIODS, SLOW_SHARE = 50, 150, 0.02
 """Periods, and share of the limits below, in a family in which nothing switches: a period costs little there, and the
 transformer's magnetising current takes many to settle."""
-HICCUP_PERIODS = 25
-"""Mains periods over which a locked-out controller is followed, once to find its rhythm and once for the averages."""
+WAKE_PERIODS, HICCUP_PERIODS, LEAST_HICCUP_PERIODS = 100, 25, 5
+"""Most mains periods over which a locked-out controller is waited for: two seconds, longer than a user waits. Then the most for
+the averages; those end where it wakes again, after at least the third number."""
 SETTLED_OUTPUT = 0.012
 """Change of the output over a period that counts as none, as a share of its rated value [-]."""
 SETTLED_CHARGE = 0.04
 """Change of an electrolytic's voltage over a period that counts as none [-]."""
+BALANCE_SHARE, BALANCE_WATTS = 0.03, 5e-3
+"""Power that goes into the bulk capacitor from period to period and counts as none: share of the input power [-], and [W]."""
+WELL_AWAKE = 0.99
+"""A supply between lockout and this share of the waking voltage is that of a controller in operation [-]."""
 QUIET_FREQUENCY = 60.0
 """Below this nothing switches [Hz]."""
 
@@ -60,7 +70,7 @@ def _output_nodes(board: Board) -> tuple[str, ...]:
 def rated_start(board: Board, family: Family) -> dict[str, float]:
     """Capacitor voltages to begin a sound board with [V]: outputs at their rated voltage, the supply of a controller awake."""
     start = {part.ref: board.label.output_voltage for part in output_parts(board, family)}
-    supply, controller = board.by_role(family.supply_role), next((p for p in board.parts if "start_voltage" in p.value), None)
+    supply, controller = board.by_role(family.supply_role), _controller(board)
     if supply is not None and controller is not None:
         start[supply.ref] = 0.997 * controller.value["start_voltage"]
     return start
@@ -118,12 +128,22 @@ class _Run:
         self.restarted = False
         return run_stretch(self.compiled, self.state, start, begin + period, self.watch, self.quality, skip)
 
-    def long_period(self, count: int) -> Stretch:
-        """Several mains periods in one, for what repeats more slowly than the mains."""
-        begin = SWITCHING_START
-        self.restarted = False
-        return run_stretch(self.compiled, self.state, begin, begin + count / self.board.mains.frequency, self.watch,
-                           self.quality, 0.0)
+    def hiccup(self) -> Stretch:
+        """From one waking of a locked-out controller to another some mains periods later, or as long as it is worth waiting."""
+        period = 1.0 / self.board.mains.frequency
+        least = LEAST_HICCUP_PERIODS * period
+        _, start = self._follow(SWITCHING_START, WAKE_PERIODS * period, 0.0)
+        first, start = self._follow(start, least, math.inf)
+        rest, _ = self._follow(start, HICCUP_PERIODS * period - least if _asleep(self) else least, 0.0)
+        return joined(first, least, rest, rest.reached - start)
+
+    def _follow(self, start: float, most: float, wake_after: float) -> tuple[Stretch, float]:
+        """A stretch of at most ``most`` [s], ended by waking after ``wake_after`` [s]; and where the next one starts [s]."""
+        stretch = run_stretch(self.compiled, self.state, start, start + most, self.watch, self.quality, 0.0,
+                              wake=start + wake_after)
+        then = SWITCHING_START + (stretch.reached - SWITCHING_START) % (1.0 / self.board.mains.frequency)
+        move_clocks(self.compiled, then - start)
+        return stretch, then
 
 
 def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
@@ -136,6 +156,8 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
     """
     if family.largest_step:
         quality = replace(quality, largest_step=family.largest_step)
+    if family.step_relative:
+        quality = replace(quality, step_relative=min(quality.step_relative, family.step_relative))
     net = circuit(board, faults, draw=draw, mains=mains, load=load)
     compiled = compile_netlist(net)
     rows = {(port.ref, port.suffix): index for index, port in enumerate(net.ports)}
@@ -146,7 +168,11 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
         stretch = run.period()
         if stretch.frequency == 0.0 and _output(run) < 0.1 * board.label.output_voltage:
             return Settled(stretch, rows, _voltages(run), 1, False)
-    run = _begin(board, family, net, compiled, quality, mains, {} if family.starts_empty else start or {}, traced)
+    begin = {} if family.starts_empty else start or {}
+    awake = _wakes(board, family, net, compiled, quality, mains, begin)
+    run = _begin(board, family, net, compiled, quality, mains, begin, traced)
+    if awake:
+        wake(compiled)
     stretch, periods = _repeat(run, rows)
     return Settled(stretch, rows, _voltages(run), periods, True)
 
@@ -155,10 +181,10 @@ def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quali
            start: Mapping[str, float], traced: Traced | None) -> _Run:
     """A run at the crest of the mains: the bulk capacitor charged, the others as given, else empty."""
     bulk = board.by_role(family.bulk_role)
-    peak = 0.985 * mains * 2.0**0.5
+    crest = mains * 2.0**0.5
     known = {name: volts for name, volts in start.items() if name in compiled.names["capacitor"]}
     if bulk is not None:
-        known[bulk.ref] = min(known.get(bulk.ref, peak), peak)
+        known[bulk.ref] = min(known.get(bulk.ref, 0.985 * crest), crest)
     electrolytics = {part.ref: compiled.names["capacitor"].index(part.ref) for part in board.parts
                      if part.kind == "electrolytic"}
     watch = _watch(board, family, compiled)
@@ -167,6 +193,28 @@ def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quali
         watch = replace(watch, nodes=nodes, start=SWITCHING_START, interval=1.0 / board.mains.frequency / traced.rows,
                         rows=traced.rows)
     return _Run(board, family, net, compiled, watch, quality, initial_state(compiled, known), electrolytics)
+
+
+def _wakes(board: Board, family: Family, net: Netlist, compiled: Compiled, quality: Quality, mains: float,
+           start: Mapping[str, float]) -> bool:
+    """True for a start in operation from which the controller would wake as well if its supply were at its lockout."""
+    supply, controller = board.by_role(family.supply_role), _controller(board)
+    volts = controller.value if controller is not None else {}
+    if supply is None or not volts:
+        return False
+    if not volts["stop_voltage"] < start.get(supply.ref, 0.0) < WELL_AWAKE * volts["start_voltage"]:
+        return False
+    run = _begin(board, family, net, compiled, quality, mains, {**start, supply.ref: volts["stop_voltage"]}, None)
+    most = WAKE_PERIODS / board.mains.frequency
+    asleep = compiled.behaviour[4].copy()
+    reached = run_stretch(compiled, run.state, 0.0, most, run.watch, quality, 0.0, wake=0.0).reached
+    compiled.behaviour[4][:] = asleep
+    return reached < most
+
+
+def _controller(board: Board) -> Part | None:
+    """The part that wakes and sleeps by its supply voltage."""
+    return next((part for part in board.parts if "start_voltage" in part.value), None)
 
 
 def _watch(board: Board, family: Family, compiled: Compiled) -> Watch:
@@ -215,14 +263,25 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
         drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
                      for ref, k in run.electrolytics.items()), default=0.0)
         highest = stretch.statistics[rows["out", "node"], V_MAX]
-        still = abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE
+        still = (abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE
+                 and _balanced(run, stretch, rows, before))
         if (still and not (slow and number < LEAST_SLOW_PERIODS)) or highest > 1.8 * limit:
             break
         last = None if slow else _follow_drift(run, change, last)
     if _asleep(run):
-        run.long_period(HICCUP_PERIODS)
-        return run.long_period(HICCUP_PERIODS), number + 2 * HICCUP_PERIODS
+        return run.hiccup(), number + 1
     return stretch, number
+
+
+def _balanced(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], before: np.ndarray) -> bool:
+    """True when what the mains gave over a period was used in it, and did not go into the bulk capacitor or come out of it."""
+    bulk = run.board.by_role(run.family.bulk_role)
+    index = run.electrolytics.get(bulk.ref) if bulk else None
+    if index is None:
+        return True
+    farad, now, then = run.compiled.capacitor[2][index], run.state.capacitors[index], before[index]
+    stored = 0.5 * farad * (now * now - then * then) * run.board.mains.frequency
+    return bool(abs(stored) < BALANCE_SHARE * abs(stretch.statistics[rows["ADAPTER", ""], POWER]) + BALANCE_WATTS)
 
 
 def _asleep(run: _Run) -> bool:
@@ -250,7 +309,8 @@ def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int
         run.state = initial_state(run.compiled)
         run.zeroed += 1
         return True
-    falling = [k for ref, k in run.electrolytics.items() if k != index and _only_falls(run, stretch, rows, ref, before)]
+    falling = [k for ref, k in run.electrolytics.items() if k != index and ref != _awaited(run)
+               and _only_falls(run, stretch, rows, ref, before)]
     if falling and not run.unfed_done:
         run.unfed_done = True
         caps[falling] = 0.0
@@ -262,6 +322,12 @@ def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int
             run.zeroed += 1
             return True
     return False
+
+
+def _awaited(run: _Run) -> str:
+    """Ref of a controller's supply capacitor: it sinks to its level from above, and unfed it comes to the lockout by itself."""
+    supply = run.board.by_role(run.family.supply_role)
+    return supply.ref if supply is not None and _controller(run.board) is not None else ""
 
 
 def _only_falls(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], ref: str, before: np.ndarray) -> bool:

@@ -4,6 +4,7 @@ The compiled part is loaded on first use, because compiling costs seconds once p
 first screen.
 """
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 
@@ -70,6 +71,8 @@ class Stretch:
     steps: int
     trace: np.ndarray
     """(rows, 1 + nodes): time and the voltages of the watched nodes."""
+    reached: float = 0.0
+    """Time at the end [s]."""
 
 
 class NoConvergence(ArithmeticError):
@@ -114,11 +117,11 @@ def rest_state(compiled: Compiled) -> State:
 
 
 def run_stretch(compiled: Compiled, state: State, start: float, stop: float, watch: Watch | None = None,
-                quality: Quality = FINE, skip: float | None = None) -> Stretch:
+                quality: Quality = FINE, skip: float | None = None, wake: float = math.inf) -> Stretch:
     """Integrate from ``start`` to ``stop`` [s]; ``state`` is moved to the end point.
 
     The statistics leave out the first ``skip`` [s], the restart of a stretch that does not go on from another; by default
-    SWITCHING_START or a tenth of the stretch.
+    SWITCHING_START or a tenth of the stretch. From the time ``wake`` [s] on it ends early where a locked-out controller wakes.
 
     Raises NoConvergence when no step small enough is found.
     """
@@ -131,18 +134,41 @@ def run_stretch(compiled: Compiled, state: State, start: float, stop: float, wat
     status, steps, reached, swings, used = run(
         work, compiled.program, compiled.resistor, compiled.transfer, compiled.capacitor, compiled.winding,
         compiled.diode, compiled.bipolar, compiled.behaviour, compiled.source, compiled.port, state.capacitors, state.windings,
-        np.array([start, stop, start + skip, quality.largest_step, SMALLEST_STEP, quality.trusted_step]),
+        np.array([start, stop, start + skip, quality.largest_step, SMALLEST_STEP, quality.trusted_step, wake]),
         (quality.newton_share, quality.newton_absolute, quality.step_relative, watch.low, watch.high),
         np.array(watch.switch, dtype=np.int64),
         (watch.start, watch.interval, np.array(watch.nodes, dtype=np.int64), trace))
     if status != 0:
         raise NoConvergence(reached)
-    compiled.behaviour[4][:, CLOCK] -= (stop - start) * (compiled.behaviour[2] == CONTROLLER)
-    span = stop - start - skip
+    move_clocks(compiled, start - reached)
+    span = reached - start - skip
     stats = np.ascontiguousarray(work.stats.T)
     stats[:, [V_MEAN, I_MEAN, POWER]] /= span
     stats[:, [V_RMS, I_RMS]] = np.sqrt(np.maximum(stats[:, [V_RMS, I_RMS]] / span, 0.0))
-    return Stretch(stats, swings / span, steps, trace[:used])
+    return Stretch(stats, swings / span, steps, trace[:used], reached)
+
+
+def move_clocks(compiled: Compiled, time: float) -> None:
+    """Move what controllers remember as times by ``time`` [s]; after a stretch they count from its start again."""
+    compiled.behaviour[4][:, CLOCK] += time * (compiled.behaviour[2] == CONTROLLER)
+
+
+def joined(first: Stretch, first_time: float, second: Stretch, second_time: float) -> Stretch:
+    """Two stretches, of so many seconds each, as one."""
+    share = first_time / (first_time + second_time)
+    a, b = first.statistics, second.statistics
+    both = share * a + (1.0 - share) * b
+    both[:, [V_RMS, I_RMS]] = np.sqrt(share * a[:, [V_RMS, I_RMS]] ** 2 + (1.0 - share) * b[:, [V_RMS, I_RMS]] ** 2)
+    both[:, [V_MIN, I_MIN]] = np.minimum(a, b)[:, [V_MIN, I_MIN]]
+    both[:, [V_MAX, I_MAX]] = np.maximum(a, b)[:, [V_MAX, I_MAX]]
+    frequency = share * first.frequency + (1.0 - share) * second.frequency
+    return Stretch(both, frequency, first.steps + second.steps, second.trace, second.reached)
+
+
+def wake(compiled: Compiled) -> None:
+    """Let a run at time 0 begin with its controllers awake, as in operation."""
+    kinds, states = compiled.behaviour[2], compiled.behaviour[4]
+    states[kinds >= CONTROLLER, 0] = 1.0
 
 
 def _floors(compiled: Compiled, factors: tuple[float, float, float, float]) -> np.ndarray:

@@ -163,6 +163,19 @@ def next_event(behaviour, t):
 
 
 @njit(**OPTIONS)
+def resting(behaviour):
+    """True when there are controllers and all of them are locked out: nothing is to be caught in flight."""
+    kinds, states = behaviour[2], behaviour[4]
+    controllers = 0
+    for b in range(kinds.shape[0]):
+        if kinds[b] >= CONTROLLER:
+            controllers += 1
+            if states[b, 0] > 0.5:
+                return False
+    return controllers > 0
+
+
+@njit(**OPTIONS)
 def advance(v, behaviour, t, h):
     """Move the states over a step of ``h`` that ended at ``t``; returns True when something jumped."""
     nodes, _, kinds, params, states = behaviour

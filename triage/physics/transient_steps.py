@@ -27,6 +27,7 @@ from triage.physics.transient_behaviour import (
     behaviours_close,
     margin,
     next_event,
+    resting,
     stamp_behaviours,
 )
 from triage.physics.transient_devices import (
@@ -73,6 +74,8 @@ EULER_START = 10.0
 """First step as a multiple of the smallest."""
 AFTER_JUMP = 1e-10
 """Step after the drive of a controller has jumped [s]."""
+RESTING_STEP = 1e-4
+"""Largest step while every controller is locked out [s]: their supply climbs over hundreds of milliseconds then."""
 SAFETY, GROW_MOST, SHRINK_MOST, NEWTON_SHRINK = 0.8, 2.5, 0.15, 0.2
 """Share of the step size that the truncation error allows, and limits of its change [-]."""
 V_MIN, V_MAX, V_SUM, V_SQUARE, I_MIN, I_MAX, I_SUM, I_SQUARE, VI_SUM = range(9)
@@ -342,7 +345,8 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
     """Integrate from times[0] to times[1]; returns (status, steps, time reached, excursions, trace rows used).
 
     ``vc``, ``iw`` and the nodes in ``m`` are read and left at the end point. ``times`` = (start, stop, start of statistics,
-    largest step, smallest step, step below which the error is not asked). ``tolerances`` = (move of a blocked junction [-],
+    largest step, smallest step, step below which the error is not asked, time from which the waking of a locked-out controller
+    ends the run). ``tolerances`` = (move of a blocked junction [-],
     error of a conducting junction [V], error of a step [-], end and begin of an excursion [-]). ``trace`` = (start, interval,
     nodes, rows).
     """
@@ -396,8 +400,11 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
         steps += 1
         since += 1
         keep(m, h, euler)
+        slept = resting(behaviour)
         if advance(m.v, behaviour, t, h):
             since, worst, h = 0, 1.0, AFTER_JUMP
+        if slept and t >= times[6] and not resting(behaviour):
+            break
         overshoot = margin(m.v, behaviour, t)
         up, ended = excursion(m.v, swing, low, high, up)
         if t >= stats_from:
@@ -409,7 +416,7 @@ def run(m, program, resistor, transfer, capacitor, winding, diode, bipolar, beha
             used += 1
             next_trace += trace[1]
         h *= min(max(SAFETY * max(worst, 1e-6) ** (-1.0 / 3.0), SHRINK_MOST), GROW_MOST)
-        h = min(max(h, h_trust), h_max)
+        h = min(max(h, h_trust), max(h_max, RESTING_STEP) if resting(behaviour) else h_max)
     for c in range(vc.shape[0]):
         vc[c] = m.y[c]
     for w in range(iw.shape[0]):
