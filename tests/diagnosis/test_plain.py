@@ -19,7 +19,8 @@ from triage.diagnosis.composed import with_pairs
 from triage.diagnosis.conflicts import conflicts_of, hitting_sets
 from triage.diagnosis.costs import Costs
 from triage.diagnosis.engine import Job
-from triage.diagnosis.explain import outcomes, repair_words
+from triage.diagnosis.explain import hazard_words, outcomes, repair_words, suggestion
+from triage.diagnosis.learning import POOLED_STRENGTH, PROFILE_STRENGTH, factors
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of, tail
 from triage.diagnosis.next_reading import Candidate, Scorer
@@ -297,7 +298,7 @@ def test_ratios_of_the_entries_multiply_to_the_odds() -> None:
 
 
 @pytest.mark.parametrize(("chance", "words"), [
-    (0.0, "under 1 %"), (0.004, "under 1 %"), (0.006, "1 %"), (0.5, "50 %"), (0.994, "99 %"), (0.996, "over 99 %"),
+    (0.0, "under 1 %"), (0.004, "under 1 %"), (0.005, "under 1 %"), (0.006, "1 %"), (0.995, "over 99 %"), (0.5, "50 %"), (0.994, "99 %"), (0.996, "over 99 %"),
 ])
 def test_chances_in_words_prove_nothing(chance: float, words: str) -> None:
     assert percent_words(chance) == words
@@ -383,3 +384,51 @@ def test_an_axis_holds_all_draws_with_a_margin_or_ends_where_the_meter_does() ->
     assert 8.0 / CELL - 1 <= first <= 8.0 / CELL + 1 and free.cells - last == pytest.approx(8.0 / CELL, abs=2)
     cut = Axis.spanning(np.array([1e6, 1.9e6]), meter)
     assert cut.ends_at_limit and cut.edge(cut.cells) == 2e6 and int(cut.index(2.1e6)) == cut.cells
+
+
+def test_a_suggestion_says_what_is_undecided_and_what_the_reading_does_about_it() -> None:
+    """The three likeliest repairs from one in a hundred on; a reading whose outcomes all mean the same repair only sharpens."""
+    belief = np.array([0.005, 0.5, 0.1, 0.2, 0.15, 0.045])
+    choice = next(one for one in offered(belief) if one.probe == sb.OHMS_R1)
+    told = suggestion(MODEL, belief, ACTIONS, choice)
+    assert "resistance a to b tells most for its time" in told.reason
+    assert told.reason.endswith("Repairs open now: R1 60 %, C1 20 %, D1 15 %.")
+    assert told.probe == sb.OHMS_R1 and told.minutes == choice.minutes and told.gain == choice.gain and not told.again
+    assert told.bits > 0.3 and told.hazard == ""
+    sure = np.array([0.0, 0.995, 0.0, 0.005, 0.0, 0.0])
+    dull = suggestion(MODEL, sure, ACTIONS, next(one for one in offered(sure) if one.probe == sb.VOLTS))
+    assert "makes the likeliest repair surer or doubtful" in dull.reason
+    assert dull.reason.endswith("Repairs open now: R1 over 99 %.")
+    assert "one hand" in dull.hazard
+    plug = hazard_words(Probe("watts", "a", "b", "full"))
+    assert "at the plug only" in plug and hazard_words(sb.OHMS_R1) == ""
+
+
+def test_only_the_likeliest_repairs_are_weighed(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Minutes of each, dearer by the failed repair where it does not cure; by hand."""
+    belief = np.array([0.0, 0.1, 0.0, 0.5, 0.4, 0.0])
+    keep = np.array([1, 3, 4])
+    rows = look_ahead.repair_costs(ACTIONS, keep, belief, COSTS, sb.KINDS, 40.0)
+    assert rows.tolist() == [[49.0, 9.0, 49.0], [49.0, 49.0, 9.0], [9.0, 49.0, 49.0]], "C1, D1, R1; none that nobody believes"
+    monkeypatch.setattr(look_ahead, "REPAIRS", 2)
+    assert look_ahead.repair_costs(ACTIONS, keep, belief, COSTS, sb.KINDS, 40.0).tolist() == rows[:2].tolist()
+    assert look_ahead.expected_cost(rows, belief[keep]) == pytest.approx(0.1 * 49.0 + 0.5 * 9.0 + 0.4 * 49.0)
+
+
+def test_a_fault_that_some_jobs_could_not_have_counts_for_the_others_only() -> None:
+    """Ten jobs of which only four boards have the part: expected 4 x 0.5, found once."""
+    with_it, without = {sb.R1_OPEN: 0.5, sb.C1_SHORT: 0.5}, {sb.C1_SHORT: 1.0}
+    found = factors([with_it] * 4 + [without] * 6, [sb.R1_OPEN])
+    assert found[sb.R1_OPEN] == pytest.approx((POOLED_STRENGTH + 1.0) / (POOLED_STRENGTH + 2.0))
+    assert found[sb.C1_SHORT] == pytest.approx(POOLED_STRENGTH / (POOLED_STRENGTH + 8.0))
+    here = factors([with_it] * 4, [], [with_it, without], [sb.R1_OPEN])
+    pooled = POOLED_STRENGTH / (POOLED_STRENGTH + 2.0)
+    assert here[sb.R1_OPEN] == pytest.approx((PROFILE_STRENGTH * pooled + 1.0) / (PROFILE_STRENGTH + 0.5))
+
+
+def test_what_nothing_listed_explains_is_laid_to_at_most_two_parts() -> None:
+    """R1 and C1 read wrong at once, each measured; together they explain it, and no three are named."""
+    entries = (Reading(sb.OHMS_R1, 5e4), Reading(sb.OHMS_C1, 2e3), Reading(sb.DIODE_D1, 0.6))
+    left = sb.diagnosis().what_is_left(Job(entries))
+    assert frozenset({"R1", "C1"}) in left and all(len(one) <= 2 for one in left)
+    assert sb.diagnosis().what_is_left(Job((Reading(sb.OHMS_R1, 1e3),))) == []

@@ -49,4 +49,4 @@ def suspect_name(hypothesis: Hypothesis) -> str:
 def percent_words(chance: float) -> str:
     """A chance in whole percent; never 0 or 100, which no reading can prove."""
     percent = 100 * chance
-    return "over 99 %" if percent > 99.5 else "under 1 %" if percent < 0.5 else f"{percent:.0f} %"
+    return "over 99 %" if percent >= 99.5 else "under 1 %" if percent <= 0.5 else f"{percent:.0f} %"
