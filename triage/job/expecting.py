@@ -29,7 +29,7 @@ from triage.diagnosis.settings import Instrument
 from triage.families import family_of
 from triage.families.cold import cold_probes, cold_samples, lifted_probes, specimens
 from triage.families.live import live_probes, state_class, summary
-from triage.families.points import SOLUTION, OperatingPoints, Point, point_key
+from triage.families.points import OperatingPoints, Point, point_key
 from triage.job.cache import Kept
 from triage.job.progress import report
 from triage.job.views import ReadingExpected
@@ -39,6 +39,8 @@ from triage.quantities import engineering
 DRAWS = 24
 """Specimens. On a synthetic adapter a prototype needed 37.6 / 32.5 / 31.8 / 30.3 minutes a job with 5 / 10 / 30 / 100 of them."""
 SEED = 1
+UNPOWERED = 2
+"""Raised whenever the unpowered solution changes, so that kept cold readings of an older one are not used."""
 HEALTHY: tuple[Fault, ...] = ()
 RUN_ITS_COURSE = 0.85
 """Chance that a destruction ran its course before the adapter was switched off [-]. Common practice, no
@@ -192,7 +194,7 @@ def _key(board: Board, probes: tuple[Probe, ...], meter: Meter = HAND_METER) -> 
     for name in ("id", "title", "note", "drawing", "label", "mains"):
         content.pop(name)
     content["probes"] = [str(probe) for probe in probes]
-    content["solution"] = [SOLUTION, DRAWS, SEED]
+    content["solution"] = [UNPOWERED, DRAWS, SEED]
     if meter != HAND_METER:
         content["meter"] = astuple(meter)
     return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()[:20]
