@@ -298,7 +298,8 @@ def test_ratios_of_the_entries_multiply_to_the_odds() -> None:
 
 
 @pytest.mark.parametrize(("chance", "words"), [
-    (0.0, "under 1 %"), (0.004, "under 1 %"), (0.005, "under 1 %"), (0.006, "1 %"), (0.995, "over 99 %"), (0.5, "50 %"), (0.994, "99 %"), (0.996, "over 99 %"),
+    (0.0, "under 1 %"), (0.004, "under 1 %"), (0.005, "under 1 %"), (0.006, "1 %"), (0.995, "over 99 %"),
+    (0.5, "50 %"), (0.994, "99 %"), (0.996, "over 99 %"),
 ])
 def test_chances_in_words_prove_nothing(chance: float, words: str) -> None:
     assert percent_words(chance) == words
