@@ -168,6 +168,21 @@ def run_fuzz(kind: str, examples: int) -> None:
     print(f"{kind}: {refused[0]} read, {refused[1]} refused")
 
 
+@pytest.mark.parametrize(("kind", "old", "new"), [
+    ("template", '\n[[part]]\nref = ', '\n[[part]]\nvalue = [1]\nref = '),
+    ("template", '\n[[part]]\nref = ', '\n[[part]]\nratings = "x"\nref = '),
+    ("template", '\n[[part]]\nref = ', '\n[[part]]\nfault_modes = 3\nref = '),
+    ("template", '\n[[part]]\nref = ', '\n[[part]]\nwhen = [1]\nref = '),
+    ("sizes", "columns = [", "columns = [[1], "),
+    ("sizes", "\n[[kind]]\n", "\n[[kind]]\nvalues = 3\n"),
+    ("sizes", "\n[[kind]]\n", '\n[[kind]]\ndecade = ["a", 1]\n'),
+])  # fmt: skip
+def test_what_the_long_run_found_is_refused(kind: str, old: str, new: str) -> None:
+    sound = LOADERS[kind][2]
+    assert old in sound
+    assert load_or_refuse(kind, sound.replace(old, new, 1).encode())
+
+
 @pytest.mark.parametrize("kind", LOADERS)
 def test_any_file_is_read_or_refused_in_one_line(kind: str) -> None:
     run_fuzz(kind, SHORT)

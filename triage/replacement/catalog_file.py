@@ -205,8 +205,8 @@ def _rows(
 ) -> Iterator[dict[str, Any]]:
     columns, rows = table.get("columns"), table.get("rows")
     where = f"{schema.file}, {name}"
-    if not isinstance(columns, list) or not isinstance(rows, list):
-        faults.append(CatalogError(where, "columns or rows are missing", "columns and rows"))
+    if not isinstance(columns, list) or not isinstance(rows, list) or not all(isinstance(key, str) for key in columns):
+        faults.append(CatalogError(where, "columns or rows are missing or no lists", "columns, a list of names, and rows"))
         return
     shared = {key: value for key, value in table.items() if key not in _SERIES_KEYS}
     for index, row in enumerate(rows, start=1):
@@ -294,7 +294,11 @@ def _sizes(schema: _Schema, data: Mapping[str, Any], faults: list[CatalogError])
     needed = tuple(key for key in schema.needed if key != schema.value_key)
     for table in data.get("kind", ()):
         name = str(table.get("kind", "a kind"))
-        values = tuple(table.get("values", ()))
+        lists = [table.get(key, []) for key in ("values", "decade")]
+        if not all(isinstance(one, list) and all(map(_is_number, one)) for one in lists):
+            faults.append(CatalogError(f"{schema.file}, {name}", "values or decade", "lists of numbers"))
+            continue
+        values, decade = map(tuple, lists)
         lowest, highest = table.get("lowest", min(values, default=None)), table.get("highest", max(values, default=None))
         if not _is_number(lowest) or not _is_number(highest) or not 0 < lowest <= highest:
             faults.append(CatalogError(f"{schema.file}, {name}", f"{lowest!r} to {highest!r}", "lowest and highest value"))
@@ -304,7 +308,6 @@ def _sizes(schema: _Schema, data: Mapping[str, Any], faults: list[CatalogError])
             wrong = list(_record_faults(schema, name, record, needed))
             faults.extend(wrong)
             if not wrong:
-                decade = tuple(table.get("decade", ()))
                 yield GenericSize(_part(schema, record), float(lowest), float(highest), values, decade)
 
 

@@ -125,8 +125,8 @@ def _place(check: Check, row: Mapping[str, Any], number: int) -> Place:
     pins = check.table(row, "pins", at)
     if missing := [pin for pin in kind.pins if not isinstance(pins.get(pin), str)]:
         check.fault(f"{at} pins", sorted(map(str, pins)), "nodes for " + ", ".join(missing))
-    value = {**(role.value if role else {}), **row.get("value", {})}
-    ratings = {**(role.ratings if role else {}), **row.get("ratings", {})}
+    value = {**(role.value if role else {}), **(check.table(row, "value", at) if "value" in row else {})}
+    ratings = {**(role.ratings if role else {}), **(check.table(row, "ratings", at) if "ratings" in row else {})}
     for key in value:
         if key not in kind.values:
             check.fault(f"{at} value {key}", key, "one of " + ", ".join(kind.values))
@@ -136,14 +136,15 @@ def _place(check: Check, row: Mapping[str, Any], number: int) -> Place:
     for key in ratings:
         if key not in RATING_UNITS:
             check.fault(f"{at} ratings {key}", key, "one of " + ", ".join(RATING_UNITS))
-    modes = tuple(row.get("fault_modes", ()))
-    if any(mode not in kind.fault_modes for mode in modes):
+    modes = row.get("fault_modes", [])
+    if not isinstance(modes, list) or any(mode not in kind.fault_modes for mode in modes):
         check.fault(f"{at} fault_modes", modes, "a list out of " + ", ".join(kind.fault_modes))
+        modes = []
     when = row.get("when", "")
-    if when and when not in FEATURES:
+    if not isinstance(when, str) or (when and when not in FEATURES):
         check.fault(f"{at} when", when, "one of " + ", ".join(FEATURES))
     return Place(ref, name, {str(k): str(v) for k, v in pins.items()}, kind.key, value, ratings, str(when),
-                 bool(row.get("link", role.link if role else False)), bool(role and role.precise), modes)
+                 bool(row.get("link", role.link if role else False)), bool(role and role.precise), tuple(modes))
 
 
 def _features(check: Check, names: object, at: str) -> frozenset[str]:
