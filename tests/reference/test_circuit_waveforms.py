@@ -6,7 +6,7 @@ import pytest
 from tests.reference.reference_circuits import PROFILES, SOURCE, healthy_table
 from triage.board.fault import Fault
 from triage.board.profile import load_profile
-from triage.families.waveforms import MOST_POINTS, waveforms
+from triage.families.waveforms import MOST_POINTS, ripple, waveforms
 
 BOARD = load_profile(PROFILES["rcc-zener"])
 
@@ -63,3 +63,15 @@ def test_mains_frequency_families_show_their_reservoir_and_no_switch():
     found = waveforms(board, (), mains=board.mains.nominal, load=board.full_load)
     assert found.switch is None and found.frequency == 0.0
     assert 0.0 < np.ptp(found.output.voltage) < np.ptp(found.bulk.voltage), "the regulator takes the ripple away"
+
+
+@pytest.mark.parametrize("ref", ["C1", "C5"])
+def test_ripple_current_is_that_of_the_simulated_circuit(ref, outside_check):
+    """The owner's bound for currents, 10 %; both parts together are the whole."""
+    found = ripple(BOARD, ref, mains=BOARD.mains.low, load=BOARD.full_load)
+    known = healthy_table("rcc-zener")["low_full", ref, "i_ripple_rms"]
+    outside_check("waveforms", SOURCE, float(np.hypot(found.slow, found.fast)), known, 0.10, what=f"{ref} ripple current")
+    if ref == "C5":
+        assert found.fast > 0.95 * known, "behind the output rectifier nearly all of it is switching"
+    else:
+        assert 0.3 * known < found.slow < 0.95 * known, "the bulk capacitor is filled by the mains and drawn from by the switch"

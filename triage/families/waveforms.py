@@ -14,12 +14,16 @@ from triage.board.part import Board
 from triage.families import family_of
 from triage.families.family import Family
 from triage.families.steady import Traced, rated_start, settle, swinging_pin
-from triage.physics.transient import QUICK, Quality
+from triage.physics.transient import I_MEAN, I_RMS, QUICK, Quality
 
 SAMPLES_PER_SECOND = 1e7
 """Ten points a microsecond: the spike at turn-off of a small flyback lasts some tenths of one [1/s]."""
 SWITCH_PERIODS = 1.5
 """Switching periods shown, so that one is seen whole [-]."""
+AVERAGED = 4.0
+"""Switching periods averaged over where only what follows the mains is wanted [-]."""
+MOST_BINS = 250
+"""Averages over a mains period: the charge of a bulk capacitor lasts a tenth of it."""
 BEFORE_PEAK = 0.15
 """Share of the stretch in front of its highest value [-]."""
 STILL_SPAN = 5e-5
@@ -101,6 +105,56 @@ def waveforms(board: Board, faults: Sequence[Fault], *, mains: float, load: floa
     switch, bulk, output = ends
     return Waveforms(about_peak(time, between(switch), span) if switch else None,
                      thinned(time, between(bulk)) if bulk else None, thinned(time, between(output)), frequency)
+
+
+@dataclass(frozen=True, slots=True)
+class Ripple:
+    """The ripple current of a capacitor, taken apart."""
+
+    slow: float
+    """What follows the mains [A rms]."""
+    fast: float
+    """What follows the switching [A rms]; the squares of both add up to that of the whole."""
+    frequency: float
+    """Of the switching [Hz]; 0 where nothing swings."""
+
+
+def ripple(board: Board, ref: str, *, mains: float, load: float, quality: Quality = QUICK) -> Ripple:
+    """The ripple current of a capacitor of the sound board. mains: [V rms]. load: [ohm].
+
+    The part that follows the mains is the charge that its voltage, averaged over some switching periods, takes up and gives
+    back. Raises KeyError for an unknown part, NoConvergence when the solution breaks off.
+    """
+    family, part = family_of(board.family), board.part(ref)
+    plus, minus = part.pins["plus"], part.pins["minus"]
+    period = 1.0 / board.mains.frequency
+    settled = settle(board, family, (), mains=mains, load=load, quality=quality, start=rated_start(board, family),
+                     traced=Traced((plus, minus), round(SAMPLES_PER_SECOND * period)))
+    row, trace = settled.row(ref), settled.stretch.trace
+    whole = float(np.sqrt(max(row[I_RMS] ** 2 - row[I_MEAN] ** 2, 0.0)))
+    frequency = settled.stretch.frequency
+    if frequency <= 0.0:
+        return Ripple(whole, 0.0, 0.0)
+    slow = min(slow_current(trace[:, 0], trace[:, 1] - trace[:, 2], part.value["capacitance"], frequency), whole)
+    return Ripple(slow, float(np.sqrt(whole**2 - slow**2)), frequency)
+
+
+def slow_current(time: np.ndarray, voltage: np.ndarray, capacitance: float, frequency: float) -> float:
+    """Current through a capacitor besides the switching [A rms], from its voltage averaged over switching periods.
+
+    time: [s], one mains period. voltage: [V]. capacitance: [F]. frequency: of the switching [Hz].
+
+    >>> t = np.arange(0.0, 0.02, 1e-6)
+    >>> hum, swings = np.sin(2 * np.pi * 100 * t), 0.1 * np.sin(2 * np.pi * 50e3 * t)
+    >>> round(slow_current(t, 300.0 + hum + swings, 10e-6, 50e3) / (2 * np.pi * 100 * 10e-6 / 2**0.5), 2)
+    1.0
+    """
+    bins = max(min(int((time[-1] - time[0]) * frequency / AVERAGED), MOST_BINS), 2)
+    edges = np.linspace(time[0], time[-1], bins + 1)
+    grid = np.linspace(time[0], time[-1], bins * 50)
+    means = np.interp(grid, time, voltage).reshape(bins, 50).mean(axis=1)
+    current = capacitance * np.diff(means) / (edges[1] - edges[0])
+    return float(np.sqrt(np.mean(current**2) - np.mean(current) ** 2))
 
 
 def about_peak(time: np.ndarray, voltage: np.ndarray, span: float) -> Waveform:

@@ -6,6 +6,7 @@ rounded before it is used, so that a kept and a new answer are the same to the l
 """
 
 import contextlib
+import math
 from collections.abc import Callable, Iterator, Sequence
 from functools import cached_property
 from typing import TYPE_CHECKING
@@ -23,6 +24,7 @@ from triage.job.cache import Cache, Kept, Shipped
 from triage.job.display import plain
 from triage.job.learning import NONE, Experience, handbook_shares
 from triage.job.meters import instruments_of, meter_of
+from triage.job.progress import report
 from triage.job.views import (
     CandidateView,
     ChartView,
@@ -40,6 +42,7 @@ if TYPE_CHECKING:
     from triage.job.curves import Curves
     from triage.replacement.catalog import Catalog
     from triage.replacement.catalog_part import CatalogPart
+    from triage.replacement.combinations import SwitchingRipple
     from triage.replacement.demand import Demand
     from triage.replacement.drawers import Drawers, StockItem
     from triage.replacement.ranking import Candidate
@@ -204,7 +207,8 @@ class Wiring:
         """Several parts that together meet the demand, those in the drawers first; none for a safety part."""
         from triage.replacement.combinations import combinations
 
-        found = combinations(self.catalog, self._demand(board, ref), workshop.own_drawers())
+        demand = self._demand(board, ref)
+        found = combinations(self.catalog, demand, workshop.own_drawers(), switching=self._switching(board, demand))
         return tuple(
             CombinationView(
                 plain(one.text), tuple(plain(part.type) for part in one.parts), one.arrangement, one.value,
@@ -212,6 +216,31 @@ class Wiring:
             )
             for one in found
         )  # fmt: skip
+
+    def _switching(self, board: Board, demand: "Demand") -> "SwitchingRipple | None":
+        """What of the ripple a film capacitor beside an electrolytic could take; None where nothing switches."""
+        from triage.families.points import fingerprint
+        from triage.families.waveforms import ripple
+        from triage.physics.transient import NoConvergence
+        from triage.replacement.combinations import SwitchingRipple, lowest_resistance
+
+        part = board.part(demand.ref)
+        if part.kind != "electrolytic" or demand.safety:
+            return None
+        key = f"ripple-{demand.ref}-{fingerprint(board)}"
+        kept = self._kept.get(key)
+        if not isinstance(kept, list) or len(kept) != 3:
+            report("the ripple current")
+            try:
+                found = ripple(board, demand.ref, mains=board.mains.low, load=board.full_load)
+            except NoConvergence:
+                return None
+            kept = [float(f"{value:.7g}") for value in (found.slow, found.fast, found.frequency)]
+            self._kept.put(key, kept)
+        slow, fast, frequency = map(float, kept)
+        if fast <= 0.0:
+            return None
+        return SwitchingRipple(fast / math.hypot(slow, fast), frequency, lowest_resistance(self.catalog, demand, part))
 
     def stock(self) -> tuple[StockView, ...]:
         """What lies in the drawers, with what the catalog knows of it."""

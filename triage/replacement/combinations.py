@@ -10,6 +10,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from itertools import combinations_with_replacement
 
+from triage.board.part import Part
 from triage.replacement.catalog import Catalog
 from triage.replacement.catalog_part import CatalogPart
 from triage.replacement.demand import Demand, Requirement
@@ -23,6 +24,8 @@ UNKNOWN_TOLERANCE = 10.0
 """Tolerance taken where a part gives none [%]; common practice, no source."""
 IMPEDANCE_SPREAD = 0.3
 """Spread of impedance between capacitors of one type, either way; common practice, no source."""
+WARM = 0.5
+"""Resistance of a warm electrolytic over that at 20 degC [-]; common practice, no source."""
 MOST_STOCK = 200
 """Kinds of parts from the drawers that are paired with each other."""
 
@@ -110,6 +113,20 @@ def film_share(resistance: float, capacitance: float, frequency: float) -> float
     """
     reactance = 1.0 / (2.0 * math.pi * frequency * capacitance)
     return reactance / math.hypot(resistance, reactance)
+
+
+def lowest_resistance(catalog: Catalog, demand: Demand, old: Part) -> float:
+    """Lowest resistance that an electrolytic in this position may have at the switching frequency [ohm].
+
+    The lowest impedance at 100 kHz of any that the catalog has in the window of capacitance, and half the resistance of the old
+    part: warm, a good one has about half of what a sheet says for 20 degC (common practice, no source).
+    """
+    window = demand.window("c_F") or (0.0, math.inf)
+    listed = [
+        impedance for one in catalog.parts("electrolytic")
+        if window[0] <= one.numbers["c_F"] <= window[1] and (impedance := one.number("z_100kHz_20C_ohm"))
+    ]
+    return min([WARM * impedance for impedance in listed] + [WARM * old.value["esr"]] * ("esr" in old.value), default=0.0)
 
 
 def _order(made: Combination, demand: Demand) -> tuple[bool, int, float, str]:
