@@ -12,6 +12,8 @@ from triage.board.kinds import leak_resistance
 from triage.board.part import Board
 from triage.board.probe import Probe
 from triage.board.profile import load_profile
+from triage.families import family_of
+from triage.families.steady import swinging_pin
 from triage.physics.network import HAND_METER, Meter
 from triage.safety.instruments import Instruments
 from triage.safety.instruments import load as load_instruments
@@ -82,7 +84,10 @@ def cold_table(circuit: str) -> dict[str, dict[Probe, float]]:
 
 
 def live_table(circuit: str, board: Board) -> dict[tuple[str, str], tuple[tuple[Fault, ...], dict[Probe, float]]]:
-    """(fault, condition) -> (collateral, live readings); conditions ending in ``_after`` have the collateral applied."""
+    """(fault, condition) -> (collateral, live readings); conditions ending in ``_after`` have the collateral applied.
+
+    A frequency in a hiccup is nan: the record gives that inside the bursts, which no counter shows.
+    """
     lines = _lines(circuit, "live")
     names = lines[0][3:]
     table = {}
@@ -90,6 +95,8 @@ def live_table(circuit: str, board: Board) -> dict[tuple[str, str], tuple[tuple[
         load = condition.removesuffix("_after")
         readings = {probe: number(value) for name, value in zip(names, values, strict=True)
                     if (probe := observation(board, name, load)) is not None}
+        if float(dict(zip(names, values, strict=True)).get("hiccup") or 0.0) > 0.0:
+            readings |= {probe: math.nan for probe in readings if probe.function == "hertz"}
         table[fault, condition] = (fault_of(chain), readings)
     return table
 
@@ -110,8 +117,9 @@ def observation(board: Board, name: str, load: str) -> Probe | None:
     if name == "i_ac":
         return Probe("amps_ac", "mains_l", back, load)
     if name == "f_sw":
-        switch = board.by_role("main switch")
-        return Probe("hertz", switch.pins["collector"], primary, load) if switch else None
+        family = family_of(board.family)
+        switch = board.by_role(family.switch_role)
+        return Probe("hertz", switch.pins[swinging_pin(switch, family)], primary, load) if switch else None
     return None
 
 
