@@ -13,17 +13,20 @@ from triage.board.fault import Fault, Hypothesis
 from triage.board.probe import Probe
 from triage.diagnosis import look_ahead
 from triage.diagnosis.actions import Actions
+from triage.diagnosis.ahead import repair_plan
+from triage.diagnosis.ambiguity import ambiguity_sets
 from triage.diagnosis.axis import CELL, WIDTHS, Axis, draw_width
 from triage.diagnosis.bins import bin_edges
 from triage.diagnosis.composed import with_pairs
 from triage.diagnosis.conflicts import conflicts_of, hitting_sets
 from triage.diagnosis.costs import Costs
-from triage.diagnosis.engine import Job
+from triage.diagnosis.engine import Diagnosis, Job
 from triage.diagnosis.explain import hazard_words, outcomes, repair_words, suggestion
 from triage.diagnosis.learning import POOLED_STRENGTH, PROFILE_STRENGTH, factors
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of, tail
 from triage.diagnosis.next_reading import Candidate, Scorer
+from triage.diagnosis.priors import Prior
 from triage.diagnosis.second_look import nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
 from triage.diagnosis.settings import Instrument, Settings
 from triage.diagnosis.verdict import settled
@@ -433,3 +436,29 @@ def test_what_nothing_listed_explains_is_laid_to_at_most_two_parts() -> None:
     left = sb.diagnosis().what_is_left(Job(entries))
     assert frozenset({"R1", "C1"}) in left and all(len(one) <= 2 for one in left)
     assert sb.diagnosis().what_is_left(Job((Reading(sb.OHMS_R1, 1e3),))) == []
+
+
+def test_repairs_are_tried_by_chance_for_their_minutes() -> None:
+    """Before anything was seen, by hand: 0.4/10, 0.3/9, twice 0.1/9, 0.1/14; none below a fiftieth."""
+    steps = sb.diagnosis().repair_plan(Job(()))
+    assert [one.refs for one in steps] == [(), ("R1",), ("C1",), ("D1",), ("D1", "R1")]
+    assert [one.minutes for one in steps] == [10.0, 9.0, 9.0, 9.0, 14.0]
+    assert [one.probability for one in steps] == pytest.approx([0.4, 0.3, 0.1, 0.1, 0.1])
+    few = repair_plan(ACTIONS, np.array([0.0, 0.97, 0.0, 0.02, 0.01, 0.0]), COSTS, sb.KINDS)
+    assert [one.refs for one in few] == [("R1",), ("C1",)]
+
+
+def test_sets_that_no_reading_tells_apart_chain_by_twice_the_window() -> None:
+    values = {"a": 0.0, "b": 2.0, "c": 4.1, "d": math.inf, "e": math.inf, "f": 4.1}
+    assert ambiguity_sets(values, 1.0) == [["a", "b"], ["c", "f"], ["d", "e"]]
+    assert ambiguity_sets(values, 1.1) == [["a", "b", "c", "f"], ["d", "e"]]
+    assert ambiguity_sets({}, 1.0) == [] and ambiguity_sets({"a": math.inf, "b": 1.0}, 5.0) == [["b"], ["a"]]
+
+
+def test_what_the_leading_suspects_would_show_is_their_middle_draw() -> None:
+    """Of an even number of draws the lower middle one; draws that cannot be taken are left out."""
+    samples = E.samples.copy()
+    samples[1, 1, :4], samples[1, 1, 4:] = [4.0, 1.0, 3.0, 2.0], np.nan
+    found = Diagnosis(replace(E, samples=samples), Prior(sb.HYPOTHESES, np.eye(6)[1], {}), sb.KINDS, sb.SIDES)
+    (only,) = found.expected(Job(()), sb.OHMS_C1)
+    assert only.value == 2.0 and only.suspect == "R1 open" and only.probability == pytest.approx(1.0)
