@@ -538,6 +538,13 @@ class FakeBench:
     def candidates(self, ref: str) -> tuple[v.CandidateView, ...]:
         return tuple(self.ask(ref, one[0]) for one in _TYPES if one[3])
 
+    def combinations(self, ref: str) -> tuple[v.CombinationView, ...]:
+        if ref != "R1":
+            return ()
+        half = "metal film 510k 0.5 W 350 V"
+        arithmetic = ("510 kohm + 510 kohm = 1.02 Mohm", "voltage at most 52.5% of 447 V = 235 V, rated 350 V")
+        return (v.CombinationView(f"2 x {half} in series: 1.02 Mohm", (half, half), "series", 1.02e6, arithmetic, True),)
+
     def ask(self, ref: str, type: str) -> v.CandidateView:
         for name, part_class, score, accepted, margins in _TYPES:
             if name.lower() == type.lower():

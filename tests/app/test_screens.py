@@ -178,6 +178,37 @@ def test_a_candidate_is_fitted_and_its_stresses_are_shown(tmp_path):
     play(tmp_path, story, at_bench=True)
 
 
+def test_several_parts_together_are_worked_out_when_asked_and_noted(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, "f5")
+        await pilot.press("shift+tab")
+        pilot.app.screen.query_one("#ref").value = "R1"  # type: ignore[attr-defined]
+        pilot.app.screen.query_one("#ref").focus()
+        await press(pilot, "enter", "end")
+        await settle(pilot)
+        assert "several parts together: Enter works them out" in text_of(pilot.app)
+        await press(pilot, "enter", "end")
+        await settle(pilot)
+        text = text_of(pilot.app)
+        assert "both in the drawers  2 x metal film 510k" in text and "voltage at most 52.5%" in text
+        await press(pilot, "enter", "enter")
+        assert "note: fitted at R1: 2 x metal film 510k" in pilot.app.desk.view.entries[-1].text  # type: ignore[attr-defined]
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_safety_parts_are_offered_no_combination(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, "f5")
+        pilot.app.screen.query_one("#ref").value = "RF1"  # type: ignore[attr-defined]
+        pilot.app.screen.query_one("#ref").focus()
+        await press(pilot, "enter")
+        text = text_of(pilot.app)
+        assert "like for like only" in text and "several parts together" not in text
+
+    play(tmp_path, story, at_bench=True)
+
+
 def test_a_half_read_marking_finds_parts_while_typing_and_shows_why_one_is_refused(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await found(pilot)

@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from triage.board.part import Board
     from triage.job.draft_views import DraftView, FamilyView
     from triage.job.progress import Listener
-    from triage.job.views import CandidateView, ChartView, DemandView, JobView, MatchView, MoveView, StressView
+    from triage.job.views import CandidateView, ChartView, CombinationView, DemandView, JobView, MatchView, MoveView, StressView
 
 
 class OpenJob(Protocol):
@@ -78,6 +78,9 @@ class OpenJob(Protocol):
 
     def candidates(self, ref: str) -> tuple[CandidateView, ...]:
         """Catalog parts for a position, best first."""
+
+    def combinations(self, ref: str) -> tuple[CombinationView, ...]:
+        """Several parts that together do for a position what one should."""
 
     def ask(self, ref: str, type: str) -> CandidateView:
         """One catalog part held against a position, with what it fails."""

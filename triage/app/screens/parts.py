@@ -7,12 +7,29 @@ from textual.containers import Horizontal
 from textual.widgets import Input
 
 from triage.app.frame import Frame
-from triage.app.lines import Line, Span, line
-from triage.app.text.parts import candidate_detail, candidate_line, demand_lines, match_line, reason_lines
+from triage.app.lines import Line, Span, line, wrapped
+from triage.app.text.parts import (
+    candidate_detail,
+    candidate_line,
+    combination_detail,
+    combination_line,
+    demand_lines,
+    match_line,
+    reason_lines,
+)
 from triage.app.text.stress import before_after, with_it
 from triage.app.widgets.field import ChoiceField, Field
 from triage.app.widgets.panel import ListPanel, Panel
-from triage.job.views import CandidateView, DemandView, JobView, MatchView, StressView
+from triage.job.views import CandidateView, CombinationView, DemandView, JobView, MatchView, StressView
+
+_TOGETHER = "together "
+"""Keys of the lines with several parts begin so; no type of the catalog does."""
+_WHY = wrapped(
+    "Where one part will not do or is not in the drawers: resistors in series or parallel, electrolytics in parallel, a film "
+    "capacitor beside an electrolytic, whose ripple current is solved first; Esc stops that.",
+    78,
+)
+_OFFER = "Enter works them out"
 
 
 class PartsScreen(Frame):
@@ -34,6 +51,10 @@ class PartsScreen(Frame):
         self._fitted_here: set[str] = set()
         self._sure = ("", "")
         """Position and type on which Enter was pressed once."""
+        self._together: dict[str, CombinationView] = {}
+        """Key of a line -> several parts that will do together."""
+        self._combined = _OFFER
+        """What the line for several parts says; empty once they are listed."""
         self._with: dict[tuple[str, str], tuple[StressView, ...] | None] = {}
         """Position and type -> the stresses with it; None while they are computed."""
 
@@ -83,7 +104,8 @@ class PartsScreen(Frame):
             return
         if ref == self._ref:
             return
-        self._ref, self._candidates, self._asked_for = ref, {}, None
+        self._ref, self._candidates, self._asked_for, self._together = ref, {}, None, {}
+        self._combined = _OFFER
         self.panel("demand").show((line(Span(f"computing what {ref} must withstand...", "near")),))
         self.ask(
             "demand",
@@ -92,6 +114,19 @@ class PartsScreen(Frame):
             self._failed,
         )
         self.ask("stress", lambda bench: bench.stresses(), self._keep_before, self._ask_failed, long=True)
+
+    def _combine(self, ref: str) -> None:
+        """Behind the single parts, several that will do together; for an electrolytic that may take a solution of its own."""
+
+        def show(found: tuple[CombinationView, ...]) -> None:
+            if self._ref == ref:
+                self._together = {f"{_TOGETHER}{number}": one for number, one in enumerate(found)}
+                self._combined = "" if found else "none that passes every rule"
+                self._fill()
+
+        self._combined = "computing..."
+        self._fill()
+        self.ask("combinations", lambda bench: bench.combinations(ref), show, self._ask_failed, long=True)
 
     def _keep_before(self, found: tuple[StressView, ...]) -> None:
         self._before = found
@@ -114,12 +149,21 @@ class PartsScreen(Frame):
             head = f"catalog parts that {marking!r} may mean, asked for {self._ref or 'no position yet'}"
         else:
             rows = [(one.type, candidate_line(one, self.wide)) for one in self._candidates.values() if one.accepted]
+            rows += [(key, combination_line(one, self.wide)) for key, one in self._together.items()]
+            if self._combined and self._asked_for is not None and not self._asked_for.safety_part:
+                rows.append((_TOGETHER, line(Span("both ", "near"), f"several parts together: {self._combined}")))
             head = f"rated for {self._ref}, best first" if rows else f"no candidate for {self._ref} yet"
         self.query_one("#list", ListPanel).fill(rows, line(Span(head.ljust(self.wide), "head")))
         self._show_detail()
 
     def _show_detail(self) -> None:
         key = self.query_one("#list", ListPanel).key
+        if key == _TOGETHER:
+            self.panel("detail").show(_WHY)
+            return
+        if key in self._together:
+            self.panel("detail").show(combination_detail(self._together[key], self.wide), top=0)
+            return
         known = self._candidates.get(key)
         if known is not None:
             self._tell(known, (line(Span("with it: computing; a value that was never solved takes a minute", "near")),))
@@ -193,11 +237,20 @@ class PartsScreen(Frame):
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
         """Fit the part under the cursor, once Enter was pressed twice on it."""
         ref, wanted = self._ref, event.key
+        if wanted == _TOGETHER:
+            self._combine(ref)
+            return
         if self._sure != (ref, wanted):
             self._sure = (ref, wanted)
-            self.show_message(f"Enter again: {wanted} was fitted at {ref}")
+            several = self._together.get(wanted)
+            how = f"note that {several.text} is" if several else f"{wanted} was"
+            self.show_message(f"Enter again: {how} fitted at {ref}")
             return
         self._sure = ("", "")
+        if wanted in self._together:
+            text = f"fitted at {ref}: {self._together[wanted].text}"
+            self.desk.enter(lambda bench: bench.note(text))
+            return
         self.desk.enter(lambda bench: bench.fit(ref, wanted), self._fitted)
 
     def _fitted(self) -> None:

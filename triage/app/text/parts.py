@@ -3,7 +3,7 @@
 from triage.app.lines import Line, Span, clip, columns, line, wrapped
 from triage.app.text.bench import mode_words
 from triage.app.text.stress import amount
-from triage.job.views import CandidateView, DemandView, MatchView, RequirementView
+from triage.job.views import CandidateView, CombinationView, DemandView, MatchView, RequirementView
 
 
 def demand_lines(found: DemandView, width: int, rows: int) -> tuple[Line, ...]:
@@ -58,6 +58,20 @@ def candidate_line(one: CandidateView, width: int) -> Line:
 
 def _type_width(width: int) -> int:
     return max(min(width // 3, 40), 14)
+
+
+def combination_line(one: CombinationView, width: int) -> Line:
+    """Several parts together, and whether all of them lie in the drawers."""
+    stock = Span("in the drawers  ", "good") if one.in_stock else Span("")
+    return clip(line(Span("both ", "near"), stock, Span(one.text, "strong")), width)
+
+
+def combination_detail(one: CombinationView, width: int) -> tuple[Line, ...]:
+    """How the parts share the stress."""
+    out: list[Line] = []
+    for figure in one.arithmetic:
+        out += wrapped(figure, width)
+    return tuple(out)
 
 
 def match_line(one: MatchView, width: int) -> Line:
