@@ -113,6 +113,16 @@ class Axis:
         cell = np.where(np.isposinf(values), self.cells + 2 * _REACH, cell)
         return np.where(np.isnan(values), -1, cell).astype(np.int32)
 
+    def at(self, position: NDArray[np.floating]) -> NDArray[np.int32]:
+        """The same as ``place`` for true values given in standard errors."""
+        limit = float(to_axis(self.instrument.over, self.instrument))
+        with np.errstate(invalid="ignore"):
+            cell = np.maximum(np.floor((position - self.start) / CELL), 0)
+            over = position > limit
+            cell = np.where(over, np.clip(cell, self.cells, self.cells + _REACH), np.minimum(cell, self.cells - 1))
+        cell = np.where(np.isposinf(position), self.cells + 2 * _REACH, cell)
+        return np.where(np.isnan(position), -1, cell).astype(np.int32)
+
     def edge(self, cell: int) -> float:
         """Lower edge of a cell [SI]; the first and the last edge are open, hence -inf and inf."""
         if cell <= 0:

@@ -1,12 +1,13 @@
 """From prior and evidence to the chance of each hypothesis: exact Bayes over one array.
 
 Evidence is taken in a fixed order of its own, so that a job gives the same belief to the last bit in whatever
-order its entries were made. Readings of one probe are taken together (the part does not change between them).
+order its entries were made. Readings of one probe are taken together (the part does not change between them), those of
+probes that move along with each other one given the other.
 """
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
-from functools import partial
+from functools import cached_property, partial
 
 import numpy as np
 from numpy.typing import NDArray
@@ -14,6 +15,7 @@ from numpy.typing import NDArray
 from triage.board.evidence import Evidence, Reading, Sign, Symptom
 from triage.board.fault import Hypothesis
 from triage.board.probe import Probe
+from triage.diagnosis.companion import Companions
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.settings import Settings
@@ -27,7 +29,7 @@ WHOLE = Sign("sound")
 """The whole adapter was looked at, and nothing was found."""
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Likelihoods:
     """All that is needed to weigh evidence on one board."""
 
@@ -53,7 +55,8 @@ class Likelihoods:
         return total
 
     def terms(self, evidence: Iterable[Evidence]) -> dict[Symptom | Sign | Probe, NDArray[np.float64]]:
-        """The independent parts of ``log``, by complaint, sign and probe, in their fixed order."""
+        """The parts that add up to ``log``, by complaint, sign and probe, in their fixed order: each independent of the others,
+        but for a reading that counts given its companion before it."""
         seen: set[Symptom | Sign] = set()
         taken: dict[Probe, list[float]] = {}
         for entry in evidence:
@@ -69,11 +72,24 @@ class Likelihoods:
         found: dict[Symptom | Sign | Probe, NDArray[np.float64]] = {}
         for entry in sorted(seen, key=repr):
             found[entry] = self._term(entry, partial(self._seen, entry))
+        before: dict[int, float] = {}
         for probe in sorted(taken):
             column, values = self.expectations.column(probe), tuple(sorted(taken[probe]))
-            if column is not None and self.readings.known(column):
+            if column is None or not self.readings.known(column):
+                continue
+            other = self.companions.of(column, tuple(before))
+            if other is None:
                 found[probe] = self._term((probe, values), partial(self.readings.likelihood, column, values))
+            else:
+                given = partial(self.companions.likelihood, column, values, other, before[other])
+                found[probe] = self._term((probe, values, other, before[other]), given)
+            before[column] = values[len(values) // 2]
         return found
+
+    @cached_property
+    def companions(self) -> Companions:
+        """Which readings move along with which."""
+        return Companions(self.readings)
 
     def _seen(self, entry: Symptom | Sign) -> NDArray[np.float64]:
         if isinstance(entry, Symptom):

@@ -70,12 +70,7 @@ class ReadingModel:
 
         ``last`` = cells + 1 takes OL in.
         """
-        axis, cell = self.axes[column], self._cells[column]
-        width = self._widths[column][:, None]
-        open_line = last > axis.cells
-        top = np.ones(cell.shape) if open_line else axis.below(last, cell, width)
-        bottom = np.zeros(cell.shape) if first <= 0 else axis.below(min(first, axis.cells), cell, width)
-        return np.where(cell < 0, np.nan, top - bottom)
+        return _fit(self.axes[column], self._cells[column], self._widths[column], first, last)
 
     def slip(self, column: int, first: int, last: int) -> float:
         """Chance of a grossly wrong reading in cells ``first`` to ``last`` - 1 [-]."""
@@ -98,14 +93,28 @@ class ReadingModel:
         Several readings of one probe share the draw: the part does not change between them, only the slips
             do.
         """
-        eps, joint = self.gross, np.ones(self._cells[column].shape)
+        return self.likelihood_of_draws(column, values, self._cells[column], self._widths[column])[self._row[column]]
+
+    def likelihood_of_draws(
+        self, column: int, values: Sequence[float], cells: NDArray[np.int32], widths: NDArray[np.uint8]
+    ) -> NDArray[np.float64]:
+        """The same for other draws than those expected of the probe, shape (H,) [-].
+
+        cells: places of the draws on the axis of the probe, shape (H, D). widths: index into WIDTHS, shape (H,).
+        """
+        axis, eps, joint = self.axes[column], self.gross, np.ones(cells.shape)
         unknown = 1.0
         for value in sorted(values):
-            cell = int(self.axes[column].index(value))
+            cell = int(axis.index(value))
             slip = self.slip(column, cell, cell + 1)
-            joint *= (1 - eps) * self._fit(column, cell, cell + 1) + eps * slip
+            joint *= (1 - eps) * _fit(axis, cells, widths, cell, cell + 1) + eps * slip
             unknown *= slip
-        return _mean_known(joint, unknown)[self._row[column]]
+        return _mean_known(joint, unknown)
+
+    def chance_of_slip(self, column: int, value: float) -> float:
+        """p(this reading and grossly wrong), whatever the hypothesis [-]."""
+        cell = int(self.axes[column].index(value))
+        return self.gross * self.slip(column, cell, cell + 1)
 
     def sound_table(self, column: int, keep: NDArray[np.integer]) -> NDArray[np.float64]:
         """p(cell | hypothesis) of readings without gross errors for the hypotheses ``keep``, shape
@@ -164,6 +173,14 @@ class ReadingModel:
             (1 - self.gross) * (below[i + 1] - below[i]) + self.gross * self.slip(column, cuts[i], cuts[i + 1])
             for i in range(len(cuts) - 1)
         ]
+
+
+def _fit(axis: Axis, cell: NDArray[np.int32], widths: NDArray[np.uint8], first: int, last: int) -> NDArray[np.float64]:
+    """Chance of a sound reading in cells ``first`` to ``last`` - 1 for draws at ``cell``, shape (H, D); nan where unknown."""
+    width = widths[:, None]
+    top = np.ones(cell.shape) if last > axis.cells else axis.below(last, cell, width)
+    bottom = np.zeros(cell.shape) if first <= 0 else axis.below(min(first, axis.cells), cell, width)
+    return np.where(cell < 0, np.nan, top - bottom)
 
 
 def _equal_rows(
