@@ -596,6 +596,7 @@ class FakeShelf:
         self.at_bench = at_bench
         self.prepare_seconds = prepare_seconds
         self.find_seconds = 0.0
+        self.half_typed = ""
         self.bench: FakeBench | None = None
 
     def items(self) -> tuple[Item, ...]:
@@ -617,6 +618,13 @@ class FakeShelf:
 
     def path_of(self, job: Summary) -> Path:
         return self.folder / f"{job.id}.toml"
+
+    def keep(self, job: Path, half_typed: str) -> None:
+        self.half_typed = half_typed
+
+    def kept(self, job: Path) -> str:
+        text, self.half_typed = self.half_typed, ""
+        return text
 
     def draft(self, path: Path | None = None) -> Draft:
         return Draft() if path is None else Draft.open(path)

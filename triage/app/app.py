@@ -185,6 +185,8 @@ def run(job: Path | None, profile: str | None, jobs_folder: Path | None) -> int:
     terminal.harden_stream(sys.__stderr__)
     app = TriageApp(Shelf(jobs_folder), terminal.look(os.environ), job, profile)
     app.run()
+    if app.desk.bench is not None:
+        app.shelf.keep(app.desk.bench.path, app.desk.half_typed)
     for fault in app.faults:
         print(f"triage: fault in the program: {type(fault).__name__}: {fault}", file=sys.stderr)
     code = app.return_code or 0

@@ -64,6 +64,8 @@ class Desk:
         self._stop = threading.Event()
         self.pending = False
         """True while an entry is being worked on."""
+        self.half_typed = ""
+        """What stands in the reading field."""
 
     @property
     def busy(self) -> bool:
@@ -311,6 +313,7 @@ class Desk:
         if self.bench is not None:
             self.bench.release()
         self.bench, self.view, self.message, self.refused, self.pending = None, None, "", False, False
+        self.half_typed = ""
 
     def finish(self, seconds: float) -> bool:
         """Wait until every entry is with the bench, which writes each at once; False when that takes

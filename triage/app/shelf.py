@@ -110,6 +110,19 @@ class Shelf:
 
         return begin
 
+    def keep(self, job: Path, half_typed: str) -> None:
+        """Keep what stood in the reading field of a job when the session ended."""
+        from triage.job.half_typed import keep_half_typed
+
+        if half_typed:
+            keep_half_typed(job, half_typed)
+
+    def kept(self, job: Path) -> str:
+        """What was kept of the reading field, once."""
+        from triage.job.half_typed import take_half_typed
+
+        return take_half_typed(job)
+
     def draft(self, path: Path | None = None) -> OpenDraft:
         """A board to be made from its label, or a profile of the shop's own to go on with."""
         from triage.job.draft import Draft

@@ -57,6 +57,24 @@ class BenchScreen(Frame):
             yield ReadingField(id="field")
             yield Panel(id="field-hint")
 
+    def on_mount(self) -> None:
+        """Put back what was half typed when the last session was cut off."""
+        super().on_mount()
+        bench = self.desk.bench
+        if bench is not None:
+            self.desk.work("half typed", lambda: self.triage.shelf.kept(bench.path), self._put_back, lambda text: None)
+
+    def _put_back(self, text: str) -> None:
+        field = self.query_one("#field", Field)
+        if text and not field.value and self.is_attached:
+            field.value = text
+            field.cursor_position = len(text)
+            self.desk.say("half typed when the last session ended; look at the meter again")
+
+    def on_input_changed(self, event: Field.Changed) -> None:
+        """Keep what is half typed for a session that is cut off."""
+        self.desk.half_typed = event.value
+
     def refresh_body(self, view: JobView | None) -> None:
         """Write every panel anew; what did not change is not painted."""
         if view is None:
