@@ -40,13 +40,19 @@ def any_reading(probe: Probe) -> bool:
     return True
 
 
-def ask_all(diagnosis: Diagnosis, job: Job, truth: int) -> list[Probe]:
-    """The readings asked for until the verdict, answered as hypothesis ``truth`` reads."""
+def answered(diagnosis: Diagnosis, job: Job, truth: int) -> tuple[Job, list[Probe]]:
+    """The job at its verdict and the readings asked for, answered as hypothesis ``truth`` reads."""
     asked = []
     while (step := diagnosis.suggest(job, any_reading)) is not None:
         asked.append(step.probe)
         value = float(MEANS[truth, PROBES.index(step.probe)])
         job = replace(job, entries=(*job.entries, Reading(step.probe, value)))
+    return job, asked
+
+
+def ask_all(diagnosis: Diagnosis, job: Job, truth: int) -> list[Probe]:
+    """The readings asked for until the verdict, which must be the true one."""
+    job, asked = answered(diagnosis, job, truth)
     verdict = diagnosis.verdict(job)
     assert verdict.status == "found" and set(verdict.repair) == HYPOTHESES[truth].repair
     return asked
@@ -120,3 +126,18 @@ def test_two_independent_faults_are_believed_only_after_the_reading_that_says_so
     assert again is not None and again.again and again.probe == BULK
     sound, shorted = (replace(seen, entries=(*seen.entries, Reading(BULK, value))) for value in (1e6, 0.05))
     assert sure.verdict(sound).repair == ("D1",) and sure.verdict(shorted).repair == ("C1", "D1")
+
+
+def test_a_part_is_read_alone_before_it_is_replaced() -> None:
+    """A list without the real fault names a neighbour that reads the same on the board; alone it is sound, and nothing fits."""
+    blind = board(0.4, 0.1, 0.1, 0.4, 0.0)
+    step = blind.suggest(LEAKS, any_reading)
+    assert step is not None and step.probe == LIFTED and blind.verdict(LEAKS).status == "open"
+    assert blind.verdict(answered(blind, LEAKS, 4)[0]).status == "does not fit"
+    assert blind.verdict(answered(blind, LEAKS, 3)[0]).repair == ("D1",)
+
+
+def test_the_stop_by_belief_comes_before_the_second_look() -> None:
+    sure = board(0.3, 0.6, 0.004, 0.048, 0.048)
+    assert sure.settled(DEAD) and sure.verdict(DEAD).status == "open"
+    assert not sure.settled(Job())

@@ -1,4 +1,7 @@
-"""Other ways to choose the next reading, to compare the program's own with; all stop by the same rule."""
+"""Other ways to choose the next reading, to compare the program's own with.
+
+All stop by the same rule, ``Diagnosis.settled``; what the program checks beyond it before its own verdict is part of its way.
+"""
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
@@ -38,22 +41,13 @@ def own(careful: bool = False) -> Policy:
     return choose
 
 
-def enough(diagnosis: Diagnosis, job: Job) -> bool:
-    """The common stop: the best repair cures with the chance the setting asks for, or nothing is worth reading any more.
-
-    What the program checks beyond that before its own verdict is part of its way, not of the stop.
-    """
-    verdict = diagnosis.verdict(job)
-    return verdict.exhausted or (bool(verdict.repair) and verdict.probability >= diagnosis.settings.stop_target)
-
-
 def checklist(order: Sequence[Probe]) -> Policy:
     """A fixed list of readings, cold ones first, until the common stop."""
 
     def choose(diagnosis: Diagnosis, job: Job, gate: Gate) -> Choice | None:
         taken = [entry.probe for entry in job.entries if hasattr(entry, "probe")]
         left = [p for p in order if p not in taken and p not in job.skipped and gate(p) and diagnosis.costs.can_take(p)]
-        return _choice(diagnosis, left[0], taken) if left and not enough(diagnosis, job) else None
+        return _choice(diagnosis, left[0], taken) if left and not diagnosis.settled(job) else None
 
     return choose
 
@@ -62,7 +56,7 @@ def entropy_per_minute(least: float = 0.01) -> Policy:
     """Most expected information about the hypotheses per minute, at least ``least`` bit a minute."""
 
     def choose(diagnosis: Diagnosis, job: Job, gate: Gate) -> Choice | None:
-        if enough(diagnosis, job):
+        if diagnosis.settled(job):
             return None
         belief, model = diagnosis.belief(job), diagnosis.model
         taken = [entry.probe for entry in job.entries if hasattr(entry, "probe")]

@@ -163,6 +163,13 @@ class Diagnosis:
             return verdict
         return replace(verdict, status="open") if self._second_look(job, standing, _everything) else verdict
 
+    def settled(self, job: Job, careful: bool = False) -> bool:
+        """True when the belief alone would stop: the best repair is likely enough to cure, or nothing is worth reading any more.
+        ``suggest`` still has a second look then."""
+        standing = self._standing(job)
+        ranked = self._ranked(job, standing, _everything)
+        return settled(standing.belief, self.actions, self.settings, careful, ranked[0].worth if ranked else 0.0)[0]
+
     def evidence(self, job: Job) -> tuple[Weighed, ...]:
         """What each entry since the last repair did to the odds of the leading suspect, in the order of
         entry.

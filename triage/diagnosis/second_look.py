@@ -94,8 +94,8 @@ def reading_at_part(
     taken: Sequence[Probe],
     allowed: Callable[[Probe], bool],
 ) -> Probe | None:
-    """The reading across the leading root part itself that shows its fault best; None when it was taken or
-    there is none.
+    """The reading across the leading root part itself that shows its fault best, then the one with a leg lifted: it comes out
+    anyway, and alone it cannot borrow the fault of a neighbour. None when they were taken or there are none.
 
     Parameters
     ----------
@@ -108,12 +108,33 @@ def reading_at_part(
     sound = next((i for i, h in enumerate(hypotheses) if h == Hypothesis(())), None)
     if sound is None or len(hypotheses[lead].root) != 1:
         return None
-    nodes = pins.get(hypotheses[lead].root[0].ref, frozenset())
+    ref = hypotheses[lead].root[0].ref
+    nodes = pins.get(ref, frozenset())
+    for lifted in (False, True):
+        columns = [
+            column
+            for column, probe in enumerate(model.expectations.probes)
+            if not probe.live and (probe.lifted == ref if lifted else {probe.plus, probe.minus} <= nodes)
+        ]
+        found = _showing(model, columns, lead, sound, taken, allowed)
+        if found is not None:
+            return found
+    return None
+
+
+def _showing(
+    model: ReadingModel,
+    columns: Sequence[int],
+    lead: int,
+    sound: int,
+    taken: Sequence[Probe],
+    allowed: Callable[[Probe], bool],
+) -> Probe | None:
+    """The reading of these columns that shows a fault best; None when one that shows it was taken, or none does."""
     shown = []
-    for column, probe in enumerate(model.expectations.probes):
-        if probe.live or not {probe.plus, probe.minus} <= nodes or not model.known(column):
-            continue
-        common = overlaps(model, column, lead, sound)
+    for column in columns:
+        probe = model.expectations.probes[column]
+        common = overlaps(model, column, lead, sound) if model.known(column) else 1.0
         if common < SHOWS:
             if probe in taken:
                 return None
