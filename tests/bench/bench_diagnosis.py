@@ -1,39 +1,30 @@
-"""What a step of the diagnosis costs beside a general Bayesian-network library, and what its choices are
-worth beside a checklist.
+"""What a step of the diagnosis costs beside a general Bayesian-network library.
 
-    python -m tests.bench.bench_diagnosis            # both tables
-    python -m tests.bench.bench_diagnosis steps      # only the time of a step
+    python -m tests.bench.bench_diagnosis
 
-The plays need the reference data beside the checkout. Their expectations come from the same simulated tables
-as the answers, spread by
-hand: they compare ways of choosing, not physics. Times are of the processor, which other work on the machine
-    hardly changes.
+The library is pyagrum; where it is not installed only the growth with the number of hypotheses is printed. Times are of the
+processor, which other work on the machine hardly changes. What the choices are worth is in ``bench_plays``.
 """
 
 import importlib.util
 import itertools
 import os
 import statistics
-import sys
 import time
 from collections.abc import Callable, Sequence
-from pathlib import Path
 
 os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 
 import numpy as np
 
-from tests.reference import stand_in
-from tests.reference.playing import Meter, Play, play, reliability, summary
-from tests.reference.policies import Policy, checklist, entropy_per_minute, own, usual_checklist
-from triage.board.evidence import Reading, Sign, Symptom
+from triage.board.evidence import Reading, Symptom
 from triage.board.fault import Fault, Hypothesis
 from triage.board.probe import Probe
 from triage.diagnosis.belief import Likelihoods, posterior
 from triage.diagnosis.engine import Diagnosis, Job
 from triage.diagnosis.expectations import Expectations
 from triage.diagnosis.next_reading import Scorer
-from triage.diagnosis.priors import Prior, Weight, prior_of
+from triage.diagnosis.priors import Prior
 
 SIZES = ((300, 150, 30), (3_000, 150, 30), (30_000, 67, 6))
 """Hypotheses, probes, draws."""
@@ -126,55 +117,5 @@ def steps() -> None:
         print(line)
 
 
-def compare(diagnosis: Diagnosis, units: Sequence[stand_in.Unit], order: Sequence[Probe], seed: int) -> list[Play]:
-    """Plays all units with each way of choosing, prints a row each, and returns the program's own plays."""
-    ways: tuple[tuple[str, Policy, bool], ...] = (
-        ("own", own(), False),
-        ("own, careful", own(True), True),
-        ("entropy per minute", entropy_per_minute(), False),
-        ("checklist", checklist(order), False),
-    )
-    mine: list[Play] = []
-    for meter, words in ((Meter(), "clean"), (Meter(gross=0.05), "5 % gross")):
-        for name, policy, careful in ways:
-            plays = [
-                play(diagnosis, u.name, u.needed, (u.symptom, Sign("sound")), u.readings.get, seed + i, meter, careful, policy)
-                for i, u in enumerate(units)
-            ]
-            got = summary(plays)
-            print(f"  {words:10s} {name:20s} " + "  ".join(f"{key} {value:.3g}" for key, value in got.items()))
-            mine += plays if name == "own" else []
-    return mine
-
-
-def plays() -> None:
-    """First-time-right, minutes and readings of each way of choosing."""
-    folder = Path(__file__).resolve().parents[3] / "shared/reference/circuits/rcc-zener"
-    if not folder.is_dir():
-        print("the reference data do not lie beside this checkout; no plays")
-        return
-    tables = stand_in.load(folder)
-    expected = stand_in.expectations(tables)
-    faults = [h.root[0] for h in expected.hypotheses if h.root]
-    order = usual_checklist(
-        expected.probes, [(tables.kinds[p["ref"]], p["role"], tuple(p["pins"].values())) for p in tables.bom["part"]]
-    )
-    rng = np.random.default_rng(8)
-    off = {ref: 3.0 ** rng.choice([-1, 1]) for ref in sorted({f.ref for f in faults})}
-    mine: list[Play] = []
-    for words, weights in (
-        ("even priors", dict.fromkeys(faults, Weight(1.0))),
-        ("priors off by 3x either way", {f: Weight(off[f.ref]) for f in faults}),
-    ):
-        print(f"rcc-zener, 63 single faults, {words}")
-        diagnosis = Diagnosis(expected, prior_of(weights, {}, pair_share=0.0), tables.kinds, tables.sides, pins=tables.pins)
-        mine += compare(diagnosis, stand_in.fault_units(tables), order, 1000)
-    print("believed and real success, by tenth of what was believed (at least 30 plays)")
-    for believed, real, count in reliability(mine):
-        print(f"  {believed:.3f} {real:.3f} ({count})")
-
-
 if __name__ == "__main__":
     steps()
-    if "steps" not in sys.argv[1:]:
-        plays()
