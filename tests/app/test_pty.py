@@ -129,6 +129,17 @@ def test_an_entry_on_its_way_is_saved_before_leaving(tmp_path):
     assert "volts_dc bulk pgnd cold: 12" in (tmp_path / "radio-desk-cube.toml").read_text()
 
 
+def test_keys_that_come_all_at_once_act_in_their_order(tmp_path):
+    """A slow link holds keys back and brings them together: corrections stand where they were typed, and what follows an
+    Enter belongs to the next reading."""
+    term = app_on_stand_in(tmp_path)
+    to_bench(term)
+    say(term, "9x\x7f\x7f14\x1b[D\x7f\x1b[C" + ENTER + "47", "pgnd cold: 4")
+    text = term.wait_for("reading 47")
+    assert "reading 447" not in text
+    say(term, "\x7f\x7f*" + ENTER, "{+coll}")
+
+
 def test_nothing_is_sent_while_nothing_happens(tmp_path):
     term = app_on_stand_in(tmp_path)
     to_bench(term)

@@ -187,15 +187,10 @@ class BenchScreen(Frame):
             assert found is not None
             function, plus, minus, condition = found.function, found.plus, found.minus, found.condition
         field = self.query_one("#field", Field)
-
-        def accepted() -> None:
-            if field.value == as_typed:
-                field.value = ""
-
         if typed.kind == "skip":
-            self.desk.enter(lambda bench: bench.skip(function, plus, minus, condition, typed.text), accepted)
+            self.desk.enter(lambda bench: bench.skip(function, plus, minus, condition, typed.text), lambda: field.taken(as_typed))
         else:
-            self.desk.enter(lambda bench: bench.read(function, plus, minus, condition, typed.text), accepted)
+            self.desk.enter(lambda bench: bench.read(function, plus, minus, condition, typed.text), lambda: field.taken(as_typed))
 
     def action_pan(self, columns: int) -> None:
         """Move the drawing sideways."""

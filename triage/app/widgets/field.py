@@ -12,6 +12,17 @@ class Field(Input):
 
     EMPTY: ClassVar[dict[str, str]] = {"?": "app.help"}
     """Character -> what it does while the field is empty."""
+    AT_ONCE: ClassVar[dict[str, str]] = {
+        "backspace": "delete_left",
+        "delete": "delete_right",
+        "left": "cursor_left",
+        "right": "cursor_right",
+        "home": "home",
+        "end": "end",
+        "enter": "submit",
+    }
+    """Keys that act where they stand among the letters: a slow link brings many at a time, and Textual would carry these
+    out after the letters behind them."""
 
     def __init__(self, value: str = "", placeholder: str = "", **names: Any) -> None:
         super().__init__(value, placeholder, compact=True, select_on_focus=False, **names)
@@ -26,7 +37,18 @@ class Field(Input):
             event.prevent_default()
             await self.run_action(action)
             return
+        if event.key in self.AT_ONCE:
+            event.stop()
+            event.prevent_default()
+            await self.run_action(self.AT_ONCE[event.key])
+            return
         await super()._on_key(event)
+
+    def taken(self, text: str) -> None:
+        """Take what was accepted out of the field, and leave what was typed meanwhile."""
+        if self.value.startswith(text):
+            self.value = self.value[len(text) :]
+            self.cursor_position = len(self.value)
 
 
 class ReadingField(Field):
