@@ -80,15 +80,18 @@ def row(words: str, way: str, plays: Sequence[Play]) -> None:
     print(f"  {words:12s} {way:12s} " + "  ".join(f"{key} {got[key]:.3g}" for key in SHOWN), flush=True)
 
 
+def check_order(circuit: str, diagnosis: Diagnosis) -> list[Probe]:
+    """The fixed checklist of a circuit."""
+    parts = load_profile(PROFILES[circuit]).parts
+    in_circuit = [probe for probe in diagnosis.expectations.probes if not probe.lifted]
+    return usual_checklist(in_circuit, [(part.kind, part.role, tuple(part.pins.values())) for part in parts])
+
+
 def bench(circuit: str, ways: Sequence[str]) -> tuple[dict[str, list[Play]], list[Play]]:
     """Plays a circuit and prints its table; the clean plays by way, and all plays of the program's own ways."""
-    board, diagnosis = load_profile(PROFILES[circuit]), diagnosis_of(circuit)
-    units = single_faults(circuit)
+    diagnosis, units = diagnosis_of(circuit), single_faults(circuit)
     units += perturbed_units(circuit, SHARED) if SHARED.is_dir() else []
-    order = usual_checklist(
-        [probe for probe in diagnosis.expectations.probes if not probe.lifted],
-        [(part.kind, part.role, tuple(part.pins.values())) for part in board.parts],
-    )
+    order = check_order(circuit, diagnosis)
     print(f"{circuit}: {len(units)} units, {len(diagnosis.prior)} hypotheses, {len(diagnosis.expectations.probes)} readings")
     clean: dict[str, list[Play]] = {}
     mine: list[Play] = []
