@@ -7,6 +7,7 @@ from tests.bench.bench_screen import measured_bytes
 def test_no_key_costs_more_than_its_budget(tmp_path):
     found = measured_bytes(tmp_path)
     assert 0 < found["typed character"] <= 100
+    assert 0 < found["typed character, light"] <= 100
     assert 0 < found["accepted reading"] <= 6000
     assert 0 < found["second accepted reading"] <= 6000
     assert 0 < found["cursor move in the stress list"] <= 2000

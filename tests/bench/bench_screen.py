@@ -126,6 +126,11 @@ def measured_bytes(folder: Path) -> dict[str, int]:
     player.to_bench()
     term = player.term
     found = {"typed character": max(bytes_of(term, char) for char in "12")}
+    term.send("\x7f\x7f\x14")
+    term.read(quiet=0.5)
+    found["typed character, light"] = max(bytes_of(term, char) for char in "12")
+    term.send("\x14")
+    term.read(quiet=0.5)
     found["accepted reading"] = bytes_of(term, ENTER)
     found["second accepted reading"] = bytes_of(term, "*" + ENTER)
     found["page of the board"] = bytes_of(term, "\x1b[5~")

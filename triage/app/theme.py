@@ -31,6 +31,7 @@ _DARK = {
     "field-paper": "#00005f",
     "bad": "#ff9b94",
 }
+# The field is written anew with each character: its colours have numbers of two digits in 256 colours.
 _LIGHT = {
     "ink": "#1b2127",
     "paper": "#fafaf6",
@@ -52,7 +53,7 @@ _LIGHT = {
     "cursor-paper": "#0b4f8a",
     "blurred-paper": "#dadada",
     "field": "#000000",
-    "field-paper": "#e4e4e4",
+    "field-paper": "#5fffff",
     "bad": "#a3150d",
 }
 _OWN = dict.fromkeys(_DARK, "ansi_default") | {
