@@ -15,7 +15,8 @@ TABLE = README.read_text("utf-8").partition(BEGIN)[2].partition(END)[0]
 ROWS = [[cell.strip() for cell in line.strip("|").split("|")] for line in TABLE.splitlines() if line.startswith("|")]
 CHECKS = {row[0]: int(row[2]) for row in ROWS[2:]}
 GROWTH, FEW = 1.25, 10
-"""The table is stale when an area has grown by more than a quarter and ten checks: it need not follow every single one."""
+"""The table is stale when an area has grown by more than a quarter and ten checks: it need not follow every single one. As few may
+belong to no area."""
 
 
 @pytest.fixture
@@ -37,13 +38,14 @@ def test_its_lines_are_the_areas_with_their_sums_and_a_date() -> None:
 
 
 def test_every_area_of_this_run_stands_in_it(ran: dict[str, Area]) -> None:
-    assert set(ran) <= set(CHECKS), "make README's table anew, see write_table.py"
+    missing = {name: area.checks for name, area in ran.items() if name not in CHECKS and (name != "other" or area.checks > FEW)}
+    assert not missing, "give the subject an area, or make README's table anew, see write_table.py"
 
 
 def test_it_tells_about_as_many_checks_as_there_are(ran: dict[str, Area]) -> None:
     """A run without the long checks has fewer; a table that tells many more than a whole run is stale as well."""
     grown = {name: (area.checks, CHECKS.get(name, 0)) for name, area in ran.items()
-             if area.checks > GROWTH * CHECKS.get(name, 0) + FEW}
+             if name in CHECKS and area.checks > GROWTH * CHECKS[name] + FEW}
     assert not grown, "make README's table anew, see write_table.py"
     if set(ran) == set(CHECKS):
         assert sum(CHECKS.values()) <= GROWTH * sum(area.checks for area in ran.values())

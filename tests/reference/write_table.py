@@ -20,7 +20,7 @@ BEGIN, END = "<!-- outside checks: begin -->", "<!-- outside checks: end -->"
 AREAS = (
     ("real repairs", ("real repairs", "complaint phrases", "repair or not")),
     ("whole jobs on simulated faults", ("first repair right",)),
-    ("simulated circuits, cold", ("cold readings",)),
+    ("simulated circuits, cold", ("cold readings", "leg lifted")),
     ("simulated circuits, powered", ("live readings", "state of", "collateral", "sound ", "in a whole adapter",
                                      "waveforms")),
     ("own decks run in ngspice", ("all parts", "output voltage", "switching frequency", "family decks")),
