@@ -15,8 +15,8 @@ TABLE = README.read_text("utf-8").partition(BEGIN)[2].partition(END)[0]
 ROWS = [[cell.strip() for cell in line.strip("|").split("|")] for line in TABLE.splitlines() if line.startswith("|")]
 CHECKS = {row[0]: int(row[2]) for row in ROWS[2:]}
 GROWTH, FEW = 1.25, 10
-"""The table is stale when an area has grown by more than a quarter and ten checks: it need not follow every single one. As few may
-belong to no area."""
+"""The table is stale when an area has grown by more than a quarter and ten checks: it need not follow every single one. As few
+may belong to no area."""
 
 
 @pytest.fixture
