@@ -48,8 +48,8 @@ if TYPE_CHECKING:
     from triage.replacement.ranking import Candidate
 
 PAIR_FLOOR = 1e-5
-"""Pairs of independent faults less likely than this are left out [-]: most of those above the floor of the
-diagnosis, which would take minutes to solve and hold less than a thousandth of the belief."""
+"""Pairs of independent faults less likely than this are left out [-]: all of them together hold a thousandth of the belief and
+would take thrice the memory."""
 
 
 class Wiring:
