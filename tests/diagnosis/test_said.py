@@ -11,7 +11,7 @@ from tests.diagnosis.test_plain import offered
 from triage.board.evidence import STATES, Reading, Sign, Symptom
 from triage.board.fault import Fault, Hypothesis
 from triage.board.probe import Probe
-from triage.diagnosis import look_ahead
+from triage.diagnosis import explain, look_ahead
 from triage.diagnosis.actions import Actions
 from triage.diagnosis.ahead import repair_plan
 from triage.diagnosis.ambiguity import ambiguity_sets
@@ -214,3 +214,21 @@ def test_what_the_leading_suspects_would_show_is_their_middle_draw() -> None:
     found = Diagnosis(replace(E, samples=samples), Prior(sb.HYPOTHESES, np.eye(6)[1], {}), sb.KINDS, sb.SIDES)
     (only,) = found.expected(Job(()), sb.OHMS_C1)
     assert only.value == 2.0 and only.suspect == "R1 open" and only.probability == pytest.approx(1.0)
+
+
+@pytest.mark.parametrize(("probe", "low", "high", "words"), [
+    (sb.DIODE_D1, 0.3, 0.62, "300 mV to 620 mV"), (sb.OHMS_R1, 0.5, 4700.0, "0.5 ohm to 4.7 kohm"),
+    (sb.OHMS_R1, -0.2, 10.0, "below 10 ohm"), (sb.OHMS_R1, 0.0, 10.0, "below 10 ohm"), (sb.VOLTS, -0.5, 2.0, "-500 mV to 2 V"),
+    (sb.OHMS_R1, 1e6, math.inf, "above 1 Mohm"), (sb.OHMS_R1, math.inf, math.inf, "OL"),
+    (sb.OHMS_R1, -math.inf, math.inf, "any value"),
+])
+def test_a_band_is_said_as_a_person_reads_a_meter(probe: Probe, low: float, high: float, words: str) -> None:
+    assert explain._band_words(probe, low, high) == words
+
+
+def test_other_repairs_are_named_from_one_in_twenty_on() -> None:
+    """Likeliest first, the best one itself left out."""
+    chances = np.array([0.0, 0.83, 0.0, 0.07, 0.051, 0.049])
+    verdict = Diagnosis(E, Prior(sb.HYPOTHESES, chances, {}), sb.KINDS, sb.SIDES).verdict(Job(()))
+    assert verdict.repair == ("R1",) and verdict.rivals == ((("C1",), pytest.approx(0.07)), (("D1",), pytest.approx(0.051)))
+    assert verdict.probability == pytest.approx(0.83)
