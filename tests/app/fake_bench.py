@@ -487,7 +487,7 @@ class FakeBench:
             report("waveforms and load line", step, 4)
             time.sleep(self.chart_seconds / 4)
         lead = next((one for one in self._suspects() if one.ref), None)
-        names = ("sound", *([f"{lead.ref} {lead.mode.replace('_', ' ')}"] if lead else []))
+        names = ("healthy", *([f"{lead.ref} {lead.mode.replace('_', ' ')}"] if lead else []))
         ringing = [400.0 + 60.0 * math.exp(-(t % 200) / 8) * math.cos(t / 2) for t in range(300)]
         swing = [(t * 1e-7, 0.0 if 60 < t % 200 < 120 else volts) for t, volts in enumerate(ringing)]
         bulk = [(t * 1e-4, 320.0 - 30.0 * (t % 200) / 200) for t in range(200)]

@@ -16,7 +16,7 @@ from triage.job.views import ChartView, CurveView, LevelView, StressView
 CHART = ChartView(
     "switch", "Q1 main switch: voltage at 253 V, full load", "s", "V",
     (
-        CurveView("sound", ((0.0, 0.0), (1e-5, 470.0), (2e-5, 380.0))),
+        CurveView("healthy", ((0.0, 0.0), (1e-5, 470.0), (2e-5, 380.0))),
         CurveView("D2 open", ((0.0, 0.0), (1e-5, 820.0), (2e-5, 380.0))),
     ),
     (LevelView("rating", 700.0), LevelView("derated limit", 595.0)), "drawn before it destroys Q1.ce_short",
@@ -30,7 +30,7 @@ def test_a_chart_has_its_rows_and_names_limits_and_curves(glyphs, width, rows):
     text = "\n".join(map(plain, lines))
     assert len(lines) == rows and all(width_of(one) <= width for one in lines)
     assert "rating 700 V" in text and "derated limit 595 V" in text
-    assert "sound: 0 V to 470 V" in text
+    assert "healthy: 0 V to 470 V" in text
     assert "drawn before it destroys Q1"[: width - 1] in text
     assert glyphs is FULL or all(char.isascii() or char == "─" for char in text.replace("\n", ""))
 

@@ -98,7 +98,7 @@ class StandIn:
         )
 
     def charts(self, board: Board, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
-        names = ("sound", *(str(fault) for fault in faults))
+        names = ("healthy", *(str(fault) for fault in faults))
         curves = tuple(CurveView(name, ((0.0, 0.0), (1e-5, 400.0 + 50.0 * n))) for n, name in enumerate(names))
         return (ChartView("switch", "Q1", "s", "V", curves, (LevelView("rating", 600.0),)),)
 

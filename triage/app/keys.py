@@ -34,7 +34,7 @@ COMMANDS = (
     Command("f8", "F8", "look", "go('looks')", "what to look at, and what was seen, heard, smelt or felt"),
     Command("f9", "F9", "undo", "undo", "take the last entry back"),
     Command("f10", "F10", "cautions", "go('cautions')", "the cautions, and which are acknowledged"),
-    Command("", "", "waveforms", "go('waveforms')", "switch, bulk and load line, sound and under the suspect (Enter on F3)"),
+    Command("", "", "waveforms", "go('waveforms')", "switch, bulk and load line, healthy and under the suspect (Enter on F3)"),
     Command("", "", "any reading", "form('reading')", "enter a reading of your own choice (+ in the empty field)"),
     Command("", "", "seen", "form('sign')", "enter something seen, heard, smelt or felt at a part"),
     Command("", "", "power on", "power(True)", "say that the adapter was powered up through the current limit"),

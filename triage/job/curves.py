@@ -19,7 +19,7 @@ from triage.job.views import ChartView, CurveView, LevelView, StressView
 from triage.physics.transient import NoConvergence
 from triage.safety.output import guessed_kind, window
 
-SOUND = "sound"
+SOUND = "healthy"
 """Name of the curve of the board without a fault."""
 _VOLTAGES = ("peak_voltage", "reverse_voltage")
 _WHAT = "waveforms and load line"
@@ -34,7 +34,7 @@ class Curves:
         self._known: dict[str, Waveforms | None] = {}
 
     def charts(self, faults: tuple[Fault, ...], stresses: Sequence[StressView]) -> tuple[ChartView, ...]:
-        """The charts of the board with these faults beside the sound one; no faults: the sound one alone.
+        """The charts of the board with these faults beside the sound one; no faults: the healthy one alone.
 
         stresses: of the board, for the limit lines. What the solution cannot follow is left out, and the chart says so.
         """
@@ -80,7 +80,7 @@ class Curves:
 
     def _note(self, faults: tuple[Fault, ...], faulty: Waveforms | None) -> str:
         if not faults:
-            return "no suspect yet: the sound board alone"
+            return "no suspect yet: the healthy board alone"
         if faulty is None:
             return f"with {_named(faults)} the solution breaks off: nothing repeats"
         broken = self._points.at(faults, "full").breaks

@@ -170,7 +170,7 @@ class CurveView:
     """One curve of a chart."""
 
     name: str
-    """``sound``, or the fault it is drawn under: ``C1 low capacitance``."""
+    """``healthy``, or the fault it is drawn under: ``C1 low capacitance``."""
     points: tuple[tuple[float, float], ...]
     """x and y [SI], x rising."""
 

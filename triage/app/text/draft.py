@@ -82,7 +82,8 @@ def row_detail(found: DraftView, key: str, width: int) -> tuple[Line, ...]:
 
 
 def _named(one: KnownView) -> str:
-    return one.key.replace("_", " ") + (" rating" if one.known == "rating" else "")
+    name = "ESR" if one.key == "esr" else one.key.replace("_", " ")
+    return name + (" rating" if one.known == "rating" else "")
 
 
 def check_lines(found: DraftView, width: int) -> tuple[Line, ...]:
