@@ -1,5 +1,7 @@
 """Hypotheses and their chances before anything was seen. Reasoned checks unless a source is named."""
 
+from pathlib import Path
+
 import numpy as np
 import pytest
 
@@ -134,3 +136,32 @@ def test_only_shorts_blow_a_fuse() -> None:
     weights = evened({FUSE: 1.0, DRIFT: 50.0, SHORT: 5.0})
     assert {f for w in shorts_behind(weights, {}, [FUSE]) for f in w.hypothesis.root} == {FUSE, SHORT}
     assert shorts_behind(evened({FUSE: 1.0, DRIFT: 1.0}), {}, [FUSE]) == ()
+
+
+def test_two_faults_at_once_weigh_a_twenty_fifth_of_one() -> None:
+    """The shop's figure, common practice; and a fifth of the belief is spread evenly, because a rate may be far off."""
+    weights = {A: Weight(4.0), B: Weight(3.0), C: Weight(2.0), D: Weight(1.0)}
+    prior = prior_of(weights, {}, outside=0.5)
+    two = sum(chance for hypothesis, chance in zip(prior.hypotheses, prior.chance, strict=True) if len(hypothesis.root) == 2)
+    one = sum(chance for hypothesis, chance in zip(prior.hypotheses, prior.chance, strict=True) if len(hypothesis.root) == 1)
+    assert two / one == pytest.approx(0.04) and one + two == pytest.approx(0.5) and prior.chance[0] == pytest.approx(0.5)
+    place = prior.hypotheses.index(Hypothesis((A,)))
+    assert prior.chance[place] / one == pytest.approx(0.8 * 0.4 + 0.2 / 4)
+    assert "37 % of the single faults" in prior.why[A] and "weight 4" in prior.why[A] and "closed jobs" not in prior.why[A]
+    told = prior_of({A: Weight(1.0, "by the sheet"), B: Weight(1.0)}, {}).why[A]
+    assert told.startswith("by the sheet; 50 %")
+
+
+def test_the_share_outside_is_counted_from_a_table_that_makes_sense(tmp_path: Path) -> None:
+    path = tmp_path / "causes.toml"
+    rows = '[[cause]]\nname = "cord"\nplace = "outside"\ncount = 3\n[[cause]]\nname = "part"\nplace = "inside"\ncount = 1\n'
+    path.write_text(rows + '[[cause]]\nname = "untold"\nplace = "unknown"\ncount = 50\n', "utf-8")
+    assert outside_share(path) == pytest.approx(0.75), "what was not told counts for neither"
+    bad = tmp_path / "bad.toml"
+    bad.write_text(rows.replace('"inside"', '"beside"'), "utf-8")
+    with pytest.raises(EntryError, match="part"):
+        outside_share(bad)
+    less = tmp_path / "less.toml"
+    less.write_text(rows.replace("count = 3", "count = -3"), "utf-8")
+    with pytest.raises(EntryError, match="count"):
+        outside_share(less)

@@ -232,3 +232,20 @@ def test_other_repairs_are_named_from_one_in_twenty_on() -> None:
     verdict = Diagnosis(E, Prior(sb.HYPOTHESES, chances, {}), sb.KINDS, sb.SIDES).verdict(Job(()))
     assert verdict.repair == ("R1",) and verdict.rivals == ((("C1",), pytest.approx(0.07)), (("D1",), pytest.approx(0.051)))
     assert verdict.probability == pytest.approx(0.83)
+
+
+def test_a_reading_against_rivals_names_the_two_likeliest_of_them() -> None:
+    belief = np.array([0.0, 0.6, 0.05, 0.1, 0.2, 0.05])
+    choice = next(one for one in offered(belief) if one.probe == sb.OHMS_R1)
+    told = explain.against(MODEL, belief, ACTIONS, choice, 1, np.array([3, 4, 5]))
+    assert told.reason == "All readings so far fit D1 short, C1 short as well as R1 open: the resistance a to b tells them apart."
+    assert told.probe == sb.OHMS_R1 and told.minutes == choice.minutes and told.hazard == ""
+
+
+def test_a_reading_to_be_taken_again_says_what_it_does_not_fit() -> None:
+    belief = np.array([0.0, 0.0, 0.0, 0.9, 0.1, 0.0])
+    choice = next(one for one in offered(belief) if one.probe == sb.OHMS_R1)
+    told = explain.measure_again(MODEL, belief, ACTIONS, choice)
+    assert told.again and "Measure the resistance a to b again" in told.reason and "does not fit C1" in told.reason
+    whole = explain.measure_again(MODEL, np.eye(6)[0], ACTIONS, choice)
+    assert "does not fit no part fault" in whole.reason
