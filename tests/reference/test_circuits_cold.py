@@ -56,7 +56,7 @@ def test_cold_readings_agree_with_the_simulated_circuit(circuit, outside_check):
 
 @pytest.mark.parametrize("circuit", PROFILES)
 def test_readings_with_one_leg_lifted_agree_with_the_simulated_part(circuit, outside_check):
-    """Every part of two legs alone, sound and under each of its faults: at least 99 % of all rows; every reading asked is there."""
+    """Every part of two legs alone, sound and under each of its faults: at least 99 % of all rows; every reading is there."""
     board = load_profile(PROFILES[circuit])
     table, right, misses = lifted_table(circuit), 0, []
     shown = {probe for rows in table.values() for probe in rows}
