@@ -20,7 +20,6 @@ from typing import Any
 
 from triage.board.fault import Fault
 from triage.board.part import Board
-from triage.board.probe import COLD_FUNCTIONS, CONDITIONS, LIVE_FUNCTIONS, UNITS, Probe
 from triage.board.profile import board_from_dict, board_to_dict, load_profile
 from triage.errors import EntryError, JobError
 from triage.job import picture, store
@@ -29,6 +28,7 @@ from triage.job.entries import last_standing, make_entry, probe_of, replay
 from triage.job.gates import Rules, allow, facts_of
 from triage.job.learning import NONE, experience_from_dict, experience_of
 from triage.job.lock import Lock
+from triage.job.pointing import probe_on, ref_on
 from triage.job.progress import Listener, heard_by, report
 from triage.job.proof import answer, lines_of
 from triage.job.record import report_sections
@@ -246,7 +246,7 @@ class Bench:
 
     def see(self, sign: str, ref: str = "") -> JobView:
         """Something seen, heard, smelt or felt, at a part or on the whole adapter."""
-        return self._enter("sign", sign=sign, ref=self._ref(ref) if ref else "")
+        return self._enter("sign", sign=sign, ref=ref_on(self.board, ref) if ref else "")
 
     def look(self, item: str, answer: str, ref: str = "") -> JobView:
         """What one look of the inspection found: one of its answers, or a length (``6.5 mm``) or count as
@@ -255,7 +255,7 @@ class Bench:
         Raises EntryError or InspectionError naming the answers there are. What the diagnosis takes from it is
         entered as signs of its own.
         """
-        ref = self._ref(ref) if ref else ""
+        ref = ref_on(self.board, ref) if ref else ""
         asked = next((one for one in items(self.board) if one.key == item), None)
         if asked is None:
             raise EntryError("look", f"{item[:40]!r}", "one of " + ", ".join(one.key for one in items(self.board)))
@@ -269,14 +269,14 @@ class Bench:
     def read(self, function: str, plus: str, minus: str, condition: str, text: str, instrument: str = "") -> JobView:
         """A reading as typed: ``4k7``, ``0.62``, ``OL``. Raises EntryError or QuantityError naming what is
         wrong."""
-        probe = self._probe(function, plus, minus, condition)
+        probe = probe_on(self.board, self.rules, function, plus, minus, condition)
         value = parse_reading(text, probe.unit)
         more = {"instrument": instrument} if instrument else {}
         return self._enter("reading", **probe._asdict(), value=value, unit=probe.unit, typed=text, **more)
 
     def skip(self, function: str, plus: str, minus: str, condition: str, reason: str = "") -> JobView:
         """A reading that cannot or shall not be taken."""
-        return self._enter("skip", **self._probe(function, plus, minus, condition)._asdict(), reason=reason)
+        return self._enter("skip", **probe_on(self.board, self.rules, function, plus, minus, condition)._asdict(), reason=reason)
 
     def power(self, on: bool) -> JobView:
         """The adapter was powered up through the current limit, or unplugged."""
@@ -291,7 +291,7 @@ class Bench:
 
     def suspect(self, ref: str) -> JobView:
         """The technician's own hunch."""
-        return self._enter("hunch", ref=self._ref(ref))
+        return self._enter("hunch", ref=ref_on(self.board, ref))
 
     def note(self, text: str) -> JobView:
         """A remark for the next reader."""
@@ -329,20 +329,20 @@ class Bench:
 
     def demand(self, ref: str) -> DemandView:
         """What the position of a part asks of a replacement. Raises EntryError for an unknown part."""
-        return self.workings.demand(self.board, self._ref(ref))
+        return self.workings.demand(self.board, ref_on(self.board, ref))
 
     def candidates(self, ref: str) -> tuple[CandidateView, ...]:
         """Catalog parts for a position, best first."""
-        return self.workings.candidates(self.board, self._ref(ref))
+        return self.workings.candidates(self.board, ref_on(self.board, ref))
 
     def ask(self, ref: str, type: str) -> CandidateView:
         """One catalog part held against a position, with what it fails."""
-        return self.workings.ask(self.board, self._ref(ref), type)
+        return self.workings.ask(self.board, ref_on(self.board, ref), type)
 
     def combinations(self, ref: str) -> tuple[CombinationView, ...]:
         """Several parts that together do for a position what one should, those in the drawers first; none for a
         safety part."""
-        return self.workings.combinations(self.board, self._ref(ref))
+        return self.workings.combinations(self.board, ref_on(self.board, ref))
 
     def matches(self, marking: str) -> tuple[MatchView, ...]:
         """Catalog parts that a half-read marking may mean."""
@@ -350,11 +350,11 @@ class Bench:
 
     def what_if(self, ref: str, type: str) -> tuple[StressView, ...]:
         """The stresses with this part in this position, nothing recorded."""
-        return self._stress_views(self.workings.fitted(self.board_now(), self._ref(ref), type))
+        return self._stress_views(self.workings.fitted(self.board_now(), ref_on(self.board, ref), type))
 
     def fit(self, ref: str, type: str) -> JobView:
         """A part was fitted. Raises EntryError when a hard rule forbids it in that position."""
-        ref = self._ref(ref)
+        ref = ref_on(self.board, ref)
         asked = self.workings.ask(self.board, ref, type)
         if not asked.accepted:
             raise EntryError(f"{type} at {ref}", "; ".join(asked.refusals), advice="choose one of the candidates")
@@ -426,47 +426,6 @@ class Bench:
     def _facts_now(self) -> Any:
         """The facts with the shorts that the belief rules out, where it has been computed."""
         return self.facts(picture.fault_chances(self)) if self.answers else self.facts()
-
-    def _ref(self, ref: str) -> str:
-        """The ref as the board spells it."""
-        for part in self.board.parts:
-            if part.ref.lower() == ref.strip().lower():
-                return part.ref
-        refs = ", ".join(part.ref for part in self.board.parts)
-        raise EntryError("part", f"{ref[:40]!r}", f"one of {refs}")
-
-    def _probe(self, function: str, plus: str, minus: str, condition: str) -> Probe:
-        if function not in UNITS:
-            raise EntryError("function", f"{function[:40]!r}", "one of " + ", ".join(COLD_FUNCTIONS + LIVE_FUNCTIONS))
-        if condition not in CONDITIONS:
-            raise EntryError("condition", f"{condition[:40]!r}", "one of " + ", ".join(CONDITIONS))
-        probe = Probe(function, self._node(plus), self._node(minus), condition)
-        if function in COLD_FUNCTIONS and probe.live:
-            raise EntryError(str(probe), f"{function} is read on the unpowered board only", "the condition cold")
-        if function in LIVE_FUNCTIONS and not probe.live and not self.rules.is_bulk(probe):
-            raise EntryError(
-                str(probe),
-                "nothing drives that on the unpowered board",
-                "noload, half or full",
-                "only the bulk capacitor is read in volts while cold",
-            )
-        on_board = self.board.side_of(probe.plus) and self.board.side_of(probe.minus)
-        if not on_board and (probe.live or not probe.lifted):
-            raise EntryError(str(probe), "the pin of a part", "two nodes, or both pins of one lifted part")
-        if probe.plus == probe.minus:
-            raise EntryError(str(probe), "both leads on one node", "two different nodes")
-        return probe
-
-    def _node(self, node: str) -> str:
-        nodes = [name for side in self.board.sides.values() for name in side]
-        for name in nodes:
-            if name.lower() == node.strip().lower():
-                return name
-        for part in self.board.parts:
-            for pin in part.pins:
-                if f"{part.ref}.{pin}".lower() == node.strip().lower():
-                    return f"{part.ref}.{pin}"
-        raise EntryError("node", f"{node[:40]!r}", "one of " + ", ".join(nodes) + ", or REF.PIN of a part with one leg lifted")
 
 
 def _stamp(clock: Clock) -> str:
