@@ -170,3 +170,18 @@ def test_the_core_heats_by_the_square_of_ripple_over_rated_ripple() -> None:
     """Rubycon, lifetime calculation formula: half the ripple, a quarter of the rise."""
     assert float(electrolytic_life.core_rise_by_rating(0.4, 0.8, 6.0)) == pytest.approx(1.5)
     assert float(electrolytic_life.core_rise_by_rating(1.6, 0.8, 5.0)) == pytest.approx(20.0)
+
+
+def test_an_electrolytic_dries_out_by_the_square_of_what_is_left() -> None:
+    """A. Gasperi, Life prediction modeling of bus capacitors: half the life gone, four times the resistance; none left, open."""
+    ages = electrolytic_life.aged_esr(0.2, np.array([0.0, 2500.0, 5000.0, 10_000.0, 20_000.0]), 10_000.0)
+    assert ages == pytest.approx([0.2, 0.2 / 0.75**2, 0.8, np.inf, np.inf])
+
+
+def test_voltage_counts_for_the_life_only_where_both_figures_are_known() -> None:
+    """A. Albertsen: (V/Vr)^-n at 10 V of 25 V."""
+    base = float(electrolytic_life.life(1000.0, 75.0, 0.5, 1.0))
+    assert float(electrolytic_life.life(1000.0, 75.0, 0.5, 1.0, voltage=10.0)) == base
+    assert float(electrolytic_life.life(1000.0, 75.0, 0.5, 1.0, rated_voltage=25.0)) == base
+    gain = float(electrolytic_life.voltage_factor(10.0, 25.0))
+    assert gain > 1.0 and float(electrolytic_life.life(1000.0, 75.0, 0.5, 1.0, 10.0, 25.0)) == pytest.approx(gain * base)
