@@ -25,7 +25,7 @@ from triage.families.live import live_probes, live_readings
 from triage.families.steady import Settled, rated_start, settle
 from triage.physics.transient import POWER, QUICK, NoConvergence, Quality
 
-SOLUTION = 2
+SOLUTION = 3
 """Raised whenever the physics changes, so that kept points of an older solution are not used."""
 LOADS = CONDITIONS[1:]
 NO_LOAD = 1e6
