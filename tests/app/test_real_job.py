@@ -28,7 +28,7 @@ MOST_KEYS = 60
 """Keys besides typed values from the start page to the closed job: the house's own target."""
 DOWN, ENTER = "\x1b[B", "\r"
 F2, F5, F6, F10 = "\x1bOQ", "\x1b[15~", "\x1b[17~", "\x1b[21~"
-NEXT = re.compile(r"^next +(.+?) +red \{\+(\w+)\}.* black \{-(\w+)\}.* (unplugged|LIVE, \w+ load) +[\d.]+ min", re.M)
+NEXT = re.compile(r"^next +(.+?) +red \{\+([\w.]+)\}.* black \{-([\w.]+)\}.* (unplugged|LIVE, \w+ load) +[\d.]+ min", re.M)
 FUNCTIONS = {words: key for key, words in FUNCTION_WORDS.items()}
 CONDITIONS = {words: key for key, words in CONDITION_WORDS.items()}
 
