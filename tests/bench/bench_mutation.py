@@ -44,7 +44,7 @@ TESTS = {
 }
 LEAVE_OUT = ("tests/physics/test_transient.py", "tests/physics/test_invariants.py", "tests/physics/test_docstrings.py",
              "tests/physics/test_compiled.py")
-LONGEST = 90
+LONGEST = 40
 """A run beyond this counts as killed [s of processor time]."""
 TOO_LONG = -signal.SIGXCPU
 
