@@ -10,13 +10,12 @@ import time
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 
-from triage.app.contract import OpenJob
+from triage.app.contract import OpenDraft, OpenJob
 from triage.app.shelf import Item, items
 from triage.board.part import Board, Label, Mains, Part
 from triage.board.probe import UNITS
 from triage.errors import EntryError, JobError, QuantityError
 from triage.job import views as v
-from triage.job.draft import Draft
 from triage.job.progress import Listener, report
 from triage.job.summary import Summary
 
@@ -626,7 +625,9 @@ class FakeShelf:
         text, self.half_typed = self.half_typed, ""
         return text
 
-    def draft(self, path: Path | None = None) -> Draft:
+    def draft(self, path: Path | None = None) -> OpenDraft:
+        from triage.job.draft import Draft
+
         return Draft() if path is None else Draft.open(path)
 
     def opener(self, path: Path):  # type: ignore[no-untyped-def]

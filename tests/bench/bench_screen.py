@@ -126,11 +126,6 @@ def measured_bytes(folder: Path) -> dict[str, int]:
     player.to_bench()
     term = player.term
     found = {"typed character": max(bytes_of(term, char) for char in "12")}
-    term.send("\x7f\x7f\x14")
-    term.read(quiet=0.5)
-    found["typed character, light"] = max(bytes_of(term, char) for char in "12")
-    term.send("\x14")
-    term.read(quiet=0.5)
     found["accepted reading"] = bytes_of(term, ENTER)
     found["second accepted reading"] = bytes_of(term, "*" + ENTER)
     found["page of the board"] = bytes_of(term, "\x1b[5~")
@@ -140,6 +135,9 @@ def measured_bytes(folder: Path) -> dict[str, int]:
     found["to another screen"] = bytes_of(term, "\x1bOQ")
     term.read(quiet=0.5)
     found["two idle seconds"] = term.read(quiet=2.0, limit=2.1)
+    term.send("\x14")
+    term.read(quiet=1.0)
+    found["typed character, light"] = max(bytes_of(term, char) for char in "12")
     term.kill()
     return found
 
