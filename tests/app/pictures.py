@@ -11,10 +11,10 @@ from pathlib import Path
 from textual.pilot import Pilot
 
 from tests.app.screens import Story, play, settle
-from tests.app.test_snapshots import bench, parts, stress
+from tests.app.test_snapshots import bench, stress, waveforms
 
 FOLDER = Path(__file__).resolve().parents[2] / "triage" / "app" / "help"
-PICTURES: dict[str, Story] = {"bench": bench, "stress": stress, "parts": parts}
+PICTURES: dict[str, Story] = {"bench": bench, "stress": stress, "waveforms": waveforms}
 SIZE = (100, 30)
 _FONT = re.compile(r"@font-face\s*\{.*?\}\s*", re.DOTALL)
 

@@ -112,6 +112,7 @@ class PartsScreen(Frame):
             lambda bench: (bench.demand(ref), bench.candidates(ref)),
             self._demand,
             self._failed,
+            long=True,
         )
         self.ask("stress", lambda bench: bench.stresses(), self._keep_before, self._ask_failed, long=True)
 
@@ -133,6 +134,7 @@ class PartsScreen(Frame):
         self._show_detail()
 
     def _failed(self, text: str) -> None:
+        self._ref = ""
         self.panel("demand").show((line(Span(text, "bad")),))
 
     def _demand(self, found: tuple[DemandView, tuple[CandidateView, ...]]) -> None:
