@@ -3,8 +3,10 @@
 import numpy as np
 import pytest
 
+from tests.job.stand_in import PROFILE, Clock, StandIn
 from triage.board.fault import Fault
 from triage.board.profile import load_profile
+from triage.job.bench import Bench
 from triage.job.curves import SOUND
 from triage.job.progress import heard_by
 from triage.job.shown import stress_view
@@ -92,3 +94,13 @@ def test_calculation_tells_how_far_it_is_and_can_be_stopped(stresses):
     with heard_by(listen), pytest.raises(Stop):
         Wiring().charts(BOARD, WORN, stresses)
     assert told == [(0, 8), (1, 8), (2, 8)]
+
+
+def test_job_draws_its_leading_part_even_where_no_part_fault_leads(tmp_path):
+    """Cable, plug and joints have no waveform of their own: the likeliest part is drawn beside the healthy board."""
+    with Bench.create(PROFILE, tmp_path / "cube.toml", StandIn(), Clock()) as bench:
+        assert [curve.name for curve in bench.charts()[0].curves] == [SOUND]
+        bench.prepare()
+        assert bench.view().suspects[0].ref == "", "the stand-in's prior begins with no part fault"
+        first = next(one for one in bench.view().suspects if one.ref)
+        assert bench.charts()[0].curves[1].name == f"{first.ref}.{first.mode}"

@@ -16,6 +16,8 @@ _DOT_BITS = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
 """Bits of a braille cell by dot row and column (Unicode Standard, block U+2800)."""
 _FAR, _ROOM = 0.5, 0.05
 """Share of the highest value above which the lowest leaves zero out of the axis, and room left above and below [-]."""
+_NEAR = 0.02
+"""Share of the last x below which the first one counts as zero [-]."""
 _FIGURE = 16
 """Columns for a figure on the lower axis."""
 _HEIGHTS = "'-.,"
@@ -128,7 +130,8 @@ def chart(
     points = [point for curve in series for point in curve.points if all(map(math.isfinite, point))]
     if not points or width < 24 or height < 4:
         return (line(Span("nothing to draw", "quiet")),)
-    x_range = (min(x for x, _ in points), max(x for x, _ in points))
+    first, last = min(x for x, _ in points), max(x for x, _ in points)
+    x_range = (0.0 if 0.0 < first < _NEAR * last else first, last)
     y_range = _upright([y for _, y in points] + [level.value for level in levels])
     labels = 8
     columns, rows = width - labels - 1, height - 1

@@ -98,7 +98,7 @@ class Curves:
             CurveView(name, tuple((current, getattr(found, name)) for current, (_, found) in zip(amps, limits, strict=True)))
             for name in ("low", "high")
         )
-        title = f"output at {self._board.mains.nominal:.0f} V, no load to full load, within the window of a {kind} output"
+        title = f"output at {self._board.mains.nominal:.0f} V, no load to full load; window: {kind}"
         return ChartView("load line", title, "A", "V", tuple(curves), (), note, edges)
 
     def _line(self, name: str, faults: tuple[Fault, ...]) -> CurveView:

@@ -106,7 +106,7 @@ def leading_fault(bench: "Bench") -> tuple[Fault, ...]:
     if bench.answers is None:
         return ()
     found = bench.answers.diagnosis.suspects(asked(replay(bench.job.entries)))
-    return found[0].root if found else ()
+    return next((one.root for one in found if one.root), ())
 
 
 def derivations(bench: "Bench") -> dict[tuple[str, str], str]:

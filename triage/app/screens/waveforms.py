@@ -41,7 +41,7 @@ class WaveformsScreen(Frame):
 
     def refresh_body(self, view: JobView | None) -> None:
         """Ask anew when another suspect leads; show what there is for this size."""
-        lead = f"{view.suspects[0].ref} {view.suspects[0].mode}" if view and view.suspects else ""
+        lead = next((f"{one.ref} {one.mode}" for one in view.suspects if one.ref), "") if view else ""
         if lead != self._asked_for:
             self._asked_for = lead
             if not self._found:
