@@ -55,8 +55,8 @@ def solve(board: Board, corner: Condition, draw: Draw, faults: tuple[Fault, ...]
     return at
 
 
-SWITCHING = ".options method=gear reltol=1e-3 itl4=100"
-"""For the simulator where something switches: its trapezoidal rule breaks off on the edges."""
+SWITCHING = ".options method=gear reltol=1e-3 abstol=1e-7 vntol=1e-4 chgtol=1e-14 itl4=100"
+"""For the simulator where something switches: its trapezoidal rule breaks off on the edges, looser charges misplace them."""
 
 
 def ngspice_seconds(board: Board, start: dict[str, float], periods: int) -> float:
