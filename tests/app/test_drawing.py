@@ -21,6 +21,12 @@ def test_suspects_and_leads_carry_their_signs():
         assert sign in text
 
 
+def test_a_part_read_alone_is_marked_instead_of_two_nodes():
+    """Common practice: with one leg lifted both leads are at the part itself."""
+    text = text_of(DRAWING, Marks(suspects=("R1",), red="R1.a", black="R1.b", alone="R1"))
+    assert "{R1}" in text and "*R1" not in text and "{+" not in text
+
+
 def test_no_colour_is_needed_to_tell_marks_apart():
     assert len({sign for word in ("Q1", "RF1", "bulk", "pgnd", "R2") for sign in [MARKS.around(word)[:3]]}) == 5
 

@@ -2,7 +2,7 @@
 
 Parts and nodes stand in a drawing as words. A mark takes the place of the character beside the word, so that
 the drawing keeps its shape: ``?Q1`` is suspected, ``*Q1`` most of all, ``Q1!`` runs past its derated limit,
-``+bulk+`` is where the red lead goes and ``-pgnd-`` where the black one goes.
+``{+bulk}`` is where the red lead goes, ``{-pgnd}`` where the black one goes, ``{R1}`` a part that is read alone.
 """
 
 import re
@@ -31,12 +31,16 @@ class Marks:
     """Node of the red lead."""
     black: str = ""
     """Node of the black lead."""
+    alone: str = ""
+    """Ref of a part that is read alone, with one leg lifted: both leads go to it."""
 
     def around(self, word: str) -> tuple[str, str, str, str]:
         """Signs left and right of a word, the polarity of a lead, and the mark; all empty for a word without
         one."""
         if word in (self.red, self.black):
             return ("{", "}", "+", "red") if word == self.red else ("{", "}", "-", "black")
+        if word == self.alone:
+            return "{", "}", "", "red"
         right = "!" if word in self.over else ""
         if word in self.suspects:
             return "*" if word == self.suspects[0] else "?", right, "", "suspect"

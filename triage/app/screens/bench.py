@@ -29,6 +29,11 @@ _FIXED = 5
 """Rows of status, field, message and keys."""
 
 
+def _word(node: str) -> str:
+    """The word in the drawing that a lead goes to: the node, or the part whose pin it is (``C1.plus``)."""
+    return node.partition(".")[0]
+
+
 class BenchScreen(Frame):
     """The reading loop."""
 
@@ -86,7 +91,7 @@ class BenchScreen(Frame):
         board, suspects, log = self.panel("board"), self.panel("suspects"), self.panel("log")
         board.show(rows)
         found = view.suggestion if view.suggestion and view.suggestion.function not in AT_THE_PLUG else None
-        for node in (found.minus, found.plus) if found else ():
+        for node in (_word(found.minus), _word(found.plus)) if found else ():
             for row in rows_of(rows, node)[:1]:
                 board.scroll_to_row(row)
                 at = plain(rows[row]).index(node)
@@ -104,6 +109,7 @@ class BenchScreen(Frame):
             over=frozenset(ref for one in view.suspects if one.stress for ref in one.ref.split("+")),
             red=found.plus if found else "",
             black=found.minus if found else "",
+            alone=_word(found.plus) if found and _word(found.plus) != found.plus else "",
         )
         return marked(drawing, marks)
 
