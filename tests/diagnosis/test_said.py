@@ -221,6 +221,7 @@ def test_what_the_leading_suspects_would_show_is_their_middle_draw() -> None:
     (sb.OHMS_R1, -0.2, 10.0, "below 10 ohm"), (sb.OHMS_R1, 0.0, 10.0, "below 10 ohm"), (sb.VOLTS, -0.5, 2.0, "-500 mV to 2 V"),
     (sb.OHMS_R1, 1e6, math.inf, "above 1 Mohm"), (sb.OHMS_R1, math.inf, math.inf, "OL"),
     (sb.OHMS_R1, -math.inf, math.inf, "any value"),
+    (sb.OHMS_R1, 1234.0, 5678.0, "1.2 kohm to 5.7 kohm"),
 ])
 def test_a_band_is_said_as_a_person_reads_a_meter(probe: Probe, low: float, high: float, words: str) -> None:
     assert explain._band_words(probe, low, high) == words
