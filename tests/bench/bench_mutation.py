@@ -6,6 +6,11 @@ Each mutant is one changed operator, comparison, number, sign or boolean word in
 ``triage/physics`` and ``triage/diagnosis``). It lives in a copy of the package in a temporary folder; the test files that import
 its module run there first, then those of the room, until one fails. A run that takes too long counts as killed and is told.
 Compiled kernels are left out: they are held by the simulated circuits, which take minutes.
+
+What survives and does not matter: numbers that only bound a search, a cache or an error message, that keep a division from zero
+or stand for minus anything (``prepend=-1``, ``-1.0`` under a maximum); defaults of fields and of counts shown; how outcomes are
+gathered into bins, which moves the worth of a reading a little and no belief; figures of the shop from common practice moved by a
+tenth, where a test would only repeat them. What survives elsewhere is a test that is missing.
 """
 
 import ast
