@@ -44,6 +44,8 @@ SETTLED_CHARGE = 0.04
 """Change of an electrolytic's voltage over a period that counts as none [-]."""
 BALANCE_SHARE, BALANCE_WATTS = 0.03, 5e-3
 """Power that goes into the bulk capacitor from period to period and counts as none: share of the input power [-], and [W]."""
+LEAST_WATTS, FED_SHARE = 2e-3, 0.2
+"""A bulk capacitor is not fed where the mains gives less than this [W], or this share of what it loses [-]: a bleeder's."""
 WELL_AWAKE = 0.99
 """A supply between lockout and this share of the waking voltage is that of a controller in operation [-]."""
 QUIET_FREQUENCY = 60.0
@@ -279,9 +281,14 @@ def _balanced(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], 
     index = run.electrolytics.get(bulk.ref) if bulk else None
     if index is None:
         return True
+    power = abs(stretch.statistics[rows["ADAPTER", ""], POWER])
+    return bool(abs(_stored(run, index, before)) < BALANCE_SHARE * power + BALANCE_WATTS)
+
+
+def _stored(run: _Run, index: int, before: np.ndarray) -> float:
+    """Mean power that went into a capacitor over the last mains period [W]."""
     farad, now, then = run.compiled.capacitor[2][index], run.state.capacitors[index], before[index]
-    stored = 0.5 * farad * (now * now - then * then) * run.board.mains.frequency
-    return bool(abs(stored) < BALANCE_SHARE * abs(stretch.statistics[rows["ADAPTER", ""], POWER]) + BALANCE_WATTS)
+    return float(0.5 * farad * (now * now - then * then) * run.board.mains.frequency)
 
 
 def _asleep(run: _Run) -> bool:
@@ -305,7 +312,9 @@ def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int
     caps, power = run.state.capacitors, float(stretch.statistics[rows["ADAPTER", ""], 8])
     bulk = run.board.by_role(run.family.bulk_role)
     index = run.electrolytics.get(bulk.ref) if bulk else None
-    if run.zeroed < 2 and power < 2e-3 and index is not None and 1.0 < caps[index] < 0.9995 * before[index]:
+    drawn = -_stored(run, index, before) if index is not None else 0.0
+    dead = power < max(LEAST_WATTS, FED_SHARE * drawn)
+    if run.zeroed < 2 and dead and index is not None and 1.0 < caps[index] < 0.9995 * before[index]:
         run.state = initial_state(run.compiled)
         run.zeroed += 1
         return True
