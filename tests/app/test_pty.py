@@ -107,6 +107,30 @@ def test_a_whole_job_by_keyboard_at_80x24(whole_jobs, name):
     assert b"\x1b[?1049l" in term.received
 
 
+@pytest.mark.parametrize("name", ["linux", "vt100", "no UTF-8"])
+def test_a_board_from_its_label_in_a_real_terminal(tmp_path, name):
+    """Label, one transistor counted, the family, one marking, and the job on it: nothing clipped on the way."""
+    keys = LINUX_F if name == "linux" else F
+    term = app_on_stand_in(tmp_path, environ={**TERMS[name], "XDG_DATA_HOME": str(tmp_path / "data")})
+    term.wait_for("Radio desk cube")
+    say(term, "\x1b[A" + ENTER, "then it is: Enter takes one")
+    term.wait_for("12 % ")
+    term.send("cube" + ENTER + ENTER + "5" + ENTER + "0.6" + ENTER)
+    term.read(quiet=0.3)
+    press(term, ENTER, DOWN)
+    say(term, "1", "1 transistor: for it")
+    press(term, ENTER)
+    shown = say(term, ENTER, "20 of 20 parts not read yet; kept as cube")
+    assert all(len(row) <= 80 for row in shown.splitlines()) and "estimated" in shown
+    say(term, "10R" + ENTER, "19 of 20 parts not read yet")
+    shown = say(term, keys["f2"], "What is wrong with it?")
+    assert shown.splitlines()[-1].startswith("F1 ?")
+    assert name != "no UTF-8" or term.text.isascii()
+    assert (tmp_path / "data" / "triage" / "profiles" / "cube.toml").is_file()
+    term.send("\x11")
+    assert term.status() == 0
+
+
 @pytest.mark.parametrize(("number", "code"), [(signal.SIGTERM, 143), (signal.SIGHUP, 129)])
 def test_a_signal_saves_restores_the_screen_and_tells_by_its_status(tmp_path, number, code):
     term = app_on_stand_in(tmp_path)

@@ -6,12 +6,12 @@ import signal
 import sys
 from pathlib import Path
 
-from textual.app import App
 from textual.binding import Binding
 
 from triage.app import terminal, theme
 from triage.app.desk import Desk
 from triage.app.drafting import Drafting
+from triage.app.in_order import KeysInOrder
 from triage.app.keys import COMMANDS
 from triage.app.places import Places, make_screen
 from triage.app.shelf import Shelf
@@ -21,7 +21,7 @@ _SAVE_SECONDS = 3.0
 """Longest wait for entries on their way to the file when the terminal goes away [s]."""
 
 
-class TriageApp(App[int]):
+class TriageApp(KeysInOrder):
     """The bench companion on a terminal.
 
     Parameters

@@ -4,6 +4,7 @@ from collections.abc import Sequence
 from typing import Any, ClassVar
 
 from textual import events
+from textual.message import Message
 from textual.widgets import Input
 
 
@@ -24,6 +25,9 @@ class Field(Input):
     """Keys that act where they stand among the letters: a slow link brings many at a time, and Textual would carry these
     out after the letters behind them."""
 
+    class Passed(Message):
+        """Comes behind the message of an Enter, on the same way."""
+
     def __init__(self, value: str = "", placeholder: str = "", **names: Any) -> None:
         super().__init__(value, placeholder, compact=True, select_on_focus=False, **names)
         self.cursor_blink = False
@@ -41,6 +45,8 @@ class Field(Input):
             event.stop()
             event.prevent_default()
             await self.run_action(self.AT_ONCE[event.key])
+            if event.key == "enter":
+                self.post_message(self.Passed())
             return
         await super()._on_key(event)
 
