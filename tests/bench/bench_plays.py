@@ -68,7 +68,7 @@ def play_units(diagnosis: Diagnosis, units: Sequence[Unit], way: str, order: Seq
     return [
         play(
             diagnosis, unit.name, unit.needed, [unit.symptom, Sign("sound")], unit.readings.get, SEED + number, meter,
-            way == "careful", policy_of(way, order),
+            way == "careful", policy_of(way, order), most=max(60, len(order)),
         )
         for number, unit in enumerate(units)
     ]  # fmt: skip
