@@ -91,8 +91,7 @@ def test_prior_over_another_list_keeps_the_ratios() -> None:
 
 def test_closed_jobs_move_a_rate_as_far_as_they_count() -> None:
     """(s + n) / (s + E): the mean of Gamma(s, s) after n failures where E were expected."""
-    jobs = [{A: 0.2, B: 0.8}] * 10
-    got = factors(jobs, [A] * 6 + [B] * 4)
+    got = factors({A: 0.2, B: 0.8}, 10, [A] * 6 + [B] * 4)
     assert got[A] == pytest.approx((POOLED_STRENGTH + 6) / (POOLED_STRENGTH + 2))
     assert got[B] == pytest.approx((POOLED_STRENGTH + 4) / (POOLED_STRENGTH + 8))
     prior = prior_of(WEIGHTS, {}, factors=got, pair_share=0.0)
@@ -102,9 +101,10 @@ def test_closed_jobs_move_a_rate_as_far_as_they_count() -> None:
 
 
 def test_a_profile_starts_from_the_pooled_factor() -> None:
-    pooled = factors([{A: 0.5}] * 8, [A] * 8)
-    both = factors([{A: 0.5}] * 8, [A] * 8, [{A: 0.5}] * 2, [])
-    assert 1 < both[A] < pooled[A]
+    family = factors({A: 0.5, B: 0.5}, 8, [A] * 8)
+    both = factors({A: 0.5, B: 0.5}, 8, [A] * 8, 2, [B, B])
+    alone = factors({A: 0.5, B: 0.5}, 2, [B, B], 2, [B, B])
+    assert family[A] > family[B] and both[A] > alone[A] and both[B] < alone[B]
 
 
 FUSE, SHORT, OTHER_SHORT, DRIFT = Fault("F", "open"), Fault("Q", "ce_short"), Fault("D", "short"), Fault("R", "high")

@@ -20,7 +20,7 @@ from triage.diagnosis.composed import with_pairs
 from triage.diagnosis.costs import Costs
 from triage.diagnosis.engine import Diagnosis, Job
 from triage.diagnosis.explain import hazard_words, outcomes, repair_words, suggestion
-from triage.diagnosis.learning import POOLED_STRENGTH, PROFILE_STRENGTH, factors
+from triage.diagnosis.learning import PROFILE_STRENGTH, Gamma, Trust, factors
 from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.priors import Prior
 from triage.diagnosis.settings import Instrument, Settings
@@ -171,15 +171,17 @@ def test_only_the_likeliest_repairs_are_weighed(monkeypatch: pytest.MonkeyPatch)
     assert look_ahead.expected_cost(rows, belief[keep]) == pytest.approx(0.1 * 49.0 + 0.5 * 9.0 + 0.4 * 49.0)
 
 
-def test_a_fault_that_some_jobs_could_not_have_counts_for_the_others_only() -> None:
-    """Ten jobs of which only four boards have the part: expected 4 x 0.5, found once."""
-    with_it, without = {sb.R1_OPEN: 0.5, sb.C1_SHORT: 0.5}, {sb.C1_SHORT: 1.0}
-    found = factors([with_it] * 4 + [without] * 6, [sb.R1_OPEN])
-    assert found[sb.R1_OPEN] == pytest.approx((POOLED_STRENGTH + 1.0) / (POOLED_STRENGTH + 2.0))
-    assert found[sb.C1_SHORT] == pytest.approx(POOLED_STRENGTH / (POOLED_STRENGTH + 8.0))
-    here = factors([with_it] * 4, [], [with_it, without], [sb.R1_OPEN])
-    pooled = POOLED_STRENGTH / (POOLED_STRENGTH + 2.0)
-    assert here[sb.R1_OPEN] == pytest.approx((PROFILE_STRENGTH * pooled + 1.0) / (PROFILE_STRENGTH + 0.5))
+def test_a_repair_that_came_back_counts_for_the_other_faults_by_their_shares() -> None:
+    """Two jobs here: R1 found once, and once named in vain, so that it was C1 or D1, three to one by the handbook."""
+    handbook = {sb.R1_OPEN: 0.2, sb.C1_SHORT: 0.6, sb.D1_SHORT: 0.2}
+    trust = Trust(Gamma(1e15, 1e15))
+    found = factors(handbook, 1, [], 2, [sb.R1_OPEN], [sb.R1_OPEN], trust)
+    weight = PROFILE_STRENGTH + 2.0
+    assert found[sb.R1_OPEN] * 0.2 == pytest.approx((PROFILE_STRENGTH * 0.2 + 1.0) / weight)
+    assert found[sb.C1_SHORT] * 0.6 == pytest.approx((PROFILE_STRENGTH * 0.6 + 0.75) / weight)
+    assert found[sb.D1_SHORT] * 0.2 == pytest.approx((PROFILE_STRENGTH * 0.2 + 0.25) / weight)
+    only = factors({sb.R1_OPEN: 1.0}, 1, [], 1, [], [sb.R1_OPEN], trust)
+    assert only[sb.R1_OPEN] == pytest.approx(1.0), "nothing else can have been it"
 
 
 def test_what_nothing_listed_explains_is_laid_to_at_most_two_parts() -> None:

@@ -21,22 +21,23 @@ def closed(fault: str = "RF1.open", role: str = "", cured: bool = True, profile:
     return Summary("x", profile=profile, family=BOARD.family, stage="closed", fault=fault, role=role, cured=cured)
 
 
-def test_the_factor_is_the_gamma_poisson_update_of_the_published_method() -> None:
-    """Gelman et al., Bayesian Data Analysis, 3rd ed., section 2.6: mean (a + events) / (b + exposure).
+def test_jobs_of_the_profile_move_its_shares_by_the_published_method() -> None:
+    """Gelman et al., Bayesian Data Analysis, 3rd ed., section 3.4: mean share (alpha + count) / (sum of alpha + counts).
 
-    Reasoned from it: ten jobs here, six of them RF1, expected half: pooled (2 + 6) / (2 + 5), then with
-    strength 10 (10 x 8/7 + 6) / (10 + 5).
+    Reasoned from it: ten jobs here, six of them RF1, expected half. The family says RF1 to C1 as 8 to 6 (section 2.6, strength
+    2), so ten jobs' worth of that are 40/7 and 30/7.
     """
     experience = gather([closed()] * 6 + [closed("C1.short")] * 4, BOARD)
     factor = experience.factors({RF1: 0.5, C1: 0.5})[RF1]
-    assert factor == pytest.approx((10 * 8 / 7 + 6) / 15)
+    assert factor == pytest.approx((40 / 7 + 6) / 20 / 0.5)
 
 
 def test_a_repair_that_came_back_speaks_against_its_verdict() -> None:
     shares = {RF1: 0.5, C1: 0.5}
-    held = gather([closed()], BOARD).factors(shares)[RF1]
-    back = gather([closed(cured=False)], BOARD).factors(shares)[RF1]
-    assert back < 1.0 < held
+    held = gather([closed()], BOARD).factors(shares)
+    back = gather([closed(cured=False)], BOARD).factors(shares)
+    assert back[RF1] < 1.0 < held[RF1]
+    assert held[C1] < 1.0 < back[C1], "somebody else did it"
 
 
 def test_jobs_of_other_profiles_count_by_role() -> None:

@@ -12,7 +12,7 @@ from triage.board.fault import Fault
 POOLED_STRENGTH = 2.0
 """Jobs' worth of trust in a handbook rate, over all adapters; not tuned."""
 PROFILE_STRENGTH = 10.0
-"""Jobs' worth of trust in the pooled factor, for one adapter profile; not tuned."""
+"""Jobs' worth of trust in the shares of the family, for one adapter profile; not tuned."""
 
 Key = TypeVar("Key", bound=Hashable)
 
@@ -44,27 +44,49 @@ def shares(alpha: Mapping[Key, float]) -> dict[Key, float]:
     return {key: a / total for key, a in alpha.items()}
 
 
+class Trust(NamedTuple):
+    """What the handbook is worth against the bench's own jobs."""
+
+    pooled: Gamma = Gamma(POOLED_STRENGTH, POOLED_STRENGTH)
+    """Belief about the factor on a handbook rate before any job of the family, its exposure in expected failures."""
+    profile: float = PROFILE_STRENGTH
+    """Jobs' worth of trust in the shares of the family, for one adapter profile."""
+
+
 def factors(
-    pooled: Sequence[Mapping[Fault, float]],
+    handbook: Mapping[Fault, float],
+    jobs: int,
     found: Sequence[Fault],
-    profile: Sequence[Mapping[Fault, float]] = (),
+    jobs_here: int = 0,
     found_here: Sequence[Fault] = (),
+    came_back: Sequence[Fault] = (),
+    trust: Trust | None = None,
 ) -> dict[Fault, float]:
-    """Factor on the handbook weight of each fault: (s + found) / (s + expected).
+    """Factor on the handbook weight of each fault.
+
+    Over a family each closed job is an exposure: so many failures of each kind were to be expected in it (gamma and Poisson). On
+    one profile every closed job is one draw among the faults of that board (multinomial and Dirichlet), whose shares start from
+    those of the family.
 
     Parameters
     ----------
-    pooled: for each closed job the expected count of each fault under the handbook prior (its chances given
-        that a part failed).
+    handbook: chance of each fault given that a part failed; adds up to 1 [-].
+    jobs: closed jobs of the family.
     found: confirmed root faults of those jobs.
-    profile, found_here: the same for the jobs on this very adapter profile; they start from the pooled
-        factor.
+    jobs_here: those of them on this very profile.
+    found_here: confirmed root faults on it.
+    came_back: faults whose repair did not hold on it: each such job was one of the other faults, nobody knows which, and counts
+        for them by their shares.
     """
-    faults = {fault for job in (*pooled, *profile) for fault in job} | set(found) | set(found_here)
-    result = {}
-    for fault in sorted(faults):
-        belief = Gamma(POOLED_STRENGTH, POOLED_STRENGTH).after(found.count(fault), sum(j.get(fault, 0.0) for j in pooled))
-        expected = sum(job.get(fault, 0.0) for job in profile)
-        here = Gamma(PROFILE_STRENGTH * belief.mean, PROFILE_STRENGTH).after(found_here.count(fault), expected)
-        result[fault] = here.mean if profile else belief.mean
-    return result
+    trust = trust or Trust()
+    rate = {fault: trust.pooled.after(found.count(fault), jobs * share).mean for fault, share in handbook.items()}
+    if not jobs_here:
+        return rate
+    family = shares({fault: share * rate[fault] for fault, share in handbook.items()})
+    counts = {fault: float(found_here.count(fault)) for fault in family}
+    for accused in came_back:
+        others = {fault: share for fault, share in family.items() if fault != accused}
+        for fault, share in (shares(others) if others else {}).items():
+            counts[fault] += share
+    here = shares(dirichlet({fault: trust.profile * share for fault, share in family.items()}, counts))
+    return {fault: here[fault] / share if share else rate[fault] for fault, share in handbook.items()}

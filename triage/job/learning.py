@@ -1,7 +1,7 @@
 """What the bench's own closed jobs say about the next one: a factor on the weight of each fault.
 
 Only a closed job whose confirmed fault was repaired and whose adapter works counts as found; one that came
-back counts as looked for and not found, so it speaks against its verdict. Jobs on the same profile are
+back counts for the other faults of its profile, so it speaks against its verdict. Jobs on the same profile are
 compared fault by fault, jobs on other profiles of the family by role and fault mode. The counts are written
 into a job when it is begun: what is closed later changes the next job, never this one. The update itself is
 ``triage.diagnosis.learning``.
@@ -10,12 +10,15 @@ into a job when it is begun: what is closed later changes the next job, never th
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from triage.board.fault import Fault
 from triage.board.part import Board
 from triage.errors import JobError
 from triage.job.summary import Summary
+
+if TYPE_CHECKING:
+    from triage.diagnosis.learning import Trust
 
 MOST_JOBS = 200
 """Closed jobs that count at most, the latest first, for a profile and again for its family: older ones tell
@@ -34,23 +37,22 @@ class Experience:
     """Faults confirmed in the jobs of the family, as faults of this board."""
     found_here: tuple[Fault, ...] = ()
     """Faults confirmed in the jobs on this profile."""
+    came_back: tuple[Fault, ...] = ()
+    """Faults of jobs on this profile whose repair did not hold."""
 
-    def factors(self, shares: Mapping[Fault, float]) -> dict[Fault, float]:
+    def factors(self, shares: Mapping[Fault, float], trust: "Trust | None" = None) -> dict[Fault, float]:
         """Factor on the weight of each fault [-].
 
         shares: chance of each root fault by the handbook, given that a part failed; adds up to 1 [-].
+        trust: what the handbook is worth; by default that of ``triage.diagnosis.learning``.
         """
         from triage.diagnosis.learning import factors
 
         if not self.family_jobs:
             return {}
-        learnt = factors(
-            [shares] * self.family_jobs,
-            [fault for fault in self.found if fault in shares],
-            [shares] * self.profile_jobs,
-            [fault for fault in self.found_here if fault in shares],
-        )
-        return {fault: factor for fault, factor in learnt.items() if fault in shares}
+        known = ([fault for fault in some if fault in shares] for some in (self.found, self.found_here, self.came_back))
+        found, found_here, came_back = known
+        return factors(shares, self.family_jobs, found, self.profile_jobs, found_here, came_back, trust)
 
     def to_dict(self) -> dict[str, Any]:
         """The counts as a table of the job file."""
@@ -59,6 +61,7 @@ class Experience:
             "profile_jobs": self.profile_jobs,
             "found": [str(fault) for fault in self.found],
             "found_here": [str(fault) for fault in self.found_here],
+            "came_back": [str(fault) for fault in self.came_back],
         }
 
 
@@ -83,8 +86,8 @@ def experience_from_dict(found: object, where: str) -> Experience:
     for key, count in zip(("family_jobs", "profile_jobs"), counts, strict=True):
         if not isinstance(count, int) or isinstance(count, bool) or not 0 <= count <= MOST_JOBS:
             raise JobError(f"{where}, job.closed_jobs.{key}", repr(count)[:40], f"0 to {MOST_JOBS}")
-    faults = [_faults(found.get(key, []), f"{where}, job.closed_jobs.{key}") for key in ("found", "found_here")]
-    return Experience(counts[0], counts[1], faults[0], faults[1])
+    faults = [_faults(found.get(key, []), f"{where}, job.closed_jobs.{key}") for key in ("found", "found_here", "came_back")]
+    return Experience(counts[0], counts[1], *faults)
 
 
 def gather(jobs: Sequence[Summary], board: Board) -> Experience:
@@ -93,7 +96,8 @@ def gather(jobs: Sequence[Summary], board: Board) -> Experience:
     here = [job for job in jobs if job.profile == board.id and job.family == board.family and job.fault][:MOST_JOBS]
     found = (_on_board(job, board) for job in family if job.cured)
     found_here = (_on_board(job, board) for job in here if job.cured)
-    return Experience(len(family), len(here), tuple(one for one in found if one), tuple(one for one in found_here if one))
+    came_back = (_on_board(job, board) for job in here if not job.cured)
+    return Experience(len(family), len(here), *(tuple(one for one in some if one) for some in (found, found_here, came_back)))
 
 
 def experience_of(folder: Path, board: Board) -> Experience:
