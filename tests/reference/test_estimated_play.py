@@ -28,8 +28,8 @@ RIGHT = 0.80
 """Share of the faults found at the first repair: the owner's bound."""
 SEED = 700
 PLAYED = ("rcc-zener", "linear-reg", "rcc-opto")
-"""Solving the estimated board of pwm-opto takes hours. By cold readings alone, nothing solved, 42 % of its faults were found: most
-others show in live readings only, or in values that only a marking tells."""
+"""Solving the estimated board of pwm-opto takes hours. By cold readings alone, nothing solved, 42 % of its faults were found:
+most others show in live readings only, or in values that only a marking tells."""
 
 
 def true_refs(truth: Board, guess: Board) -> dict[str, str]:
