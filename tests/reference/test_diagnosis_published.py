@@ -5,7 +5,6 @@ The numbers lie in data/diagnosis, one file a subject, each case with its source
 (``confidence``) and its tolerance.
 """
 
-import importlib.util
 import itertools
 import math
 import tomllib
@@ -503,36 +502,3 @@ def test_the_burglar_alarm(case: dict[str, Any], outside_check: OutsideChecks) -
     burglary, prior, calls = (np.array(column) for column in zip(*rows, strict=True))
     got = posterior(prior, np.log(calls))[burglary == 1].sum()
     outside_check("exact inference", case["source"], got, case["results"]["p_burglary"], 1e-9, True)
-
-
-if importlib.util.find_spec("pyagrum"):
-
-    def test_belief_equals_a_general_network_library(outside_check: OutsideChecks) -> None:
-        """The same discretised model as one cause node with its readings as children, in a Bayesian-network
-        library.
-        """
-        import pyagrum
-
-        from tests.diagnosis import small_board as sb
-        from triage.board.evidence import Reading
-        from triage.diagnosis.engine import Job
-
-        diagnosis = sb.diagnosis()
-        network = pyagrum.BayesNet()
-        cause = network.add(pyagrum.LabelizedVariable("cause", "", len(sb.HYPOTHESES)))
-        network.cpt(cause)[:] = sb.CHANCE
-        values = {sb.OHMS_R1: 2.8e3, sb.OHMS_C1: 0.9e6, sb.DIODE_D1: 0.58, sb.ESR_C1: 0.4}
-        hard = {}
-        for probe, value in values.items():
-            column = diagnosis.expectations.column(probe)
-            assert column is not None
-            table = diagnosis.model.cell_table(column)
-            child = network.add(pyagrum.LabelizedVariable(f"t{column}", "", table.shape[1]))
-            network.addArc(cause, child)
-            network.cpt(child)[:] = table
-            hard[f"t{column}"] = int(diagnosis.model.axes[column].index(value))
-        inference = pyagrum.LazyPropagation(network)
-        inference.setEvidence(hard)
-        want = inference.posterior("cause").toarray()
-        got = diagnosis.belief(Job(tuple(Reading(p, v) for p, v in values.items())))
-        outside_check("exact inference", "pyAgrum, lazy propagation", got, want, 1e-9, True)
