@@ -217,8 +217,6 @@ def _standing_message(bench: "Bench", facts: GateFacts, suggestion: SuggestionVi
         return f"read-only: {bench.read_only}"
     if bench.last_session and bench.answers is None:
         return f"the last session was cut off ({bench.last_session}); every entry it had accepted is here"
-    if bench.answers is not None and not any(entry.kind in ("complaint", "reading") for entry in bench.job.entries):
-        return "no complaint yet: it tells most; / and Enter, then complaint"
     if bench.answers is not None and suggestion is None and not facts.repaired and not facts.found:
         cold, missing = cold_waits_for(facts), waits_for(facts)
         if cold:
