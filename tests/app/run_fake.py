@@ -5,7 +5,7 @@ import os
 import sys
 from pathlib import Path
 
-from tests.app.fake_bench import FakeShelf
+from tests.app.fake_shelf import FakeShelf
 from triage.app import terminal
 from triage.app.app import TriageApp
 

@@ -9,7 +9,7 @@ from textual import _wait
 from textual.pilot import Pilot
 from textual.strip import Strip
 
-from tests.app.fake_bench import FakeShelf
+from tests.app.fake_shelf import FakeShelf
 from triage.app.app import TriageApp
 from triage.app.glyphs import FULL, Glyphs
 from triage.app.terminal import Terminal

@@ -413,8 +413,11 @@ def test_the_screen_answers_while_the_bench_computes(tmp_path):
             if "complaint" in text_of(pilot.app):
                 break
         await pilot.press("f2")
-        await pilot.pause()
-        text = text_of(pilot.app)
+        for _ in range(150):
+            await asyncio.sleep(0.01)
+            text = text_of(pilot.app)
+            if " computing, " in text.splitlines()[1]:
+                break
         assert " computing, " in text.splitlines()[1] and "computing cold readings" in text
         await pilot.press("1", "2")
         assert field_of(pilot) == "12"
