@@ -75,7 +75,7 @@ class PartsScreen(Frame):
         super().on_mount()
         self.panel("ref-label").show((line(Span("position ", "strong")),))
         self.panel("marking-label").show((line(Span("  marking ", "strong")),))
-        self.panel("hint").show((line(Span("  Enter fits a line; left, right: its text", "quiet")),))
+        self.panel("hint").show((line(Span("  Enter twice: fit; left, right: its text", "quiet")),))
 
     def entered(self) -> None:
         """Offer the positions of the verdict first, else the suspects; keep the one chosen while it is among
