@@ -244,6 +244,24 @@ def test_a_repaired_adapter_is_retested_and_the_job_closed(tmp_path):
     assert app.shelf.bench.closed == "repaired"  # type: ignore[attr-defined]
 
 
+def test_a_retest_reading_typed_on_the_list_goes_to_its_field(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await found(pilot)
+        await press(pilot, "f5", "enter", "enter", "enter", "f6")
+        await type_in(pilot, "50M")
+        assert "noted: retest insulation: pass (50M)" in text_of(pilot.app)
+
+    play(tmp_path, story, at_bench=True)
+
+
+def test_half_a_complaint_that_is_left_is_told(tmp_path):
+    async def story(pilot: Pilot[int]) -> None:
+        await press(pilot, *BEGIN, "enter", "f10")
+        assert "the complaint is not in the job yet" in text_of(pilot.app)
+
+    play(tmp_path, story)
+
+
 def test_each_look_is_answered_with_its_part(tmp_path):
     async def story(pilot: Pilot[int]) -> None:
         await press(pilot, *BEGIN, *COMPLAIN, *CAUTIONS)

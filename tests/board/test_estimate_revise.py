@@ -69,15 +69,19 @@ def test_the_stored_charge_is_taken_at_the_upper_end_of_an_estimate(board):
     assert guessed.energy / known.energy == pytest.approx(board.part("C1").spread["capacitance"] / 1.2, rel=0.01)
 
 
-def test_draws_of_a_known_board_are_what_they_were():
-    """A board without estimates draws the same specimens as before spreads were known."""
+def test_few_specimens_reach_every_part_of_a_tolerance():
+    """Latin hypercube sampling (McKay, Beckman, Conover, Technometrics 21, 1979, section 2.3): one draw in every stratum."""
     profile = load_profile("harbour-handset-charger")
-    rng = np.random.default_rng(1)
-    count = sum(len([key for key in part.tolerance if key in part.value]) for part in profile.parts)
-    shares = rng.uniform(-1.0, 1.0, (2, count))
-    first = next(part for part in profile.parts if part.tolerance)
-    key = next(iter(first.tolerance))
-    assert specimens(profile, 2)[0].values[first.ref, key] == first.value[key] * (1.0 + first.tolerance[key] * shares[0, 0])
+    draws = specimens(profile, 24)
+    for part in profile.parts:
+        for key in (key for key in part.tolerance if key in part.value):
+            values = np.array([draw.values[part.ref, key] for draw in draws])
+            place = (values / part.value[key] - 1.0 + part.tolerance[key]) / (2.0 * part.tolerance[key])
+            assert sorted((place * 24.0).astype(int)) == list(range(24)), (part.ref, key)
+    leak = next(key for key in draws[0].severity if key[1] == "leaky")
+    sizes = sorted(math.log(draw.severity[leak]) for draw in draws)
+    assert sizes[0] < -1.7 * 1.3 and sizes[-1] > 1.7 * 1.3, "also of the sizes of faults: beyond 1.7 standard deviations"
+    assert specimens(profile, 24) == draws
 
 
 def test_striking_a_series_part_joins_its_nodes(board):

@@ -10,7 +10,7 @@ from triage.board.fault import Fault
 from triage.board.part import Board, Label, Mains, Part
 from triage.families.destruction import destroyed
 from triage.families.steady import Settled
-from triage.physics.transient import I_MEAN, I_RMS, POWER, V_MAX, V_MIN, Stretch
+from triage.physics.transient import I_MEAN, I_RMS, POWER, V_MAX, V_MEAN, V_MIN, Stretch
 
 RATINGS = {"voltage": 400.0, "current": 2.0, "power": 0.5}
 
@@ -59,46 +59,81 @@ def test_a_part_survives_its_rating_and_dies_well_beyond_it(
     kind: str, column: int, survives: float, dies: float, mode: str
 ) -> None:
     one = board(part("X1", kind))
-    assert destroyed(one, at(X1={column: survives}), ()) is None
-    assert destroyed(one, at(X1={column: dies}), ()) == Fault("X1", mode)
-    assert destroyed(one, at(X1={column: dies}), ("X1",)) is None, "what is at fault already dies no more"
+    assert destroyed(one, at(X1={column: survives}), ()) == ()
+    assert destroyed(one, at(X1={column: dies}), ()) == (Fault("X1", mode),)
+    assert destroyed(one, at(X1={column: dies}), ("X1",)) == (), "what is at fault already dies no more"
 
 
 def test_a_transistor_dies_by_voltage_or_by_the_heat_of_both_junctions() -> None:
     one = board(part("Q1", "bipolar_transistor"))
-    assert destroyed(one, at(Q1={V_MAX: 400.0, POWER: 0.4}, Q1__be={POWER: 0.05}), ()) is None
-    assert destroyed(one, at(Q1={V_MAX: 800.0}, Q1__be={}), ()) == Fault("Q1", "ce_short")
-    assert destroyed(one, at(Q1={POWER: 5.0}, Q1__be={}), ()) == Fault("Q1", "ce_short")
-    assert destroyed(one, at(Q1={}, Q1__be={POWER: 5.0}), ()) == Fault("Q1", "ce_short")
+    assert destroyed(one, at(Q1={V_MAX: 400.0, POWER: 0.4}, Q1__be={POWER: 0.05}), ()) == ()
+    assert destroyed(one, at(Q1={V_MAX: 800.0}, Q1__be={}), ()) == (Fault("Q1", "ce_short"),)
+    assert destroyed(one, at(Q1={POWER: 5.0}, Q1__be={}), ()) == (Fault("Q1", "ce_short"),)
+    assert destroyed(one, at(Q1={}, Q1__be={POWER: 5.0}), ()) == (Fault("Q1", "ce_short"),)
     small = board(part("Q2", "bipolar_transistor", voltage=50.0, power=0.5))
-    assert destroyed(small, at(Q2={V_MAX: 90.0}, Q2__be={}), ()) is None, "a small transistor has a base resistor and survives"
+    assert destroyed(small, at(Q2={V_MAX: 90.0}, Q2__be={}), ()) == (), "a small transistor has a base resistor and survives"
 
 
 def test_one_leg_of_a_bridge_and_the_diode_of_a_coupler_count_by_their_own_current() -> None:
     bridge = board(part("BR1", "bridge"))
     legs = {f"BR1__{leg}": {I_MEAN: 1.0} for leg in "abcd"}
-    assert destroyed(bridge, at(**legs), ()) is None
-    assert destroyed(bridge, at(**(legs | {"BR1__c": {I_MEAN: 20.0}})), ()) == Fault("BR1", "d_short")
+    assert destroyed(bridge, at(**legs), ()) == ()
+    assert destroyed(bridge, at(**(legs | {"BR1__c": {I_MEAN: 20.0}})), ()) == (Fault("BR1", "d_short"),)
     coupler = board(part("U2", "optocoupler", current=0.05))
-    assert destroyed(coupler, at(U2={}, U2__led={I_MEAN: 0.04}), ()) is None
-    assert destroyed(coupler, at(U2={}, U2__led={I_MEAN: 1.0}), ()) == Fault("U2", "led_open")
+    assert destroyed(coupler, at(U2={}, U2__led={I_MEAN: 0.04}), ()) == ()
+    assert destroyed(coupler, at(U2={}, U2__led={I_MEAN: 1.0}), ()) == (Fault("U2", "led_open"),)
 
 
 def test_the_heat_of_a_transformer_opens_the_thermal_fuse_in_it() -> None:
     copper = {"primary_resistance": 200.0, "secondary_resistance": 1.0}
     winding = Part("T1", "transformer", "", {}, copper, ratings={"power": 5.0})
     one = board(winding, part("F1", "thermal_fuse", current=1.0))
-    assert destroyed(one, at(F1={I_RMS: 0.05}, T1__primary={I_RMS: 0.05}, T1__secondary={I_RMS: 0.5}), ()) is None
-    assert destroyed(one, at(F1={I_RMS: 0.5}, T1__primary={I_RMS: 0.5}, T1__secondary={I_RMS: 5.0}), ()) == Fault("F1", "open")
+    assert destroyed(one, at(F1={I_RMS: 0.05}, T1__primary={I_RMS: 0.05}, T1__secondary={I_RMS: 0.5}), ()) == ()
+    assert destroyed(one, at(F1={I_RMS: 0.5}, T1__primary={I_RMS: 0.5}, T1__secondary={I_RMS: 5.0}), ()) == (Fault("F1", "open"),)
 
 
 def test_the_fuse_opens_before_the_diode_that_is_hurt_more() -> None:
     one = board(part("D1", "diode"), part("F1", "fuse"))
     point = at(D1={I_MEAN: 200.0}, F1={I_RMS: 10.0})
-    assert destroyed(one, point, ()) == Fault("F1", "open")
-    assert destroyed(one, point, ("F1",)) == Fault("D1", "short"), "a bridged fuse protects nothing"
+    assert destroyed(one, point, ()) == (Fault("F1", "open"),)
+    assert destroyed(one, point, ("F1",)) == (Fault("D1", "short"),), "a bridged fuse protects nothing"
+
+
+def mains_path() -> Board:
+    """A shorted switch between bulk and sense resistor, with the fuse before and the controller beside it."""
+    sense = Part("R7", "resistor", "", {}, {"resistance": 0.68}, ratings={"power": 1.0})
+    far = Part("R9", "resistor", "", {}, {"resistance": 22e3}, ratings={"power": 2.0})
+    fuse = Part("F1", "fuse", "", {}, ratings={"current": 1.6, "i2t": 12.0})
+    controller = Part("U1", "pwm_controller", "", {"drive": "drv"}, ratings={"voltage": 30.0})
+    return board(sense, far, fuse, controller)
+
+
+def test_a_blowing_fuse_lets_through_what_burns_the_sense_resistor_and_the_controller_on_the_gate() -> None:
+    """Melting integral and 5 J per rated watt as in the reference circuit pwm-opto; common practice, no source."""
+    point = at(F1={I_RMS: 30.0}, R7={I_RMS: 28.0}, R9={I_RMS: 0.01}, drv__node={V_MAX: 240.0})
+    point.rows["drv", "node"] = point.rows.pop(("drv", "_node"))
+    gone = destroyed(mains_path(), point, ())
+    assert gone[0] == Fault("F1", "open") and set(gone[1:]) == {Fault("R7", "open"), Fault("U1", "vcc_short")}
+    assert destroyed(mains_path(), point, ("R7", "U1")) == (Fault("F1", "open"),), "what is gone already does not go again"
+
+
+def test_a_controller_survives_its_own_supply_at_its_drive_pin() -> None:
+    point = at(F1={}, R7={}, R9={}, drv__node={V_MAX: 28.0})
+    point.rows["drv", "node"] = point.rows.pop(("drv", "_node"))
+    assert destroyed(mains_path(), point, ()) == ()
+
+
+def test_an_electrolytic_over_its_voltage_vents_open_where_it_is_fed_on_and_stays_shorted_where_the_controller_pauses() -> None:
+    """Failure modes of the two generators of the reference circuits (their README, destruction rule)."""
+    output = part("C7", "electrolytic", voltage=16.0)
+    over = at(C7={V_MAX: 28.0, V_MEAN: 25.0})
+    assert destroyed(board(output), over, ()) == (Fault("C7", "open"),)
+    paused = board(output, Part("U1", "pwm_controller", "", {"drive": "drv"}, ratings={"voltage": 30.0}))
+    assert destroyed(paused, over, ()) == (Fault("C7", "short"),)
+    assert destroyed(paused, at(C7={V_MAX: 28.0, V_MEAN: 20.0}), ()) == (), "a short peak does not break it down"
+    assert destroyed(paused, at(C7={V_MIN: -12.0, V_MEAN: -5.0}), ()) == (Fault("C7", "open"),), "reversed it gasses and vents"
 
 
 def test_an_unknown_rating_destroys_nothing() -> None:
     one = board(Part("D1", "diode", "", {}))
-    assert destroyed(one, at(D1={I_MEAN: 1e3, V_MIN: -1e5}), ()) is None
+    assert destroyed(one, at(D1={I_MEAN: 1e3, V_MIN: -1e5}), ()) == ()

@@ -8,6 +8,7 @@ from typing import Any
 import numpy as np
 import pytest
 
+from triage.board.circuit import Draw
 from triage.board.evidence import STATES
 from triage.board.fault import Fault, Hypothesis
 from triage.board.probe import Probe
@@ -106,6 +107,18 @@ def test_a_broken_off_solution_says_nothing(tmp_path: Path) -> None:
     known = {f"@{load}": {"out": 5.0} for load in LOADS} | {f"R1.open@{load}": {"out": math.nan} for load in LOADS}
     found = expecting.expectations(BOARD, (Hypothesis((R1,)),), points(known), Cache(tmp_path))
     assert (found.states == -1).all()
+
+
+def test_a_leak_of_another_size_shows_between_the_usual_one_and_the_sound_board() -> None:
+    """Reasoned: a point is solved for one leak only; half the conductance departs about half as far, none departs nowhere."""
+    leaky, draws = Hypothesis((Fault("C2", "leaky"),)), [Draw({}, {("C2", "leaky"): size}) for size in (1.0, 2.0, 1e9, 0.1)]
+    usual, sound = np.array([1.5, 0.0, math.nan]), np.array([13.5, 4.0, 2.0])
+    shown = expecting.graded(leaky, usual, sound, draws)
+    assert shown[0] == pytest.approx([1.5, 7.5, 13.5, 0.0], abs=1e-6), "a heavier leak takes it to zero, not beyond"
+    assert shown[1] == pytest.approx([0.0, 2.0, 4.0, 0.0], abs=1e-6)
+    assert np.isnan(shown[2]).all(), "what is not known of the usual size is not known"
+    other = expecting.graded(Hypothesis((R1,)), usual, sound, draws)
+    assert (other[:2] == usual[:2, None]).all()
 
 
 def test_collateral_is_weighted_by_the_loads_it_happens_at() -> None:

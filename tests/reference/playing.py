@@ -97,7 +97,7 @@ def play(
     rng = np.random.default_rng(seed)
     job, gate_open, minutes, danger = Job(tuple(first)), False, 0.0, 0.0
     taken: list[Probe] = []
-    for _ in range(most):
+    while len(taken) < most:
         choice = choose(diagnosis, job, lambda probe, open_=gate_open: open_ or not probe.live)
         if choice is None:
             if gate_open or diagnosis.verdict(job, careful).status != "open":

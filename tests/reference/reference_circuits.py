@@ -147,6 +147,16 @@ def ripple_again_table(circuit: str) -> dict[tuple[str, str], tuple[float, float
     return {(fault, load): (number(whole), number(later)) for fault, load, whole, later in _lines(circuit, "ripple_again")[1:]}
 
 
+def not_repeated(circuit: str, board: Board) -> set[tuple[str, str]]:
+    """(fault, load) whose record destroys other parts than the same deck run again, more closely or from an empty output, as
+    repeat.py tells."""
+    if not (DATA / f"{circuit.replace('-', '_')}_destroyed_again.csv").is_file():
+        return set()
+    table = live_table(circuit, board)
+    return {(fault, load) for fault, load, _, again in _lines(circuit, "destroyed_again")[1:]
+            if bool(again) != bool(table[fault, load][0]) or not set(fault_of(again)) <= set(table[fault, load][0])}
+
+
 def collateral_cold_table(circuit: str) -> dict[frozenset[Fault], dict[Probe, float]]:
     """Cold readings with a fault and all its collateral present, made with the same generator; empty where there is no file."""
     if not (DATA / f"{circuit.replace('-', '_')}_collateral_cold.csv").is_file():

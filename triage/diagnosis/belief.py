@@ -79,12 +79,25 @@ class Likelihoods:
                 continue
             other = self.companions.of(column, tuple(before))
             if other is None:
-                found[probe] = self._term((probe, values), partial(self.readings.likelihood, column, values))
+                term = self._term((probe, values), partial(self.readings.likelihood, column, values))
             else:
                 given = partial(self.companions.likelihood, column, values, other, before[other])
-                found[probe] = self._term((probe, values, other, before[other]), given)
+                term = self._term((probe, values, other, before[other]), given)
+            found[probe] = self._with_own(term, column, values, before, other)
             before[column] = values[len(values) // 2]
         return found
+
+    def _with_own(
+        self, term: NDArray[np.float64], column: int, values: Sequence[float], before: Mapping[int, float], common: int | None
+    ) -> NDArray[np.float64]:
+        """The term of a reading with the hypotheses that have a companion of their own."""
+        own = self.companions.own(column, tuple(before), common)
+        if own:
+            term = term.copy()
+        for other, who in own.items():
+            given = self.companions.likelihood(column, values, other, before[other], who)
+            term[who] = np.log(np.maximum(given, _SMALLEST))
+        return term
 
     @cached_property
     def companions(self) -> Companions:

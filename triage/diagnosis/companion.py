@@ -4,7 +4,9 @@ Resistance from three nodes to ground through one unread resistor is one piece o
 readings shout down everything else as soon as the resistor is not quite what was expected, and a sound part is accused. So
 each reading may have one companion among those before it (a tree over the readings; Friedman, Geiger, Goldszmidt, Bayesian
 network classifiers, Machine Learning 29 (1997) 131-163): the one its expected value is most correlated with over the
-specimens of the sound board. Its draws are then moved to where the companion was read, by linear regression within each
+specimens of the sound board. Under a fault the readings may hang together otherwise: a leak of unknown size moves all readings
+across it, and a hypothesis that knows of such a tie has a companion of its own (Bayesian multinets, the same paper, section 4.3).
+The draws are then moved to where the companion was read, by linear regression within each
 hypothesis (Beaumont, Zhang, Balding, Approximate Bayesian computation in population genetics, Genetics 162 (2002) 2025-2035).
 """
 
@@ -18,6 +20,9 @@ from triage.diagnosis.likelihood import ReadingModel
 
 LEAST_CORRELATION = 0.7
 """Below this a reading has no companion: with two dozen specimens chance alone seldom correlates so far (p < 0.001)."""
+OWN_CORRELATION, LOOSE_CORRELATION = 0.95, 0.9
+"""A hypothesis has a companion of its own where the readings of its specimens are correlated so far, and less than the second
+figure with the companion that the sound board has."""
 FEWEST = 8
 """Specimens with a number in both readings, below which nothing is said about how they move."""
 
@@ -30,6 +35,7 @@ class Companions:
         hypotheses = model.expectations.hypotheses
         self._sound = next((row for row, one in enumerate(hypotheses) if not one.faults), 0)
         self._drawn: dict[int, NDArray[np.float64]] = {}
+        self._ties: dict[tuple[int, int], NDArray[np.float64]] = {}
 
     def of(self, column: int, before: Sequence[int]) -> int | None:
         """The companion of a probe among others, by column; None where it moves along with none of them."""
@@ -41,19 +47,41 @@ class Companions:
                 best, found = likeness, other
         return found
 
-    def likelihood(self, column: int, values: Sequence[float], companion: int, shown: float) -> NDArray[np.float64]:
-        """p(readings of a probe | hypothesis, what its companion showed), shape (H,) [-].
+    def own(self, column: int, before: Sequence[int], common: int | None) -> dict[int, NDArray[np.int64]]:
+        """Companion -> the hypotheses that have it of their own instead of the ``common`` one of all, by column."""
+        who = np.flatnonzero(self._model.apart(column, self._sound))
+        if not who.size or not before:
+            return {}
+        ties = np.stack([self._tie(column, other, who) for other in before])
+        best = ties.argmax(axis=0)
+        bound = self._tie(column, common, who) if common is not None else np.zeros(len(who))
+        takes = (ties[best, np.arange(len(who))] >= OWN_CORRELATION) & (bound < LOOSE_CORRELATION)
+        return {before[place]: who[takes & (best == place)] for place in np.unique(best[takes])}
+
+    def _tie(self, column: int, other: int, who: NDArray[np.int64]) -> NDArray[np.float64]:
+        """Size of the correlation of two readings over the specimens of some hypotheses, shape (len(who),) [-]."""
+        if (column, other) not in self._ties:
+            self._ties[column, other] = np.abs(_correlations(self._draws(column)[who], self._draws(other)[who]))
+        return self._ties[column, other]
+
+    def likelihood(
+        self, column: int, values: Sequence[float], companion: int, shown: float, who: NDArray[np.int64] | None = None
+    ) -> NDArray[np.float64]:
+        """p(readings of a probe | hypothesis, what its companion showed), shape (H,) or (len(who),) [-].
 
         values: readings of the probe [SI]. companion: column of the other probe. shown: its reading [SI]; OL moves nothing.
-        Where the companion's reading may have been a slip, the probe counts by itself to that share.
+        who: the hypotheses asked for, by default all. Where the companion's reading may have been a slip, the probe counts by
+        itself to that share.
         """
-        alone = self._model.likelihood(column, values)
+        rows: slice | NDArray[np.int64] = slice(None) if who is None else who
+        alone = self._model.likelihood(column, values)[rows]
         seen = float(to_axis(shown, self._model.axes[companion].instrument))
         if not np.isfinite(seen):
             return alone
-        moved = _moved(self._draws(column), self._draws(companion), seen)
+        moved = _moved(self._draws(column)[rows], self._draws(companion)[rows], seen)
         given = self._model.likelihood_of_draws(column, values, self._model.axes[column].at(moved), draw_width(moved))
-        slip = np.minimum(self._model.chance_of_slip(companion, shown) / self._model.likelihood(companion, [shown]), 1.0)
+        there = self._model.likelihood(companion, [shown])[rows]
+        slip = np.minimum(self._model.chance_of_slip(companion, shown) / there, 1.0)
         return (1.0 - slip) * given + slip * alone
 
     def _draws(self, column: int) -> NDArray[np.float64]:
@@ -66,14 +94,19 @@ class Companions:
 
 def _correlation(one: NDArray[np.float64], other: NDArray[np.float64]) -> float:
     """Correlation of two readings over the specimens of one hypothesis; 0 where either moves by less than its own error."""
+    return float(_correlations(one[None, :], other[None, :])[0])
+
+
+def _correlations(one: NDArray[np.float64], other: NDArray[np.float64]) -> NDArray[np.float64]:
+    """The same for many hypotheses, (H, D) -> (H,)."""
     both = np.isfinite(one) & np.isfinite(other)
-    if both.sum() < FEWEST:
-        return 0.0
-    one, other = one[both] - one[both].mean(), other[both] - other[both].mean()
-    spread, other_spread = float((one**2).mean()), float((other**2).mean())
-    if min(spread, other_spread) < 1.0:
-        return 0.0
-    return float((one * other).mean()) / (spread * other_spread) ** 0.5
+    share = 1.0 / np.maximum(both.sum(axis=1), 1)
+    off = [np.where(both, x, 0.0) for x in (one, other)]
+    off = [np.where(both, x - (x.sum(axis=1) * share)[:, None], 0.0) for x in off]
+    spreads = [(x**2).sum(axis=1) * share for x in off]
+    told = (both.sum(axis=1) >= FEWEST) & (np.minimum(*spreads) >= 1.0)
+    together: NDArray[np.float64] = (off[0] * off[1]).sum(axis=1) * share
+    return np.where(told, together / np.sqrt(np.maximum(spreads[0] * spreads[1], 1e-300)), 0.0)
 
 
 def _moved(draws: NDArray[np.float64], companion: NDArray[np.float64], seen: float) -> NDArray[np.float64]:

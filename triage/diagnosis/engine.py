@@ -27,7 +27,16 @@ from triage.diagnosis.likelihood import ReadingModel
 from triage.diagnosis.misfit import Fit, fit_of
 from triage.diagnosis.next_reading import Candidate, Offers, Ranking, Scorer
 from triage.diagnosis.priors import Prior
-from triage.diagnosis.second_look import hinges, nothing_fits, odd_readings, open_rivals, reading_against, reading_at_part
+from triage.diagnosis.second_look import (
+    RIVAL,
+    RIVAL_CAREFUL,
+    hinges,
+    nothing_fits,
+    odd_readings,
+    open_rivals,
+    reading_against,
+    reading_at_part,
+)
 from triage.diagnosis.settings import Instrument, Settings
 from triage.diagnosis.verdict import Roots, Suspect, Verdict, best_repair, conclude, settled
 from triage.diagnosis.weigh import Weighed, evidence_ratios
@@ -132,7 +141,7 @@ class Diagnosis:
         worth = ranked[0].worth if ranked else 0.0
         enough, exhausted = settled(belief, self.actions, self.settings, careful, worth)
         if enough:
-            return self._second_look(job, standing, gate)
+            return self._second_look(job, standing, gate, careful)
         if exhausted:
             return None
         choice = self._careful_choice(belief, ranked) if careful else ranked[0]
@@ -161,7 +170,7 @@ class Diagnosis:
         )
         if odd or verdict.status == "open":
             return verdict
-        return replace(verdict, status="open") if self._second_look(job, standing, _everything) else verdict
+        return replace(verdict, status="open") if self._second_look(job, standing, _everything, careful) else verdict
 
     def settled(self, job: Job, careful: bool = False) -> bool:
         """True when the belief alone would stop: the best repair is likely enough to cure, or nothing is worth reading any more.
@@ -207,7 +216,9 @@ class Diagnosis:
         found = look_ahead.best(self.model, belief, self.actions, self.costs, self.kinds, minutes, ranked)
         return found or ranked[0]
 
-    def _second_look(self, job: Job, standing: "Standing", gate: Callable[[Probe], bool]) -> Suggestion | None:
+    def _second_look(
+        self, job: Job, standing: "Standing", gate: Callable[[Probe], bool], careful: bool = False
+    ) -> Suggestion | None:
         """Before a verdict: the odd reading once more, then the suspected part itself."""
 
         def allowed(probe: Probe) -> bool:
@@ -230,7 +241,7 @@ class Diagnosis:
             return explain.confirmation(self.model, belief, self.actions, self._candidate(at_part, taken), lead)
         if not self.pins:
             return None
-        rivals = self._open_rivals(standing, lead)
+        rivals = self._open_rivals(standing, lead, RIVAL_CAREFUL if careful else RIVAL)
 
         def untaken(probe: Probe) -> bool:
             return probe not in taken and allowed(probe)
@@ -242,7 +253,7 @@ class Diagnosis:
             return None
         return explain.against(self.model, belief, self.actions, self._candidate(against, taken), lead, rivals)
 
-    def _open_rivals(self, standing: "Standing", lead: int) -> NDArray[np.int64]:
+    def _open_rivals(self, standing: "Standing", lead: int, least: float) -> NDArray[np.int64]:
         """What else would explain the readings; see ``second_look.open_rivals``."""
         terms = self._likelihoods.terms(standing.since)
         ratios, before = np.ones(len(self.prior)), standing.start.copy()
@@ -251,7 +262,7 @@ class Diagnosis:
                 ratios = np.maximum(ratios, np.exp(np.minimum(log[lead] - log, 50.0)))
             else:
                 before *= np.exp(log)
-        return open_rivals(lead, standing.belief, before, ratios, self.actions, self.kinds)
+        return open_rivals(lead, standing.belief, before, ratios, self.actions, self.kinds, least)
 
     def _candidate(self, probe: Probe, taken: Sequence[Probe]) -> Candidate:
         column = self.expectations.column(probe) or 0

@@ -59,6 +59,10 @@ class ReadingModel:
         """True when the probe can be taken under at least one hypothesis."""
         return self._known[column]
 
+    def apart(self, column: int, hypothesis: int) -> NDArray[np.bool_]:
+        """True for the hypotheses that read a probe otherwise than this one, shape (H,)."""
+        return self._row[column] != self._row[column][hypothesis]
+
     def commonest(self, column: int, order: NDArray[np.int64]) -> int:
         """Place in ``order`` of a hypothesis that reads as most of them do."""
         row = self._row[column][order]

@@ -23,6 +23,8 @@ RULED_OUT = 10.0
 little do not rule out: they share the spread of the same parts."""
 RIVAL = 0.01
 """Rivals with less than this share of the leading repair's belief are not looked for [-]."""
+RIVAL_CAREFUL = 0.0005
+"""The same in the careful way, where a wrong repair destroys parts [-]."""
 BEHIND = 0.001
 """The same behind a fuse that stands open, as a share of what was believed before any reading [-]."""
 PROTECTIVE = ("fuse", "fusible_resistor", "thermal_fuse")
@@ -150,6 +152,7 @@ def open_rivals(
     ratios: NDArray[np.float64],
     actions: Actions,
     kinds: Mapping[str, str],
+    least: float = RIVAL,
 ) -> NDArray[np.int64]:
     """Hypotheses with another repair that no single reading rules out, in the order of the list.
 
@@ -162,10 +165,11 @@ def open_rivals(
     before: chances before any reading, shape (H,) [-].
     ratios: strongest of the readings for the lead and against each hypothesis, shape (H,) [-].
     actions, kinds: repairs of the hypotheses; ref -> part kind.
+    least: share of the leading repair's belief below which a rival is not looked for [-].
     """
     repair = actions.repairs[actions.of[lead]]
     other = actions.of != actions.of[lead]
-    sought = belief >= RIVAL * belief[actions.of == actions.of[lead]].sum()
+    sought = belief >= least * belief[actions.of == actions.of[lead]].sum()
     if repair and all(kinds.get(ref) in PROTECTIVE for ref in repair):
         behind = np.array([repair < one for one in actions.repairs])[actions.of]
         sought |= behind & (before >= BEHIND * before[lead])

@@ -13,6 +13,7 @@ FAMILY = Family(
     start_roles=(),
     output_roles=("output capacitor",),
     supply_role="switcher supply capacitor",
+    solution=1,
     look=("one chip and a drum-shaped coil", "no transformer", "no optocoupler"),
     largest_step=4e-6,
     swing_low=0.2,

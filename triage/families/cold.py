@@ -9,6 +9,7 @@ from collections.abc import Callable, Sequence
 from concurrent.futures import ThreadPoolExecutor, as_completed
 from dataclasses import replace
 from itertools import combinations
+from statistics import NormalDist
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,9 +22,10 @@ from triage.board.probe import Probe
 from triage.physics.netlist import compile_netlist, with_values
 from triage.physics.network import HAND_METER, Meter, read_bridge, read_network
 
-SEVERITY_SPREAD = {"leaky": 0.8, "high": 0.6, "high_esr": 0.5, "low_capacitance": 0.35, "low_gain": 0.35, "low_voltage": 0.08,
-                   "shorted_turns": 0.3}
-"""Standard deviation of the natural logarithm of a fault's size about its nominal departure [-]; common practice, no source."""
+SEVERITY_SPREAD = {"leaky": 1.3, "vcc_leaky": 1.3, "high": 0.6, "high_esr": 0.5, "low_capacitance": 0.35, "low_gain": 0.35,
+                   "low_voltage": 0.08, "shorted_turns": 0.3}
+"""Standard deviation of the natural logarithm of a fault's size about its nominal departure [-]; common practice, no source.
+A leak may be anything from some hundred ohm to some hundred kilohm."""
 JUNCTIONS = ("diode", "zener", "led")
 """Two-legged kinds that are also read with the diode test, both ways, when a leg is lifted."""
 NORMAL_90 = 1.645
@@ -62,13 +64,18 @@ def lifted_probes(board: Board) -> tuple[Probe, ...]:
 
 def specimens(board: Board, count: int, seed: int = 1) -> tuple[Draw, ...]:
     """``count`` specimens: values uniform within their tolerance, estimated ones and fault sizes log-normal. The same for the
-    same seed."""
+    same seed.
+
+    Each quantity is drawn once from every ``count``-th of its distribution, so that few specimens reach its tails too.
+    Source: M. McKay, R. Beckman and W. Conover, A comparison of three methods for selecting values of input variables,
+    Technometrics 21, 1979 (Latin hypercube sampling).
+    """
     rng = np.random.default_rng(seed)
     columns = [(part, key) for part in board.parts for key in part.tolerance if key in part.value]
-    shares = rng.uniform(-1.0, 1.0, (count, len(columns)))
+    shares = 2.0 * _chances(rng, count, len(columns)) - 1.0
     faults = [(part.ref, mode) for part in board.parts for mode in (part.fault_modes or kinds()[part.kind].fault_modes)
               if mode in SEVERITY_SPREAD]
-    sizes = np.exp(rng.standard_normal((count, len(faults))) * [SEVERITY_SPREAD[mode] for _, mode in faults])
+    sizes = np.exp(_normal(_chances(rng, count, len(faults))) * [SEVERITY_SPREAD[mode] for _, mode in faults])
     guesses = [(part, key) for part in board.parts for key in part.spread if key in part.value]
     factors = _spread_factors(rng, count, [part.spread[key] for part, key in guesses])
     return tuple(
@@ -79,9 +86,21 @@ def specimens(board: Board, count: int, seed: int = 1) -> tuple[Draw, ...]:
         for d in range(count))
 
 
+def _chances(rng: np.random.Generator, count: int, quantities: int) -> NDArray[np.float64]:
+    """Uniform chances between 0 and 1, one in every ``count``-th for each quantity, shape (count, quantities)."""
+    strata = rng.permuted(np.tile(np.arange(count)[:, None], (1, quantities)), axis=0)
+    return (strata + rng.random((count, quantities))) / count
+
+
+def _normal(chances: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Standard normal quantiles of chances between 0 and 1, same shape."""
+    quantile = NormalDist().inv_cdf
+    return np.array([quantile(min(max(float(c), 1e-9), 1.0 - 1e-9)) for c in chances.flat]).reshape(chances.shape)
+
+
 def _spread_factors(rng: np.random.Generator, count: int, spreads: Sequence[float]) -> NDArray[np.float64]:
     """Factors on estimated values, 90 % of them between 1/spread and spread, none beyond the square of it."""
-    departures = np.clip(rng.standard_normal((count, len(spreads))) / NORMAL_90, -2.0, 2.0)
+    departures = np.clip(_normal(_chances(rng, count, len(spreads))) / NORMAL_90, -2.0, 2.0)
     return np.asarray(spreads, float) ** departures
 
 

@@ -1,7 +1,8 @@
 """Which parts an operating point destroys, and in which order: the collateral of a fault.
 
 Thresholds are factors on the ratings that a part survives for seconds: common practice, no source; the same that the
-reference circuits were made with, so that the two can be compared.
+reference circuits were made with, so that the two can be compared. Slow heat destroys one part at a time, the worst first.
+What lies in the path of a blowing fuse does not wait for that: until the fuse has cleared, its melting integral goes through it.
 """
 
 from collections.abc import Callable, Iterable, Mapping
@@ -9,7 +10,7 @@ from collections.abc import Callable, Iterable, Mapping
 from triage.board.fault import Fault
 from triage.board.part import Board, Part
 from triage.families.steady import Settled
-from triage.physics.transient import I_MEAN, I_RMS, POWER, V_MAX, V_MIN
+from triage.physics.transient import I_MEAN, I_RMS, POWER, V_MAX, V_MEAN, V_MIN
 
 FUSE_CURRENT = 2.0
 RESISTOR_POWER = 10.0
@@ -19,9 +20,13 @@ DIODE_CURRENT, DIODE_VOLTAGE = 4.0, 1.5
 FIELD_EFFECT_VOLTAGE, FIELD_EFFECT_POWER = 1.1, 4.0
 """A field-effect transistor is lost by its avalanche, soon above its rating."""
 LED_CURRENT = 4.0
-CAPACITOR_VOLTAGE, REVERSE_VOLTS = 1.5, 3.0
+CAPACITOR_VOLTAGE, SUSTAINED_VOLTAGE, REVERSE_VOLTS = 1.5, 1.4, 3.0
 WINDING_LOSS = 4.0
 """Loss of a mains transformer's windings over its rated one at which the thermal fuse in it opens."""
+LET_THROUGH = 5.0
+"""Energy per rated watt that a resistor survives while a fuse clears [s]."""
+DRIVE_VOLTAGE = 1.5
+"""Voltage at a controller's drive pin over its supply rating that destroys it: a shorted switch puts the bulk on it."""
 FAST_KINDS = ("fuse", "fusible_resistor", "thermal_fuse")
 """Kinds that open before the heat elsewhere does its work."""
 
@@ -80,12 +85,6 @@ def _led(part: Part, at: Settled) -> tuple[float, str]:
     return _over(at.row(part.ref)[I_MEAN], part.ratings.get("current"), LED_CURRENT), "open"
 
 
-def _electrolytic(part: Part, at: Settled) -> tuple[float, str]:
-    row = at.row(part.ref)
-    return max(_over(max(row[V_MAX], 0.0), part.ratings.get("voltage"), CAPACITOR_VOLTAGE),
-               max(-row[V_MIN], 0.0) / REVERSE_VOLTS), "open"
-
-
 def _capacitor(part: Part, at: Settled) -> tuple[float, str]:
     row = at.row(part.ref)
     return _over(max(abs(row[V_MIN]), abs(row[V_MAX])), part.ratings.get("voltage"), CAPACITOR_VOLTAGE), "short"
@@ -93,7 +92,7 @@ def _capacitor(part: Part, at: Settled) -> tuple[float, str]:
 
 RULES: Mapping[str, Callable[[Part, Settled], tuple[float, str]]] = {
     "fuse": _fuse, "fusible_resistor": _resistor, "resistor": _resistor, "bipolar_transistor": _transistor,
-    "zener": _zener, "diode": _diode, "led": _led, "electrolytic": _electrolytic, "capacitor": _capacitor,
+    "zener": _zener, "diode": _diode, "led": _led, "capacitor": _capacitor,
     "x_capacitor": _capacitor, "y_capacitor": _capacitor, "varistor": _zener, "mosfet": _field_effect,
     "primary_side_switcher": _switcher, "buck_switcher": _switcher, "bridge": _bridge,
     "optocoupler": _optocoupler,
@@ -111,12 +110,32 @@ def _thermal_fuse(board: Board, part: Part, at: Settled) -> tuple[float, str]:
     return share, "open"
 
 
-NEAR_RULES: Mapping[str, Callable[[Board, Part, Settled], tuple[float, str]]] = {"thermal_fuse": _thermal_fuse}
-"""Rules of parts that a neighbour destroys."""
+def _controller(board: Board, part: Part, at: Settled) -> tuple[float, str]:
+    drive = at.row(part.pins["drive"], "node") if (part.pins["drive"], "node") in at.rows else None
+    return _over(max(drive[V_MAX], 0.0), part.ratings.get("voltage"), DRIVE_VOLTAGE) if drive is not None else 0.0, "vcc_short"
 
 
-def destroyed(board: Board, at: Settled, hurt: Iterable[str]) -> Fault | None:
-    """The part that this operating point destroys first, leaving out the refs already at fault; None when all survive."""
+def _electrolytic(board: Board, part: Part, at: Settled) -> tuple[float, str]:
+    """Over its voltage an electrolytic breaks down. A converter that goes on feeding it boils it until it vents and stands open;
+    one that its controller stops leaves it shorted."""
+    row, rated = at.row(part.ref), part.ratings.get("voltage")
+    if any(other.kind == "pwm_controller" for other in board.parts):
+        share, mode, reverse = _over(max(row[V_MEAN], 0.0), rated, SUSTAINED_VOLTAGE), "short", -row[V_MEAN] / REVERSE_VOLTS
+    else:
+        share, mode, reverse = _over(max(row[V_MAX], 0.0), rated, CAPACITOR_VOLTAGE), "open", -row[V_MIN] / REVERSE_VOLTS
+    return (share, mode) if share > reverse else (float(reverse), "open")
+
+
+NEAR_RULES: Mapping[str, Callable[[Board, Part, Settled], tuple[float, str]]] = {
+    "thermal_fuse": _thermal_fuse, "pwm_controller": _controller, "electrolytic": _electrolytic}
+"""Rules that ask what else is on the board."""
+
+
+def destroyed(board: Board, at: Settled, hurt: Iterable[str]) -> tuple[Fault, ...]:
+    """What this operating point destroys next, leaving out the refs already at fault; nothing when all survive.
+
+    One part, the worst, fuses first; with a fuse all that its melting integral destroys in its path.
+    """
     left = set(hurt)
     hits = []
     for part in board.parts:
@@ -126,4 +145,26 @@ def destroyed(board: Board, at: Settled, hurt: Iterable[str]) -> Fault | None:
         share, mode = near(board, part, at) if near else RULES[part.kind](part, at)
         if share > 1.0:
             hits.append((part.kind in FAST_KINDS, share, Fault(part.ref, mode)))
-    return max(hits)[2] if hits else None
+    if not hits:
+        return ()
+    first = max(hits)[2]
+    return (first, *_swept_along(board, at, board.part(first.ref), {*left, first.ref}))
+
+
+def _swept_along(board: Board, at: Settled, fuse: Part, left: set[str]) -> list[Fault]:
+    """What goes before a fuse has cleared: resistors in its path, and a controller whose drive pin the switch pulls up."""
+    if fuse.kind != "fuse":
+        return []
+    melting, current, swept = fuse.ratings.get("i2t", 0.0), float(at.row(fuse.ref)[I_RMS]), []
+    for part in board.parts:
+        if part.ref in left:
+            continue
+        if part.kind == "resistor" and "power" in part.ratings:
+            share = float(at.row(part.ref)[I_RMS]) / current
+            if melting * share * share * part.value["resistance"] > LET_THROUGH * part.ratings["power"]:
+                swept.append(Fault(part.ref, "open"))
+        elif part.kind == "pwm_controller":
+            share, mode = _controller(board, part, at)
+            if share > 1.0:
+                swept.append(Fault(part.ref, mode))
+    return swept

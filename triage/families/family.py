@@ -34,5 +34,7 @@ class Family:
     """Share of the bulk voltage above which a swing begins [-]."""
     swing_pin: str = ""
     """Pin of the switch that swings; empty: its collector or drain."""
+    solution: int = 0
+    """Raised when the solution of this family changes and that of the others does not."""
     look: tuple[str, ...] = ()
     """What can be seen on a board of this family, for telling it apart."""

@@ -10,8 +10,8 @@ from triage.families.family import Family
 from triage.families.steady import Settled, swinging_pin
 from triage.physics.transient import I_RMS, POWER, V_MAX, V_MEAN, V_MIN, V_RMS
 
-INPUT_ROLES = ("fusible input resistor", "mains fuse", "thermal fuse", "inrush NTC", "mains rectifier", "mains bridge",
-               "mains cord", "common-mode choke")
+INPUT_ROLES = ("fusible input resistor", "mains fuse", "thermal fuse", "inrush limiter", "inrush resistor", "mains rectifier",
+               "mains bridge", "mains cord", "common-mode choke")
 
 
 def live_probes(board: Board, family: Family, condition: str) -> tuple[Probe, ...]:

@@ -26,7 +26,7 @@ from triage.families.steady import Settled, rated_start, settle
 from triage.physics.transient import POWER, QUICK, NoConvergence, Quality
 
 SOLUTION = 3
-"""Raised whenever the physics changes, so that kept points of an older solution are not used."""
+"""Raised whenever the physics changes, so that kept points of an older solution are not used; see also ``Family.solution``."""
 LOADS = CONDITIONS[1:]
 NO_LOAD = 1e6
 """Resistance that stands for nothing connected [ohm]."""
@@ -39,13 +39,19 @@ def load_resistance(board: Board, condition: str) -> float:
     return {"noload": NO_LOAD, "half": 2.0 * board.full_load, "full": board.full_load}[condition]
 
 
+def solution_of(family: str) -> int | list[int]:
+    """What a kept solution of this family is marked with."""
+    own = family_of(family).solution
+    return [SOLUTION, own] if own else SOLUTION
+
+
 def fingerprint(board: Board) -> str:
     """Short text that changes with anything the solution depends on."""
     content = board_to_dict(board)
     for key in ("id", "title", "note", "drawing", "label", "sides"):
         content.pop(key)
     content["load"] = board.full_load
-    content["solution"] = SOLUTION
+    content["solution"] = solution_of(board.family)
     for part in content["part"]:
         for key in ("origin", "tolerance", "spread", "fault_modes"):
             part.pop(key, None)
@@ -60,8 +66,8 @@ class Point:
     """Live readings [SI]; nan where the solution broke off."""
     powers: Mapping[str, float]
     """Ref -> mean power [W] of the parts with a power rating."""
-    breaks: Fault | None
-    """The part this operating point destroys first, if any."""
+    breaks: tuple[Fault, ...]
+    """What this operating point destroys next: none, one part, or a fuse and what it takes along."""
     capacitors: Mapping[str, float]
     """Capacitor voltages at the end [V]."""
 
@@ -80,7 +86,7 @@ def solve_point(board: Board, faults: tuple[Fault, ...], load: str, start: Mappi
         settled = settle(board, family, faults, mains=board.mains.nominal, load=load_resistance(board, load),
                          quality=quality, start=start, draw=draw)
     except NoConvergence:
-        return Point(dict.fromkeys(probes, math.nan), {}, None, {})
+        return Point(dict.fromkeys(probes, math.nan), {}, (), {})
     readings = {probe: _rounded(value) for probe, value in live_readings(board, settled, probes).items()}
     return Point(readings, _powers(board, settled), destroyed(board, settled, {fault.ref for fault in faults}),
                  {name: _rounded(volts) for name, volts in settled.capacitors.items()})
@@ -151,8 +157,8 @@ class OperatingPoints:
             going = []
             for root, load in open_ends:
                 broken = self.at((root, *result[root][load]), load).breaks
-                if broken is not None and len(result[root][load]) < MOST_COLLATERAL:
-                    result[root][load] = (*result[root][load], broken)
+                if broken and len(result[root][load]) < MOST_COLLATERAL:
+                    result[root][load] = (*result[root][load], *broken)
                     going.append((root, load))
             open_ends = going
             if not open_ends:
@@ -166,11 +172,11 @@ class OperatingPoints:
 
     def _write(self, point: Point) -> dict[str, Any]:
         return {"readings": [None if math.isnan(v) else v for v in point.readings.values()], "powers": dict(point.powers),
-                "breaks": str(point.breaks) if point.breaks else "", "capacitors": dict(point.capacitors)}
+                "breaks": "+".join(map(str, point.breaks)), "capacitors": dict(point.capacitors)}
 
     def _read(self, key: str, row: Mapping[str, Any]) -> Point:
         probes = live_probes(self.board, family_of(self.board.family), key.rpartition("@")[2])
         readings = [math.nan if v is None else float(v) for v in row["readings"]]
         return Point(dict(zip(probes, readings, strict=True)), row["powers"],
-                     Fault.parse(row["breaks"]) if row["breaks"] else None, row["capacitors"])
+                     tuple(map(Fault.parse, filter(None, row["breaks"].split("+")))), row["capacitors"])
 

@@ -15,5 +15,6 @@ FAMILY = Family(
     largest_step=4e-6,
     swing_low=0.1,
     supply_role="controller supply capacitor",
+    solution=1,
     look=("a controller with six to eight legs", "a field-effect transistor on the primary side", "an optocoupler"),
 )

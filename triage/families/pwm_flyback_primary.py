@@ -13,6 +13,7 @@ FAMILY = Family(
     start_roles=(),
     output_roles=("output capacitor",),
     supply_role="controller supply capacitor",
+    solution=1,
     look=("one chip with four to eight legs and no transistor beside it", "no optocoupler", "a transformer with three windings"),
     largest_step=1e-5,
     swing_low=0.1,

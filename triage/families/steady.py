@@ -19,6 +19,7 @@ from triage.physics.transient import (
     POWER,
     SWITCHING_START,
     V_MAX,
+    V_MIN,
     Quality,
     State,
     Stretch,
@@ -44,6 +45,14 @@ SETTLED_CHARGE = 0.04
 """Change of an electrolytic's voltage over a period that counts as none [-]."""
 BALANCE_SHARE, BALANCE_WATTS = 0.03, 5e-3
 """Power that goes into the bulk capacitor from period to period and counts as none: share of the input power [-], and [W]."""
+MOST_CYCLES, CYCLE_SHARE = 4, 0.03
+"""Most hiccups that are followed until the output at waking repeats, within this share of its rated value [-]."""
+MOST_RESUMED = 2
+"""Times a controller may go on without a pause after all."""
+NOTHING_SWITCHES = 1e-4
+"""Largest step on a board whose controller is dead [s]."""
+MOVED_SHARE = 0.01
+"""Swing of the output over a first period, as a share of its rated value, that may be the way to another state [-]."""
 LEAST_WATTS, FED_SHARE = 2e-3, 0.2
 """A bulk capacitor is not fed where the mains gives less than this [W], or this share of what it loses [-]: a bleeder's."""
 WELL_AWAKE = 0.99
@@ -120,32 +129,65 @@ class _Run:
     """Ref -> index among the capacitors."""
     zeroed: int = 0
     unfed_done: bool = False
+    phase: float = SWITCHING_START
+    """Where in the mains period the next period begins [s]."""
     restarted: bool = True
     """True when the state was changed by hand: the next period begins at the crest and leaves out the restart."""
 
     def period(self) -> Stretch:
-        """The next mains period. Its statistics cover a whole period, a tenth of a millisecond after the crest to the next."""
-        begin, period = SWITCHING_START, 1.0 / self.board.mains.frequency
+        """The next mains period. Its statistics cover a whole period, from a tenth of a millisecond after the crest to the next
+        such place, or from where a hiccup left off."""
+        begin, period = self.phase, 1.0 / self.board.mains.frequency
         start, skip = (0.0, begin) if self.restarted else (begin, 0.0)
         self.restarted = False
-        return run_stretch(self.compiled, self.state, start, begin + period, self.watch, self.quality, skip)
+        stretch = run_stretch(self.compiled, self.state, start, begin + period, self.watch, self.quality, skip)
+        move_clocks(self.compiled, begin - start)
+        return stretch
 
     def hiccup(self) -> Stretch:
-        """From one waking of a locked-out controller to another some mains periods later, or as long as it is worth waiting."""
-        period = 1.0 / self.board.mains.frequency
-        least = LEAST_HICCUP_PERIODS * period
-        _, start = self._follow(SWITCHING_START, WAKE_PERIODS * period, 0.0)
-        first, start = self._follow(start, least, math.inf)
-        rest, _ = self._follow(start, HICCUP_PERIODS * period - least if _asleep(self) else least, 0.0)
-        return joined(first, least, rest, rest.reached - start)
+        """From one waking of a locked-out controller to another some mains periods later, or as long as it is worth waiting.
 
-    def _follow(self, start: float, most: float, wake_after: float) -> tuple[Stretch, float]:
-        """A stretch of at most ``most`` [s], ended by waking after ``wake_after`` [s]; and where the next one starts [s]."""
+        Begun with the output empty, as after switching on, and followed until the output at the waking repeats, for a light
+        load empties it little in a pause; where it does not repeat, all that was followed after the first, that of switching on.
+        """
+        period, nominal = 1.0 / self.board.mains.frequency, self.board.label.output_voltage
+        held = {part.ref for role in (self.family.bulk_role, self.family.supply_role) if (part := self.board.by_role(role))}
+        self.state.capacitors[[k for ref, k in self.electrolytics.items() if ref not in held]] = 0.0
+        self._follow(WAKE_PERIODS * period, 0.0)
+        before = _resting_output(self)
+        cycle, _ = self._cycle()
+        seen, whole = cycle, 0.0
+        for _ in range(1, MOST_CYCLES):
+            if abs(_resting_output(self) - before) < CYCLE_SHARE * nominal:
+                return cycle
+            before = _resting_output(self)
+            cycle, time = self._cycle()
+            seen, whole = joined(seen, whole, cycle, time) if whole else cycle, whole + time
+        return seen
+
+    def _cycle(self) -> tuple[Stretch, float]:
+        """From a waking at least some periods on, and to the next waking where it sleeps then; and how long it took [s].
+        A latched controller sleeps first."""
+        period = 1.0 / self.board.mains.frequency
+        least, most = LEAST_HICCUP_PERIODS * period, HICCUP_PERIODS * period
+        cycle, time = self._follow(least, math.inf)
+        while time < most and (_latched(self) or _asleep(self)):
+            asleep = _asleep(self)
+            more, taken = self._follow(most - time if asleep else period, 0.0 if asleep else math.inf)
+            cycle, time = joined(cycle, time, more, taken), time + taken
+            if asleep:
+                break
+        return cycle, time
+
+    def _follow(self, most: float, wake_after: float) -> tuple[Stretch, float]:
+        """A stretch of at most ``most`` [s], ended by waking after ``wake_after`` [s]; and how long it took [s]."""
+        start = self.phase
         stretch = run_stretch(self.compiled, self.state, start, start + most, self.watch, self.quality, 0.0,
                               wake=start + wake_after)
-        then = SWITCHING_START + (stretch.reached - SWITCHING_START) % (1.0 / self.board.mains.frequency)
-        move_clocks(self.compiled, then - start)
-        return stretch, then
+        self.phase = SWITCHING_START + (stretch.reached - SWITCHING_START) % (1.0 / self.board.mains.frequency)
+        move_clocks(self.compiled, self.phase - start)
+        self.restarted = False
+        return stretch, stretch.reached - start
 
 
 def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains: float, load: float, quality: Quality,
@@ -171,11 +213,15 @@ def settle(board: Board, family: Family, faults: Sequence[Fault] = (), *, mains:
         if stretch.frequency == 0.0 and _output(run) < 0.1 * board.label.output_voltage:
             return Settled(stretch, rows, _voltages(run), 1, False)
     begin = {} if family.starts_empty else start or {}
-    awake = _wakes(board, family, net, compiled, quality, mains, begin)
-    run = _begin(board, family, net, compiled, quality, mains, begin, traced)
+    controlled = _controlled(board, family)
+    if controlled and not np.any(compiled.behaviour[2] >= CONTROLLER):
+        quality = replace(quality, largest_step=NOTHING_SWITCHES)
+    running = controlled and _running(board, family, begin)
+    awake = running and _wakes(board, family, net, compiled, quality, mains, begin)
+    run = _begin(board, family, net, compiled, quality, mains, begin if awake or not running else {}, traced)
     if awake:
         wake(compiled)
-    stretch, periods = _repeat(run, rows)
+    stretch, periods = _repeat_controlled(run, rows) if controlled else _repeat(run, rows)
     return Settled(stretch, rows, _voltages(run), periods, True)
 
 
@@ -197,21 +243,32 @@ def _begin(board: Board, family: Family, net: Netlist, compiled: Compiled, quali
     return _Run(board, family, net, compiled, watch, quality, initial_state(compiled, known), electrolytics)
 
 
+def _running(board: Board, family: Family, start: Mapping[str, float]) -> bool:
+    """True for a start in operation, the controller's supply between lockout and waking."""
+    supply, controller = board.by_role(family.supply_role), _controller(board)
+    if supply is None or controller is None:
+        return False
+    return controller.value["stop_voltage"] < start.get(supply.ref, 0.0) < WELL_AWAKE * controller.value["start_voltage"]
+
+
 def _wakes(board: Board, family: Family, net: Netlist, compiled: Compiled, quality: Quality, mains: float,
            start: Mapping[str, float]) -> bool:
-    """True for a start in operation from which the controller would wake as well if its supply were at its lockout."""
+    """True where the controller would wake as well if its supply were at its lockout."""
     supply, controller = board.by_role(family.supply_role), _controller(board)
-    volts = controller.value if controller is not None else {}
-    if supply is None or not volts:
+    if supply is None or controller is None:
         return False
-    if not volts["stop_voltage"] < start.get(supply.ref, 0.0) < WELL_AWAKE * volts["start_voltage"]:
-        return False
-    run = _begin(board, family, net, compiled, quality, mains, {**start, supply.ref: volts["stop_voltage"]}, None)
+    lockout = {**start, supply.ref: controller.value["stop_voltage"]}
+    run = _begin(board, family, net, compiled, quality, mains, lockout, None)
     most = WAKE_PERIODS / board.mains.frequency
     asleep = compiled.behaviour[4].copy()
     reached = run_stretch(compiled, run.state, 0.0, most, run.watch, quality, 0.0, wake=0.0).reached
     compiled.behaviour[4][:] = asleep
     return reached < most
+
+
+def _controlled(board: Board, family: Family) -> bool:
+    """True for a board whose controller lives on a supply of its own."""
+    return _controller(board) is not None and board.by_role(family.supply_role) is not None
 
 
 def _controller(board: Board) -> Part | None:
@@ -247,10 +304,8 @@ def _output(run: _Run) -> float:
 
 def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, int]:
     """Periods until the output repeats; returns the last one and how many there were."""
-    nominal, last, output = run.board.label.output_voltage, None, _resting_output(run)
-    limit = min((part.ratings["voltage"] for part in output_parts(run.board, run.family) if "voltage" in part.ratings),
-                default=1e9)
-    slow = run.family.slow
+    last, output = None, _resting_output(run)
+    limit, slow = _output_limit(run), run.family.slow
     most, close = (MOST_SLOW_PERIODS, SLOW_SHARE) if slow else (MOST_PERIODS, 1.0)
     number = 0
     while number < most:
@@ -262,17 +317,63 @@ def _repeat(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, in
             run.restarted = True
             last, output = None, _resting_output(run)
             continue
-        drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
-                     for ref, k in run.electrolytics.items()), default=0.0)
         highest = stretch.statistics[rows["out", "node"], V_MAX]
-        still = (abs(change) < close * SETTLED_OUTPUT * nominal and drift < close * SETTLED_CHARGE
-                 and _balanced(run, stretch, rows, before))
+        still = _still(run, stretch, rows, before, change, close)
         if (still and not (slow and number < LEAST_SLOW_PERIODS)) or highest > 1.8 * limit:
             break
         last = None if slow else _follow_drift(run, change, last)
     if _asleep(run):
         return run.hiccup(), number + 1
     return stretch, number
+
+
+def _repeat_controlled(run: _Run, rows: Mapping[tuple[str, str], int]) -> tuple[Stretch, int]:
+    """As _repeat where a controller may lock out: then the last stretch goes from one waking to another."""
+    nominal, number, resumed, output = run.board.label.output_voltage, 0, 0, _resting_output(run)
+    limit = _output_limit(run)
+    while number < MOST_PERIODS + resumed:
+        number += 1
+        before, restarted = run.state.capacitors.copy(), run.restarted
+        stretch = run.period()
+        change, output = _output(run) - output, _output(run)
+        if _empty_unfed(run, stretch, rows, before):
+            run.restarted, run.phase = True, SWITCHING_START
+            continue
+        if _slept(run, stretch, rows):
+            stretch = run.hiccup()
+            if resumed == MOST_RESUMED or _slept(run, stretch, rows):
+                return stretch, number
+            resumed, output = resumed + 1, _output(run)
+            continue
+        row = stretch.statistics[rows["out", "node"]]
+        moved = restarted and row[V_MAX] - row[V_MIN] > MOVED_SHARE * nominal
+        if row[V_MAX] > 1.8 * limit or (_still(run, stretch, rows, before, change, 1.0) and not moved):
+            break
+    return stretch, number
+
+
+def _slept(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int]) -> bool:
+    """True when the controller is dead or locked out, or its supply was at the lockout."""
+    supply, controller = run.board.by_role(run.family.supply_role), _controller(run.board)
+    if supply is None or controller is None:
+        return False
+    lowest = stretch.statistics[rows[supply.ref, ""], V_MIN]
+    return _asleep(run) or not np.any(run.compiled.behaviour[2] >= CONTROLLER) or bool(lowest < controller.value["stop_voltage"])
+
+
+def _output_limit(run: _Run) -> float:
+    """Lowest voltage rating of what holds the output [V]."""
+    return min((part.ratings["voltage"] for part in output_parts(run.board, run.family) if "voltage" in part.ratings),
+               default=1e9)
+
+
+def _still(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], before: np.ndarray, change: float,
+           close: float) -> bool:
+    """True when output, electrolytics and the bulk's energy repeat, within ``close`` times the limits."""
+    drift = max((abs(run.state.capacitors[k] - before[k]) / max(abs(run.state.capacitors[k]), 0.05 * _rated(run, ref))
+                 for ref, k in run.electrolytics.items()), default=0.0)
+    return (abs(change) < close * SETTLED_OUTPUT * run.board.label.output_voltage and drift < close * SETTLED_CHARGE
+            and _balanced(run, stretch, rows, before))
 
 
 def _balanced(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], before: np.ndarray) -> bool:
@@ -297,6 +398,12 @@ def _asleep(run: _Run) -> bool:
     return bool(np.any((kinds >= CONTROLLER) & (states[:, 0] < 0.5) | (kinds == OFF_TIME) & (states[:, 2] > 0.5)))
 
 
+def _latched(run: _Run) -> bool:
+    """True when a controller is awake but latched off: it sinks to its lockout."""
+    kinds, states = run.compiled.behaviour[2], run.compiled.behaviour[4]
+    return bool(np.any((kinds == CONTROLLER) & (states[:, 0] > 0.5) & (states[:, 2] > 0.5)))
+
+
 def _resting_output(run: _Run) -> float:
     """Voltage of the output capacitor [V], the output voltage of a board at rest."""
     parts = output_parts(run.board, run.family)
@@ -318,7 +425,9 @@ def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int
         run.state = initial_state(run.compiled)
         run.zeroed += 1
         return True
-    falling = [k for ref, k in run.electrolytics.items() if k != index and ref != _awaited(run)
+    if _controlled(run.board, run.family):
+        return False  # a pause is no end: the controller wakes and feeds what falls now
+    falling = [k for ref, k in run.electrolytics.items() if k != index
                and _only_falls(run, stretch, rows, ref, before)]
     if falling and not run.unfed_done:
         run.unfed_done = True
@@ -331,12 +440,6 @@ def _empty_unfed(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int
             run.zeroed += 1
             return True
     return False
-
-
-def _awaited(run: _Run) -> str:
-    """Ref of a controller's supply capacitor: it sinks to its level from above, and unfed it comes to the lockout by itself."""
-    supply = run.board.by_role(run.family.supply_role)
-    return supply.ref if supply is not None and _controller(run.board) is not None else ""
 
 
 def _only_falls(run: _Run, stretch: Stretch, rows: Mapping[tuple[str, str], int], ref: str, before: np.ndarray) -> bool:

@@ -18,7 +18,7 @@ import numpy as np
 from triage.board.circuit import circuit
 from triage.board.part import Board
 from triage.board.stress import Stress
-from triage.families.points import SOLUTION
+from triage.families.points import solution_of
 from triage.families.steady import Settled
 from triage.families.stresses import (
     Condition,
@@ -133,7 +133,7 @@ def _inrush(board: Board, kept: Kept) -> dict[str, float]:
 
 
 def _inrush_key(board: Board) -> str:
-    return "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load))
+    return "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load), board.family)
 
 
 def _melting(found: Any) -> dict[str, float]:
@@ -141,11 +141,11 @@ def _melting(found: Any) -> dict[str, float]:
 
 
 def _key(board: Board, corner: Condition) -> str:
-    return "corner-" + _digest(circuit(board, mains=corner.mains, load=corner.load))
+    return "corner-" + _digest(circuit(board, mains=corner.mains, load=corner.load), board.family)
 
 
-def _digest(net: Netlist) -> str:
-    """Short text that changes with any element of a circuit."""
+def _digest(net: Netlist, family: str) -> str:
+    """Short text that changes with any element of a circuit, and with the solution of its family."""
     content = {
         "reference": net.reference, "resistors": net.resistors, "capacitors": net.capacitors, "windings": net.windings,
         "groups": [[(*pair, k) for pair, k in sorted(group.items())] for group in net.groups], "diodes": net.diodes,
@@ -154,7 +154,7 @@ def _digest(net: Netlist) -> str:
             for name in sorted(type(net).__dataclass_fields__)
             if name not in ("reference", "resistors", "capacitors", "windings", "groups", "diodes", "ports")
         ],
-        "solution": SOLUTION,
+        "solution": solution_of(family),
     }  # fmt: skip
     return hashlib.sha256(json.dumps(content, sort_keys=True, default=_plain).encode()).hexdigest()[:20]
 
@@ -196,7 +196,7 @@ def _read(content: Any) -> Settled:
 def kept_keys(board: Board) -> tuple[str, ...]:
     """Keys under which everything that this module keeps of a board lies."""
     corners = tuple(_key(board, corner) for corner in conditions(board))
-    return (*corners, "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load)))
+    return (*corners, "inrush-" + _digest(circuit(board, mains=board.mains.high, load=board.full_load), board.family))
 
 
 def is_corner(content: Any) -> bool:

@@ -84,7 +84,7 @@ class Curves:
         if faulty is None:
             return f"with {_named(faults)} the solution breaks off: nothing repeats"
         broken = self._points.at(faults, "full").breaks
-        return f"drawn before it destroys {broken}" if broken is not None else ""
+        return f"drawn before it destroys {' and '.join(map(str, broken))}" if broken else ""
 
     def _load_line(self, faults: tuple[Fault, ...], note: str) -> ChartView:
         """Output voltage over output current, with the window the retest holds it to."""

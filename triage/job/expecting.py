@@ -17,6 +17,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from triage.board.circuit import Draw
 from triage.board.evidence import STATES
 from triage.board.fault import Fault, Hypothesis
 from triage.board.part import Board
@@ -39,9 +40,11 @@ from triage.quantities import engineering
 DRAWS = 24
 """Specimens. On a synthetic adapter a prototype needed 37.6 / 32.5 / 31.8 / 30.3 minutes a job with 5 / 10 / 30 / 100 of them."""
 SEED = 1
-UNPOWERED = 2
+UNPOWERED = 3
 """Raised whenever the unpowered solution changes, so that kept cold readings of an older one are not used."""
 HEALTHY: tuple[Fault, ...] = ()
+LEAKS = ("leaky", "vcc_leaky")
+"""Modes that are a resistance across the part."""
 RUN_ITS_COURSE = 0.85
 """Chance that a destruction ran its course before the adapter was switched off [-]. Common practice, no
 source."""
@@ -79,12 +82,37 @@ def expectations(
     samples[:, : len(cold)] = _cold(board, hypotheses, cold, kept, meter)
     states = np.full((len(hypotheses), len(LOADS), 1), UNKNOWN_STATE, dtype=np.int64)
     healthy = _known(points, HEALTHY)
+    sound, draws = _values(healthy, live), specimens(board, DRAWS, SEED)
     for row, hypothesis in enumerate(hypotheses):
         found = _known(points, hypothesis.faults)
-        values = {probe: value for point in found.values() for probe, value in point.readings.items()}
-        samples[row, len(cold) :] = np.array([values.get(probe, math.nan) for probe in live])[:, None]
+        samples[row, len(cold) :] = graded(hypothesis, _values(found, live), sound, draws)
         states[row, :, 0] = _states(board, found, healthy)
     return Expectations(tuple(hypotheses), (*cold, *live), samples, states)
+
+
+def _values(found: Mapping[str, Point], live: Sequence[Probe]) -> NDArray[np.float64]:
+    """The readings of some points in the order of the probes, nan where there is none."""
+    values = {probe: value for point in found.values() for probe, value in point.readings.items()}
+    return np.array([values.get(probe, math.nan) for probe in live])
+
+
+def graded(
+    hypothesis: Hypothesis, shown: NDArray[np.float64], sound: NDArray[np.float64], draws: Sequence[Draw]
+) -> NDArray[np.float64]:
+    """Live readings over the specimens, shape (probes, DRAWS), from those under a fault of the usual size.
+
+    Points are solved for one size of a fault only, and leaks differ by decades. Another leak departs from the sound board in
+    proportion to its conductance; never to the other side of zero.
+    """
+    leaks = [(fault.ref, fault.mode) for fault in hypothesis.root if fault.mode in LEAKS]
+    if not leaks:
+        return np.repeat(shown[:, None], len(draws), axis=1)
+    size = np.array([math.prod(1.0 / draw.severity.get(leak, 1.0) for leak in leaks) for draw in draws])
+    apart = shown - sound
+    spread = sound[:, None] + apart[:, None] * size[None, :]
+    low, high = np.minimum(shown, 0.0)[:, None], np.maximum(shown, 0.0)[:, None]
+    within = np.where(sound[:, None] >= 0.0, np.maximum(spread, low), np.minimum(spread, high))
+    return np.where(np.isnan(apart)[:, None], shown[:, None], within)
 
 
 def unpowered_probes(board: Board) -> tuple[Probe, ...]:
@@ -124,9 +152,9 @@ def _chain(points: OperatingPoints, root: Fault, load: str) -> tuple[Fault, ...]
     chain: tuple[Fault, ...] = ()
     while point_key((root, *chain), load) in points:
         broken = points.at((root, *chain), load).breaks
-        if broken is None or broken in chain:
+        if not broken or set(broken) & set(chain):
             break
-        chain = (*chain, broken)
+        chain = (*chain, *broken)
     return chain
 
 

@@ -24,6 +24,11 @@ DIFFERENCE = 1e-6
 """Step of the slopes [V]."""
 EVENT_WINDOW = 4e-9
 """A comparator's trip is located within this time [s]."""
+LEVEL = 4
+"""Place of the drive level in the state of a controller: it follows the drive with the time constant of an edge, and both
+transistors of the output stage with it."""
+LEVEL_STEP, LEVEL_CLOSE = 1.0 / 3.0, 0.01
+"""Largest step in an edge, as a share of its time constant, and distance at which the edge is over [-]."""
 LINEAR_VOLTS, LINEAR_SHARE = 2e-3, 5e-4
 """Move of a terminal over which a linearisation holds [V], [-]."""
 
@@ -72,9 +77,9 @@ def currents(kind, u, p, s, out):
         out[0], out[1], out[2] = i + quiet, -i, -quiet
     elif kind >= CONTROLLER:
         supply, drive, feedback, ground = u[0], u[1], u[2], u[4]
-        awake, high = s[0], s[1]
-        source = (supply - drive) / p[9] if high > 0.5 else 0.0
-        sink = (drive - ground) / p[10] if awake > 0.5 and high < 0.5 else 0.0
+        awake, level = s[0], s[LEVEL] if kind == CONTROLLER else s[1]
+        source = (supply - drive) * max(2.0 * level - 1.0, 0.0) / p[9]
+        sink = (drive - ground) * max(awake - 2.0 * level, 0.0) / p[10]
         quiet = (p[8] if awake > 0.5 else 0.0) + (supply - ground) / p[11]
         pull = (feedback - ground - (p[12] if awake > 0.5 else 0.0)) / p[7] if kind == CONTROLLER else 0.0
         out[0] = source + quiet
@@ -152,6 +157,8 @@ def next_event(behaviour, t):
     _, _, kinds, params, states = behaviour
     soonest = 1e30
     for b in range(kinds.shape[0]):
+        if kinds[b] == CONTROLLER and states[b, LEVEL] != states[b, 1]:
+            soonest = min(soonest, t + LEVEL_STEP * params[b, 15])
         if kinds[b] == CONTROLLER and states[b, 0] > 0.5:
             p, s = params[b], states[b]
             for when in (s[3] + p[6], s[3] + p[13] * p[6] if s[1] > 0.5 else 1e30, s[3] + p[14] * p[6]):
@@ -189,7 +196,7 @@ def advance(v, behaviour, t, h):
             heat = max(-(entry - exit_) * out[1] + (entry - ground) * p[4], 0.0)
             s[0] += (25.0 + heat * p[6] - s[0]) * (1.0 - math.exp(-h / p[7]))
         elif kinds[b] == CONTROLLER:
-            jumped = advance_controller(v, nodes[b], p, s, t) or jumped
+            jumped = advance_controller(v, nodes[b], p, s, t, h) or jumped
         elif kinds[b] > CONTROLLER:
             jumped = advance_switcher(v, nodes[b], kinds[b], p, s, h) or jumped
     return jumped
@@ -206,14 +213,17 @@ def advance_switcher(v, nodes, kind, p, s, h):
 
 
 @njit(**OPTIONS)
-def advance_controller(v, nodes, p, s, t):
-    """Lockout, latch, clock and comparator of one controller; True when the drive or the supply current jumped.
+def advance_controller(v, nodes, p, s, t, h):
+    """Lockout, latch, clock, comparator and drive level of one controller; True when the supply current jumped.
 
-    State: awake, drive high, latched off, start of the period [s].
+    State: awake, drive high, latched off, start of the period [s], drive level.
     """
     ground = voltage(v, nodes[4])
     supply = voltage(v, nodes[0]) - ground
-    was_awake, was_high = s[0], s[1]
+    was_awake = s[0]
+    s[LEVEL] += (s[1] - s[LEVEL]) * (1.0 - math.exp(-h / p[15]))
+    if abs(s[1] - s[LEVEL]) < LEVEL_CLOSE:
+        s[LEVEL] = s[1]
     if s[0] < 0.5 and supply > p[0]:
         s[0], s[3] = 1.0, t - p[6]
     elif s[0] > 0.5 and supply < p[1]:
@@ -230,4 +240,4 @@ def advance_controller(v, nodes, p, s, t):
             sensed = voltage(v, nodes[3]) - ground
             if ramp >= p[13] - 1e-9 or s[2] > 0.5 or peak <= 0.03 or (ramp > p[14] and sensed > peak - p[5] * ramp):
                 s[1] = 0.0
-    return s[0] != was_awake or s[1] != was_high
+    return s[0] != was_awake

@@ -68,6 +68,8 @@ END_WEIGHT = GAMMA / 2.0
 TRUNCATION = (3.0 * GAMMA * GAMMA - 4.0 * GAMMA + 2.0) / (6.0 * (2.0 - GAMMA))
 EULER_STEPS = 3
 """Steps of the implicit Euler rule at the start, until the derivatives are those of the circuit."""
+WHOLE_MOVES = 12
+"""Iterations of Newton's method that take their whole move."""
 QUIET_STEPS = 16
 """Steps at the start of a run that are not searched for extremes."""
 EULER_START = 10.0
@@ -150,8 +152,11 @@ def copy(target, origin):
 @njit(**INNER)
 def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, bipolar, history_q, lin_q, behaviour, lin_b,
                 program, share, error, most):
-    """Newton's method at one time; ``v`` holds the guess and becomes the solution. Returns whether it settled."""
-    for _ in range(most):
+    """Newton's method at one time; ``v`` holds the guess and becomes the solution. Returns whether it settled.
+
+    Beyond ``WHOLE_MOVES`` iterations it goes half the way: about a kink of a behaviour whole moves can go round in circles.
+    """
+    for number in range(most):
         copy(a, linear)
         copy(rhs, drive)
         limited = stamp_diodes(a, rhs, v, vd, diode, a0, history_d, lin_d, GMIN)
@@ -161,7 +166,7 @@ def solve_point(linear, drive, a, rhs, v, vd, vq, a0, diode, history_d, lin_d, b
             return False
         total = 0.0
         for k in range(v.shape[0]):
-            v[k] = rhs[k]
+            v[k] = rhs[k] if number < WHOLE_MOVES else 0.5 * (v[k] + rhs[k])
             total += abs(rhs[k])
         if not math.isfinite(total):
             return False

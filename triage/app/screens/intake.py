@@ -34,6 +34,11 @@ class IntakeScreen(Frame):
     AUTO_FOCUS = "ListPanel"
     CSS_PATH = "intake.tcss"
 
+    def __init__(self) -> None:
+        super().__init__()
+        self._begun = False
+        """True between the choice of a state and the Enter that puts the complaint into the job."""
+
     def body(self) -> ComposeResult:
         """State, load, words."""
         yield Panel(id="ask")
@@ -61,6 +66,7 @@ class IntakeScreen(Frame):
 
     def on_list_panel_taken(self, event: ListPanel.Taken) -> None:
         """The state is chosen: on to the load."""
+        self._begun = True
         self.query_one("#load").focus()
 
     def on_input_submitted(self, event: Field.Submitted) -> None:
@@ -71,8 +77,14 @@ class IntakeScreen(Frame):
             self.query_one("#words").focus()
             return
         state = self.query_one("#states", ListPanel).key
+        self._begun = False
         words, condition = event.value.strip(), load.settle() or "full"
         self.desk.enter(lambda bench: bench.complain(words, state, condition), self._accepted)
+
+    def on_screen_suspend(self) -> None:
+        """Say so when the screen is left with half a complaint."""
+        if self._begun:
+            self.desk.say("the complaint is not in the job yet: Enter on its load and on its words puts it there")
 
     def _accepted(self) -> None:
         self.triage.action_go(self.triage.place_of_stage())

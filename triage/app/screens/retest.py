@@ -2,6 +2,7 @@
 
 from typing import ClassVar
 
+from textual import events
 from textual.app import ComposeResult
 from textual.containers import Horizontal
 from textual.widgets import Input
@@ -87,6 +88,15 @@ class RetestScreen(Frame):
         self.panel("full").show(retest_detail(here, self.wide) if here else wrapped(note, self.wide, "near"))
         self.panel("read-label").show((line(Span("reading ", "strong")),) if here else ())
         self.panel("hint").show((line(Span(f" {answer_hint(here)}", "quiet")),) if here else ())
+
+    def on_key(self, event: events.Key) -> None:
+        """What is typed with the cursor on a check is its reading."""
+        letter = event.character or ""
+        if letter.isprintable() and letter not in ("", "?") and isinstance(self.focused, ListPanel) and self._here() is not None:
+            event.stop()
+            field = self.query_one("#read", Field)
+            field.focus()
+            field.insert_text_at_cursor(letter)
 
     def on_list_panel_moved(self, event: ListPanel.Moved) -> None:
         """Show the line in full."""

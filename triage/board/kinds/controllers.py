@@ -10,7 +10,9 @@ _SUPPLY_ZENER = {"saturation_current": 1e-14, "emission": 1.0, "series_resistanc
                  "zero_bias_capacitance": 20e-12}
 _STANDBY = 120e3
 _REFERENCE = 5.0
-_DRIVER_HIGH, _DRIVER_LOW, _BLANKING = 14.0, 7.0, 0.01625
+_DRIVER_HIGH, _DRIVER_LOW, _BLANKING, _EDGE = 14.0, 7.0, 0.01625, 20e-9
+"""Output stage [ohm], blanking as a share of the period [-], time constant of an edge of the drive [s]; class of 384x, from
+memory."""
 
 
 def _place(net: Netlist, part: Part, state: State) -> None:
@@ -38,7 +40,7 @@ def _place(net: Netlist, part: Part, state: State) -> None:
             value["start_voltage"], value["stop_voltage"], value.get("latch_voltage", 27.0),
             value.get("feedback_offset", 1.2), value["sense_voltage"], value.get("slope_voltage", 0.15),
             1.0 / value["frequency"], value.get("feedback_resistance", 4700.0), value.get("supply_current", 1.5e-3) - 1e-4,
-            _DRIVER_HIGH, _DRIVER_LOW, _STANDBY, _REFERENCE, value.get("duty_limit", 0.78), _BLANKING))
+            _DRIVER_HIGH, _DRIVER_LOW, _STANDBY, _REFERENCE, value.get("duty_limit", 0.78), _BLANKING, _EDGE))
     net.port(ref, "", supply, ground, PORT_NONE)
 
 
