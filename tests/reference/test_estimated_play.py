@@ -27,6 +27,8 @@ from triage.job.wiring import Wiring
 RIGHT = 0.80
 """Share of the faults found at the first repair: the owner's bound."""
 SEED = 700
+MOST = 150
+"""Readings after which a play ends: with unread values a silent fault among 45 parts is sought part by part."""
 PLAYED = ("rcc-zener", "linear-reg", "rcc-opto", "pwm-opto")
 
 
@@ -58,7 +60,7 @@ def plays_of(circuit: str, cache: Cache) -> list[Play]:
     plays = []
     for number, unit in enumerate(single_faults(circuit)):
         entries = [unit.symptom, Sign("sound")]
-        played = play(diagnosis, unit.name, unit.needed, entries, answers(unit, refs), SEED + number)
+        played = play(diagnosis, unit.name, unit.needed, entries, answers(unit, refs), SEED + number, most=MOST)
         plays.append(replace(played, repair=frozenset(refs.get(ref, ref) for ref in played.repair)))
     return plays
 

@@ -36,6 +36,10 @@ def suspect_lines(suspects: Sequence[SuspectView]) -> list[str]:
     return lines + ([f"{len(suspects) - MOST_SUSPECTS} others together {percent(rest)}"] if rest else [])
 
 
+SETS = 6
+"""Sets of parts named that could together explain the odd readings; the others are counted."""
+
+
 def verdict_lines(view: JobView) -> list[str]:
     """What the job has come to."""
     verdict = view.verdict
@@ -53,7 +57,8 @@ def verdict_lines(view: JobView) -> list[str]:
     if verdict.rivals:
         lines.append("not ruled out: " + ", ".join(verdict.rivals))
     if verdict.left:
-        lines.append("the odd readings could come from: " + ", ".join(verdict.left))
+        more = f", and {len(verdict.left) - SETS} more" if len(verdict.left) > SETS else ""
+        lines.append("the odd readings could come from: " + ", ".join(verdict.left[:SETS]) + more)
     return lines + [f"  {text}" for text in verdict.evidence]
 
 
