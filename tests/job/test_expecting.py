@@ -18,6 +18,7 @@ from triage.families.live import live_probes
 from triage.families.points import LOADS, OperatingPoints, fingerprint
 from triage.job import expecting
 from triage.job.cache import Cache
+from triage.job.wiring import Wiring
 
 BOARD = load_profile("harbour-handset-charger")
 RF1, R1 = Fault("RF1", "open"), Fault("R1", "open")
@@ -107,6 +108,17 @@ def test_a_broken_off_solution_says_nothing(tmp_path: Path) -> None:
     known = {f"@{load}": {"out": 5.0} for load in LOADS} | {f"R1.open@{load}": {"out": math.nan} for load in LOADS}
     found = expecting.expectations(BOARD, (Hypothesis((R1,)),), points(known), Cache(tmp_path))
     assert (found.states == -1).all()
+
+
+def test_an_adapter_that_tries_again_and_again_may_be_called_dead_or_pulsing() -> None:
+    """Reasoned: it has no output, and it ticks. From the solved points of the brick: a shorted output capacitor makes it hiccup,
+    an open start resistor leaves it still."""
+    brick, wiring = load_profile("tide-gauge-brick"), Wiring()
+    still, ticks = (Hypothesis((Fault(*one),)) for one in (("R2", "open"), ("C7", "short")))
+    found = {one: wiring.points(brick).at(one.faults, "full") for one in (still, ticks)}
+    dead = np.full(len(LOADS), STATES.index("dead"))
+    heard = {one: expecting._heard(brick, {"full": point}, dead)[LOADS.index("full")] for one, point in found.items()}
+    assert heard == {still: STATES.index("dead"), ticks: STATES.index("pulsing")}
 
 
 def test_a_leak_of_another_size_shows_between_the_usual_one_and_the_sound_board() -> None:

@@ -126,6 +126,20 @@ AT_MOST = 0.5
 """The same where nothing was computed, at most [-]."""
 
 
+def fuses_alone(weights: Mapping[Fault, float], collateral: CollateralMap, fuses: Iterable[Fault]) -> dict[Fault, float]:
+    """The weights with those of fuses raised to where repair records find them: ALONE to WITH_ANOTHER computed to open them.
+
+    Age, inrush and a surge open fuses too; the handbook's rate of a fuse, small beside those of what can short behind it, knows
+    nothing of that. Parameters as in ``shorts_behind``.
+    """
+    raised = dict(weights)
+    for fuse in (fault for fault in fuses if fault in weights):
+        computed = sum(weight * chance for root, weight in weights.items() if root != fuse
+                       for faults, chance in outcomes_of(root, collateral) if fuse in faults)
+        raised[fuse] = max(weights[fuse], computed * ALONE / WITH_ANOTHER)
+    return raised
+
+
 def shorts_behind(weights: Mapping[Fault, float], collateral: CollateralMap, fuses: Iterable[Fault]) -> tuple[Weighted, ...]:
     """Shorts that opened a fuse without the computed destruction saying so: a fuse seldom opens by itself.
 

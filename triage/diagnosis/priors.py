@@ -16,7 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from triage.board.fault import Fault, Hypothesis
-from triage.diagnosis.hypotheses import NO_PART_FAULT, CollateralMap, pairs, shorts_behind, single_faults
+from triage.diagnosis.hypotheses import NO_PART_FAULT, CollateralMap, fuses_alone, pairs, shorts_behind, single_faults
 from triage.diagnosis.settings import HERE, load_table, number
 from triage.errors import EntryError
 
@@ -92,6 +92,7 @@ def prior_of(
     pair_share: float = PAIR_SHARE,
     pair_floor: float = PAIR_FLOOR,
     fuses: Iterable[Fault] = (),
+    blown: Iterable[Fault] = (),
 ) -> Prior:
     """All hypotheses of a board with their chances.
 
@@ -103,10 +104,11 @@ def prior_of(
     outside: chance that no part of the board is at fault; by default the share of public repair records.
     pair_share, pair_floor: see ``hypotheses.pairs``; ``pair_share`` 0 lists no pairs.
     fuses: faults that are a fuse of any kind standing open, which is seldom a root; see ``hypotheses.shorts_behind``.
+    blown: those of them that also open by age and inrush alone; see ``hypotheses.fuses_alone``.
     """
     factors = factors or {}
     raised = {fault: weight.value * factors.get(fault, 1.0) for fault, weight in weights.items()}
-    even = evened(raised)
+    even = fuses_alone(evened(raised), collateral, blown)
     singles = single_faults(even, collateral)
     doubles = pairs(even, collateral, pair_share, pair_floor)
     out = outside_share() if outside is None else outside

@@ -45,6 +45,8 @@ UNPOWERED = 3
 HEALTHY: tuple[Fault, ...] = ()
 LEAKS = ("leaky", "vcc_leaky")
 """Modes that are a resistance across the part."""
+RETRIES = 0.7
+"""Swing of a controller's supply, over that between its lockout and its waking, from which it tries again and again [-]."""
 RUN_ITS_COURSE = 0.85
 """Chance that a destruction ran its course before the adapter was switched off [-]. Common practice, no
 source."""
@@ -80,13 +82,14 @@ def expectations(
     live = tuple(probe for load in LOADS for probe in live_probes(board, family, load))
     samples = np.full((len(hypotheses), len(cold) + len(live), DRAWS), np.nan, dtype=np.float32)
     samples[:, : len(cold)] = _cold(board, hypotheses, cold, kept, meter)
-    states = np.full((len(hypotheses), len(LOADS), 1), UNKNOWN_STATE, dtype=np.int64)
+    states = np.full((len(hypotheses), len(LOADS), 2), UNKNOWN_STATE, dtype=np.int64)
     healthy = _known(points, HEALTHY)
     sound, draws = _values(healthy, live), specimens(board, DRAWS, SEED)
     for row, hypothesis in enumerate(hypotheses):
         found = _known(points, hypothesis.faults)
         samples[row, len(cold) :] = graded(hypothesis, _values(found, live), sound, draws)
         states[row, :, 0] = _states(board, found, healthy)
+        states[row, :, 1] = _heard(board, found, states[row, :, 0])
     return Expectations(tuple(hypotheses), (*cold, *live), samples, states)
 
 
@@ -176,6 +179,21 @@ def _states(board: Board, found: Mapping[str, Point], healthy: Mapping[str, Poin
         STATES.index(state_class(board, load, here, sound, _is_hot(board, solved[load]))) if load in solved else UNKNOWN_STATE
         for load in LOADS
     ]
+
+
+def _heard(board: Board, found: Mapping[str, Point], states: NDArray[np.int64]) -> list[int]:
+    """What an owner may say as well: an adapter without output whose controller tries again and again ticks."""
+    controller = next((part for part in board.parts if "start_voltage" in part.value), None)
+    supply = board.by_role(family_of(board.family).supply_role)
+    if controller is None or supply is None:
+        return [int(state) for state in states]
+    swing = RETRIES * (controller.value["start_voltage"] - controller.value["stop_voltage"])
+    node, ground = supply.pins["plus"], board.ground["primary"]
+    return [
+        STATES.index("pulsing") if state == STATES.index("dead") and load in found
+        and found[load].readings.get(Probe("volts_pp", node, ground, load), 0.0) > swing else int(state)
+        for load, state in zip(LOADS, states, strict=True)
+    ]  # fmt: skip
 
 
 def _is_hot(board: Board, point: Point) -> bool:

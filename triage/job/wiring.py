@@ -82,7 +82,8 @@ class Wiring:
         shares = handbook_shares({fault: weight.value for fault, weight in weights.items()})
         collateral, factors = collateral_of(points, tuple(weights)), experience.factors(shares)
         fuses = [Fault(part.ref, "open") for part in board.parts if part.kind in PROTECTIVE]
-        prior = prior_of(weights, collateral, factors, pair_floor=PAIR_FLOOR, fuses=fuses)
+        blown = [fault for fault in fuses if board.part(fault.ref).kind == "fuse"]
+        prior = prior_of(weights, collateral, factors, pair_floor=PAIR_FLOOR, fuses=fuses, blown=blown)
         own = workshop.own_instruments()
         meters = instruments_of(own)
         expected = all_expectations(board, prior.hypotheses, points, self._kept, meter_of(own), meters)
