@@ -85,7 +85,7 @@ def play(
     meter: Meter | None = None,
     careful: bool = False,
     policy: Policy | None = None,
-    most: int = 60,
+    most: int = 150,
 ) -> Play:
     """One job from its first entries to the verdict.
 
