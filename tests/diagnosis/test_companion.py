@@ -76,6 +76,19 @@ def test_the_order_of_entry_changes_no_bit():
     assert one.log(entries).tobytes() == other.log(entries[::-1]).tobytes()
 
 
+def test_a_leak_of_unknown_size_is_a_tie_of_its_own():
+    """The resistor is known well, the leak is not: under the leak the second reading follows the first, on a sound board not."""
+    one = board(0.003)
+    assert one.companions.of(1, (0,)) is None
+    own = one.companions.own(1, (0,), None)
+    assert list(own) == [0] and list(own[0]) == [1]
+    far = 10e3 * 0.5 * np.exp(-1.0)
+    both, alone = (one.terms(entries)[SECOND][1] for entries in ([Reading(FIRST, far), Reading(SECOND, 1.2 * far)],
+                                                                 [Reading(SECOND, 1.2 * far)]))
+    assert both > alone + 1.0, "what the first reading told of the leak is not held against it again"
+    assert one.companions.own(1, (0,), 0) == {}, "what the common companion ties already needs no other"
+
+
 def test_an_open_line_moves_nothing():
     one = board(0.3)
     alone = one.terms([Reading(SECOND, 9e3)])[SECOND]

@@ -128,7 +128,8 @@ def test_an_electrolytic_over_its_voltage_vents_open_where_it_is_fed_on_and_stay
     output = part("C7", "electrolytic", voltage=16.0)
     over = at(C7={V_MAX: 28.0, V_MEAN: 25.0})
     assert destroyed(board(output), over, ()) == (Fault("C7", "open"),)
-    paused = board(output, Part("U1", "pwm_controller", "", {"drive": "drv"}, ratings={"voltage": 30.0}))
+    controller = Part("U1", "pwm_controller", "", {"drive": "drv"}, {"start_voltage": 16.0}, ratings={"voltage": 30.0})
+    paused = board(output, controller)
     assert destroyed(paused, over, ()) == (Fault("C7", "short"),)
     assert destroyed(paused, at(C7={V_MAX: 28.0, V_MEAN: 20.0}), ()) == (), "a short peak does not break it down"
     assert destroyed(paused, at(C7={V_MIN: -12.0, V_MEAN: -5.0}), ()) == (Fault("C7", "open"),), "reversed it gasses and vents"

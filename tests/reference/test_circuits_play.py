@@ -22,6 +22,9 @@ MINUTES, LIVE = 0.65, 1 / 3
 FLAGGED, ALARMS = 0.5, 0.03
 POINTS = 0.03
 PLAYED = ("rcc-zener", "linear-reg", *(pytest.param(one, marks=pytest.mark.long) for one in ("rcc-opto", "pwm-opto")))
+HELD_ALONE = ("rcc-zener", "linear-reg", "rcc-opto")
+"""Circuits that hold the bound of false alarms by themselves. pwm-opto does not: 3.5 %, four of 113 units, whose record shows
+what the program does not expect of them."""
 ALL = ("rcc-zener", "linear-reg", "rcc-opto", "pwm-opto")
 """Circuits whose operating points ship, the largest two in the long run only."""
 
@@ -53,12 +56,11 @@ def test_every_fault_is_played_from_complaint_to_verdict(circuit, gross, outside
 
 
 @pytest.mark.long
-def test_the_careful_way_is_righter(outside_check):
-    """Two steps ahead, and the stop for repairs that destroy parts: over the plays of all circuits, and no circuit far behind."""
-    plays = [one for circuit in ALL for one in play_all(circuit, careful=True)]
-    for circuit in ALL:
-        assert told(f"first repair right on {circuit}, careful", play_all(circuit, careful=True)) >= CLEAN
-    outside_check.at_least("first repair right on all circuits, careful", SOURCE, told("all circuits", tuple(plays)), CAREFUL)
+@pytest.mark.parametrize("circuit", ALL)
+def test_the_careful_way_is_righter(circuit, outside_check):
+    """Two steps ahead, and the stop for repairs that destroy parts."""
+    subject = f"first repair right on {circuit}, careful"
+    outside_check.at_least(subject, SOURCE, told(subject, play_all(circuit, careful=True)), CAREFUL)
 
 
 @pytest.mark.long
@@ -76,12 +78,14 @@ def test_it_is_quicker_and_less_dangerous_than_a_checklist(circuit):
 
 @pytest.mark.long
 def test_a_fault_that_is_not_on_the_list_is_told():
-    """Each tenth of the faults left out and played: on every circuit at least half are flagged, and over all plays hardly ever
-    one that is listed."""
+    """Each tenth of the faults left out and played: at least half are flagged, and hardly ever one that is listed: on each
+    circuit held alone, and over the plays of all."""
     alarms = []
     for circuit in ALL:
         blind, listed = unlisted(circuit)
         assert summary(blind)["does not fit"] >= FLAGGED, circuit
+        if circuit in HELD_ALONE:
+            assert summary(listed)["does not fit"] <= ALARMS, circuit
         alarms += listed
     assert summary(alarms)["does not fit"] <= ALARMS
 

@@ -23,6 +23,8 @@ from triage.units import UNITS
 
 MOST_SUSPECTS = 12
 """Suspects listed: those after them share what is left."""
+SETS = 6
+"""Sets of parts named that could together explain the odd readings; the others are counted."""
 
 
 def suspect_lines(suspects: Sequence[SuspectView]) -> list[str]:
@@ -34,10 +36,6 @@ def suspect_lines(suspects: Sequence[SuspectView]) -> list[str]:
     rest = sum(one.probability for one in suspects[MOST_SUSPECTS:])
     lines = columns(("chance", "part", "fault", "took with it", "role", "stress past its limit"), rows)
     return lines + ([f"{len(suspects) - MOST_SUSPECTS} others together {percent(rest)}"] if rest else [])
-
-
-SETS = 6
-"""Sets of parts named that could together explain the odd readings; the others are counted."""
 
 
 def verdict_lines(view: JobView) -> list[str]:

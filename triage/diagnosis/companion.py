@@ -5,9 +5,9 @@ readings shout down everything else as soon as the resistor is not quite what wa
 each reading may have one companion among those before it (a tree over the readings; Friedman, Geiger, Goldszmidt, Bayesian
 network classifiers, Machine Learning 29 (1997) 131-163): the one its expected value is most correlated with over the
 specimens of the sound board. Under a fault the readings may hang together otherwise: a leak of unknown size moves all readings
-across it, and a hypothesis that knows of such a tie has a companion of its own (Bayesian multinets, the same paper, section 4.3).
-The draws are then moved to where the companion was read, by linear regression within each
-hypothesis (Beaumont, Zhang, Balding, Approximate Bayesian computation in population genetics, Genetics 162 (2002) 2025-2035).
+across it, and a hypothesis that knows of such a tie has a companion of its own (Bayesian multinets, the same paper; from memory).
+The draws are then moved to where the companion was read, by linear regression within each hypothesis (Beaumont, Zhang,
+Balding, Approximate Bayesian computation in population genetics, Genetics 162 (2002) 2025-2035).
 """
 
 from collections.abc import Sequence

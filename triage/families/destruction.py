@@ -119,7 +119,7 @@ def _electrolytic(board: Board, part: Part, at: Settled) -> tuple[float, str]:
     """Over its voltage an electrolytic breaks down. A converter that goes on feeding it boils it until it vents and stands open;
     one that its controller stops leaves it shorted."""
     row, rated = at.row(part.ref), part.ratings.get("voltage")
-    if any(other.kind == "pwm_controller" for other in board.parts):
+    if any("start_voltage" in other.value for other in board.parts):
         share, mode, reverse = _over(max(row[V_MEAN], 0.0), rated, SUSTAINED_VOLTAGE), "short", -row[V_MEAN] / REVERSE_VOLTS
     else:
         share, mode, reverse = _over(max(row[V_MAX], 0.0), rated, CAPACITOR_VOLTAGE), "open", -row[V_MIN] / REVERSE_VOLTS
